@@ -1,0 +1,6 @@
+//! Complete, certified coding languages of polygonal billiards.
+#![forbid(unsafe_code)]
+#![deny(missing_docs)]
+
+pub mod number;
+pub mod table;

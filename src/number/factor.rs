@@ -1,0 +1,1 @@
+//! Factoring over the rationals.

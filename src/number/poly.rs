@@ -1,0 +1,237 @@
+//! Polynomials with integer coefficients: Sturm sequences and the isolation of real roots.
+//!
+//! A polynomial is a slice of coefficients from the constant term up, without leading zeros; the zero
+//! polynomial is empty.
+
+use super::tiers::Sign;
+use rug::ops::Pow;
+use rug::{Integer, Rational};
+
+/// Removes zeros at the top.
+pub fn trim(p: &mut Vec<Integer>) {
+    while p.last().is_some_and(|c| *c == 0) {
+        p.pop();
+    }
+}
+
+/// Degree; `None` for the zero polynomial.
+pub fn degree(p: &[Integer]) -> Option<usize> {
+    p.len().checked_sub(1)
+}
+
+/// The derivative.
+pub fn derivative(p: &[Integer]) -> Vec<Integer> {
+    p.iter()
+        .enumerate()
+        .skip(1)
+        .map(|(i, c)| Integer::from(c * i as u64))
+        .collect()
+}
+
+/// Divides by the greatest common divisor of the coefficients, keeping the sign.
+pub fn primitive(p: &[Integer]) -> Vec<Integer> {
+    let mut content = Integer::new();
+    for c in p {
+        content.gcd_mut(c);
+    }
+    if content == 0 || content == 1 {
+        return p.to_vec();
+    }
+    p.iter().map(|c| c.clone().div_exact(&content)).collect()
+}
+
+/// The sign of p at a rational point.
+pub fn sign_at(p: &[Integer], point: &Rational) -> Sign {
+    let (num, den) = (point.numer(), point.denom());
+    let mut value = Integer::new();
+    let mut weight = Integer::from(1);
+    for c in p.iter().rev() {
+        value *= num;
+        value += Integer::from(c * &weight);
+        weight *= den;
+    }
+    value.cmp0().into()
+}
+
+/// The exact value of p at a rational point.
+pub fn value_at(p: &[Integer], point: &Rational) -> Rational {
+    let mut value = Rational::new();
+    for c in p.iter().rev() {
+        value *= point;
+        value += c;
+    }
+    value
+}
+
+/// `scale·a = quotient·b + remainder` with a positive `scale`; returns the remainder, made primitive.
+///
+/// # Panics
+/// If b is zero.
+pub fn positive_remainder(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
+    let lead = b.last().expect("division by the zero polynomial");
+    let mut rest = a.to_vec();
+    while rest.len() >= b.len() {
+        let shift = rest.len() - b.len();
+        let top = rest.last().expect("nonempty").clone();
+        // Multiply by |lead| so that the division is exact and the sign is kept.
+        let factor = if *lead < 0 { -top } else { top };
+        let scale = lead.clone().abs();
+        for c in &mut rest {
+            *c *= &scale;
+        }
+        for (i, c) in b.iter().enumerate() {
+            rest[shift + i] -= Integer::from(c * &factor);
+        }
+        trim(&mut rest);
+        rest = primitive(&rest);
+    }
+    rest
+}
+
+/// The Sturm sequence of a squarefree polynomial: p, p′, then negated remainders.
+pub fn sturm_sequence(p: &[Integer]) -> Vec<Vec<Integer>> {
+    let mut chain = vec![primitive(p), primitive(&derivative(p))];
+    loop {
+        let n = chain.len();
+        if chain[n - 1].len() <= 1 {
+            break;
+        }
+        let rest = positive_remainder(&chain[n - 2], &chain[n - 1]);
+        if rest.is_empty() {
+            break;
+        }
+        chain.push(rest.iter().map(|c| Integer::from(-c)).collect());
+    }
+    chain
+}
+
+fn variations(signs: impl Iterator<Item = Sign>) -> usize {
+    let mut last = Sign::Zero;
+    let mut count = 0;
+    for sign in signs.filter(|s| *s != Sign::Zero) {
+        if last != Sign::Zero && sign != last {
+            count += 1;
+        }
+        last = sign;
+    }
+    count
+}
+
+/// The number of real roots in the half-open interval (lo, hi], by Sturm's theorem.
+pub fn roots_between(chain: &[Vec<Integer>], lo: &Rational, hi: &Rational) -> usize {
+    let at = |x: &Rational| variations(chain.iter().map(|p| sign_at(p, x)));
+    at(lo) - at(hi)
+}
+
+/// A power of two larger than the absolute value of every root (Cauchy's bound).
+///
+/// # Panics
+/// If p is zero.
+pub fn root_bound(p: &[Integer]) -> Rational {
+    let lead = p.last().expect("the zero polynomial").clone().abs();
+    let largest = p.iter().map(|c| c.clone().abs()).max().expect("nonempty");
+    let bound = Integer::from(largest / lead) + 2u32;
+    Rational::from(Integer::from(2).pow(bound.significant_bits()))
+}
+
+/// The real roots of a squarefree polynomial, in order, each as (lo, hi] with lo < root ≤ hi. A
+/// rational root may come out as its own upper end.
+///
+/// Terminates because distinct roots have a positive distance, so bisection separates them.
+pub fn isolate_roots(p: &[Integer]) -> Vec<(Rational, Rational)> {
+    if p.len() <= 1 {
+        return Vec::new();
+    }
+    let chain = sturm_sequence(p);
+    let bound = root_bound(p);
+    let mut open = vec![(Rational::from(-&bound), bound)];
+    let mut found = Vec::new();
+    while let Some((lo, hi)) = open.pop() {
+        match roots_between(&chain, &lo, &hi) {
+            0 => {}
+            1 => found.push((lo, hi)),
+            _ => {
+                let middle: Rational = Rational::from(&lo + &hi) / 2;
+                open.push((middle.clone(), hi));
+                open.push((lo, middle));
+            }
+        }
+    }
+    found
+}
+
+/// Writes a polynomial in the given variable, highest power first.
+pub fn display(p: &[Integer], variable: &str) -> String {
+    let mut text = String::new();
+    for (i, c) in p.iter().enumerate().rev().filter(|(_, c)| **c != 0) {
+        let negative = *c < 0;
+        if text.is_empty() {
+            text.push_str(if negative { "-" } else { "" });
+        } else {
+            text.push_str(if negative { " - " } else { " + " });
+        }
+        let magnitude = c.clone().abs();
+        let power = match i {
+            0 => String::new(),
+            1 => variable.to_string(),
+            _ => format!("{variable}^{i}"),
+        };
+        if power.is_empty() {
+            text.push_str(&magnitude.to_string());
+        } else if magnitude == 1 {
+            text.push_str(&power);
+        } else {
+            text.push_str(&format!("{magnitude}*{power}"));
+        }
+    }
+    if text.is_empty() { "0".into() } else { text }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    fn poly(coefficients: &[i64]) -> Vec<Integer> {
+        coefficients.iter().map(|c| Integer::from(*c)).collect()
+    }
+
+    #[test]
+    fn sturm_counts_the_roots_of_a_product_of_known_factors() {
+        // (x+3)(x-1)(x-2)(x^2+1)
+        let p = poly(&[6, -7, 6, -6, 0, 1]);
+        let chain = sturm_sequence(&p);
+        let count = |lo: i64, hi: i64| roots_between(&chain, &lo.into(), &hi.into());
+        assert_eq!(count(-10, 10), 3);
+        assert_eq!(count(-3, 2), 2, "the interval is open below and closed above");
+        assert_eq!(count(1, 2), 1);
+        assert_eq!(isolate_roots(&p).len(), 3);
+    }
+
+    #[test]
+    fn sturm_separates_roots_that_are_close() {
+        // (1000x-1)(1001x-1)(x-5)
+        let q: Vec<Integer> = {
+            let (a, b, c) = (poly(&[-1, 1000]), poly(&[-1, 1001]), poly(&[-5, 1]));
+            let mul = |x: &[Integer], y: &[Integer]| {
+                let mut z = vec![Integer::new(); x.len() + y.len() - 1];
+                for (i, u) in x.iter().enumerate() {
+                    for (j, v) in y.iter().enumerate() {
+                        z[i + j] += Integer::from(u * v);
+                    }
+                }
+                z
+            };
+            mul(&mul(&a, &b), &c)
+        };
+        let roots = isolate_roots(&q);
+        assert_eq!(roots.len(), 3);
+        assert!(roots[0].0 < Rational::from((1, 1001)) && Rational::from((1, 1001)) <= roots[0].1);
+        assert!(roots[0].1 <= roots[1].0);
+    }
+
+    #[test]
+    fn polynomials_are_written_the_usual_way() {
+        assert_eq!(display(&poly(&[-1, 0, -3, 1]), "x"), "x^3 - 3*x^2 - 1");
+        assert_eq!(display(&poly(&[]), "x"), "0");
+    }
+}

@@ -1,0 +1,63 @@
+//! Signs, and the record of which tier of arithmetic decided them.
+
+use serde::Serialize;
+use std::cmp::Ordering;
+
+/// The sign of an exactly known real number.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+pub enum Sign {
+    /// Below zero.
+    Negative,
+    /// Proved to be zero.
+    Zero,
+    /// Above zero.
+    Positive,
+}
+
+impl Sign {
+    /// The sign of the negated number.
+    pub fn flip(self) -> Sign {
+        match self {
+            Sign::Negative => Sign::Positive,
+            Sign::Zero => Sign::Zero,
+            Sign::Positive => Sign::Negative,
+        }
+    }
+}
+
+impl From<Ordering> for Sign {
+    fn from(order: Ordering) -> Sign {
+        match order {
+            Ordering::Less => Sign::Negative,
+            Ordering::Equal => Sign::Zero,
+            Ordering::Greater => Sign::Positive,
+        }
+    }
+}
+
+/// How often each tier of arithmetic decided an orientation.
+///
+/// Every tier is sound; they differ in cost. The last one always decides.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Serialize)]
+pub struct Tiers {
+    /// Floating point, with a proved error bound.
+    pub float: u64,
+    /// Machine integers (finite reflection group).
+    pub integer: u64,
+    /// Integers of any size.
+    pub big: u64,
+}
+
+impl Tiers {
+    /// Adds the counts of a finished part of the work.
+    pub fn absorb(&mut self, other: Tiers) {
+        self.float += other.float;
+        self.integer += other.integer;
+        self.big += other.big;
+    }
+
+    /// All decisions.
+    pub fn total(&self) -> u64 {
+        self.float + self.integer + self.big
+    }
+}
