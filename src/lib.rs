@@ -2,5 +2,9 @@
 #![forbid(unsafe_code)]
 #![deny(missing_docs)]
 
+pub mod complexity;
+pub mod language;
 pub mod number;
 pub mod table;
+pub mod run;
+pub mod unfold;

@@ -73,6 +73,19 @@ impl Vector {
         self.dot(self, form)
     }
 
+    /// The product of the two as numbers x + y√(−g), whose squared modulus is the plane form.
+    pub fn product(&self, other: &Vector, form: &Real) -> Vector {
+        Vector::new(
+            &self.x * &other.x - form * &(&self.y * &other.y),
+            &self.x * &other.y + &self.y * &other.x,
+        )
+    }
+
+    /// The conjugate x − y√(−g).
+    pub fn conjugate(&self) -> Vector {
+        Vector::new(self.x.clone(), -&self.y)
+    }
+
     /// True for the zero vector.
     pub fn is_zero(&self) -> bool {
         self.x.is_zero() && self.y.is_zero()
@@ -185,6 +198,15 @@ impl Table {
     /// True when the corners were given clockwise and have been turned round.
     pub fn turned_round(&self) -> bool {
         self.turned_round
+    }
+
+    /// The same table with corner 0 at the origin.
+    pub fn moved_to_origin(&self) -> Table {
+        let first = &self.corners[0];
+        Table {
+            corners: self.corners.iter().map(|c| c.minus(first)).collect(),
+            ..self.clone()
+        }
     }
 
     /// An enclosure of the length of a vector of this table's plane.

@@ -1,0 +1,353 @@
+//! Generalized diagonals, found by walking all fans of rays from all corners.
+//!
+//! A generalized diagonal is a segment of the unfolded table from a corner to a corner with no corner in
+//! between; oriented ones are counted, so each segment counts once from either end. Its code is the
+//! sequence of sides that it crosses. Segments along a side are not counted.
+//!
+//! Cost of finding all that cross at most n sides: about one fan step for each word of length n, so about
+//! p(n) steps, in memory O(n).
+
+use crate::number::Tiers;
+use crate::run::control::STEPS_PER_TICK;
+use crate::run::{Control, Stopped};
+use crate::table::{CornerId, SideId, Vector};
+use crate::unfold::engine::{AnyEngine, Engine, Trail};
+use crate::unfold::fan::{self, Fan, Step};
+use crate::unfold::mesh::{Exit, Mesh, Wedge};
+use crate::unfold::with_engine;
+use rayon::prelude::*;
+
+/// One oriented generalized diagonal.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Diagonal {
+    /// Where it starts.
+    pub start: CornerId,
+    /// The corner at its end.
+    pub end: CornerId,
+    /// The sides that it crosses, in order.
+    pub code: Vec<SideId>,
+    /// The exact vector from its start to its end in the unfolded plane.
+    pub displacement: Vector,
+}
+
+/// A fan on its own, with the path that led to it.
+struct Seed<E: Engine> {
+    corner: CornerId,
+    path: Vec<SideId>,
+    fan: Fan<E>,
+}
+
+/// Hears of each generalized diagonal.
+trait Listener<E: Engine>: Send {
+    fn found(
+        &mut self,
+        engine: &E,
+        trail: &mut Trail<E::Exact>,
+        crossings: usize,
+        ends: (CornerId, CornerId),
+        apex: &E::Point,
+    );
+}
+
+/// N(0), …, N(most): how many oriented generalized diagonals cross exactly n sides.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn count(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let (counters, tiers) = with_engine!(engine, engine => {
+        let (counters, tiers) = walk_fans(engine, mesh, most, control, || Counter(vec![0; most + 1]))?;
+        (counters, tiers)
+    });
+    let mut n = vec![0; most + 1];
+    for counter in counters {
+        for (sum, part) in n.iter_mut().zip(&counter.0) {
+            *sum += part;
+        }
+    }
+    Ok((n, tiers))
+}
+
+/// All oriented generalized diagonals that cross at most `most` sides, by number of crossings, then start
+/// corner, then code.
+///
+/// Memory: `most` bytes and two exact numbers for each.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn list(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+) -> Result<(Vec<Diagonal>, Tiers), Stopped> {
+    let (lists, tiers) = with_engine!(engine, engine => {
+        let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default)?;
+        (lists, tiers)
+    });
+    let mut all: Vec<Diagonal> = lists.into_iter().flat_map(|c| c.0).collect();
+    all.sort_by(|a, b| {
+        (a.code.len(), a.start, &a.code, a.end).cmp(&(b.code.len(), b.start, &b.code, b.end))
+    });
+    Ok((all, tiers))
+}
+
+struct Counter(Vec<u64>);
+
+impl<E: Engine> Listener<E> for Counter {
+    #[inline(always)]
+    fn found(
+        &mut self,
+        _: &E,
+        _: &mut Trail<E::Exact>,
+        crossings: usize,
+        _: (CornerId, CornerId),
+        _: &E::Point,
+    ) {
+        self.0[crossings] += 1;
+    }
+}
+
+#[derive(Default)]
+struct Collector(Vec<Diagonal>);
+
+impl<E: Engine> Listener<E> for Collector {
+    fn found(
+        &mut self,
+        engine: &E,
+        trail: &mut Trail<E::Exact>,
+        crossings: usize,
+        (start, end): (CornerId, CornerId),
+        apex: &E::Point,
+    ) {
+        let origin = engine.place(&engine.home(Some(start)), start);
+        self.0.push(Diagonal {
+            start,
+            end,
+            code: trail.path()[..crossings].to_vec(),
+            displacement: engine.displacement(trail, &origin, apex),
+        });
+    }
+}
+
+/// Fans to aim for when the work is divided.
+const SEEDS: usize = 256;
+
+/// Walks all fans; returns the listeners in a fixed order that does not depend on the number of threads.
+fn walk_fans<E: Engine, L: Listener<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+    new_listener: impl Fn() -> L + Sync,
+) -> Result<(Vec<L>, Tiers), Stopped> {
+    assert!(most <= engine.deepest(), "the engine must reach the last crossing");
+    let mut head = new_listener();
+    let mut tiers = Tiers::default();
+    let mut seeds = Vec::new();
+    for wedge in mesh.wedges() {
+        open_wedge(engine, wedge, most, &mut head, &mut seeds);
+    }
+    // A seed is stepped until its children have crossed a side or split; a few rounds give enough seeds.
+    let mut round = 0;
+    while !seeds.is_empty() && seeds.len() < SEEDS && round < most {
+        control.tick(seeds.len() as u64)?;
+        let mut next = Vec::new();
+        for seed in seeds {
+            let mut trail = trail_of(engine, &seed);
+            let mut emit = |fan: Fan<E>, path: &[SideId]| {
+                next.push(Seed {
+                    corner: seed.corner,
+                    path: path.to_vec(),
+                    fan,
+                })
+            };
+            advance(engine, mesh, most, seed.corner, seed.path.len(), &seed.fan, &mut trail, &mut head, &mut emit);
+            tiers.absorb(trail.tiers);
+        }
+        seeds = next;
+        round += 1;
+    }
+    let walked: Vec<(L, Tiers)> = seeds
+        .par_iter()
+        .map(|seed| {
+            let mut listener = new_listener();
+            let tiers = walk_seed(engine, mesh, most, control, seed, &mut listener)?;
+            Ok((listener, tiers))
+        })
+        .collect::<Result<_, Stopped>>()?;
+    let mut listeners = vec![head];
+    for (listener, part) in walked {
+        tiers.absorb(part);
+        listeners.push(listener);
+    }
+    Ok((listeners, tiers))
+}
+
+fn trail_of<E: Engine>(engine: &E, seed: &Seed<E>) -> Trail<E::Exact> {
+    let mut trail = engine.trail(Some(seed.corner));
+    for (crossing, side) in seed.path.iter().enumerate() {
+        trail.cross(crossing, *side);
+    }
+    trail
+}
+
+/// Reports the inner edge on the right of a wedge as a diagonal without crossings, and starts its fan.
+fn open_wedge<E: Engine, L: Listener<E>>(
+    engine: &E,
+    wedge: &Wedge,
+    most: usize,
+    listener: &mut L,
+    seeds: &mut Vec<Seed<E>>,
+) {
+    let (pose, left, right) = fan::start(engine, wedge);
+    if wedge.right_is_inner {
+        let mut trail = engine.trail(Some(wedge.corner));
+        listener.found(engine, &mut trail, 0, (wedge.corner, wedge.right), &right);
+    }
+    let (pose, gate, path) = match wedge.exit {
+        Exit::Pass(gate) => (pose, gate, Vec::new()),
+        Exit::Bounce(side, gate) if most > 0 => (engine.reflect(&pose, side), gate, vec![side]),
+        Exit::Bounce(..) => return,
+    };
+    seeds.push(Seed {
+        corner: wedge.corner,
+        path,
+        fan: Fan {
+            pose,
+            gate,
+            left,
+            right,
+        },
+    });
+}
+
+/// One step of a fan; what is left of it, after the exits, goes to `emit` with its path.
+#[allow(clippy::too_many_arguments)]
+fn advance<E: Engine, L: Listener<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    start: CornerId,
+    crossings: usize,
+    fan: &Fan<E>,
+    trail: &mut Trail<E::Exact>,
+    listener: &mut L,
+    emit: &mut impl FnMut(Fan<E>, &[SideId]),
+) {
+    let mut send = |trail: &mut Trail<E::Exact>, exit: Exit, left: E::Point, right: E::Point| match exit {
+        Exit::Pass(gate) => emit(Fan { gate, left, right, ..*fan }, &trail.path()[..crossings]),
+        Exit::Bounce(side, gate) if crossings < most => {
+            trail.cross(crossings, side);
+            let pose = engine.reflect(&fan.pose, side);
+            emit(Fan { pose, gate, left, right }, trail.path());
+        }
+        Exit::Bounce(..) => {}
+    };
+    match fan::step(engine, mesh, trail, fan) {
+        Step::Through(exit) => send(trail, exit, fan.left, fan.right),
+        Step::Split {
+            apex,
+            corner,
+            left,
+            right,
+        } => {
+            listener.found(engine, trail, crossings, (start, corner), &apex);
+            send(trail, left, fan.left, apex);
+            send(trail, right, apex, fan.right);
+        }
+    }
+}
+
+/// A fan on the stack with the number of sides crossed so far; the last of them is `side`.
+struct Waiting<E: Engine> {
+    fan: Fan<E>,
+    crossings: u32,
+    side: SideId,
+}
+
+/// Walks everything below a seed, depth first, on a flat stack.
+fn walk_seed<E: Engine, L: Listener<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+    seed: &Seed<E>,
+    listener: &mut L,
+) -> Result<Tiers, Stopped> {
+    let mut trail = trail_of(engine, seed);
+    let root = seed.path.len();
+    let mut stack: Vec<Waiting<E>> = vec![Waiting {
+        fan: seed.fan,
+        crossings: root as u32,
+        side: SideId(0),
+    }];
+    let mut steps = 0u64;
+    while let Some(Waiting { mut fan, crossings, side }) = stack.pop() {
+        let mut crossings = crossings as usize;
+        if crossings > root {
+            trail.cross(crossings - 1, side);
+        }
+        // One fan is followed in registers; only its splits touch the stack.
+        loop {
+            steps += 1;
+            if steps % STEPS_PER_TICK == 0 {
+                control.tick(STEPS_PER_TICK)?;
+            }
+            let exit = match fan::step(engine, mesh, &mut trail, &fan) {
+                Step::Through(exit) => exit,
+                Step::Split {
+                    apex,
+                    corner,
+                    left,
+                    right,
+                } => {
+                    listener.found(engine, &mut trail, crossings, (seed.corner, corner), &apex);
+                    let waiting = Fan { right: apex, ..fan };
+                    match left {
+                        // The part that stays in this copy keeps the path, so it can wait unchanged.
+                        Exit::Pass(gate) => stack.push(Waiting {
+                            fan: Fan { gate, ..waiting },
+                            crossings: crossings as u32,
+                            side: last_side(&trail, crossings),
+                        }),
+                        Exit::Bounce(side, gate) if crossings < most => stack.push(Waiting {
+                            fan: Fan {
+                                pose: engine.reflect(&fan.pose, side),
+                                gate,
+                                ..waiting
+                            },
+                            crossings: crossings as u32 + 1,
+                            side,
+                        }),
+                        Exit::Bounce(..) => {}
+                    }
+                    fan.left = apex;
+                    right
+                }
+            };
+            match exit {
+                Exit::Pass(gate) => fan.gate = gate,
+                Exit::Bounce(side, gate) => {
+                    if crossings == most {
+                        break;
+                    }
+                    trail.cross(crossings, side);
+                    crossings += 1;
+                    fan.pose = engine.reflect(&fan.pose, side);
+                    fan.gate = gate;
+                }
+            }
+        }
+    }
+    control.tick(steps % STEPS_PER_TICK)?;
+    Ok(trail.tiers)
+}
+
+fn last_side<X: crate::unfold::engine::ExactTrail>(trail: &Trail<X>, crossings: usize) -> SideId {
+    crossings.checked_sub(1).map_or(SideId(0), |last| trail.path()[last])
+}

@@ -1,0 +1,12 @@
+//! The coding language: all words of hit sides, level by level.
+//!
+//! - [`tree`]: the words as a tree with suffix links. Knows nothing of geometry: any factorial language
+//!   fits.
+//! - [`walk`]: the depth-first walk over all beams of a table, and the tree that it grows.
+//! - [`measure`]: cylinder measures, and the check of their sum.
+
+pub mod measure;
+pub mod tree;
+pub mod walk;
+
+pub use tree::{Language, WordId};

@@ -1,0 +1,390 @@
+//! The depth-first walk over all beams of a table.
+//!
+//! A beam after n − 1 crossings is a word of length n. The walk visits the words of a subtree in
+//! lexicographic order, so a visitor that appends what it sees to a list per length gets every level in
+//! order. Only the beams on the way down and their unvisited siblings are in memory: O(longest · k) cells.
+//!
+//! **Parallelism.** The words of a short length, chosen from the number of words alone, are found first;
+//! their subtrees are then walked by any number of threads, and their results joined in order. So nothing
+//! depends on the number of threads.
+
+use super::tree::{Language, LanguageFault, WordId};
+use crate::number::Tiers;
+use crate::run::control::STEPS_PER_TICK;
+use crate::run::{Control, Stopped};
+use crate::table::SideId;
+use crate::unfold::beam::{self, Front, Spread};
+use crate::unfold::engine::{Engine, Trail};
+use crate::unfold::{Mesh, with_engine};
+use crate::unfold::engine::AnyEngine;
+use rayon::prelude::*;
+use thiserror::Error;
+
+/// A word with its beam, as a visitor sees it.
+#[derive(Debug)]
+pub struct Visit<'a, E: Engine> {
+    /// The engine that placed the corner images.
+    pub engine: &'a E,
+    /// Length of the word, at least 1.
+    pub length: usize,
+    /// Its last letter.
+    pub letter: SideId,
+    /// How many of the cell's corner images are left ones.
+    pub lefts: usize,
+    /// The beam's cell: see [`beam`].
+    pub cell: &'a [E::Point],
+    /// False when the cell is the same as that of the word without its last letter.
+    pub cut: bool,
+    /// The word without its last letter, by its number among the words of that length in this part of
+    /// the walk. A subtree's root has number 0.
+    pub parent: WordId,
+}
+
+/// Sees every word of a part of the language, in lexicographic order.
+pub trait Visitor<E: Engine>: Send {
+    /// Called for each word. The trail holds the word's crossings.
+    fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>);
+}
+
+/// A beam with everything it needs to be followed on its own.
+struct Seed<E: Engine> {
+    path: Vec<SideId>,
+    front: Front<E>,
+    cell: Vec<E::Point>,
+}
+
+/// Subtrees to aim for when the work is divided.
+const SUBTREES: usize = 256;
+
+/// Walks all words of length 1 … `longest`. The first visitor sees the words up to the length where the
+/// work is divided, level by level; each other visitor sees one subtree, its root excluded.
+///
+/// # Errors
+/// When the control asks to stop.
+///
+/// # Panics
+/// If the engine was prepared for fewer crossings.
+pub fn walk_beams<E: Engine, V: Visitor<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    new_visitor: impl Fn() -> V + Sync,
+) -> Result<(Vec<V>, Tiers), Stopped> {
+    assert!(longest <= engine.deepest() + 1, "the engine must reach the longest word");
+    let mut tiers = Tiers::default();
+    let mut head = new_visitor();
+    let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
+    let walked: Vec<(V, Tiers)> = if split >= longest {
+        Vec::new()
+    } else {
+        seeds
+            .par_iter()
+            .map(|seed| {
+                let mut visitor = new_visitor();
+                let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
+                Ok((visitor, tiers))
+            })
+            .collect::<Result<_, Stopped>>()?
+    };
+    let mut visitors = vec![head];
+    for (visitor, part) in walked {
+        tiers.absorb(part);
+        visitors.push(visitor);
+    }
+    Ok((visitors, tiers))
+}
+
+/// Follows all beams level by level until there are enough, showing them to the visitor. Returns them with
+/// their word length.
+fn divide<E: Engine, V: Visitor<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    visitor: &mut V,
+    tiers: &mut Tiers,
+) -> Result<(Vec<Seed<E>>, usize), Stopped> {
+    let mut length = 1;
+    let mut seeds = Vec::new();
+    if longest == 0 {
+        return Ok((seeds, 0));
+    }
+    let mut trail = engine.trail(None);
+    for side in (0..mesh.side_count()).map(|s| SideId(s as u8)) {
+        let (front, cell) = beam::start(engine, mesh, side);
+        visitor.visit(
+            &Visit {
+                engine,
+                length: 1,
+                letter: side,
+                lefts: front.lefts,
+                cell: &cell,
+                cut: true,
+                parent: 0,
+            },
+            &mut trail,
+        );
+        seeds.push(Seed {
+            path: Vec::new(),
+            front,
+            cell: cell.to_vec(),
+        });
+    }
+    let mut out = Spread::default();
+    while length < longest && seeds.len() < SUBTREES {
+        control.tick(seeds.len() as u64)?;
+        let mut longer = Vec::new();
+        for (parent, seed) in (0..).zip(&seeds) {
+            let mut trail = engine.trail(None);
+            for (crossing, side) in seed.path.iter().enumerate() {
+                trail.cross(crossing, *side);
+            }
+            beam::spread(engine, mesh, &mut trail, &seed.front, &seed.cell, &mut out);
+            for piece in &out.pieces {
+                let cell = &out.points[piece.start..piece.end];
+                trail.cross(length - 1, piece.side);
+                visitor.visit(
+                    &Visit {
+                        engine,
+                        length: length + 1,
+                        letter: piece.side,
+                        lefts: piece.lefts,
+                        cell,
+                        cut: piece.cut,
+                        parent,
+                    },
+                    &mut trail,
+                );
+                let mut path = seed.path.clone();
+                path.push(piece.side);
+                longer.push(Seed {
+                    path,
+                    front: Front {
+                        pose: engine.reflect(&seed.front.pose, piece.side),
+                        gate: piece.gate,
+                        lefts: piece.lefts,
+                    },
+                    cell: cell.to_vec(),
+                });
+            }
+            tiers.absorb(trail.tiers);
+        }
+        seeds = longer;
+        length += 1;
+    }
+    Ok((seeds, length))
+}
+
+/// A beam on the stack; its cell is at the top of the point stack when its turn comes.
+struct Waiting<E: Engine> {
+    front: Front<E>,
+    edges: usize,
+    crossings: usize,
+    side: SideId,
+    cut: bool,
+}
+
+fn walk_subtree<E: Engine, V: Visitor<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    seed: &Seed<E>,
+    visitor: &mut V,
+) -> Result<Tiers, Stopped> {
+    let mut trail = engine.trail(None);
+    for (crossing, side) in seed.path.iter().enumerate() {
+        trail.cross(crossing, *side);
+    }
+    let root = seed.path.len();
+    let mut points: Vec<E::Point> = Vec::new();
+    let mut stack: Vec<Waiting<E>> = Vec::new();
+    let mut out = Spread::default();
+    let mut steps = 0;
+    // Words seen so far, by crossings.
+    let mut seen: Vec<WordId> = vec![0; longest];
+    seen[root] = 1;
+    beam::spread(engine, mesh, &mut trail, &seed.front, &seed.cell, &mut out);
+    push_pieces(engine, &seed.front, root, &out, &mut stack, &mut points);
+    while let Some(waiting) = stack.pop() {
+        let start = points.len() - waiting.edges;
+        let cell = &points[start..];
+        trail.cross(waiting.crossings - 1, waiting.side);
+        let length = waiting.crossings + 1;
+        visitor.visit(
+            &Visit {
+                engine,
+                length,
+                letter: waiting.side,
+                lefts: waiting.front.lefts,
+                cell,
+                cut: waiting.cut,
+                parent: seen[waiting.crossings - 1] - 1,
+            },
+            &mut trail,
+        );
+        seen[waiting.crossings] += 1;
+        if length < longest {
+            beam::spread(engine, mesh, &mut trail, &waiting.front, cell, &mut out);
+            points.truncate(start);
+            push_pieces(engine, &waiting.front, waiting.crossings, &out, &mut stack, &mut points);
+        } else {
+            points.truncate(start);
+        }
+        steps += 1;
+        if steps % STEPS_PER_TICK == 0 {
+            control.tick(STEPS_PER_TICK)?;
+        }
+    }
+    control.tick(steps % STEPS_PER_TICK)?;
+    Ok(trail.tiers)
+}
+
+/// Puts the parts of a beam on the stack, the last letter first, so that the first comes off first.
+fn push_pieces<E: Engine>(
+    engine: &E,
+    front: &Front<E>,
+    crossings: usize,
+    out: &Spread<E>,
+    stack: &mut Vec<Waiting<E>>,
+    points: &mut Vec<E::Point>,
+) {
+    for piece in out.pieces.iter().rev() {
+        points.extend_from_slice(&out.points[piece.start..piece.end]);
+        stack.push(Waiting {
+            front: Front {
+                pose: engine.reflect(&front.pose, piece.side),
+                gate: piece.gate,
+                lefts: piece.lefts,
+            },
+            edges: piece.end - piece.start,
+            crossings: crossings + 1,
+            side: piece.side,
+            cut: piece.cut,
+        });
+    }
+}
+
+/// Collects letters and parents per length: entry n − 1 for length n.
+#[derive(Default)]
+struct Grower {
+    levels: Vec<(Vec<u8>, Vec<WordId>)>,
+}
+
+impl<E: Engine> Visitor<E> for Grower {
+    #[inline]
+    fn visit(&mut self, visit: &Visit<'_, E>, _: &mut Trail<E::Exact>) {
+        let n = visit.length;
+        if self.levels.len() < n {
+            self.levels.resize_with(n, Default::default);
+        }
+        self.levels[n - 1].0.push(visit.letter.0);
+        self.levels[n - 1].1.push(visit.parent);
+    }
+}
+
+/// Why a language was not grown.
+#[derive(Clone, Debug, PartialEq, Eq, Error)]
+pub enum GrowthFault {
+    /// Asked to stop.
+    #[error(transparent)]
+    Stopped(#[from] Stopped),
+    /// The levels are no language; for a billiard that would be a mistake in the walk.
+    #[error(transparent)]
+    Language(#[from] LanguageFault),
+}
+
+/// All words of a table up to a length.
+///
+/// Cost: Σ p(n) beam steps; memory [`BYTES_PER_WORD`](super::tree::BYTES_PER_WORD) a word.
+///
+/// # Errors
+/// When the control asks to stop, or a level has more than 2³² words.
+pub fn grow(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+) -> Result<(Language, Tiers), GrowthFault> {
+    with_engine!(engine, engine => grow_with(engine, mesh, longest, control))
+}
+
+fn grow_with<E: Engine>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+) -> Result<(Language, Tiers), GrowthFault> {
+    let (growers, tiers) = walk_beams(engine, mesh, longest, control, Grower::default)?;
+    let levels = join(growers.into_iter().map(|g| g.levels).collect())?;
+    Ok((Language::from_levels(mesh.side_count(), levels)?, tiers))
+}
+
+/// Letters and parents of one level.
+type GrownLevel = (Vec<u8>, Vec<WordId>);
+
+/// Joins the levels of the head with those of the subtrees, turning parents counted within a subtree into
+/// parents counted within their level.
+fn join(parts: Vec<Vec<GrownLevel>>) -> Result<Vec<GrownLevel>, LanguageFault> {
+    let mut parts = parts.into_iter();
+    let mut levels = parts.next().unwrap_or_default();
+    let split = levels.len();
+    for (root, part) in parts.enumerate() {
+        let mut base = root;
+        for (n, (letters, parents)) in part.into_iter().enumerate().skip(split) {
+            if levels.len() <= n {
+                levels.push(Default::default());
+            }
+            let level = &mut levels[n];
+            let start = level.0.len();
+            if start + letters.len() >= WordId::MAX as usize {
+                return Err(LanguageFault::TooManyWords { length: n + 1 });
+            }
+            level.0.extend_from_slice(&letters);
+            level.1.extend(parents.iter().map(|p| p + base as WordId));
+            base = start;
+        }
+    }
+    Ok(levels)
+}
+
+/// Counts words per length: entry n for length n.
+#[derive(Default)]
+struct Counter(Vec<u64>);
+
+impl<E: Engine> Visitor<E> for Counter {
+    #[inline]
+    fn visit(&mut self, visit: &Visit<'_, E>, _: &mut Trail<E::Exact>) {
+        if self.0.len() <= visit.length {
+            self.0.resize(visit.length + 1, 0);
+        }
+        self.0[visit.length] += 1;
+    }
+}
+
+/// p(0), …, p(longest) by walking all beams without storing words.
+///
+/// Cost: Σ p(n) beam steps; memory independent of p.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn count(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let (counters, tiers) = with_engine!(engine, engine => {
+        let (counters, tiers) = walk_beams(engine, mesh, longest, control, Counter::default)?;
+        (counters, tiers)
+    });
+    let mut p = vec![0; longest + 1];
+    p[0] = 1;
+    for counter in counters {
+        for (sum, part) in p.iter_mut().zip(&counter.0) {
+            *sum += part;
+        }
+    }
+    Ok((p, tiers))
+}

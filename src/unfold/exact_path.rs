@@ -1,0 +1,303 @@
+//! Exact answers along a path, computed only when a cheaper tier could not decide.
+//!
+//! A corner image is named by (crossings, corner). Its exact coordinates follow from the path; the poses
+//! along the path are kept, so a depth-first walk that asks often pays for each crossing once.
+//!
+//! - *Finite group*: a pose is a group element and a translation with machine-integer coordinates over
+//!   1, θ, …, θ^(d−1). They grow linearly with the crossings. The orientation is a polynomial in θ of
+//!   degree at most 2d − 2 with `i128` coefficients, reduced by the minimal polynomial; it is zero
+//!   exactly when all reduced coefficients are. Every operation is checked; an overflow falls through.
+//! - *Any group*: a pose is an exact isometry with big coordinates, whose length grows linearly.
+
+use super::engine::ExactTrail;
+use super::group::{FiniteGroup, scaled_coordinates};
+use super::isometry::{Isometry, side_reflections};
+use crate::number::{Field, Real, Sign, Tiers};
+use crate::table::{CornerId, SideId, Table, Vector};
+use rug::Integer;
+
+/// The name of a corner image on a path.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct ImageName {
+    /// Crossings before the copy is reached.
+    pub crossings: u32,
+    /// Corner of the copy.
+    pub corner: CornerId,
+}
+
+/// Tables for exact answers.
+#[derive(Debug)]
+pub struct ExactTables {
+    field: Field,
+    form: Real,
+    corners: Vec<Vector>,
+    reflections: Vec<Isometry>,
+    finite: Option<FiniteTables>,
+}
+
+/// The finite group over the integer lattice of the field.
+#[derive(Debug)]
+struct FiniteTables {
+    k: usize,
+    degree: usize,
+    /// Reduction: θ^(d+i) in the powers below d, row i.
+    reduction: Vec<Vec<i128>>,
+    /// Enclosures of θ^i: value and a bound on its error.
+    powers: Vec<(f64, f64)>,
+    scale: Integer,
+    next: Vec<u16>,
+    /// Rows of 2d numbers: x coordinates, then y coordinates.
+    shift: Vec<i64>,
+    image: Vec<i64>,
+}
+
+/// Poses along the current path.
+#[derive(Debug)]
+pub struct ExactPath {
+    origin: Option<CornerId>,
+    elements: Vec<u16>,
+    translations: Vec<i64>,
+    row: usize,
+    big: Vec<Isometry>,
+}
+
+impl ExactTrail for ExactPath {
+    #[inline]
+    fn keep(&mut self, crossings: usize) {
+        if self.elements.len() > crossings + 1 {
+            self.elements.truncate(crossings + 1);
+            self.translations.truncate((crossings + 1) * self.row);
+        }
+        if self.big.len() > crossings + 1 {
+            self.big.truncate(crossings + 1);
+        }
+    }
+}
+
+impl ExactTables {
+    /// Prepares exact answers for a table; with a group, machine integers come first.
+    pub fn new(table: &Table, group: Option<&FiniteGroup>) -> ExactTables {
+        ExactTables {
+            field: table.field().clone(),
+            form: table.form().clone(),
+            corners: table.corners().to_vec(),
+            reflections: side_reflections(table),
+            finite: group.and_then(|group| FiniteTables::new(table, group)),
+        }
+    }
+
+    /// An empty path.
+    pub fn path(&self, origin: Option<CornerId>) -> ExactPath {
+        ExactPath {
+            origin,
+            elements: Vec::new(),
+            translations: Vec::new(),
+            row: self.finite.as_ref().map_or(0, |f| 2 * f.degree),
+            big: Vec::new(),
+        }
+    }
+
+    /// True when machine integers are tried before big ones.
+    pub fn has_machine_integers(&self) -> bool {
+        self.finite.is_some()
+    }
+
+    /// The sign of the cross product (b − a) × (v − a); `None` for `a` means the origin.
+    #[cold]
+    pub fn turn(
+        &self,
+        path: &mut ExactPath,
+        sides: &[SideId],
+        tiers: &mut Tiers,
+        points: (Option<ImageName>, ImageName, ImageName),
+    ) -> Sign {
+        if let Some(finite) = &self.finite
+            && let Some(sign) = finite.turn(self, path, sides, points)
+        {
+            tiers.integer += 1;
+            return sign;
+        }
+        tiers.big += 1;
+        let (a, b, v) = points;
+        let a = a.map_or(Vector::new(0.into(), 0.into()), |a| self.position(path, sides, a));
+        let b = self.position(path, sides, b);
+        let v = self.position(path, sides, v);
+        b.minus(&a).cross(&v.minus(&a)).sign()
+    }
+
+    /// The exact position of a corner image.
+    pub fn position(&self, path: &mut ExactPath, sides: &[SideId], name: ImageName) -> Vector {
+        if let Some(finite) = &self.finite
+            && let Some(row) = finite.position(path, sides, name)
+        {
+            return finite.vector(&self.field, &row);
+        }
+        if path.big.is_empty() {
+            path.big.push(match path.origin {
+                Some(corner) => {
+                    Isometry::translation(self.corners[corner.0 as usize].times(&(-1).into()))
+                }
+                None => Isometry::identity(),
+            });
+        }
+        while path.big.len() <= name.crossings as usize {
+            let side = sides[path.big.len() - 1];
+            let last = path.big.last().expect("starts with the home pose");
+            path.big.push(last.after(&self.reflections[side.0 as usize], &self.form));
+        }
+        let corner = &self.corners[name.corner.0 as usize];
+        path.big[name.crossings as usize].apply(corner, &self.form)
+    }
+}
+
+impl FiniteTables {
+    fn new(table: &Table, group: &FiniteGroup) -> Option<FiniteTables> {
+        let field = table.field();
+        let degree = field.degree();
+        let scale = group.common_denominator();
+        let rows = |vectors: &[Vector]| -> Option<Vec<i64>> {
+            let mut flat = Vec::with_capacity(vectors.len() * 2 * degree);
+            for v in vectors {
+                flat.extend(scaled_coordinates(&v.x.lifted_to(field), &scale, degree)?);
+                flat.extend(scaled_coordinates(&v.y.lifted_to(field), &scale, degree)?);
+            }
+            Some(flat)
+        };
+        let reduction = (degree..2 * degree - 1)
+            .map(|i| {
+                let power = field.generator().pow(i as u32).lifted_to(field);
+                power.coordinates().iter().map(Integer::to_i128).collect()
+            })
+            .collect::<Option<_>>()?;
+        let powers = (0..degree)
+            .map(|i| {
+                let value = field.generator().pow(i as u32).to_f64();
+                // `to_f64` is within 2 units in the last place; 2^-50 leaves room.
+                (value, value.abs() * 2f64.powi(-50))
+            })
+            .collect();
+        Some(FiniteTables {
+            k: table.sides(),
+            degree,
+            reduction,
+            powers,
+            shift: rows(&group.shift)?,
+            image: rows(&group.image)?,
+            next: group.next.clone(),
+            scale,
+        })
+    }
+
+    /// Extends the machine-integer poses to a crossing; `None` on overflow.
+    fn reach(&self, path: &mut ExactPath, sides: &[SideId], crossings: usize) -> Option<()> {
+        let row = path.row;
+        if path.elements.is_empty() {
+            path.elements.push(0);
+            match path.origin {
+                Some(corner) => {
+                    let at = corner.0 as usize * row;
+                    path.translations.extend(self.image[at..at + row].iter().map(|c| -c));
+                }
+                None => path.translations.extend(std::iter::repeat_n(0, row)),
+            }
+        }
+        while path.elements.len() <= crossings {
+            let here = path.elements.len() - 1;
+            let at = path.elements[here] as usize * self.k + sides[here].0 as usize;
+            for c in 0..row {
+                let sum = path.translations[here * row + c].checked_add(self.shift[at * row + c]);
+                let Some(sum) = sum else {
+                    path.translations.truncate((here + 1) * row);
+                    return None;
+                };
+                path.translations.push(sum);
+            }
+            path.elements.push(self.next[at]);
+        }
+        Some(())
+    }
+
+    fn position(
+        &self,
+        path: &mut ExactPath,
+        sides: &[SideId],
+        name: ImageName,
+    ) -> Option<Vec<i64>> {
+        let crossings = name.crossings as usize;
+        self.reach(path, sides, crossings)?;
+        let row = path.row;
+        let at = (path.elements[crossings] as usize * self.k + name.corner.0 as usize) * row;
+        (0..row)
+            .map(|c| path.translations[crossings * row + c].checked_add(self.image[at + c]))
+            .collect()
+    }
+
+    fn vector(&self, field: &Field, row: &[i64]) -> Vector {
+        let real = |coordinates: &[i64]| {
+            let coordinates = coordinates.iter().map(|c| Integer::from(*c)).collect();
+            Real::from_coordinates(field, coordinates, self.scale.clone())
+        };
+        let (x, y) = row.split_at(self.degree);
+        Vector::new(real(x), real(y))
+    }
+
+    fn turn(
+        &self,
+        tables: &ExactTables,
+        path: &mut ExactPath,
+        sides: &[SideId],
+        (a, b, v): (Option<ImageName>, ImageName, ImageName),
+    ) -> Option<Sign> {
+        let d = self.degree;
+        let b = self.position(path, sides, b)?;
+        let v = self.position(path, sides, v)?;
+        let a = match a {
+            Some(a) => self.position(path, sides, a)?,
+            None => vec![0; 2 * d],
+        };
+        // Differences of i64 fit in i128, and so does one product; sums are checked.
+        let difference = |p: &[i64], c: usize| p[c] as i128 - a[c] as i128;
+        let mut product = vec![0i128; 2 * d - 1];
+        for i in 0..d {
+            for j in 0..d {
+                let plus = difference(&b, i).checked_mul(difference(&v, d + j))?;
+                let minus = difference(&b, d + i).checked_mul(difference(&v, j))?;
+                let term = plus.checked_sub(minus)?;
+                product[i + j] = product[i + j].checked_add(term)?;
+            }
+        }
+        for i in (d..2 * d - 1).rev() {
+            let top = product[i];
+            for (c, weight) in self.reduction[i - d].iter().enumerate() {
+                product[c] = product[c].checked_add(top.checked_mul(*weight)?)?;
+            }
+        }
+        product.truncate(d);
+        Some(self.sign(tables, &product))
+    }
+
+    /// The sign of Σ c_i θ^i.
+    fn sign(&self, tables: &ExactTables, coordinates: &[i128]) -> Sign {
+        if coordinates.iter().all(|c| *c == 0) {
+            return Sign::Zero;
+        }
+        // Floating point: each term c·θ^i is off by at most |c|·(error of θ^i) plus two roundings, and
+        // each of the d additions by one rounding of a sum of magnitude at most Σ|c·θ^i|.
+        let (mut sum, mut slack, mut magnitude) = (0.0, 0.0, 0.0);
+        for (c, (power, error)) in coordinates.iter().zip(&self.powers) {
+            let c = *c as f64;
+            sum += c * power;
+            slack += c.abs() * error;
+            magnitude += (c * power).abs();
+        }
+        let bound = 1.01 * (slack + magnitude * (self.degree as f64 + 3.0) * f64::EPSILON);
+        if sum > bound {
+            return Sign::Positive;
+        }
+        if sum < -bound {
+            return Sign::Negative;
+        }
+        let coordinates = coordinates.iter().map(|c| Integer::from(*c)).collect();
+        Real::from_coordinates(&tables.field, coordinates, Integer::from(1)).sign()
+    }
+}

@@ -1,0 +1,24 @@
+//! Unfolding: pure geometry of straight lines through reflected copies of a table. Nothing here counts.
+//!
+//! - [`isometry`]: exact isometries.
+//! - [`mesh`]: the triangulated table as a machine that a line walks through, gate by gate.
+//! - [`engine`]: what a walk needs of arithmetic: placing corner images and deciding orientations.
+//! - [`lattice`]: the engine for finite groups over the rationals: machine integers only.
+//! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
+//! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
+//! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
+//! - [`fan`]: all rays from one corner with one itinerary.
+
+pub mod beam;
+pub mod engine;
+pub mod exact_path;
+pub mod fan;
+pub mod filtered;
+pub mod group;
+pub mod isometry;
+pub mod lattice;
+pub mod mesh;
+
+pub use engine::{Engine, Trail, with_engine};
+pub use isometry::Isometry;
+pub use mesh::Mesh;
