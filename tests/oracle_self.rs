@@ -104,6 +104,33 @@ fn dart_has_the_pairs_of_sides_counted_by_hand() {
     assert_eq!(*words, expected);
 }
 
+/// A U-shaped table: the pairs of corners that see each other through the interior, listed by hand. Corners 4
+/// and 6, 5 and 3 see each other outside only; 0 and 3 are joined by a line through the reflex corner 5.
+#[test]
+fn inner_diagonals_of_a_u_counted_by_hand() {
+    let u = [
+        (0, 0),
+        (6, 0),
+        (6, 4),
+        (4, 4),
+        (4, 2),
+        (2, 2),
+        (2, 4),
+        (0, 4),
+    ];
+    let pairs = [
+        (0, 4),
+        (0, 5),
+        (0, 6),
+        (1, 3),
+        (1, 4),
+        (1, 5),
+        (2, 4),
+        (5, 7),
+    ];
+    assert_eq!(diagonals(&lattice_table(&u), 0), [2 * pairs.len()]);
+}
+
 /// p(n+2) − 2p(n+1) + p(n) = N(n) for n ≥ 1: Cassaigne, Hubert, Troubetzkoy, Ann. Inst. Fourier 52 (2002)
 /// 835–847 for convex tables; the crate claims it for all simple polygons, so it is tried on those too.
 #[test]

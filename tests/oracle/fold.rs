@@ -33,8 +33,6 @@ pub struct Ball<'a> {
     corners: &'a [Point],
     point: Point,
     velocity: Point,
-    /// The side the ball lies on, when it lies strictly inside one.
-    side: Option<usize>,
 }
 
 impl<'a> Ball<'a> {
@@ -55,7 +53,6 @@ impl<'a> Ball<'a> {
             corners,
             point: along(&corners[side], fraction, &direction),
             velocity: primitive(&velocity),
-            side: Some(side),
         }
     }
 
@@ -75,11 +72,12 @@ impl<'a> Ball<'a> {
             corners,
             point: corners[corner].clone(),
             velocity: primitive(&velocity),
-            side: None,
         })
     }
 
     /// Moves to the next side and reflects, or tells the corner that is hit first.
+    ///
+    /// The side or corner that the ball is on is met at time 0 exactly, which doesn't count.
     pub fn advance(&mut self) -> Meeting {
         let k = self.corners.len();
         let offsets: Vec<Point> = self
@@ -102,7 +100,7 @@ impl<'a> Ball<'a> {
             }
             let straddles =
                 heights[i].cmp0() == heights[j].cmp0().reverse() && !heights[i].is_zero();
-            if straddles && self.side != Some(i) {
+            if straddles {
                 let direction = side_vector(self.corners, i);
                 let time = cross(&offsets[i], &direction) / cross(&self.velocity, &direction);
                 offer(time, Meeting::Side(i));
@@ -113,7 +111,6 @@ impl<'a> Ball<'a> {
             self.point = along(&self.point, &time, &self.velocity);
             let axis = side_vector(self.corners, side);
             self.velocity = primitive(&mirrored(&self.velocity, &axis));
-            self.side = Some(side);
         }
         meeting
     }

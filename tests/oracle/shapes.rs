@@ -20,7 +20,7 @@ pub fn random_polygon(seed: u64, corners: usize, convex: bool) -> Vec<Point> {
     assert!(corners >= 3, "{corners} corners");
     let mut random = Random(seed ^ ((corners as u64) << 48) ^ ((convex as u64) << 40));
     let grid = Grid::pick(&mut random);
-    let notched = !convex && corners >= 6 && corners % 2 == 0 && random.below(4) == 0;
+    let notched = !convex && corners >= 6 && corners.is_multiple_of(2) && random.below(4) == 0;
     // Every round has a positive chance once the grid is wide enough, and the grid widens.
     for round in 0.. {
         let extent = 3 + corners as u64 / 2 + round / 20;

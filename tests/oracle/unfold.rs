@@ -19,7 +19,8 @@
 //! their signs from ℓ, so in their order along ℓ₀ the sign changes at most once: there are 2m such patterns.
 //! Conversely each of the 2m occurs for a line near ℓ₀: turn ℓ₀ slightly about the middle of two
 //! consecutive points, or shift it slightly to a side. So all patterns are found from the pairs of points of
-//! S, two orientations each, with 2m patterns for each oriented line.
+//! S, two orientations each, with 2m patterns for each oriented line. Most patterns turn up many times, once
+//! for each vertex of the cell of lines; that is waste, not a need.
 //!
 //! **Fewer pairs.** If ℓ reads w·x then ℓ₀, a limit of lines with ℓ's signs, has the first corner of side w₁
 //! on its left or on itself, the second on its right or on itself, and likewise for the other sides read.
@@ -27,7 +28,7 @@
 //! filtered, and those with a corner that is new in P_n.
 //!
 //! **Deciding.** A pattern that strictly crosses the sides read is made a line with rational coefficients
-//! (the turn or shift is below an exact bound that keeps every sign off ℓ₀), and that line is *traced* in the
+//! (the turn or shift is below an exact bound that keeps every sign off ℓ₀, and all signs are checked), and that line is *traced* in the
 //! folded table, with `Ball`. Nothing enters the language but words of traced orbits; the argument above
 //! shows that every word gets its orbit.
 //!
@@ -366,7 +367,15 @@ impl<'a> Search<'a> {
                 }
                 let crosses = |gate: &Gate| signs[gate.left] > 0 && signs[gate.right] < 0;
                 let through = self.unfolding.gates.iter().chain([&exit]).all(crosses);
-                if through && self.reads(&on_line, before, sign, candidate, side) {
+                if !through {
+                    continue;
+                }
+                let (point, velocity) = self.neighbour(&on_line, before, sign, candidate);
+                for (corner, sign) in points.iter().zip(&signs) {
+                    let height = cross(&velocity, &between(&point, &corner.place));
+                    assert_eq!(height.cmp0() as i8, *sign, "the line has the wanted signs");
+                }
+                if self.reads(&point, velocity, side) {
                     return true;
                 }
             }
@@ -374,26 +383,18 @@ impl<'a> Search<'a> {
         false
     }
 
-    /// Traces a line next to the candidate's, with `sign` for the first `before` points on it and `−sign` for
-    /// the others.
-    fn reads(
-        &self,
-        on_line: &[usize],
-        before: usize,
-        sign: i8,
-        candidate: &Candidate,
-        side: usize,
-    ) -> bool {
-        let (point, velocity) = self.neighbour(on_line, before, sign, candidate);
+    /// Traces the line through `point`, which enters the table through the starting side.
+    fn reads(&self, point: &Point, velocity: Point, side: usize) -> bool {
         let start = self.word[0] as usize;
         let foot = &self.corners[start];
         let axis = between(foot, &self.corners[(start + 1) % self.corners.len()]);
-        let fraction = cross(&between(foot, &point), &velocity) / cross(&axis, &velocity);
+        let fraction = cross(&between(foot, point), &velocity) / cross(&axis, &velocity);
         let sides = self.word[1..].iter().map(|&s| s as usize).chain([side]);
         Ball::on_side(self.corners, start, &fraction, velocity).meets(sides.map(Meeting::Side))
     }
 
-    /// A point and the direction of a line with the wanted signs.
+    /// A point and the direction of a line with the wanted signs: `sign` for the first `before` points on the
+    /// candidate's line, `−sign` for the others on it, unchanged for the rest.
     ///
     /// With d the direction and n = (−d.y, d.x): a turn about X to the direction d + εn changes d×(p−X) by
     /// −ε d·(p−X), so that a point p on the line gets the sign of −ε when it is ahead of X, that of ε behind.
