@@ -28,9 +28,9 @@
 //! filtered, and those with a corner that is new in P_n.
 //!
 //! **Deciding.** A pattern that strictly crosses the sides read is made a line with rational coefficients
-//! (the turn or shift is below an exact bound that keeps every sign off ℓ₀, and all signs are checked), and that line is *traced* in the
-//! folded table, with `Ball`. Nothing enters the language but words of traced orbits; the argument above
-//! shows that every word gets its orbit.
+//! (the turn or shift is below an exact bound that keeps every sign off ℓ₀, and all signs are checked), and
+//! that line is *traced* in the folded table, with `Ball`. Nothing enters the language but words of traced
+//! orbits; the argument above shows that every word gets its orbit.
 //!
 //! **Cost** for k sides: for each word of length n about k·nk new pairs of 3n products of integers, and a
 //! few traces for each pair kept.
