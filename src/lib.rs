@@ -3,6 +3,7 @@
 #![deny(missing_docs)]
 
 pub mod complexity;
+pub mod factor_graph;
 pub mod language;
 pub mod number;
 pub mod table;

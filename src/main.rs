@@ -17,7 +17,15 @@ fn main(){
         println!("{name} {} fans {:?} {:?} {:?}",e.describe(),&p2[p2.len().saturating_sub(20)..],t1,ti);
         if n<=100 {let t0=std::time::Instant::now();
         let (l,ti)=language::walk::grow(&e,&m,n,&ctl).unwrap();
-        println!("  beams {} {:?} {:?}",l.complexity()==p2,t0.elapsed(),ti);}
+        println!("  beams {} {:?} {:?}",l.complexity()==p2,t0.elapsed(),ti);
+        let t0=std::time::Instant::now();
+        let g=factor_graph::census::count_graphs(&l,1,3);
+        println!("  {:?} {:?} rev {:?}",g.last(), t0.elapsed(), l.first_without_reversal());
+        println!("  within {}", g.iter().map(factor_graph::criterion::line_figures).all(|f|f.within_bound));
+        let t0=std::time::Instant::now();
+        let ms=language::measure::measure(&t,&e,&m,n,2,&ctl).unwrap();
+        println!("  {:?} {} {:?} {:?}", ms.levels.iter().all(|l|l.holds), ms.levels.last().unwrap().sum.width().to_f64(), ms.kept.iter().map(|e|e.to_f64()).collect::<Vec<_>>(), t0.elapsed());
+}
         }
     }
 }

@@ -1,1 +1,247 @@
-//! measure
+//! Cylinder measures, and the check that they fill the phase space.
+//!
+//! The invariant measure of billiards is dp dφ on oriented lines. The set of lines with one itinerary is a
+//! convex cell (see [`beam`](crate::unfold::beam)), and its measure is a signed sum of distances over the
+//! cell's vertices: the crossed-belt formula (Santaló, *Integral Geometry and Geometric Probability*,
+//! 1976). A vertex whose line passes between its two corner images, one left and one right, counts its
+//! distance positively; a vertex with both images on one side counts it negatively.
+//!
+//! All lines that meet the table have measure 2·perimeter together, so the cylinder measures of the words
+//! of one length sum to exactly that. A missing word, a word too many or a wrong cell breaks the sum,
+//! and nothing in it counts words: the check shares only the cells with the walk.
+
+use super::walk::{GrowthFault, Part, Visit, Visitor, walk_beams};
+use crate::number::{Enclosure, Real};
+use crate::run::Control;
+use crate::table::Table;
+use crate::unfold::engine::{AnyEngine, Engine, Trail};
+use crate::unfold::{Mesh, with_engine};
+use rug::{Float, Integer, Rational};
+use std::collections::BTreeMap;
+
+/// An exact sum of rational multiples of square roots of field elements.
+#[derive(Clone, Debug, Default, PartialEq, Eq)]
+pub struct RootSum {
+    /// Coefficient by radicand. Rational radicands are integers without a square factor below 2²⁰.
+    terms: BTreeMap<Real, Rational>,
+}
+
+impl RootSum {
+    /// Adds `coefficient·√radicand`; the radicand must not be negative.
+    pub fn add(&mut self, coefficient: i64, radicand: Real) {
+        let (factor, radicand) = match radicand.to_rational() {
+            Some(value) => extract_square(value),
+            None => (Rational::from(1), radicand),
+        };
+        let sum = self.terms.entry(radicand.clone()).or_default();
+        *sum += factor * coefficient;
+        if *sum == 0 {
+            self.terms.remove(&radicand);
+        }
+    }
+
+    /// The terms as (coefficient, radicand), radicands increasing.
+    pub fn terms(&self) -> impl Iterator<Item = (&Rational, &Real)> {
+        self.terms.iter().map(|(radicand, coefficient)| (coefficient, radicand))
+    }
+
+    /// An enclosure with bounds of `precision` bits; each root is first enclosed to within 2^−precision.
+    pub fn enclosure(&self, precision: u32) -> Enclosure {
+        let mut sum = Enclosure::zero(precision);
+        for (coefficient, radicand) in self.terms() {
+            let root = radicand.enclosure_within(2 * precision).sqrt();
+            let term = root
+                .mul_integer(coefficient.numer())
+                .div_integer(coefficient.denom());
+            sum.add_assign(&term);
+        }
+        sum
+    }
+}
+
+/// `√value = factor·√rest` with an integer rest.
+fn extract_square(value: Rational) -> (Rational, Real) {
+    let (num, den) = value.into_numer_denom();
+    let mut rest = num * &den;
+    let mut factor = Rational::from((1, den));
+    if rest == 0 {
+        return (factor, Real::from(0));
+    }
+    if rest.is_perfect_square() {
+        factor *= rest.sqrt();
+        return (factor, Real::from(1));
+    }
+    // Exact whatever the bound: a square factor that is missed only stays under the root.
+    let mut p = 2u32;
+    while p < 1 << 10 && Integer::from(p * p) <= rest {
+        let square = Integer::from(p * p);
+        while rest.is_divisible(&square) {
+            rest.div_exact_mut(&square);
+            factor *= p;
+        }
+        p += 1;
+    }
+    (factor, Real::from(rest))
+}
+
+/// The exact measure of a word's beam.
+///
+/// Cost: one exact distance for each vertex of the cell.
+pub fn exact_measure<E: Engine>(
+    visit: &Visit<'_, E>,
+    trail: &mut Trail<E::Exact>,
+    form: &Real,
+) -> RootSum {
+    let mut sum = RootSum::default();
+    for (sign, radicand) in distances(visit, trail, form) {
+        sum.add(sign, radicand);
+    }
+    sum
+}
+
+/// Sign and squared length for each vertex of the cell.
+fn distances<E: Engine>(
+    visit: &Visit<'_, E>,
+    trail: &mut Trail<E::Exact>,
+    form: &Real,
+) -> Vec<(i64, Real)> {
+    let cell = visit.cell;
+    let m = cell.len();
+    (0..m)
+        .map(|i| {
+            let between_sides = i + 1 == visit.lefts || i + 1 == m;
+            let vector = visit.engine.displacement(trail, &cell[i], &cell[(i + 1) % m]);
+            (if between_sides { 1 } else { -1 }, vector.squared_length(form))
+        })
+        .collect()
+}
+
+/// What the check of one level says.
+#[derive(Clone, Debug)]
+pub struct LevelSum {
+    /// Length of the words.
+    pub length: usize,
+    /// Certified sum of their measures.
+    pub sum: Enclosure,
+    /// True when the sum's enclosure is at most 10⁻³⁰ wide and shares a point with that of 2·perimeter.
+    pub holds: bool,
+}
+
+/// Cylinder measures of a language.
+#[derive(Clone, Debug)]
+pub struct Measures {
+    /// 2·perimeter.
+    pub whole: Enclosure,
+    /// The sums for lengths 1, 2, …
+    pub levels: Vec<LevelSum>,
+    /// Measures of the words of the kept length, in their order.
+    pub kept: Vec<Enclosure>,
+}
+
+/// Bits of the bounds; distances are enclosed to at least as many places after the point.
+const PRECISION: u32 = 192;
+
+/// The width that a level's sum must stay below: 10⁻³⁰.
+pub fn largest_width() -> Float {
+    Float::with_val(64, Float::parse("1e-30").expect("a number"))
+}
+
+/// Measures all words of length 1 … `longest`, checks the sum of each level and keeps the measures of one
+/// length.
+///
+/// Only cells that a corner cut are measured anew; a word with the same cell as its prefix has the same
+/// measure. So about p(longest) cells are measured, on Σ p(n) beam steps.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn measure(
+    table: &Table,
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    longest: usize,
+    kept: usize,
+    control: &Control,
+) -> Result<Measures, GrowthFault> {
+    let parts: Vec<Sums> = with_engine!(engine, engine => {
+        let form = table.form();
+        let new = |part| Sums::new(part, form, kept);
+        walk_beams(engine, mesh, longest, control, new)?.0
+    });
+    let whole = table.perimeter(PRECISION).mul_integer(&Integer::from(2));
+    let mut sums = vec![Enclosure::zero(PRECISION); longest];
+    let mut kept_measures = Vec::new();
+    for part in parts {
+        for (sum, more) in sums.iter_mut().zip(&part.sums) {
+            sum.add_assign(more);
+        }
+        kept_measures.extend(part.kept_measures);
+    }
+    let levels = (1..)
+        .zip(sums)
+        .map(|(length, sum)| LevelSum {
+            length,
+            holds: sum.width() <= largest_width() && sum.meets(&whole),
+            sum,
+        })
+        .collect();
+    Ok(Measures {
+        whole,
+        levels,
+        kept: kept_measures,
+    })
+}
+
+/// Sums per level of one part of the walk.
+struct Sums {
+    part: Part,
+    form: Real,
+    kept: usize,
+    sums: Vec<Enclosure>,
+    /// In a subtree: the measure of the current word of each length.
+    current: Vec<Option<Enclosure>>,
+    kept_measures: Vec<Enclosure>,
+}
+
+impl Sums {
+    fn new(part: Part, form: &Real, kept: usize) -> Sums {
+        Sums {
+            part,
+            form: form.clone(),
+            kept,
+            sums: Vec::new(),
+            current: Vec::new(),
+            kept_measures: Vec::new(),
+        }
+    }
+}
+
+impl<E: Engine> Visitor<E> for Sums {
+    fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>) {
+        let n = visit.length;
+        if self.sums.len() < n {
+            self.sums.resize_with(n, || Enclosure::zero(PRECISION));
+            self.current.resize(n + 1, None);
+        }
+        let inherited = match self.part {
+            Part::Subtree if !visit.cut => self.current[n - 1].clone(),
+            _ => None,
+        };
+        let measure = inherited.unwrap_or_else(|| {
+            let mut sum = Enclosure::zero(PRECISION);
+            for (sign, radicand) in distances(visit, trail, &self.form) {
+                let root = radicand.enclosure_within(PRECISION).sqrt();
+                if sign > 0 {
+                    sum.add_assign(&root);
+                } else {
+                    sum.sub_assign(&root);
+                }
+            }
+            sum
+        });
+        self.sums[n - 1].add_assign(&measure);
+        if n == self.kept {
+            self.kept_measures.push(measure.clone());
+        }
+        self.current[n] = Some(measure);
+    }
+}

@@ -46,6 +46,16 @@ pub trait Visitor<E: Engine>: Send {
     fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>);
 }
 
+/// Which part of a divided walk a visitor sees.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Part {
+    /// The short words, level by level.
+    Head,
+    /// The words below one short word, depth first: the last word seen of each shorter length is a prefix
+    /// of the present one.
+    Subtree,
+}
+
 /// A beam with everything it needs to be followed on its own.
 struct Seed<E: Engine> {
     path: Vec<SideId>,
@@ -69,11 +79,11 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     mesh: &Mesh,
     longest: usize,
     control: &Control,
-    new_visitor: impl Fn() -> V + Sync,
+    new_visitor: impl Fn(Part) -> V + Sync,
 ) -> Result<(Vec<V>, Tiers), Stopped> {
     assert!(longest <= engine.deepest() + 1, "the engine must reach the longest word");
     let mut tiers = Tiers::default();
-    let mut head = new_visitor();
+    let mut head = new_visitor(Part::Head);
     let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
     let walked: Vec<(V, Tiers)> = if split >= longest {
         Vec::new()
@@ -81,7 +91,7 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
         seeds
             .par_iter()
             .map(|seed| {
-                let mut visitor = new_visitor();
+                let mut visitor = new_visitor(Part::Subtree);
                 let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
                 Ok((visitor, tiers))
             })
@@ -316,7 +326,7 @@ fn grow_with<E: Engine>(
     longest: usize,
     control: &Control,
 ) -> Result<(Language, Tiers), GrowthFault> {
-    let (growers, tiers) = walk_beams(engine, mesh, longest, control, Grower::default)?;
+    let (growers, tiers) = walk_beams(engine, mesh, longest, control, |_| Grower::default())?;
     let levels = join(growers.into_iter().map(|g| g.levels).collect())?;
     Ok((Language::from_levels(mesh.side_count(), levels)?, tiers))
 }
@@ -376,7 +386,7 @@ pub fn count(
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
     let (counters, tiers) = with_engine!(engine, engine => {
-        let (counters, tiers) = walk_beams(engine, mesh, longest, control, Counter::default)?;
+        let (counters, tiers) = walk_beams(engine, mesh, longest, control, |_| Counter::default())?;
         (counters, tiers)
     });
     let mut p = vec![0; longest + 1];

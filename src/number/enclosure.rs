@@ -285,7 +285,10 @@ mod tests {
         assert!(x.mul(&y).contains(&Rational::from(&a * &b)));
         assert!(x.div(&y).unwrap().contains(&Rational::from(&a / &b)));
         assert!(x.neg().contains(&Rational::from(-&a)));
-        assert!(x.mul_integer(&Integer::from(-5)).contains(&Rational::from(&a * -5)));
+        assert!(
+            x.mul_integer(&Integer::from(-5))
+                .contains(&Rational::from(&a * -5))
+        );
         assert!(x.width() > 0);
     }
 
@@ -302,10 +305,17 @@ mod tests {
     #[test]
     fn decimals_of_small_negative_numbers_keep_their_zeros() {
         assert_eq!(
-            Enclosure::from_rational(&ratio(-1, 1000), 80).decimal(5).unwrap(),
+            Enclosure::from_rational(&ratio(-1, 1000), 80)
+                .decimal(5)
+                .unwrap(),
             "-0.00100"
         );
-        assert_eq!(Enclosure::from_rational(&ratio(5, 1), 80).decimal(0).unwrap(), "5");
+        assert_eq!(
+            Enclosure::from_rational(&ratio(5, 1), 80)
+                .decimal(0)
+                .unwrap(),
+            "5"
+        );
     }
 
     #[test]

@@ -65,8 +65,15 @@ impl Field {
     /// If the polynomial is not monic of degree at least 1, or the interval does not hold exactly one
     /// root.
     pub fn from_isolated_root(minimal: Vec<Integer>, lo: Rational, hi: Rational) -> Field {
-        assert!(minimal.len() >= 2, "a minimal polynomial has degree at least 1");
-        assert_eq!(*minimal.last().expect("nonempty"), 1, "the minimal polynomial must be monic");
+        assert!(
+            minimal.len() >= 2,
+            "a minimal polynomial has degree at least 1"
+        );
+        assert_eq!(
+            *minimal.last().expect("nonempty"),
+            1,
+            "the minimal polynomial must be monic"
+        );
         assert_eq!(
             poly::roots_between(&poly::sturm_sequence(&minimal), &lo, &hi),
             1,
@@ -137,7 +144,11 @@ impl Field {
             // Squarefree with one root inside: the sign just above lo is the opposite of that at hi,
             // unless hi is the root itself.
             let at_hi = poly::sign_at(p, &interval.1);
-            let root_above = if at_hi == Sign::Zero { true } else { at_middle != at_hi };
+            let root_above = if at_hi == Sign::Zero {
+                true
+            } else {
+                at_middle != at_hi
+            };
             if root_above {
                 interval.0 = middle;
             } else {
@@ -173,7 +184,10 @@ impl Field {
             return "the rationals".into();
         }
         let value = self.generator().decimal(12);
-        format!("{name} = {value}…, root of {}", poly::display(&self.0.minimal, name))
+        format!(
+            "{name} = {value}…, root of {}",
+            poly::display(&self.0.minimal, name)
+        )
     }
 }
 

@@ -202,7 +202,11 @@ mod tests {
         let chain = sturm_sequence(&p);
         let count = |lo: i64, hi: i64| roots_between(&chain, &lo.into(), &hi.into());
         assert_eq!(count(-10, 10), 3);
-        assert_eq!(count(-3, 2), 2, "the interval is open below and closed above");
+        assert_eq!(
+            count(-3, 2),
+            2,
+            "the interval is open below and closed above"
+        );
         assert_eq!(count(1, 2), 1);
         assert_eq!(isolate_roots(&p).len(), 3);
     }

@@ -35,7 +35,11 @@ impl Real {
     /// # Panics
     /// If there are not as many coordinates as the field's degree, or `den` is zero.
     pub fn from_coordinates(field: &Field, coordinates: Vec<Integer>, den: Integer) -> Real {
-        assert_eq!(coordinates.len(), field.degree(), "one coordinate for each power");
+        assert_eq!(
+            coordinates.len(),
+            field.degree(),
+            "one coordinate for each power"
+        );
         assert!(den != 0, "zero denominator");
         let mut real = Real {
             field: field.clone(),
@@ -269,7 +273,12 @@ impl Real {
     /// The exact value in the powers of the generator, under the given name: `1/2 + 3/2*t`.
     pub fn display_in(&self, name: &str) -> String {
         let mut text = String::new();
-        for (i, c) in self.coordinates.iter().enumerate().filter(|(_, c)| **c != 0) {
+        for (i, c) in self
+            .coordinates
+            .iter()
+            .enumerate()
+            .filter(|(_, c)| **c != 0)
+        {
             let value = Rational::from((c, &self.den));
             let negative = value < 0;
             let magnitude = value.abs();
@@ -337,7 +346,11 @@ impl Real {
                 if subtract { left - right } else { left + right }
             })
             .collect();
-        Real::from_coordinates(&self.field, coordinates, Integer::from(&self.den * &other.den))
+        Real::from_coordinates(
+            &self.field,
+            coordinates,
+            Integer::from(&self.den * &other.den),
+        )
     }
 
     fn product(&self, other: &Real) -> Real {
@@ -408,7 +421,10 @@ fn solve_fraction_free(mut m: Vec<Vec<Integer>>) -> (Vec<Integer>, Integer) {
             row[i] = previous.clone();
         }
     }
-    (m.into_iter().map(|mut row| row.swap_remove(n)).collect(), previous)
+    (
+        m.into_iter().map(|mut row| row.swap_remove(n)).collect(),
+        previous,
+    )
 }
 
 impl PartialEq for Real {
@@ -446,7 +462,11 @@ impl std::hash::Hash for Real {
     /// Equal numbers hash alike also across the rationals and a larger field, because trailing zero
     /// coordinates are left out.
     fn hash<H: std::hash::Hasher>(&self, state: &mut H) {
-        let used = self.coordinates.iter().rposition(|c| *c != 0).map_or(0, |i| i + 1);
+        let used = self
+            .coordinates
+            .iter()
+            .rposition(|c| *c != 0)
+            .map_or(0, |i| i + 1);
         self.coordinates[..used].hash(state);
         self.den.hash(state);
     }

@@ -211,7 +211,10 @@ impl Table {
 
     /// An enclosure of the length of a vector of this table's plane.
     pub fn length(&self, vector: &Vector, precision: u32) -> Enclosure {
-        vector.squared_length(&self.form).enclosure(precision).sqrt()
+        vector
+            .squared_length(&self.form)
+            .enclosure(precision)
+            .sqrt()
     }
 
     /// An enclosure of the perimeter.

@@ -243,13 +243,28 @@ mod tests {
 
     #[test]
     fn each_fault_names_its_place() {
-        assert_eq!(fault(&[(0, 0), (1, 0)]), TableFault::TooFewCorners { count: 2 });
+        assert_eq!(
+            fault(&[(0, 0), (1, 0)]),
+            TableFault::TooFewCorners { count: 2 }
+        );
         let repeated = fault(&[(0, 0), (2, 0), (1, 1), (0, 2), (2, 0)]);
-        assert_eq!(repeated, TableFault::RepeatedCorner { first: 1, second: 4 });
+        assert_eq!(
+            repeated,
+            TableFault::RepeatedCorner {
+                first: 1,
+                second: 4
+            }
+        );
         let touching = fault(&[(0, 0), (4, 0), (4, 4), (2, 0), (0, 4)]);
         assert_eq!(touching, TableFault::CornerOnSide { corner: 3, side: 0 });
         let bow = fault(&[(0, 0), (2, 2), (2, 0), (0, 2)]);
-        assert_eq!(bow, TableFault::SidesCross { first: 0, second: 2 });
+        assert_eq!(
+            bow,
+            TableFault::SidesCross {
+                first: 0,
+                second: 2
+            }
+        );
         assert_eq!(fault(&[(0, 0), (1, 1), (2, 2)]), TableFault::ZeroArea);
         let straight = fault(&[(0, 0), (1, 0), (2, 0), (0, 2)]);
         assert_eq!(straight, TableFault::StraightCorner { corner: 1 });
@@ -273,6 +288,13 @@ mod tests {
     fn a_repeated_letter_is_refused() {
         let square = points(&[(0, 0), (1, 0), (1, 1), (0, 1)]);
         let fault = Table::new("", square, 1.into(), vec!['a', 'b', 'a', 'c']).unwrap_err();
-        assert!(matches!(fault, TableFault::RepeatedLetter { first: 0, second: 2, .. }));
+        assert!(matches!(
+            fault,
+            TableFault::RepeatedLetter {
+                first: 0,
+                second: 2,
+                ..
+            }
+        ));
     }
 }
