@@ -33,6 +33,8 @@ pub struct GraphCounts {
     pub bispecial: u64,
     /// Words with exactly one left and one right extension.
     pub unique_both: u64,
+    /// Entry r − 1: words without a special word (or a word without extension) nearer than r.
+    pub branch_free: Vec<u64>,
     /// Entry r − 1: words whose ball of radius r is a path.
     pub path_balls: Vec<u64>,
 }
@@ -86,6 +88,7 @@ pub fn count_graph(language: &Language, order: usize, radii: usize) -> GraphCoun
     let vertices = language.count(order);
     let count = |test: &dyn Fn(usize) -> bool| (0..vertices).filter(|&v| test(v)).count() as u64;
     let unique = |v: usize| around.left[v] == 1 && around.right[v] == 1;
+    let (branch_free, path_balls) = balls(&around, language, order, radii);
     GraphCounts {
         order,
         vertices: vertices as u64,
@@ -94,35 +97,44 @@ pub fn count_graph(language: &Language, order: usize, radii: usize) -> GraphCoun
         right_special: count(&|v| around.right[v] > 1),
         bispecial: count(&|v| around.left[v] > 1 && around.right[v] > 1),
         unique_both: count(&unique),
-        path_balls: path_balls(&around, language, order, radii),
+        branch_free,
+        path_balls,
     }
 }
 
-fn path_balls(around: &Neighbours, language: &Language, order: usize, radii: usize) -> Vec<u64> {
+/// Counts words without a branch nearer than r, and words whose r-ball is a path, for r = 1 … `radii`.
+fn balls(
+    around: &Neighbours,
+    language: &Language,
+    order: usize,
+    radii: usize,
+) -> (Vec<u64>, Vec<u64>) {
     let vertices = around.next.len();
-    let mut counts = vec![0; radii];
+    let mut branch_free = vec![0; radii];
+    let mut paths = vec![0; radii];
     for v in 0..vertices as WordId {
         let (mut forward, mut backward) = (v, v);
-        for count in &mut counts {
+        let mut on_cycle = false;
+        for r in 0..radii {
             if !is_unique(around, forward) || !is_unique(around, backward) {
                 break;
             }
+            branch_free[r] += 1;
             let last_backward = backward;
             forward = around.next[forward as usize];
             backward = around.previous[backward as usize];
-            if forward == backward || forward == last_backward {
-                break;
-            }
+            on_cycle |= forward == backward || forward == last_backward;
             let ends = [forward, backward];
-            let further_arc = ends
-                .iter()
-                .any(|from| ends.iter().any(|to| joined(language, order, *from, *to)));
-            if !further_arc {
-                *count += 1;
+            let further_arc = || {
+                ends.iter()
+                    .any(|from| ends.iter().any(|to| joined(language, order, *from, *to)))
+            };
+            if !on_cycle && !further_arc() {
+                paths[r] += 1;
             }
         }
     }
-    counts
+    (branch_free, paths)
 }
 
 fn is_unique(around: &Neighbours, v: WordId) -> bool {

@@ -4,10 +4,19 @@
 //! to the line in the sense of Benjamini and Schramm (for every r the share of words whose r-ball is a path
 //! tends to 1) exactly when p(n+1)/p(n) → 1 (arXiv 2402.15877).
 //!
-//! **Bound.** In a bi-extendable language with s(n) > 0 the share of words whose r-ball is no path is at
-//! most (6r − 4)·s(n)/p(n). Count: at most s(n) words are right special and at most s(n) left special. A word
-//! fails at radius r only if a special word lies at distance below r, or if its two ends at distance r
-//! spoil the path; each special word is near few words along unique chains.
+//! **Bound.** Let every word have a left and a right extension. The share of words that have a special word
+//! nearer than r is at most (6r − 4)·s(n)/p(n). Proof: Σ (right extensions − 1) = s(n), so there are at
+//! most s(n) right special words, with at most 2s(n) arcs out of them; likewise at most s(n) left special
+//! words with at most 2s(n) arcs into them. So there are at most 2s(n) special words, and at most
+//! 2s + 2s + s + s = 6s(n) arc ends at them (a word that is special on one side only has one arc on the
+//! other). Leaving a special word by one arc end, there is at most one word at each distance 1 … r − 1
+//! that is reached through words that are not special. Together 2s + 6s·(r − 1).
+//!
+//! A word without a special word nearer than r has an r-ball that is a path, unless the two ends of the
+//! ball meet or are joined by an arc. If no component of the graph is a bare cycle, such a word has a
+//! special word at distance exactly r, so the share of balls that are no paths is at most
+//! (6r + 2)·s(n)/p(n). The smaller number is not enough for that: in the language of all sequences over
+//! the blocks ab and ac, p(1) = 3 and s(1) = 1, and no ball of radius 1 is a path.
 
 use super::census::GraphCounts;
 use serde::Serialize;
@@ -19,31 +28,34 @@ pub struct LineFigures {
     pub order: usize,
     /// p(n+1)/p(n) − 1 = s(n)/p(n).
     pub growth: f64,
-    /// Entry r − 1: share of words whose r-ball is no path.
-    pub not_path: Vec<f64>,
-    /// Entry r − 1: (6r − 4)·s(n)/p(n).
+    /// Entry r − 1: share of words whose r-ball is a path.
+    pub path_share: Vec<f64>,
+    /// Entry r − 1: share of words without a special word nearer than r.
+    pub branch_free_share: Vec<f64>,
+    /// Entry r − 1: (6r − 4)·s(n)/p(n), which 1 − `branch_free_share` cannot exceed.
     pub bound: Vec<f64>,
-    /// True when every share is within its bound, compared in integers. A language without growth at this
-    /// order (s(n) = 0) has no bound, and counts as within.
+    /// True when that holds for every r, compared in integers.
     pub within_bound: bool,
 }
 
-/// The figures of one factor graph.
+/// The figures of one factor graph of a bi-extendable language.
 pub fn line_figures(counts: &GraphCounts) -> LineFigures {
     let (vertices, arcs) = (counts.vertices, counts.arcs);
     let growth = arcs as f64 / vertices as f64 - 1.0;
-    let slope = |r: u64| 6 * r - 4;
-    let radii = (1..).zip(&counts.path_balls);
+    let share = |words: &u64| *words as f64 / vertices as f64;
+    let slopes = (1..).map(|r: u64| 6 * r - 4);
     LineFigures {
         order: counts.order,
         growth,
-        not_path: counts
-            .path_balls
-            .iter()
-            .map(|paths| (vertices - paths) as f64 / vertices as f64)
+        path_share: counts.path_balls.iter().map(share).collect(),
+        branch_free_share: counts.branch_free.iter().map(share).collect(),
+        bound: slopes
+            .clone()
+            .take(counts.path_balls.len())
+            .map(|slope| slope as f64 * growth)
             .collect(),
-        bound: radii.clone().map(|(r, _)| slope(r) as f64 * growth).collect(),
-        within_bound: arcs <= vertices
-            || radii.clone().all(|(r, paths)| vertices - paths <= slope(r) * (arcs - vertices)),
+        within_bound: slopes
+            .zip(&counts.branch_free)
+            .all(|(slope, free)| vertices - free <= slope * arcs.saturating_sub(vertices)),
     }
 }
