@@ -9,3 +9,5 @@ pub mod number;
 pub mod table;
 pub mod run;
 pub mod unfold;
+pub mod orbit;
+pub mod study;

@@ -2,5 +2,6 @@
 
 pub mod control;
 pub mod files;
+pub mod memory;
 
 pub use control::{Control, Stopped};

@@ -1,0 +1,123 @@
+//! Many orbits from random exact starts.
+//!
+//! Starts follow the invariant measure (the cosine law): a side with probability proportional to its length,
+//! a point uniform on it, and a direction whose component along the side, for unit length, is uniform on
+//! (−1, 1). The drawn numbers are dyadic, so each start is exact: fractions are odd multiples of 2^−32, and
+//! aims have coordinates that are multiples of 2^−30 in the table's plane. The law is that of the measure up to
+//! this rounding.
+//!
+//! Orbit i of seed s uses stream i of the ChaCha8 generator with seed s, so it depends on nothing else. A
+//! start whose orbit meets a corner within the wanted length is drawn again from the same stream.
+
+use super::line::point_on;
+use super::trace::{Start, Step, TraceTables, trace};
+use crate::number::Real;
+use crate::table::{SideId, Table, Vector};
+use rand::{Rng, RngExt, SeedableRng};
+use rand_chacha::ChaCha8Rng;
+use rug::{Integer, Rational};
+
+/// Draws random starts on one table.
+#[derive(Debug)]
+pub struct StartLaw {
+    /// Cumulative side lengths, ending at the perimeter.
+    cumulative: Vec<f64>,
+    /// Unit vectors along the sides, in the true Euclidean plane.
+    along: Vec<[f64; 2]>,
+    root_form: f64,
+}
+
+impl StartLaw {
+    /// Prepares a table.
+    pub fn new(table: &Table) -> StartLaw {
+        let root_form = table.form().to_f64().sqrt();
+        let mut total = 0.0;
+        let mut cumulative = Vec::new();
+        let mut along = Vec::new();
+        for i in 0..table.sides() {
+            let v = table.side_vector(i);
+            let (x, y) = (v.x.to_f64(), v.y.to_f64() * root_form);
+            let length = x.hypot(y);
+            total += length;
+            cumulative.push(total);
+            along.push([x / length, y / length]);
+        }
+        StartLaw {
+            cumulative,
+            along,
+            root_form,
+        }
+    }
+
+    /// One start.
+    pub fn draw(&self, random: &mut impl Rng) -> Start {
+        let total = self.cumulative[self.cumulative.len() - 1];
+        loop {
+            let target = random.random::<f64>() * total;
+            let side = self.cumulative.partition_point(|c| *c <= target);
+            let side = side.min(self.cumulative.len() - 1);
+            let odd = Integer::from(random.random::<u32>() | 1);
+            let along: f64 = 2.0 * random.random::<f64>() - 1.0;
+            let across = (1.0 - along * along).sqrt();
+            let [x, y] = self.along[side];
+            // The inner normal of a counterclockwise side is to its left.
+            let aim = [along * x - across * y, (along * y + across * x) / self.root_form];
+            let aim = aim.map(|c| dyadic(c, 30));
+            let start = Start {
+                side: SideId(side as u8),
+                fraction: Real::from(Rational::from((odd, Integer::from(1) << 32))),
+                aim: Vector::new(aim[0].clone(), aim[1].clone()),
+            };
+            // Rounding can turn a grazing aim along the side or out of the table; such a draw is void.
+            if across > 1e-8 {
+                return start;
+            }
+        }
+    }
+}
+
+fn dyadic(value: f64, bits: u32) -> Real {
+    let scaled = (value * 2f64.powi(bits as i32)).round();
+    Real::from(Rational::from((
+        Integer::from_f64(scaled).expect("a finite coordinate"),
+        Integer::from(1) << bits,
+    )))
+}
+
+/// One orbit of an ensemble: its exact start and its word.
+#[derive(Clone, Debug)]
+pub struct Sample {
+    /// The start.
+    pub start: Start,
+    /// The word, of the wanted length.
+    pub word: Vec<SideId>,
+}
+
+/// Orbit `index` of a seed: a word of `letters` letters from a random exact start. A periodic orbit is
+/// continued round its period.
+pub fn sample(tables: &TraceTables, law: &StartLaw, seed: u64, index: u64, letters: usize) -> Sample {
+    let mut random = ChaCha8Rng::seed_from_u64(seed);
+    random.set_stream(index);
+    loop {
+        let start = law.draw(&mut random);
+        let Ok(orbit) = trace(tables, start.clone(), letters) else {
+            continue;
+        };
+        let mut word = orbit.word;
+        match orbit.end {
+            Some(Step::Corner(_)) => continue,
+            Some(Step::Period(period)) => {
+                while word.len() < letters {
+                    word.push(word[word.len() - period]);
+                }
+            }
+            _ => {}
+        }
+        return Sample { start, word };
+    }
+}
+
+/// The starting point of a sample in the plane of the table.
+pub fn start_point(table: &Table, start: &Start) -> Vector {
+    point_on(table, start.side.0 as usize, &start.fraction)
+}

@@ -1,0 +1,15 @@
+//! The main job: everything about one table, into one folder.
+//!
+//! - [`results`]: the computation, stage by stage, on the rooms below.
+//! - [`verdict`]: what follows from it, with the standing of every statement.
+//! - [`pictures`]: the figures of a study.
+//! - [`record`]: `study.json`.
+//! - [`report`]: `report.html`.
+//! - [`folder`]: all files of a study.
+
+pub mod folder;
+pub mod pictures;
+pub mod record;
+pub mod report;
+pub mod results;
+pub mod verdict;

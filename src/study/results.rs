@@ -1,0 +1,232 @@
+//! The computation of a study.
+//!
+//! Stages, each on the room that owns it: facts; generalized diagonals and p by fans (cheap, and it tells how
+//! much memory the rest needs); the language by beams; measures; factor graphs; the verdict.
+
+use super::verdict::{Evidence, Statement, verdict};
+use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
+use crate::complexity::diagonals;
+use crate::factor_graph::census::{GraphCounts, count_graphs};
+use crate::factor_graph::criterion::{LineFigures, line_figures};
+use crate::language::measure::{self, Measures};
+use crate::language::tree::BYTES_PER_WORD;
+use crate::language::walk::{self, GrowthFault};
+use crate::language::Language;
+use crate::number::Tiers;
+use crate::run::{Control, Stopped, memory};
+use crate::table::Table;
+use crate::table::facts::{Facts, facts};
+use crate::unfold::Mesh;
+use crate::unfold::engine::{AnyEngine, Arithmetic};
+use thiserror::Error;
+
+/// What a study is asked to do.
+#[derive(Clone, Copy, Debug)]
+pub struct Request {
+    /// Longest words; `None` for as far as [`DEFAULT_WORDS`] words in all, at most [`DEFAULT_LENGTH`].
+    pub length: Option<usize>,
+    /// Largest radius of the ball census.
+    pub radii: usize,
+    /// Which tiers may decide.
+    pub arithmetic: Arithmetic,
+    /// Bytes that the study may take; `None` for what the system has free.
+    pub memory: Option<u64>,
+}
+
+/// The longest words of a study that names no length.
+pub const DEFAULT_LENGTH: usize = 60;
+/// The most words, of all lengths together, of a study that names no length.
+pub const DEFAULT_WORDS: u64 = 1_000_000;
+/// The largest radius of the ball census when none is named.
+pub const DEFAULT_RADII: usize = 4;
+/// The longest words that any command accepts: an engine's tables grow with the length.
+pub const LONGEST: usize = 100_000;
+
+/// Everything that a study computed.
+#[derive(Debug)]
+pub struct Results {
+    /// The table.
+    pub table: Table,
+    /// Its proved facts.
+    pub facts: Facts,
+    /// How signs were decided.
+    pub engine: &'static str,
+    /// The longest words.
+    pub length: usize,
+    /// All words.
+    pub language: Language,
+    /// p and its differences, by beams.
+    pub counts: Counts,
+    /// N(0), …, N(length − 2).
+    pub diagonals: Vec<u64>,
+    /// p by fans.
+    pub p_by_diagonals: Vec<u64>,
+    /// The first n where the routes differ.
+    pub disagreement: Option<usize>,
+    /// Cylinder measures; those of [`Results::shown_length`] are kept.
+    pub measures: Measures,
+    /// The length of the words that are listed with their measures and drawn as cells.
+    pub shown_length: usize,
+    /// Factor graphs of the orders 1 … length − 1.
+    pub graphs: Vec<GraphCounts>,
+    /// Line figures of the same orders.
+    pub line: Vec<LineFigures>,
+    /// What follows.
+    pub statements: Vec<Statement>,
+    /// Decisions by tier: fans, beams.
+    pub tiers: StageTiers,
+}
+
+/// Decisions by tier, for each walk.
+#[derive(Clone, Copy, Debug, Default, serde::Serialize)]
+pub struct StageTiers {
+    /// Walking fans.
+    pub fans: Tiers,
+    /// Walking beams.
+    pub beams: Tiers,
+}
+
+/// Why a study was not completed.
+#[derive(Debug, Error)]
+pub enum StudyFault {
+    /// Asked to stop.
+    #[error(transparent)]
+    Stopped(#[from] Stopped),
+    /// A level is too large, or an inconsistency that would be a mistake in the program.
+    #[error(transparent)]
+    Growth(#[from] GrowthFault),
+    /// It would not fit.
+    #[error("{words} words to length {length} need about {}, but only {} may be used; choose a smaller --length or a larger --budget-memory", memory::display(*needed), memory::display(*allowed))]
+    Memory {
+        /// Words of all lengths.
+        words: u64,
+        /// Longest length.
+        length: usize,
+        /// Estimated bytes.
+        needed: u64,
+        /// Bytes allowed.
+        allowed: u64,
+    },
+}
+
+/// The stages of a study, told to the caller as they begin.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Stage {
+    /// Counting generalized diagonals; about so many steps.
+    Fans,
+    /// Growing the language: so many words.
+    Beams {
+        /// Words of all lengths.
+        words: u64,
+    },
+    /// Measuring the cylinders: so many words.
+    Measures {
+        /// Words of all lengths.
+        words: u64,
+    },
+    /// Counting factor graphs.
+    Graphs,
+}
+
+/// Peak bytes for each word of a study: the language twice while subtrees are joined, and the neighbours of
+/// the graphs being counted.
+const STUDY_BYTES_PER_WORD: u64 = 2 * BYTES_PER_WORD + 32;
+
+/// Runs the computation of a study.
+///
+/// # Errors
+/// When it would not fit in memory, or the control asks to stop.
+pub fn compute(
+    table: &Table,
+    request: &Request,
+    control: &Control,
+    mut begin: impl FnMut(Stage),
+) -> Result<Results, StudyFault> {
+    let facts = facts(table);
+    let mesh = Mesh::new(table);
+    let horizon = request.length.unwrap_or(DEFAULT_LENGTH);
+    let engine = AnyEngine::new(table, horizon, request.arithmetic);
+
+    begin(Stage::Fans);
+    let (mut diagonals, fan_tiers) =
+        diagonals::count(&engine, &mesh, horizon.saturating_sub(2), control)?;
+    let mut p_by_diagonals = p_from_diagonals(table.sides() as u64, &diagonals, horizon);
+    let length = request.length.unwrap_or_else(|| affordable(&p_by_diagonals, DEFAULT_WORDS));
+    p_by_diagonals.truncate(length + 1);
+    diagonals.truncate(length.saturating_sub(2) + 1);
+    let words: u64 = p_by_diagonals.iter().sum();
+    check_memory(words, length, request.memory)?;
+
+    begin(Stage::Beams { words });
+    let (language, beam_tiers) = walk::grow(&engine, &mesh, length, control)?;
+    let counts = Counts::from_p(language.complexity());
+    let shown_length = shown_length(&counts.p);
+
+    begin(Stage::Measures { words });
+    let measures = measure::measure(table, &engine, &mesh, length, shown_length, control)?;
+
+    begin(Stage::Graphs);
+    let graphs = count_graphs(&language, 1, request.radii);
+    control.tick(0)?;
+    let line: Vec<LineFigures> = graphs.iter().map(line_figures).collect();
+    let disagreement = first_disagreement(&counts.p, &p_by_diagonals);
+    let statements = verdict(&Evidence {
+        facts: &facts,
+        p: &counts.p,
+        disagreement,
+        measure_fault: measures.levels.iter().find(|l| !l.holds).map(|l| l.length),
+        bi_extendable: language.is_bi_extendable(),
+        reversal_fault: language.first_without_reversal().map(|(n, _)| n),
+        line: &line,
+    });
+    Ok(Results {
+        table: table.clone(),
+        engine: engine.describe(),
+        length,
+        disagreement,
+        measures,
+        shown_length,
+        graphs,
+        line,
+        statements,
+        tiers: StageTiers {
+            fans: fan_tiers,
+            beams: beam_tiers,
+        },
+        facts,
+        language,
+        counts,
+        diagonals,
+        p_by_diagonals,
+    })
+}
+
+/// The longest length whose words, with all shorter ones, number at most `most`; at least 2.
+fn affordable(p: &[u64], most: u64) -> usize {
+    let mut sum = 0;
+    let fits = p.iter().take_while(|count| {
+        sum += *count;
+        sum <= most
+    });
+    (fits.count().max(3) - 1).min(p.len() - 1)
+}
+
+/// Words of this length are listed with their measures and drawn: the longest with at most 150 of them.
+fn shown_length(p: &[u64]) -> usize {
+    let last = p.len() - 1;
+    (1..=last.min(12)).rev().find(|&n| p[n] <= 150).unwrap_or(1).min(last)
+}
+
+fn check_memory(words: u64, length: usize, allowed: Option<u64>) -> Result<(), StudyFault> {
+    let needed = words.saturating_mul(STUDY_BYTES_PER_WORD);
+    let allowed = allowed.or_else(|| memory::available().map(|free| free / 10 * 9));
+    match allowed {
+        Some(allowed) if needed > allowed => Err(StudyFault::Memory {
+            words,
+            length,
+            needed,
+            allowed,
+        }),
+        _ => Ok(()),
+    }
+}
