@@ -2,5 +2,6 @@
 #![forbid(unsafe_code)]
 #![deny(missing_docs)]
 
+pub mod figure;
 pub mod number;
 pub mod table;
