@@ -346,8 +346,9 @@ fn draw_words(area: &DrawingArea<SVGBackend<'_>, Shift>, words: &Words) -> Resul
     } else {
         (FontTransform::None, [words.at[0], words.at[1] + nudge])
     };
+    let colour = RGBColor(words.ink.0, words.ink.1, words.ink.2);
     let style = TextStyle::from(font)
-        .color(&RGBColor(words.ink.0, words.ink.1, words.ink.2))
+        .color(&colour)
         .pos(Pos::new(horizontal, VPos::Center))
         .transform(turn);
     area.draw_text(&plain(&words.text), &style, unit_point(at))
