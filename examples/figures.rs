@@ -449,9 +449,15 @@ fn grow(
                     [q[0] - p[0], q[1] - p[1]],
                     [(b[0] - a[0]) / long, (b[1] - a[1]) / long],
                 );
-                (e[0] * d[1] - e[1] * d[0])
-                    .atan2(e[0] * d[0] + e[1] * d[1])
-                    .rem_euclid(2.0 * PI)
+                let (along, up) = (e[0] * d[0] + e[1] * d[1], e[0] * d[1] - e[1] * d[0]);
+                // Corners on the starting side itself: rounding must not turn 0 into a full turn.
+                if up > 1e-9 {
+                    up.atan2(along)
+                } else if along > 0.0 {
+                    0.0
+                } else {
+                    PI
+                }
             };
             let window = path[1..].iter().fold((0.0f64, PI), |(l, h), (gate, copy)| {
                 let (x, y) = (angle(copy[*gate]), angle(copy[(*gate + 1) % k]));

@@ -5,7 +5,7 @@
 //! tenths of pixels and scales back through the `viewBox`.
 
 use super::font::{FAMILY, ensure_registered, text_width};
-use super::geometry::{Point, Rect, dashes};
+use super::geometry::{Point, Rect, dashes, simplified};
 use super::style::{Ink, Marker, WHITE};
 use super::{Caption, FigureError};
 use plotters::coord::Shift;
@@ -19,6 +19,9 @@ use plotters::style::{
 const UNITS: f64 = 10.0;
 /// Pixel coordinates are cut to this size, so that the conversion to integers is exact.
 const PIXEL_LIMIT: f64 = 100_000.0;
+
+/// Lines may deviate by this many pixels, which nobody sees, to save points.
+const TOLERANCE: f64 = 0.12;
 
 /// Where the anchor of a text lies.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -88,7 +91,7 @@ impl Canvas {
     pub fn fill(&mut self, points: &[Point], ink: Ink, opacity: f64) {
         if points.len() > 2 {
             self.shapes.push(Shape::Fill {
-                points: points.to_vec(),
+                points: simplified(points, TOLERANCE),
                 ink,
                 opacity,
             });
@@ -102,7 +105,7 @@ impl Canvas {
     pub fn faint_stroke(&mut self, points: &[Point], ink: Ink, width: f64, opacity: f64) {
         if points.len() > 1 {
             self.shapes.push(Shape::Stroke {
-                points: points.to_vec(),
+                points: simplified(points, TOLERANCE),
                 ink,
                 width,
                 opacity,

@@ -8,7 +8,7 @@
 
 use super::canvas::{Align, Canvas, Words};
 use super::font::{shorten, text_width, wrap};
-use super::geometry::{Point, Rect, length, spread, sub};
+use super::geometry::{Point, Rect, length, mean, spread, sub};
 use super::scale::{Axis, Scale, Tick};
 use super::style::{
     BLACK, BOLD_STROKE, DASHES, DOTS, GREY, GRID, HAIR_STROKE, Ink, LINE_SPACING, MARKER, MARKERS,
@@ -107,7 +107,9 @@ pub(crate) fn compose(chart: &Chart, layout: &Layout, canvas: &mut Canvas) -> f6
     } else {
         bottom = draw_rows(canvas, chart, bottom);
     }
-    for line in note_lines(chart) {
+    let notes = note_lines(chart);
+    bottom += if notes.is_empty() { 0.0 } else { 10.0 };
+    for line in notes {
         bottom += SMALL_TEXT * LINE_SPACING;
         canvas.side_label(
             &line,
@@ -464,17 +466,26 @@ fn draw_name(canvas: &mut Canvas, chart: &Chart, index: usize, at: Point, limit:
     );
 }
 
+/// The last visible point of a curve; for a band the middle of its right edge.
+fn curve_end(layout: &Layout, series: &Series) -> Option<Point> {
+    let frame = layout.frame;
+    let run = runs(layout, series).pop()?;
+    if series.mark == Mark::Band {
+        let area = frame.clip_polygon(&run);
+        let right = Rect::of_points(&area)?.x1;
+        let edge: Vec<Point> = area.into_iter().filter(|p| p[0] > right - 1.0).collect();
+        return Some(mean(&edge));
+    }
+    let piece = frame.clip_polyline(&run).pop();
+    piece
+        .and_then(|piece| piece.last().copied())
+        .or_else(|| run.last().copied().filter(|&p| frame.contains(p)))
+}
+
 /// Names to the right, in the order of the ends of their curves.
 fn draw_column(canvas: &mut Canvas, chart: &Chart, layout: &Layout) {
     let f = layout.frame;
-    let end = |i: usize| -> Option<Point> {
-        let run = runs(layout, &chart.series[i]).pop()?;
-        let clipped = f
-            .clip_polyline(&run)
-            .pop()
-            .and_then(|piece| piece.last().copied());
-        clipped.or_else(|| run.last().copied().filter(|&p| f.contains(p)))
-    };
+    let end = |i: usize| curve_end(layout, &chart.series[i]);
     let mut wishes: Vec<(f64, usize, Option<Point>)> = (0..chart.series.len())
         .filter(|&i| !chart.series[i].name.is_empty())
         .map(|i| (end(i).map_or(f.y1, |p| p[1]), i, end(i)))

@@ -1,14 +1,16 @@
 //! Pictures of corridors: unfolded copies of a table with the beam that crosses them.
 //!
 //! The picture is turned so that the corridor runs from left to right in the lowest strip that holds it.
-//! Letters stand at the ends of the crossed sides, above or below.
+//! Letters stand on the crossed sides while these are long, and otherwise in a row above, in the order of
+//! crossing: neighbouring sides often share a corner, so a letter at an end would be ambiguous.
 
 use super::canvas::Canvas;
 use super::font::text_width;
-use super::geometry::{Placer, Point, Rect, add, along, edges, length, mean, sub, times, unit};
+use super::geometry::{Placer, Point, Rect, along, edges, length, mean, normal, spread, sub, unit};
 use super::plane::Frame;
 use super::style::{
-    BLACK, BOLD_STROKE, INKS, PALE, PAPER, STROKE, TEXT, THIN_STROKE, WHITE, WIDTH,
+    BLACK, BOLD_STROKE, GREY, HAIR_STROKE, INKS, LINE_SPACING, PALE, PAPER, STROKE, TEXT,
+    THIN_STROKE, WHITE, WIDTH,
 };
 use super::{Caption, FigureError, check_points};
 
@@ -109,14 +111,16 @@ pub fn corridor_picture(corridor: &Corridor, caption: &Caption) -> Result<String
 pub(crate) fn compose_corridor(corridor: &Corridor) -> Result<(Canvas, Point), FigureError> {
     check_points("a point of the corridor", &corridor.points())?;
     let level = corridor.levelled();
-    let margin = [34.0, 58.0];
-    let frame = Frame::fitting(
+    let margin = [26.0, 26.0];
+    let mut frame = Frame::fitting(
         &level.points(),
         WIDTH - 2.0 * margin[0],
         560.0,
         margin,
         520.0,
     );
+    let lettering = Lettering::choose(&level, &frame);
+    frame.add_top(lettering.height());
     let mut canvas = Canvas::default();
     for copy in &level.copies {
         canvas.fill(&frame.pixels(copy), PAPER, 1.0);
@@ -147,61 +151,130 @@ pub(crate) fn compose_corridor(corridor: &Corridor) -> Result<(Canvas, Point), F
         canvas.disc(frame.pixel(pivot), 7.5, WHITE);
         canvas.disc(frame.pixel(pivot), 6.0, INKS[4]);
     }
-    label_gates(&mut canvas, &level, &frame);
+    match lettering {
+        Lettering::OnGates => letter_gates(&mut canvas, &level, &frame),
+        Lettering::InRows(rows) => letter_rows(&mut canvas, &level, &frame, rows),
+    }
     Ok((canvas, frame.size))
 }
 
-/// Places the letters at the ends of the gates; on the gate itself if both ends are taken.
-fn label_gates(canvas: &mut Canvas, level: &Corridor, frame: &Frame) {
+/// Gates at least this long, in pixels, carry their letters themselves.
+const LONG_GATE: f64 = 90.0;
+/// Room between letters in a row.
+const LETTER_GAP: f64 = 6.0;
+
+/// Where the letters of a corridor stand.
+enum Lettering {
+    /// On the gates.
+    OnGates,
+    /// In rows above the corridor, in the order of crossing, so that a single row reads as the word.
+    InRows(usize),
+}
+
+impl Lettering {
+    fn choose(level: &Corridor, frame: &Frame) -> Self {
+        let long = |gate: &(Point, Point, String)| {
+            length(sub(frame.pixel(gate.1), frame.pixel(gate.0))) >= LONG_GATE
+        };
+        if level.gates.iter().all(long) {
+            return Lettering::OnGates;
+        }
+        let total: f64 = level
+            .gates
+            .iter()
+            .map(|g| text_width(&g.2, TEXT) + LETTER_GAP)
+            .sum();
+        Lettering::InRows((total / (frame.size[0] - 24.0)).ceil().max(1.0) as usize)
+    }
+
+    /// Height of the rows above the corridor.
+    fn height(&self) -> f64 {
+        match self {
+            Lettering::OnGates => 0.0,
+            Lettering::InRows(rows) => *rows as f64 * TEXT * LINE_SPACING + 10.0,
+        }
+    }
+}
+
+/// A letter on each gate, beside the beam and the line where there is room.
+fn letter_gates(canvas: &mut Canvas, level: &Corridor, frame: &Frame) {
     let mut placer = Placer::within(frame.canvas_bounds());
     for part in &level.beam {
-        placer.avoid_region(frame.pixels(part), 300.0);
-    }
-    for (a, b) in level.copies.iter().flat_map(|copy| edges(copy)) {
-        placer.avoid_segment(frame.pixel(a), frame.pixel(b), 8.0);
-    }
-    for gate in &level.gates {
-        placer.avoid_segment(frame.pixel(gate.0), frame.pixel(gate.1), 60.0);
+        placer.avoid_region(frame.pixels(part), 100.0);
+        edges(&frame.pixels(part)).for_each(|(a, b)| placer.avoid_segment(a, b, 60.0));
     }
     if let Some((a, b)) = level.line {
         placer.avoid_segment(frame.pixel(a), frame.pixel(b), 200.0);
     }
+    for gate in &level.gates {
+        placer.avoid_segment(frame.pixel(gate.0), frame.pixel(gate.1), 30.0);
+    }
     for &pivot in &level.pivots {
-        placer.avoid_box(Rect::around(frame.pixel(pivot), 14.0, 14.0));
+        placer.avoid_box(Rect::around(frame.pixel(pivot), 16.0, 16.0));
     }
     for (a, b, letter) in &level.gates {
         let (a, b) = (frame.pixel(*a), frame.pixel(*b));
+        let candidates: Vec<(Point, f64)> = (0..=14)
+            .map(|i| 0.15 + 0.05 * f64::from(i))
+            .map(|t| (along(a, b, t), 20.0 * f64::abs(t - 0.5)))
+            .collect();
         let width = text_width(letter, TEXT);
-        let way = unit(sub(b, a));
-        let reach = (way[0].abs() * width + way[1].abs() * TEXT * 0.8) / 2.0;
-        let mut candidates = Vec::new();
-        for gap in [9.0, 14.0, 20.0, 27.0, 35.0] {
-            // The upper end is preferred a little, so that letters line up.
-            let (below, above) = if a[1] > b[1] { (5.0, 0.0) } else { (0.0, 5.0) };
-            for aside in [0.0, 9.0, -9.0, 16.0, -16.0] {
-                let cost = gap + f64::abs(aside);
-                candidates.push((
-                    add(a, [aside - way[0] * (reach + gap), -way[1] * (reach + gap)]),
-                    cost + below,
-                ));
-                candidates.push((
-                    add(b, [aside + way[0] * (reach + gap), way[1] * (reach + gap)]),
-                    cost + above,
-                ));
-            }
-        }
-        if length(sub(b, a)) > 2.0 * TEXT {
-            for t in [0.5, 0.3, 0.7, 0.15, 0.85] {
-                candidates.push((along(a, b, t), 250.0));
-                candidates.push((
-                    add(along(a, b, t), times([way[1], -way[0]], width / 2.0 + 8.0)),
-                    90.0,
-                ));
-            }
-        }
-        if let Some(rect) = placer.place(width + 3.0, TEXT * 0.84, &candidates) {
-            canvas.rect(&rect, WHITE, 0.75);
+        if let Some(rect) = placer.place(width + 10.0, TEXT, &candidates) {
+            canvas.rect(&rect, WHITE, 1.0);
+            canvas.outline(&rect.corners(), BLACK, THIN_STROKE);
             canvas.label(letter, rect.centre(), TEXT, BLACK);
         }
     }
+}
+
+/// Rows of letters above the corridor, each with a leader to the place where its gate is crossed.
+fn letter_rows(canvas: &mut Canvas, level: &Corridor, frame: &Frame, rows: usize) {
+    let targets: Vec<Point> = level
+        .gates
+        .iter()
+        .map(|gate| crossing(level, frame, gate))
+        .collect();
+    for row in 0..rows {
+        let members: Vec<usize> = (row..level.gates.len()).step_by(rows).collect();
+        let widest = members
+            .iter()
+            .map(|&i| text_width(&level.gates[i].2, TEXT))
+            .fold(0.0, f64::max);
+        // Crossed in this order, so sorted but for rounding; `spread` needs it exactly.
+        let mut reached = f64::NEG_INFINITY;
+        let wishes: Vec<f64> = members
+            .iter()
+            .map(|&i| {
+                reached = reached.max(targets[i][0]);
+                reached
+            })
+            .collect();
+        let half = widest / 2.0 + 6.0;
+        let room = frame.size[0] - 2.0 * half;
+        let gap = (widest + LETTER_GAP).min(room / members.len().max(1) as f64);
+        let y = 12.0 + TEXT * (0.5 + LINE_SPACING * row as f64);
+        let foot = TEXT * 0.5 + 3.0;
+        for (&i, x) in members
+            .iter()
+            .zip(spread(&wishes, gap, half, frame.size[0] - half))
+        {
+            let target = targets[i];
+            canvas.stroke(&[[x, y + foot], target], GREY, HAIR_STROKE);
+            canvas.disc(target, 3.5, BLACK);
+            canvas.label(&level.gates[i].2, [x, y], TEXT, BLACK);
+        }
+    }
+}
+
+/// Where the line crosses a gate; the middle of the gate if there is no line or it misses the gate.
+fn crossing(level: &Corridor, frame: &Frame, gate: &(Point, Point, String)) -> Point {
+    let (a, b) = (frame.pixel(gate.0), frame.pixel(gate.1));
+    let cut = level.line.and_then(|(from, to)| {
+        let (from, to) = (frame.pixel(from), frame.pixel(to));
+        let n = normal(sub(to, from));
+        let side = |p: Point| n[0] * (p[0] - from[0]) + n[1] * (p[1] - from[1]);
+        let (s, t) = (side(a), side(b));
+        (s * t < 0.0).then(|| along(a, b, s / (s - t)))
+    });
+    cut.unwrap_or_else(|| along(a, b, 0.5))
 }

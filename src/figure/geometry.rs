@@ -252,6 +252,45 @@ pub(crate) fn dashes(points: &[Point], pattern: &[f64]) -> Vec<Vec<Point>> {
     drawn
 }
 
+/// Drops points that lie within `tolerance` of the line between those kept (Ramer, Douglas and Peucker).
+pub(crate) fn simplified(points: &[Point], tolerance: f64) -> Vec<Point> {
+    let mut keep = vec![false; points.len()];
+    let mut spans = vec![(0, points.len().saturating_sub(1))];
+    // Ends because every split makes both spans shorter.
+    while let Some((first, last)) = spans.pop() {
+        let Some((a, b)) = points.get(first).zip(points.get(last)) else {
+            continue;
+        };
+        keep[first] = true;
+        keep[last] = true;
+        let far = (first + 1..last)
+            .map(|i| (distance_to_segment(points[i], *a, *b), i))
+            .max_by(|x, y| x.0.total_cmp(&y.0));
+        if let Some((_, i)) = far.filter(|f| f.0 > tolerance) {
+            spans.push((first, i));
+            spans.push((i, last));
+        }
+    }
+    points
+        .iter()
+        .zip(keep)
+        .filter(|(_, keep)| *keep)
+        .map(|(p, _)| *p)
+        .collect()
+}
+
+/// The distance of `p` from the segment from `a` to `b`.
+pub(crate) fn distance_to_segment(p: Point, a: Point, b: Point) -> f64 {
+    let (d, q) = (sub(b, a), sub(p, a));
+    let square = d[0] * d[0] + d[1] * d[1];
+    let t = if square > 0.0 {
+        ((q[0] * d[0] + q[1] * d[1]) / square).clamp(0.0, 1.0)
+    } else {
+        0.0
+    };
+    length(sub(p, along(a, b, t)))
+}
+
 /// Positions at least `gap` apart, in the order given, as near as possible to the wishes (least squares) and
 /// inside `low..=high` as far as there is room. Wishes must be sorted. Pool-adjacent-violators.
 pub(crate) fn spread(wishes: &[f64], gap: f64, low: f64, high: f64) -> Vec<f64> {

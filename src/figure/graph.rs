@@ -59,7 +59,9 @@ pub(crate) fn compose_graph(graph: &GraphDrawing) -> Result<(Canvas, Point), Fig
         .iter()
         .map(|n| node_width(&n.0))
         .fold(0.0, f64::max);
-    let margin = [(widest / 2.0 + 64.0).min(220.0), 104.0];
+    let has_loops = graph.arcs.iter().any(|arc| arc.0 == arc.1);
+    let room = if has_loops { 112.0 } else { 44.0 };
+    let margin = [(widest / 2.0 + room).min(240.0), NODE_HALF + room];
     let frame = Frame::fitting(&positions, 900.0 - 2.0 * margin[0], 520.0, margin, 520.0);
     let centres = frame.pixels(&positions);
     let boxes: Vec<Rect> = graph
@@ -266,6 +268,8 @@ fn label_arcs(
             continue;
         }
         let width = text_width(&arc.2, SMALL_TEXT);
+        // A loop runs so that its normal points out of it.
+        let enclosed = if arc.0 == arc.1 { 30.0 } else { 0.0 };
         let mut candidates = Vec::new();
         for t in [0.5, 0.42, 0.58, 0.34, 0.66, 0.26, 0.74, 0.82] {
             let i = ((t * (curve.len() - 1) as f64) as usize).clamp(1, curve.len() - 2);
@@ -274,7 +278,7 @@ fn label_arcs(
                 let reach = gap + (n[0].abs() * width + n[1].abs() * SMALL_TEXT * 0.8) / 2.0;
                 let off = 40.0 * f64::abs(t - 0.5) + own;
                 candidates.push((add(curve[i], times(n, reach)), off));
-                candidates.push((sub(curve[i], times(n, reach)), off + 3.0));
+                candidates.push((sub(curve[i], times(n, reach)), off + 3.0 + enclosed));
             }
         }
         if let Some(rect) = placer.place(width + 3.0, SMALL_TEXT * 0.84, &candidates) {

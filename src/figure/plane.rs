@@ -81,6 +81,12 @@ impl Frame {
         }
     }
 
+    /// Makes room above the content.
+    pub fn add_top(&mut self, height: f64) {
+        self.offset[1] += height;
+        self.size[1] += height;
+    }
+
     pub fn pixel(&self, p: Point) -> Point {
         [
             self.offset[0] + (p[0] - self.origin[0]) * self.scale,
@@ -245,7 +251,9 @@ fn number_corners(canvas: &mut Canvas, placer: &mut Placer, rings: &Rings) {
         for distance in [17.0, 21.0, 26.0, 33.0, 42.0] {
             for d in compass() {
                 let off_axis = 1.0 - (d[0] * between[0] + d[1] * between[1]).abs();
-                candidates.push((add(p, times(d, distance)), distance + 10.0 * off_axis));
+                let centre = add(p, times(d, distance));
+                let within = if rings.in_table(centre) { 4.0 } else { 0.0 };
+                candidates.push((centre, distance + 10.0 * off_axis + within));
             }
         }
         if let Some(rect) = placer.place(width + 2.0, SMALL_TEXT * 0.82, &candidates) {
