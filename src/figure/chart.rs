@@ -447,8 +447,12 @@ fn draw_name(canvas: &mut Canvas, chart: &Chart, index: usize, at: Point, limit:
             0.18,
         );
     }
-    draw_line(canvas, &line, series.mark, colour, dash_rank(chart, index));
-    if matches!(series.mark, Mark::Dots | Mark::LineDots) {
+    if series.points.len() != 1 {
+        draw_line(canvas, &line, series.mark, colour, dash_rank(chart, index));
+    }
+    // A single point is drawn as a marker whatever the mark, so its sample is one too.
+    let lone = series.points.len() == 1 && series.mark != Mark::Band;
+    if lone || matches!(series.mark, Mark::Dots | Mark::LineDots) {
         canvas.marker(
             [at[0] + SAMPLE / 2.0, at[1]],
             MARKERS[number % MARKERS.len()],

@@ -159,7 +159,7 @@ pub(crate) fn compose_corridor(corridor: &Corridor) -> Result<(Canvas, Point), F
 }
 
 /// Gates at least this long, in pixels, carry their letters themselves.
-const LONG_GATE: f64 = 90.0;
+const LONG_GATE: f64 = 130.0;
 /// Room between letters in a row.
 const LETTER_GAP: f64 = 6.0;
 

@@ -253,7 +253,11 @@ fn number_corners(canvas: &mut Canvas, placer: &mut Placer, rings: &Rings) {
                 let off_axis = 1.0 - (d[0] * between[0] + d[1] * between[1]).abs();
                 let centre = add(p, times(d, distance));
                 let within = if rings.in_table(centre) { 4.0 } else { 0.0 };
-                candidates.push((centre, distance + 10.0 * off_axis + within));
+                let rival = corners
+                    .iter()
+                    .any(|&(q, _)| q != p && length(sub(q, centre)) < 1.4 * distance);
+                let unclear = if rival { 20.0 } else { 0.0 };
+                candidates.push((centre, distance + 10.0 * off_axis + within + unclear));
             }
         }
         if let Some(rect) = placer.place(width + 2.0, SMALL_TEXT * 0.82, &candidates) {

@@ -168,7 +168,16 @@ impl Axis {
             .collect()
     }
 
+    /// Asks for more ticks until there are two; a step of a third of the range always gives them.
     fn linear_ticks(&self, most: usize) -> Vec<Tick> {
+        let tries = most..most + 6;
+        let found = tries
+            .map(|n| self.ticks_with_step_for(n))
+            .find(|ticks| ticks.len() >= 2);
+        found.unwrap_or_else(|| self.ticks_with_step_for(most))
+    }
+
+    fn ticks_with_step_for(&self, most: usize) -> Vec<Tick> {
         let rough = (self.high - self.low) / most as f64;
         let power = rough.log10().floor() as i32;
         let base = 10f64.powi(power);
