@@ -6,7 +6,7 @@
 use reboundary::figure::{
     Caption, CellShape, Cells, Chart, Corridor, FigureError, GraphDrawing, HoleShape, Mark, Scale,
     Series, TableShape, cells_picture, circle_layout, corridor_picture, draw_chart, graph_picture,
-    orbit_picture, table_picture,
+    orbit_picture, shade_apart, table_picture,
 };
 use std::f64::consts::PI;
 use std::path::PathBuf;
@@ -426,6 +426,7 @@ fn cells_of(table: &TableShape, word_length: usize) -> Cells {
         cells.width += long;
     }
     cells.boundary_marks.push((cells.width, "0".into()));
+    shade_apart(&mut cells);
     cells
 }
 

@@ -20,7 +20,8 @@ pub struct CellShape {
     pub outline: Vec<[f64; 2]>,
     /// Its word.
     pub word: String,
-    /// Number of its filling, see [`style::tint`](super::style::tint); neighbours should differ.
+    /// Number of its filling, see [`style::tint`](super::style::tint); neighbours should differ, for
+    /// which [`shade_apart`](super::shade_apart) can provide.
     pub shade: usize,
 }
 

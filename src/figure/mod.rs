@@ -24,6 +24,7 @@ mod geometry;
 mod graph;
 mod plane;
 mod scale;
+mod shading;
 pub mod style;
 
 pub use cells::{CellShape, Cells, cells_picture};
@@ -32,6 +33,7 @@ pub use corridor::{Corridor, corridor_picture};
 pub use graph::{GraphDrawing, circle_layout, graph_picture};
 pub use plane::{HoleShape, TableShape, orbit_picture, table_picture};
 pub use scale::Scale;
+pub use shading::shade_apart;
 
 use thiserror::Error;
 

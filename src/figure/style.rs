@@ -64,11 +64,11 @@ pub const INKS: [Ink; 7] = [
 /// Light fillings of cells, told apart by lightness; dark text is legible on each.
 pub const TINTS: [Ink; 6] = [
     Ink(0xfb, 0xf6, 0xe4), // cream
-    Ink(0xed, 0xb8, 0x78), // sand
+    Ink(0xf0, 0xbe, 0x80), // sand
     Ink(0xe4, 0xea, 0xbc), // reed
-    Ink(0x86, 0xa9, 0xd8), // slate blue
-    Ink(0xb4, 0xda, 0xe2), // mist
-    Ink(0xd6, 0x9b, 0xbb), // thrift
+    Ink(0x78, 0x9d, 0xd0), // slate blue
+    Ink(0xb8, 0xde, 0xe6), // mist
+    Ink(0xdb, 0xa4, 0xc2), // thrift
 ];
 
 /// The ink with this number; numbers beyond the list start again.
