@@ -27,6 +27,8 @@ pub struct Visit<'a, E: Engine> {
     pub engine: &'a E,
     /// Length of the word, at least 1.
     pub length: usize,
+    /// Its first letter, the side that the lines start on.
+    pub start: SideId,
     /// Its last letter.
     pub letter: SideId,
     /// How many of the cell's corner images are left ones.
@@ -58,6 +60,7 @@ pub enum Part {
 
 /// A beam with everything it needs to be followed on its own.
 struct Seed<E: Engine> {
+    start: SideId,
     path: Vec<SideId>,
     front: Front<E>,
     cell: Vec<E::Point>,
@@ -127,6 +130,7 @@ fn divide<E: Engine, V: Visitor<E>>(
             &Visit {
                 engine,
                 length: 1,
+                start: side,
                 letter: side,
                 lefts: front.lefts,
                 cell: &cell,
@@ -136,6 +140,7 @@ fn divide<E: Engine, V: Visitor<E>>(
             &mut trail,
         );
         seeds.push(Seed {
+            start: side,
             path: Vec::new(),
             front,
             cell: cell.to_vec(),
@@ -158,6 +163,7 @@ fn divide<E: Engine, V: Visitor<E>>(
                     &Visit {
                         engine,
                         length: length + 1,
+                        start: seed.start,
                         letter: piece.side,
                         lefts: piece.lefts,
                         cell,
@@ -169,6 +175,7 @@ fn divide<E: Engine, V: Visitor<E>>(
                 let mut path = seed.path.clone();
                 path.push(piece.side);
                 longer.push(Seed {
+                    start: seed.start,
                     path,
                     front: Front {
                         pose: engine.reflect(&seed.front.pose, piece.side),
@@ -226,6 +233,7 @@ fn walk_subtree<E: Engine, V: Visitor<E>>(
             &Visit {
                 engine,
                 length,
+                start: seed.start,
                 letter: waiting.side,
                 lefts: waiting.front.lefts,
                 cell,

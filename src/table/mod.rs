@@ -3,6 +3,7 @@
 //! - [`validity`]: which polygons are tables; every refusal names the corners or sides at fault.
 //! - [`triangulation`]: cutting a table into triangles by exact predicates.
 //! - [`facts`]: angles, reflection group, area, perimeter, convexity, each proved.
+//! - [`summary`]: a table and its facts, ready to be written.
 //! - [`expression`]: the exact expressions of a table file.
 //! - [`file`](mod@file): the TOML table file.
 //! - [`diagnostic`]: messages that point into a table file.
@@ -11,6 +12,7 @@ pub mod diagnostic;
 pub mod expression;
 pub mod facts;
 pub mod file;
+pub mod summary;
 pub mod triangulation;
 pub mod validity;
 
