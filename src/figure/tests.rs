@@ -9,7 +9,6 @@ use super::{
     cells::{compose_cells, pixel},
     circle_layout,
     corridor::compose_corridor,
-    font,
     graph::compose_graph,
     plane::compose_orbit,
     plane::compose_table,
