@@ -220,6 +220,16 @@ impl Canvas {
         words.collect()
     }
 
+    /// Centres of all discs in drawing order.
+    #[cfg(test)]
+    pub fn disc_centres(&self) -> Vec<Point> {
+        let centres = self.shapes.iter().filter_map(|shape| match shape {
+            Shape::Disc { centre, .. } => Some(*centre),
+            _ => None,
+        });
+        centres.collect()
+    }
+
     /// Renders the shapes on a white ground of the given size in pixels.
     pub fn finish(
         &self,

@@ -96,7 +96,8 @@ pub(crate) fn compose_cells(cells: &Cells) -> Result<(Canvas, Point), FigureErro
     Ok((canvas, [WIDTH, height]))
 }
 
-fn pixel(cells: &Cells, s: f64, angle: f64) -> Point {
+/// The pixel of a position and a direction.
+pub(crate) fn pixel(cells: &Cells, s: f64, angle: f64) -> Point {
     [
         PLOT.x0 + s / cells.width * PLOT.width(),
         PLOT.y1 - angle / PI * PLOT.height(),

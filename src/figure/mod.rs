@@ -4,7 +4,7 @@
 //! is a pure function of its input: the same input gives the same bytes on every machine with the same
 //! floating-point arithmetic, because labels are measured with a font that is compiled in.
 //!
-//! How a picture is made. A drawing function collects shapes on a [`canvas`](self) in pixels (y down),
+//! How a picture is made. A drawing function collects shapes on a canvas in pixels (y down),
 //! choosing the canvas size last; `plotters` turns the shapes into SVG; the root element is then rewritten
 //! to carry a `viewBox`, `role="img"`, a title and a description. No element has an id, so any number
 //! of pictures can be inlined in one page. Arrowheads and dashes are drawn as shapes for the same reason.

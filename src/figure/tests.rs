@@ -1,207 +1,24 @@
-//! Tests of the parts behind the pictures, and of the layout of text.
+//! Tests of the layout of text in all pictures, and of shades.
 
 use super::canvas::Canvas;
 use super::chart::{Layout, compose};
-use super::geometry::{
-    Point, Rect, dashes, distance_to_segment, length, rect_inside, simplified, spread, sub,
-};
-use super::scale::Axis;
+use super::geometry::{Point, Rect, distance_to_segment, edges, inside, rect_inside};
 use super::style::TINTS;
 use super::{
     CellShape, Cells, Chart, Corridor, GraphDrawing, HoleShape, Mark, Scale, Series, TableShape,
-    cells::compose_cells, circle_layout, corridor::compose_corridor, font, graph::compose_graph,
-    plane::compose_orbit, plane::compose_table, shade_apart,
+    cells::{compose_cells, pixel},
+    circle_layout,
+    corridor::compose_corridor,
+    graph::compose_graph,
+    plane::compose_orbit,
+    plane::compose_table,
+    shade_apart,
 };
-use proptest::prelude::*;
 
 mod colours;
+mod measures;
 
-// ---- text and geometry ----
-
-/// The advance of `n` in DejaVu Sans is 1298 of 2048 units (read from the font's `hmtx` table).
-#[test]
-fn text_width_is_that_of_the_font() {
-    let expected = 10.0 * 1298.0 / 2048.0 * 20.0;
-    let width = font::text_width("nnnnnnnnnn", 20.0);
-    assert!((width - expected).abs() < 0.1, "{width} against {expected}");
-}
-
-/// A covered character that the font lacks would get the width of `.notdef`, 1229 of 2048 units.
-#[test]
-fn characters_that_pictures_use_are_in_the_font() {
-    assert_eq!(
-        font::text_width("\u{e000}", 20.0),
-        20.0,
-        "uncovered characters count one em"
-    );
-    for c in "0123456789−·×≤≥πφ∞√→₁₂₃⁰¹²³⁴⁵⁶⁷⁸⁹⁻абяλθäß…".chars()
-    {
-        let units = font::text_width(&c.to_string(), 2048.0);
-        assert!(
-            units > 300.0 && units <= 2049.0 && (units - 1229.0).abs() > 1.0,
-            "{c} is {units} wide"
-        );
-    }
-}
-
-#[test]
-fn shortened_text_fits() {
-    for limit in [5.0, 40.0, 100.0, 1000.0] {
-        let cut = font::shorten("the courtyards of Marrowquay", 20.0, limit);
-        assert!(cut == "…" || font::text_width(&cut, 20.0) <= limit);
-    }
-    for line in font::wrap(
-        "the courtyards of Marrowquay behind the Lantern Steps",
-        20.0,
-        150.0,
-    ) {
-        assert!(font::text_width(&line, 20.0) <= 150.0);
-    }
-}
-
-#[test]
-fn dashes_alternate_and_keep_their_lengths() {
-    let line = [[0.0, 0.0], [10.0, 0.0], [10.0, 15.0]];
-    let cut = dashes(&line, &[4.0, 2.0]);
-    let total: f64 = cut
-        .iter()
-        .flat_map(|d| d.windows(2))
-        .map(|w| length(sub(w[1], w[0])))
-        .sum();
-    // 25 = 4 periods of 6, then 1 more of a dash.
-    assert!((total - 17.0).abs() < 1e-9, "{total}");
-    assert_eq!(cut.len(), 5);
-}
-
-#[test]
-fn rectangles_inside_a_notch_are_refused() {
-    let notch = [
-        [0.0, 0.0],
-        [10.0, 0.0],
-        [10.0, 10.0],
-        [5.0, 1.0],
-        [0.0, 10.0],
-    ];
-    // All four corners are inside, the notch reaches into the rectangle.
-    let rect = Rect {
-        x0: 2.9,
-        y0: 0.5,
-        x1: 7.1,
-        y1: 4.0,
-    };
-    assert!(!rect_inside(&notch, &rect));
-    assert!(rect_inside(
-        &notch,
-        &Rect {
-            x0: 1.0,
-            y0: 0.2,
-            x1: 9.0,
-            y1: 0.8
-        }
-    ));
-}
-
-proptest! {
-    #[test]
-    fn spread_keeps_order_gap_and_range(mut wishes in prop::collection::vec(-50.0..450.0f64, 0..12)) {
-        wishes.sort_by(f64::total_cmp);
-        let places = spread(&wishes, 20.0, 0.0, 400.0);
-        prop_assert_eq!(places.len(), wishes.len());
-        for pair in places.windows(2) {
-            prop_assert!(pair[1] - pair[0] >= 20.0 - 1e-9);
-        }
-        prop_assert!(places.iter().all(|&p| (-1e-9..=400.0 + 1e-9).contains(&p)));
-    }
-
-    #[test]
-    fn simplified_lines_stay_near(points in prop::collection::vec(prop::array::uniform2(0.0..100.0f64), 1..40)) {
-        let kept = simplified(&points, 5.0);
-        prop_assert_eq!(kept.first(), points.first());
-        prop_assert_eq!(kept.last(), points.last());
-        for &p in &points {
-            let near = kept.windows(2).map(|w| distance_to_segment(p, w[0], w[1])).fold(f64::INFINITY, f64::min);
-            prop_assert!(kept.len() < 2 || near <= 5.0 + 1e-9);
-        }
-    }
-
-    #[test]
-    fn clipped_segments_lie_in_the_rectangle(a in prop::array::uniform2(-9.0..9.0f64), b in prop::array::uniform2(-9.0..9.0f64)) {
-        let rect = Rect { x0: -2.0, y0: -3.0, x1: 4.0, y1: 1.0 };
-        let sampled = (0..=1000).any(|i| {
-            let t = f64::from(i) / 1000.0;
-            rect.contains([a[0] + t * (b[0] - a[0]), a[1] + t * (b[1] - a[1])])
-        });
-        match rect.clip_segment(a, b) {
-            Some((p, q)) => for r in [p, q] {
-                prop_assert!(rect.grown(1e-9).contains(r));
-                prop_assert!(distance_to_segment(r, a, b) < 1e-9);
-            },
-            None => prop_assert!(!sampled),
-        }
-    }
-
-    #[test]
-    fn ticks_lie_in_range_and_differ(low in -1e6..1e6f64, size in -6.0..12.0f64, most in 2usize..10) {
-        let high = low + 10f64.powf(size);
-        let axis = Axis::holding(Scale::Linear, [low, high].into_iter());
-        let ticks = axis.ticks(most);
-        prop_assert!(ticks.len() >= 2 && ticks.len() <= most.max(4) + 1, "{} ticks", ticks.len());
-        for pair in ticks.windows(2) {
-            prop_assert!(pair[0].value < pair[1].value);
-            prop_assert!(pair[0].label != pair[1].label, "{}", pair[0].label);
-        }
-        let slack = 1e-6 * (axis.high - axis.low);
-        prop_assert!(ticks.iter().all(|t| t.value >= axis.low - slack && t.value <= axis.high + slack));
-    }
-
-    #[test]
-    fn logarithmic_ticks_lie_in_range_and_differ(low in -300.0..299.0f64, decades in 0.0..400.0f64, most in 2usize..10) {
-        let high = (low + decades).min(299.5);
-        let axis = Axis::holding(Scale::Log, [10f64.powf(low), 10f64.powf(high)].into_iter());
-        let ticks = axis.ticks(most);
-        prop_assert!(!ticks.is_empty() && ticks.len() <= 3 * most, "{} ticks", ticks.len());
-        for pair in ticks.windows(2) {
-            prop_assert!(pair[0].value < pair[1].value);
-            prop_assert!(pair[0].label != pair[1].label, "{}", pair[0].label);
-        }
-    }
-}
-
-fn labels(axis: &Axis, most: usize) -> Vec<String> {
-    axis.ticks(most).into_iter().map(|t| t.label).collect()
-}
-
-#[test]
-fn tick_labels_read_well() {
-    let axis = |scale, low: f64, high: f64| Axis::holding(scale, [low, high].into_iter());
-    let share = Axis::holding(Scale::Linear, [0.0, 0.5, 1.0].into_iter());
-    assert_eq!(
-        labels(&axis(Scale::Log, 1.0, 1e4), 7),
-        ["1", "10", "100", "10³", "10⁴"]
-    );
-    assert_eq!(
-        labels(&axis(Scale::Log, 1e-4, 1.0), 7),
-        ["10⁻⁴", "10⁻³", "0.01", "0.1", "1"]
-    );
-    assert_eq!(
-        labels(&axis(Scale::Log, 1.0, 100.0), 9),
-        ["1", "2", "5", "10", "20", "50", "100"]
-    );
-    assert_eq!(labels(&share, 5), ["0", "0.2", "0.4", "0.6", "0.8", "1.0"]);
-    assert_eq!(labels(&axis(Scale::Linear, -1.0, 1.0), 2), ["−1", "0", "1"]);
-    assert_eq!(
-        labels(&axis(Scale::Linear, 0.0, 3e6), 3),
-        ["0", "1·10⁶", "2·10⁶", "3·10⁶"]
-    );
-    assert_eq!(
-        labels(&axis(Scale::Linear, 1.0, 3.0), 9),
-        ["1", "2", "3"],
-        "no half word lengths"
-    );
-}
-
-// ---- layout: no text runs into other text or leaves the canvas ----
-
+/// No text runs into other text or leaves the canvas.
 fn assert_text_is_free(name: &str, canvas: &Canvas, size: Point) {
     let boxes = canvas.text_boxes();
     assert!(!boxes.is_empty(), "{name} has no text");
@@ -293,6 +110,36 @@ fn text_of_charts_is_free() {
         }
     }
     text_of_chart_is_free("empty", &labelled);
+    let far = (0..46)
+        .map(|i| (1e6 + f64::from(i), f64::from(i)))
+        .collect();
+    let series = vec![Series {
+        points: far,
+        ..Series::default()
+    }];
+    text_of_chart_is_free(
+        "long numbers",
+        &Chart {
+            series,
+            ..labelled.clone()
+        },
+    );
+    for size in [1e-290, 1e-4, 123.0, 12345678.0, 1e290] {
+        let points = (0..50)
+            .map(|i| (f64::from(i) * size, f64::from(i)))
+            .collect();
+        let series = vec![Series {
+            points,
+            ..Series::default()
+        }];
+        text_of_chart_is_free(
+            "wide numbers",
+            &Chart {
+                series,
+                ..labelled.clone()
+            },
+        );
+    }
 }
 
 fn lettered(corners: &[Point]) -> TableShape {
@@ -312,17 +159,14 @@ fn text_of_tables_is_free() {
         corners,
         letters: vec!["x".into(), "y".into(), "z".into()],
     });
-    let comb = [
-        [0.0, 0.0],
-        [6.0, 0.0],
-        [6.0, 3.0],
-        [4.4, 3.0],
-        [4.4, 0.8],
-        [4.2, 0.8],
-        [4.2, 3.0],
-        [0.0, 3.0],
-    ];
-    let mut clockwise = comb;
+    let notched = |right: f64| {
+        let left = 4.2;
+        let floor = [[0.0, 0.0], [6.0, 0.0], [6.0, 3.0], [right, 3.0]];
+        let rest = [[right, 0.8], [left, 0.8], [left, 3.0], [0.0, 3.0]];
+        [floor, rest].concat()
+    };
+    let comb = notched(4.8);
+    let mut clockwise = comb.clone();
     clockwise.reverse();
     let tables = [
         (
@@ -331,6 +175,8 @@ fn text_of_tables_is_free() {
         ),
         ("comb", lettered(&comb)),
         ("clockwise comb", lettered(&clockwise)),
+        // The letters do not fit into the notch and may stand inside.
+        ("narrow comb", lettered(&notched(4.3))),
         ("sliver", lettered(&[[0.0, 0.0], [10.0, 0.0], [9.0, 0.1]])),
         ("hole", holed),
         ("twelve sides", lettered(&circle_layout(12))),
@@ -345,9 +191,33 @@ fn text_of_tables_is_free() {
             2 * sides,
             "{name}: a letter and a number for each side"
         );
+        if table.holes.is_empty() && name != "narrow comb" {
+            letters_are_outside(name, &table, &canvas);
+        }
         let hits = [[0.5, 0.0], [1.0, 0.7], [0.2, 1.0], [0.0, 0.3]];
         let (canvas, size) = compose_orbit(&table, &hits).expect("a good orbit");
         assert_text_is_free(name, &canvas, size);
+    }
+}
+
+/// The corner dots tell where the outline is.
+fn letters_are_outside(name: &str, table: &TableShape, canvas: &Canvas) {
+    let outline = canvas.disc_centres();
+    assert_eq!(outline.len(), table.corners.len());
+    let sides: Vec<(Point, Point)> = edges(&outline).collect();
+    for (i, letter) in table.letters.iter().enumerate() {
+        let found = canvas
+            .text_boxes()
+            .into_iter()
+            .find(|(text, _)| text == letter);
+        let (_, rect) = found.expect("the letter is drawn");
+        assert!(
+            !inside(&outline, rect.centre()),
+            "{name}: {letter} is inside"
+        );
+        let (a, b) = sides[i];
+        let far = distance_to_segment(rect.centre(), a, b);
+        assert!(far < 60.0, "{name}: {letter} is {far} from its side");
     }
 }
 
@@ -383,6 +253,24 @@ fn text_of_corridors_is_free() {
     }
 }
 
+/// Gates that are crossed close together still get a letter each, in the order of crossing.
+#[test]
+fn letters_of_crowded_gates_keep_their_order() {
+    let mut corridor = strip(30);
+    let names = "abcdefghijklmnopqrstuvwxy";
+    corridor.gates = names
+        .chars()
+        .enumerate()
+        .map(|(i, c)| (20.0 + 0.05 * i as f64, c))
+        .map(|(x, c)| ([x, 0.0], [x, 1.0], c.to_string()))
+        .collect();
+    let (canvas, size) = compose_corridor(&corridor).expect("a good corridor");
+    assert_text_is_free("crowded", &canvas, size);
+    let mut boxes = canvas.text_boxes();
+    boxes.sort_by(|a, b| a.1.x0.total_cmp(&b.1.x0));
+    assert_eq!(boxes.into_iter().map(|b| b.0).collect::<String>(), names);
+}
+
 /// A corridor that climbs steeply is laid down: the picture is wider than high.
 #[test]
 fn corridors_are_laid_down() {
@@ -403,8 +291,13 @@ fn corridors_are_laid_down() {
 #[test]
 fn text_of_cells_is_free_and_inside() {
     let cell = |i: u32, j: u32| {
-        let (x, y) = (f64::from(i), f64::from(j) * 0.4);
-        let outline = vec![[x, y], [x + 1.0, y + 0.2], [x + 1.0, y + 0.6], [x, y + 0.4]];
+        let (x, y) = (f64::from(i), f64::from(j) * 0.25);
+        let outline = vec![
+            [x, y],
+            [x + 1.0, y + 0.2],
+            [x + 1.0, y + 0.45],
+            [x, y + 0.25],
+        ];
         CellShape {
             outline,
             word: "abcdabcd"[..(i + j) as usize % 8 + 1].to_owned(),
@@ -418,13 +311,50 @@ fn text_of_cells_is_free_and_inside() {
             .collect(),
         width: 6.0,
         cells: (0..6)
-            .flat_map(|i| (0..7).map(move |j| cell(i, j)))
+            .flat_map(|i| (0..11).map(move |j| cell(i, j)))
             .collect(),
         x_label: "position".into(),
         y_label: "direction".into(),
     };
     let (canvas, size) = compose_cells(&cells).expect("good cells");
     assert_text_is_free("cells", &canvas, size);
+    let outlines: Vec<Vec<Point>> = cells
+        .cells
+        .iter()
+        .map(|cell| {
+            cell.outline
+                .iter()
+                .map(|p| pixel(&cells, p[0], p[1]))
+                .collect()
+        })
+        .collect();
+    let boxes = canvas.text_boxes();
+    let words: Vec<_> = boxes
+        .iter()
+        .filter(|b| "abcdabcd".starts_with(&b.0))
+        .collect();
+    assert!(
+        words.len() < 60,
+        "long words do not fit, but {} are written",
+        words.len()
+    );
+    assert!(
+        words.len() > 20,
+        "most words fit, but only {} are written",
+        words.len()
+    );
+    for (word, rect) in words {
+        let low = Rect {
+            y0: rect.y0 + 3.0,
+            y1: rect.y1 - 3.0,
+            ..*rect
+        };
+        let home = outlines
+            .iter()
+            .position(|outline| rect_inside(outline, &low));
+        let home = home.unwrap_or_else(|| panic!("{word} crosses a border"));
+        assert_eq!(&cells.cells[home].word, word);
+    }
 }
 
 #[test]
