@@ -24,6 +24,7 @@ mod root;
 
 use crate::number::adjoin::{Adjoined, embed};
 use crate::number::{Field, Real};
+use rug::{Integer, Rational};
 use std::collections::BTreeMap;
 use std::ops::Range;
 use thiserror::Error;
@@ -76,6 +77,9 @@ pub struct Evaluator {
     pure_cosine: Option<u32>,
     /// Square roots taken so far: (argument, root), in the current field.
     square_roots: Vec<(Real, Real)>,
+    /// Roots of polynomials chosen so far: (squarefree polynomial, value nearby, root in the current
+    /// field).
+    chosen_roots: Vec<(Vec<Integer>, Rational, Real)>,
 }
 
 impl Default for Evaluator {
@@ -93,6 +97,7 @@ impl Evaluator {
             cosines: BTreeMap::new(),
             pure_cosine: None,
             square_roots: Vec::new(),
+            chosen_roots: Vec::new(),
         }
     }
 
@@ -164,6 +169,7 @@ impl Evaluator {
         for (argument, root) in &mut self.square_roots {
             (*argument, *root) = (moved(argument), moved(root));
         }
+        self.chosen_roots.iter_mut().for_each(|(_, _, root)| *root = moved(root));
         if !self.field.is_rational() {
             self.earlier.push((self.field.clone(), image));
         }

@@ -49,6 +49,10 @@ pub(super) fn nearest(
             "use shorter coefficients and a shorter value",
         ));
     }
+    let known = evaluator.chosen_roots.iter().find(|(q, near, _)| *q == p && *near == value);
+    if let Some((_, _, root)) = known {
+        return Ok(root.clone());
+    }
     let interval = nearest_root(&p, &value).map_err(|fault| match fault {
         Choice::NoRoot => ExpressionFault::new(
             &polynomial.span,
@@ -81,7 +85,9 @@ pub(super) fn nearest(
     };
     let lifted: Vec<Real> = minimal.iter().cloned().map(Real::from).collect();
     let grown = adjoin_root(&evaluator.field, &lifted, &approximate).map_err(fault)?;
-    Ok(evaluator.grow(grown))
+    let root = evaluator.grow(grown);
+    evaluator.chosen_roots.push((p, value, root.clone()));
+    Ok(root)
 }
 
 enum Choice {
