@@ -1,1 +1,7 @@
-fn main(){}
+//! The `reboundary` program: everything is in the library's `cli` room.
+
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    reboundary::cli::main()
+}

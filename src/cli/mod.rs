@@ -1,1 +1,74 @@
-//! cli
+//! The command line: parsing, printing, exit codes. The rooms below compute.
+//!
+//! - [`arguments`]: commands and options.
+//! - [`fault`]: what can go wrong, and the exit code of each.
+//! - [`output`]: where results are printed.
+//! - [`progress`]: the bar on a terminal, and Ctrl-C.
+//! - one module for each command.
+
+pub mod arguments;
+mod complexity;
+mod diagonals;
+pub mod fault;
+mod graph;
+mod orbits;
+mod output;
+mod progress;
+mod study;
+mod table;
+mod trace;
+mod words;
+
+use arguments::{Arguments, Command, Common};
+use clap::Parser;
+use fault::Fault;
+use std::io::Write;
+use std::process::ExitCode;
+
+/// Runs the program on the arguments of the process.
+pub fn main() -> ExitCode {
+    let arguments = match Arguments::try_parse() {
+        Ok(arguments) => arguments,
+        Err(error) => {
+            // Clap prints help to standard output and usage faults to standard error; a closed pipe is no
+            // fault of ours.
+            let _ = error.print();
+            return ExitCode::from(if error.use_stderr() { fault::BAD_INPUT } else { 0 });
+        }
+    };
+    match run(arguments) {
+        Ok(()) => ExitCode::SUCCESS,
+        Err(fault) => {
+            let message = fault.to_string();
+            if !message.is_empty() {
+                let _ = writeln!(std::io::stderr(), "{message}");
+            }
+            ExitCode::from(fault.exit_code())
+        }
+    }
+}
+
+fn run(arguments: Arguments) -> Result<(), Fault> {
+    match &arguments.command {
+        Command::Study(options) => with_threads(&options.common, || study::run(options)),
+        Command::Table(options) => table::run(options),
+        Command::Words(options) => with_threads(&options.common, || words::run(options)),
+        Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
+        Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
+        Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Trace(options) => trace::run(options),
+        Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),
+    }
+}
+
+/// Runs a command on its own pool of threads.
+fn with_threads(
+    common: &Common,
+    work: impl FnOnce() -> Result<(), Fault> + Send,
+) -> Result<(), Fault> {
+    let pool = rayon::ThreadPoolBuilder::new()
+        .num_threads(common.threads.map_or(0, |n| n.get() as usize))
+        .build()
+        .map_err(|e| Fault::Failed(format!("cannot start the threads: {e}")))?;
+    pool.install(work)
+}

@@ -9,13 +9,18 @@
 //! - [`field`]: the field and its enclosures of θ to any precision.
 //! - [`real`]: elements of the field, with total comparison and a proved zero test.
 //! - [`adjoin`]: growing the field by a root of a polynomial with coefficients in it.
+//! - [`cosine`]: the fields of cosines of rational multiples of π.
 //! - [`enclosure`]: intervals with outward rounding, certified decimals.
 //! - [`tiers`]: counts of how often each level of arithmetic decided a sign.
 
 pub mod adjoin;
+mod characteristic;
+pub mod cosine;
 pub mod enclosure;
 pub mod factor;
 pub mod field;
+mod hensel;
+mod modular;
 pub mod poly;
 pub mod real;
 pub mod tiers;

@@ -28,6 +28,85 @@ pub fn derivative(p: &[Integer]) -> Vec<Integer> {
         .collect()
 }
 
+/// The product.
+pub fn multiply(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
+    if a.is_empty() || b.is_empty() {
+        return Vec::new();
+    }
+    let mut product = vec![Integer::new(); a.len() + b.len() - 1];
+    for (i, x) in a.iter().enumerate().filter(|(_, x)| **x != 0) {
+        for (j, y) in b.iter().enumerate() {
+            product[i + j] += x * y;
+        }
+    }
+    product
+}
+
+/// The quotient a/b when b divides a over the integers.
+///
+/// # Panics
+/// If b is zero.
+pub fn exact_quotient(a: &[Integer], b: &[Integer]) -> Option<Vec<Integer>> {
+    let lead = b.last().expect("division by the zero polynomial");
+    let mut rest = a.to_vec();
+    let mut quotient = vec![Integer::new(); (a.len() + 1).saturating_sub(b.len())];
+    while rest.len() >= b.len() {
+        let shift = rest.len() - b.len();
+        let top = rest.pop().expect("nonempty");
+        if !top.is_divisible(lead) {
+            return None;
+        }
+        let factor = top.div_exact(lead);
+        if factor != 0 {
+            for (i, c) in b[..b.len() - 1].iter().enumerate() {
+                rest[shift + i] -= c * &factor;
+            }
+        }
+        quotient[shift] = factor;
+    }
+    rest.iter().all(|c| *c == 0).then_some(quotient)
+}
+
+/// The greatest common divisor over ℚ, primitive with a positive leading coefficient; by the primitive
+/// remainder sequence.
+pub fn gcd(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
+    let (mut a, mut b) = (primitive(a), primitive(b));
+    while !b.is_empty() {
+        if a.len() < b.len() {
+            std::mem::swap(&mut a, &mut b);
+            continue;
+        }
+        let rest = positive_remainder(&a, &b);
+        a = std::mem::replace(&mut b, rest);
+    }
+    if a.last().is_some_and(|c| *c < 0) {
+        a.iter_mut().for_each(|c| *c = Integer::from(-&*c));
+    }
+    a
+}
+
+/// The interval (lo, hi] around one root of a squarefree polynomial, narrowed to a width of at most
+/// 2^−bits. Ends because each pass halves it.
+pub fn narrow_root(p: &[Integer], interval: &mut (Rational, Rational), bits: u32) {
+    let target = Rational::from((Integer::from(1), Integer::from(1) << bits));
+    while Rational::from(&interval.1 - &interval.0) > target {
+        let at_hi = sign_at(p, &interval.1);
+        if at_hi == Sign::Zero {
+            interval.0 = Rational::from(&interval.1 - &target);
+            return;
+        }
+        let middle = Rational::from(&interval.0 + &interval.1) / 2;
+        match sign_at(p, &middle) {
+            Sign::Zero => {
+                let below = Rational::from(&middle - &target);
+                *interval = (below.max(interval.0.clone()), middle);
+            }
+            sign if sign == at_hi => interval.1 = middle,
+            _ => interval.0 = middle,
+        }
+    }
+}
+
 /// Divides by the greatest common divisor of the coefficients, keeping the sign.
 pub fn primitive(p: &[Integer]) -> Vec<Integer> {
     let mut content = Integer::new();
@@ -216,16 +295,7 @@ mod tests {
         // (1000x-1)(1001x-1)(x-5)
         let q: Vec<Integer> = {
             let (a, b, c) = (poly(&[-1, 1000]), poly(&[-1, 1001]), poly(&[-5, 1]));
-            let mul = |x: &[Integer], y: &[Integer]| {
-                let mut z = vec![Integer::new(); x.len() + y.len() - 1];
-                for (i, u) in x.iter().enumerate() {
-                    for (j, v) in y.iter().enumerate() {
-                        z[i + j] += Integer::from(u * v);
-                    }
-                }
-                z
-            };
-            mul(&mul(&a, &b), &c)
+            multiply(&multiply(&a, &b), &c)
         };
         let roots = isolate_roots(&q);
         assert_eq!(roots.len(), 3);

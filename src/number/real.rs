@@ -401,7 +401,7 @@ pub(crate) fn reduce_powers(field: &Field, mut coordinates: Vec<Integer>) -> Vec
 ///
 /// # Panics
 /// If the matrix is singular.
-fn solve_fraction_free(mut m: Vec<Vec<Integer>>) -> (Vec<Integer>, Integer) {
+pub(crate) fn solve_fraction_free(mut m: Vec<Vec<Integer>>) -> (Vec<Integer>, Integer) {
     let n = m.len();
     let mut previous = Integer::from(1);
     for k in 0..n {

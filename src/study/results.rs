@@ -217,7 +217,11 @@ fn shown_length(p: &[u64]) -> usize {
     (1..=last.min(12)).rev().find(|&n| p[n] <= 150).unwrap_or(1).min(last)
 }
 
-fn check_memory(words: u64, length: usize, allowed: Option<u64>) -> Result<(), StudyFault> {
+/// Refuses work on so many words, of all lengths up to one, that would not fit in memory.
+///
+/// # Errors
+/// With the estimate, when it exceeds what is allowed.
+pub fn check_memory(words: u64, length: usize, allowed: Option<u64>) -> Result<(), StudyFault> {
     let needed = words.saturating_mul(STUDY_BYTES_PER_WORD);
     let allowed = allowed.or_else(|| memory::available().map(|free| free / 10 * 9));
     match allowed {

@@ -1,1 +1,131 @@
-//! file
+//! The table file.
+//!
+//! TOML in UTF-8, at most [`LARGEST_FILE`] bytes. Keys:
+//!
+//! | key        | value |
+//! |------------|-------|
+//! | `title`    | text; optional, the file's name without it |
+//! | `corners`  | array of pairs of numbers, at most 255 |
+//! | `triangle` | three positive rational numbers: angles in proportion to them |
+//! | `regular`  | an integer from 3 to 255: a regular polygon on the unit circle |
+//! | `form`     | with `corners`: the g of the plane form x² + g·y²; second coordinates are in units of √g |
+//! | `sides`    | optional letters, one character for each side; side i joins corner i to the next |
+//! | `about`    | free text, ignored |
+//!
+//! Exactly one of `corners`, `triangle` and `regular` is there. A number is a string that holds an exact
+//! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
+//! is written is not what would be read.
+//!
+//! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
+
+mod faults;
+mod read;
+
+use super::Table;
+use super::diagnostic::Diagnostic;
+use std::io::Read;
+use std::path::Path;
+use thiserror::Error;
+
+/// The most bytes of a table file: 1 MiB.
+pub const LARGEST_FILE: usize = 1 << 20;
+
+/// A table with what its file says beside it.
+#[derive(Clone, Debug)]
+pub struct LoadedTable {
+    /// The checked table.
+    pub table: Table,
+    /// Sentences that the user should see: what was understood in a way that may surprise.
+    pub notices: Vec<String>,
+    /// The text of the file, without a byte order mark.
+    pub text: String,
+    /// The name of the file without folder and extension.
+    pub stem: String,
+}
+
+/// Why a file gave no table.
+#[derive(Debug, Error)]
+pub enum TableFileError {
+    /// The file cannot be read.
+    #[error("{file}: cannot read this file: {reason}")]
+    Unreadable {
+        /// The name as given.
+        file: String,
+        /// What the operating system says.
+        reason: std::io::Error,
+    },
+    /// The file is too large.
+    #[error("{file}: this file is larger than {LARGEST_FILE} bytes, the most that a table file can have")]
+    TooLarge {
+        /// The name as given.
+        file: String,
+    },
+    /// The file is no text.
+    #[error("{file}: this is not a text file in UTF-8: byte {offset} fits no character; write the table in a plain text editor")]
+    NotText {
+        /// The name as given.
+        file: String,
+        /// The first byte at fault, from 0.
+        offset: usize,
+    },
+    /// The text is no table.
+    #[error("{0}")]
+    Fault(Box<Diagnostic>),
+}
+
+/// Reads a table from a file.
+///
+/// # Errors
+/// As [`TableFileError`] says.
+pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
+    let file = path.display().to_string();
+    let unreadable = |reason| TableFileError::Unreadable {
+        file: file.clone(),
+        reason,
+    };
+    let handle = std::fs::File::open(path).map_err(unreadable)?;
+    let mut bytes = Vec::new();
+    handle.take(LARGEST_FILE as u64 + 1).read_to_end(&mut bytes).map_err(unreadable)?;
+    if bytes.len() > LARGEST_FILE {
+        return Err(TableFileError::TooLarge { file });
+    }
+    let text = String::from_utf8(bytes).map_err(|e| TableFileError::NotText {
+        file: file.clone(),
+        offset: e.utf8_error().valid_up_to(),
+    })?;
+    parse(&file, &text)
+}
+
+/// Reads a table from a text; `file_name` is used in messages and for the stem.
+///
+/// # Errors
+/// As [`TableFileError`] says, except for reading.
+pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError> {
+    if text.len() > LARGEST_FILE {
+        return Err(TableFileError::TooLarge { file: file_name.into() });
+    }
+    let text = text.strip_prefix('\u{feff}').unwrap_or(text);
+    if let Some(offset) = text.find('\0') {
+        return Err(TableFileError::NotText {
+            file: file_name.into(),
+            offset,
+        });
+    }
+    let stem = Path::new(file_name)
+        .file_stem()
+        .map_or_else(|| file_name.to_string(), |s| s.to_string_lossy().into_owned());
+    let table = read::table(file_name, text, &stem).map_err(TableFileError::Fault)?;
+    let mut notices = Vec::new();
+    if table.turned_round() {
+        notices.push(format!(
+            "{file_name}: the corners run clockwise; the table was turned round: corner 0 stays, the \
+             others are counted in the opposite order, and every letter stays on its side"
+        ));
+    }
+    Ok(LoadedTable {
+        table,
+        notices,
+        text: text.to_string(),
+        stem,
+    })
+}

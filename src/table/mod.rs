@@ -6,12 +6,14 @@
 //! - [`summary`]: a table and its facts, ready to be written.
 //! - [`expression`]: the exact expressions of a table file.
 //! - [`file`](mod@file): the TOML table file.
+//! - [`shape`]: regular polygons and triangles by their angles, in the smallest field.
 //! - [`diagnostic`]: messages that point into a table file.
 
 pub mod diagnostic;
 pub mod expression;
 pub mod facts;
 pub mod file;
+pub mod shape;
 pub mod summary;
 pub mod triangulation;
 pub mod validity;
@@ -235,14 +237,15 @@ impl Table {
     }
 }
 
-/// The letters that sides get when the file names none: a–z, A–Z, then Greek and Cyrillic lower case.
+/// The letters that sides get when the file names none: a–z, A–Z, then Greek and Cyrillic lower case,
+/// digits and accented Latin: enough for [`MOST_SIDES`].
 pub fn default_letters(count: usize) -> Vec<char> {
     ('a'..='z')
         .chain('A'..='Z')
         .chain('α'..='ω')
         .chain('а'..='я')
         .chain('0'..='9')
-        .chain('\u{100}'..='\u{17f}')
+        .chain('\u{100}'..='\u{1bf}')
         .take(count)
         .collect()
 }

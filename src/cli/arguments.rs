@@ -1,0 +1,345 @@
+//! Commands and options.
+
+use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
+use crate::unfold::engine::Arithmetic;
+use clap::{Args, Parser, Subcommand, ValueEnum};
+use std::num::NonZeroU32;
+use std::path::PathBuf;
+
+/// Complete, certified coding languages of polygonal billiards.
+///
+/// A table is a polygon in a TOML file with exact corners. Exit codes: 0 done; 1 the tool failed; 2 bad input
+/// or usage; 3 stopped by a budget or a signal.
+#[derive(Debug, Parser)]
+#[command(version, max_term_width = 100)]
+pub struct Arguments {
+    /// What to do.
+    #[command(subcommand)]
+    pub command: Command,
+}
+
+/// The commands.
+#[derive(Debug, Subcommand)]
+pub enum Command {
+    /// The main job: language, complexity, factor graphs, verdict and pictures in one folder
+    Study(StudyOptions),
+    /// Facts about a table: exact corners, angles, reflection group, area
+    Table(TableOptions),
+    /// All words of one length, one a line
+    Words(WordsOptions),
+    /// The complexity p(n) and its differences, by one route or by both
+    Complexity(ComplexityOptions),
+    /// Generalized diagonals with ends, code and exact displacement
+    Diagonals(DiagonalsOptions),
+    /// Special words and path balls of the factor graphs, or one graph as GraphML
+    Graph(GraphOptions),
+    /// One orbit from an exact start
+    Trace(TraceOptions),
+    /// Many orbits from random exact starts, one word a line
+    Orbits(OrbitsOptions),
+}
+
+/// Options of every command that computes.
+#[derive(Clone, Debug, Args)]
+pub struct Common {
+    /// Threads to use [default: all cores]
+    #[arg(long, value_name = "N")]
+    pub threads: Option<NonZeroU32>,
+    /// No progress and no notices
+    #[arg(long)]
+    pub quiet: bool,
+}
+
+/// Options about arithmetic.
+#[derive(Clone, Copy, Debug, Args)]
+pub struct Exactness {
+    /// Decide every sign with big integers only, bypassing the fast tiers
+    #[arg(long)]
+    pub exact_only: bool,
+}
+
+impl Exactness {
+    /// As the engine takes it.
+    pub fn arithmetic(self) -> Arithmetic {
+        if self.exact_only { Arithmetic::BigOnly } else { Arithmetic::Tiered }
+    }
+}
+
+/// Text for people, or a format for programs.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Format {
+    /// For people
+    #[default]
+    Text,
+    /// One JSON object (JSON Lines where rows are many)
+    Json,
+    /// Comma-separated values with a header
+    Csv,
+}
+
+/// The ways to p(n).
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Route {
+    /// Count words: walk all beams of lines
+    Beams,
+    /// Count generalized diagonals: walk all fans of rays
+    Diagonals,
+    /// Both, compared value by value
+    #[default]
+    Both,
+}
+
+fn parse_length(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(length) if length <= LONGEST => Ok(length),
+        Ok(length) => Err(format!("{length} is too long; the longest words that can be asked for have {LONGEST} letters")),
+        Err(_) => Err(format!("write a whole number from 0 to {LONGEST}")),
+    }
+}
+
+fn parse_positive_length(text: &str) -> Result<usize, String> {
+    match parse_length(text)? {
+        0 => Err("write a length of at least 1".into()),
+        length => Ok(length),
+    }
+}
+
+fn parse_study_length(text: &str) -> Result<usize, String> {
+    match parse_length(text)? {
+        length @ 0..=2 => Err(format!("a study needs words of length at least 3, not {length}")),
+        length => Ok(length),
+    }
+}
+
+fn parse_bytes(text: &str) -> Result<u64, String> {
+    let (digits, factor) = match text.char_indices().last() {
+        Some((at, 'K' | 'k')) => (&text[..at], 1u64 << 10),
+        Some((at, 'M' | 'm')) => (&text[..at], 1 << 20),
+        Some((at, 'G' | 'g')) => (&text[..at], 1 << 30),
+        _ => (text, 1),
+    };
+    digits
+        .parse::<u64>()
+        .ok()
+        .and_then(|n| n.checked_mul(factor))
+        .ok_or_else(|| "write a number of bytes, or a number with K, M or G, such as 4G".into())
+}
+
+/// `study`.
+#[derive(Debug, Args)]
+pub struct StudyOptions {
+    /// The table file
+    pub table: PathBuf,
+    #[doc = "Longest words [default: as far as a million words in all, at most 60]"]
+    #[arg(long, value_name = "N", value_parser = parse_study_length)]
+    pub length: Option<usize>,
+    /// Folder for the results [default: NAME-study for a table file NAME.toml]
+    #[arg(long, value_name = "DIR")]
+    pub out: Option<PathBuf>,
+    /// Largest radius of the ball census
+    #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
+    pub radii: usize,
+    /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
+    #[arg(long, value_name = "N")]
+    pub graph_order: Option<usize>,
+    /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
+    #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
+    pub budget_memory: Option<u64>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
+}
+
+fn parse_radii(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(radii @ 1..=64) => Ok(radii),
+        _ => Err("write a whole number from 1 to 64".into()),
+    }
+}
+
+/// `table`.
+#[derive(Debug, Args)]
+pub struct TableOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Output format
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// No notices
+    #[arg(long)]
+    pub quiet: bool,
+}
+
+/// `words`.
+#[derive(Debug, Args)]
+pub struct WordsOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Length of the words
+    #[arg(long, value_name = "N", value_parser = parse_length)]
+    pub length: usize,
+    /// Text: one word a line; CSV and JSON add the certified measure of each word
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
+    #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
+    pub budget_memory: Option<u64>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
+}
+
+/// `complexity`.
+#[derive(Debug, Args)]
+pub struct ComplexityOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Longest words
+    #[arg(long, value_name = "N", default_value_t = DEFAULT_LENGTH, value_parser = parse_length)]
+    pub length: usize,
+    /// How to count
+    #[arg(long, value_enum, default_value_t)]
+    pub route: Route,
+    /// Output format
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
+}
+
+/// `diagonals`.
+#[derive(Debug, Args)]
+pub struct DiagonalsOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// The most sides that a listed diagonal crosses
+    #[arg(long, value_name = "N", default_value_t = 8, value_parser = parse_length)]
+    pub length: usize,
+    /// Output format
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
+}
+
+/// `graph`.
+#[derive(Debug, Args)]
+pub struct GraphOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Largest order n of the factor graphs
+    #[arg(long, value_name = "N", default_value_t = 30, value_parser = parse_positive_length)]
+    pub length: usize,
+    /// Largest radius of the ball census
+    #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
+    pub radii: usize,
+    /// Output format
+    #[arg(long, value_enum, default_value_t)]
+    pub format: GraphFormat,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
+}
+
+/// Formats of `graph`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum GraphFormat {
+    /// For people
+    #[default]
+    Text,
+    /// One JSON object
+    Json,
+    /// Comma-separated values with a header
+    Csv,
+    /// The factor graph of order N itself
+    Graphml,
+}
+
+/// `trace`.
+#[derive(Debug, Args)]
+pub struct TraceOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a
+    #[arg(long, value_name = "START")]
+    pub start: String,
+    /// Direction as a vector X,Y in the table's coordinates
+    #[arg(long, value_name = "X,Y", allow_hyphen_values = true)]
+    pub aim: String,
+    /// Letters of the word; the starting side is the first
+    #[arg(long, value_name = "N", default_value_t = 100, value_parser = parse_hits)]
+    pub hits: usize,
+    /// Text: the word; CSV and JSON give each hit exactly and as decimals
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// No notices
+    #[arg(long)]
+    pub quiet: bool,
+}
+
+/// `orbits`.
+#[derive(Debug, Args)]
+pub struct OrbitsOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Number of orbits
+    #[arg(long, value_name = "M", default_value_t = 1000)]
+    pub count: u64,
+    /// Letters of each word; the starting side is the first
+    #[arg(long, value_name = "N", default_value_t = 200, value_parser = parse_hits)]
+    pub hits: usize,
+    /// Seed of the random starts
+    #[arg(long, value_name = "K", default_value_t = 0)]
+    pub seed: u64,
+    /// Text: one word a line; CSV and JSON Lines add the exact start
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+}
+
+fn parse_hits(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(hits) if hits >= 1 => Ok(hits),
+        _ => Err("write a whole number of at least 1".into()),
+    }
+}
