@@ -93,27 +93,39 @@ pub fn exact_measure<E: Engine>(
     form: &Real,
 ) -> RootSum {
     let mut sum = RootSum::default();
-    for (sign, radicand) in distances(visit, trail, form) {
-        sum.add(sign, radicand);
+    for (sign, a, b) in vertices(visit.cell, visit.lefts) {
+        let vector = visit.engine.displacement(trail, a, b);
+        sum.add(sign, vector.squared_length(form));
     }
     sum
 }
 
-/// Sign and squared length for each vertex of the cell.
-fn distances<E: Engine>(
+/// Sign and ends of the distance at each vertex of a cell.
+fn vertices<P>(cell: &[P], lefts: usize) -> impl Iterator<Item = (i64, &P, &P)> {
+    let m = cell.len();
+    (0..m).map(move |i| {
+        let between_sides = i + 1 == lefts || i + 1 == m;
+        (if between_sides { 1 } else { -1 }, &cell[i], &cell[(i + 1) % m])
+    })
+}
+
+/// An enclosure of the measure of a word's beam.
+///
+/// Cost: one enclosed distance for each vertex of the cell.
+pub fn enclosed_measure<E: Engine>(
     visit: &Visit<'_, E>,
     trail: &mut Trail<E::Exact>,
-    form: &Real,
-) -> Vec<(i64, Real)> {
-    let cell = visit.cell;
-    let m = cell.len();
-    (0..m)
-        .map(|i| {
-            let between_sides = i + 1 == visit.lefts || i + 1 == m;
-            let vector = visit.engine.displacement(trail, &cell[i], &cell[(i + 1) % m]);
-            (if between_sides { 1 } else { -1 }, vector.squared_length(form))
-        })
-        .collect()
+) -> Enclosure {
+    let mut sum = Enclosure::zero(PRECISION);
+    for (sign, a, b) in vertices(visit.cell, visit.lefts) {
+        let distance = visit.engine.squared_distance(trail, a, b, PRECISION).sqrt();
+        if sign > 0 {
+            sum.add_assign(&distance);
+        } else {
+            sum.sub_assign(&distance);
+        }
+    }
+    sum
 }
 
 /// What the check of one level says.
@@ -138,7 +150,8 @@ pub struct Measures {
     pub kept: Vec<Enclosure>,
 }
 
-/// Bits of the bounds; distances are enclosed to at least as many places after the point.
+/// Bits of the bounds. A sum must be known to about 100 places after the point; the rest is room for large
+/// coordinates, many crossings and many terms.
 const PRECISION: u32 = 192;
 
 /// The width that a level's sum must stay below: 10⁻³⁰.
@@ -163,8 +176,7 @@ pub fn measure(
     control: &Control,
 ) -> Result<Measures, GrowthFault> {
     let parts: Vec<Sums> = with_engine!(engine, engine => {
-        let form = table.form();
-        let new = |part| Sums::new(part, form, kept);
+        let new = |part| Sums::new(part, kept);
         walk_beams(engine, mesh, longest, control, new)?.0
     });
     let whole = table.perimeter(PRECISION).mul_integer(&Integer::from(2));
@@ -194,7 +206,6 @@ pub fn measure(
 /// Sums per level of one part of the walk.
 struct Sums {
     part: Part,
-    form: Real,
     kept: usize,
     sums: Vec<Enclosure>,
     /// In a subtree: the measure of the current word of each length.
@@ -203,10 +214,9 @@ struct Sums {
 }
 
 impl Sums {
-    fn new(part: Part, form: &Real, kept: usize) -> Sums {
+    fn new(part: Part, kept: usize) -> Sums {
         Sums {
             part,
-            form: form.clone(),
             kept,
             sums: Vec::new(),
             current: Vec::new(),
@@ -226,18 +236,7 @@ impl<E: Engine> Visitor<E> for Sums {
             Part::Subtree if !visit.cut => self.current[n - 1].clone(),
             _ => None,
         };
-        let measure = inherited.unwrap_or_else(|| {
-            let mut sum = Enclosure::zero(PRECISION);
-            for (sign, radicand) in distances(visit, trail, &self.form) {
-                let root = radicand.enclosure_within(PRECISION).sqrt();
-                if sign > 0 {
-                    sum.add_assign(&root);
-                } else {
-                    sum.sub_assign(&root);
-                }
-            }
-            sum
-        });
+        let measure = inherited.unwrap_or_else(|| enclosed_measure(visit, trail));
         self.sums[n - 1].add_assign(&measure);
         if n == self.kept {
             self.kept_measures.push(measure.clone());

@@ -259,15 +259,29 @@ impl Language {
 
     /// The first word whose reversal is not in the language, as (length, word).
     ///
-    /// Cost: one descent of the tree for each word.
+    /// The reversal of w is that of its suffix, followed by the first letter of w; so the reversals of one
+    /// level follow from those of the level below. Cost: O(letters) a word, and 5 bytes for each word of
+    /// two levels.
     pub fn first_without_reversal(&self) -> Option<(usize, WordId)> {
-        (1..=self.longest()).find_map(|n| {
-            (0..self.count(n) as WordId).find_map(|w| {
-                let mut letters = self.word(n, w);
-                letters.reverse();
-                self.find(&letters).is_none().then_some((n, w))
-            })
-        })
+        let mut reversal: Vec<WordId> = vec![0];
+        let mut first_letter: Vec<u8> = Vec::new();
+        for n in 1..=self.longest() {
+            let level = &self.levels[n];
+            let first: Vec<u8> = match n {
+                1 => level.letter.clone(),
+                _ => level.parent.iter().map(|p| first_letter[*p as usize]).collect(),
+            };
+            let mut next = Vec::with_capacity(first.len());
+            for (w, letter) in first.iter().enumerate() {
+                let shorter = reversal[level.suffix[w] as usize];
+                match child(&self.levels, n - 1, shorter, *letter) {
+                    Some(found) => next.push(found),
+                    None => return Some((n, w as WordId)),
+                }
+            }
+            (reversal, first_letter) = (next, first);
+        }
+        None
     }
 }
 

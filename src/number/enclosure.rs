@@ -7,7 +7,7 @@
 use super::tiers::Sign;
 use rug::float::Round;
 use rug::ops::{AddAssignRound, DivAssignRound, MulAssignRound, SubAssignRound};
-use rug::{Assign, Float, Integer, Rational};
+use rug::{Float, Integer, Rational};
 
 /// A closed interval that contains an exactly defined real number.
 #[derive(Clone, Debug)]
@@ -152,28 +152,51 @@ impl Enclosure {
     }
 
     /// The product.
+    ///
+    /// Intervals that do not straddle zero, the usual case, take two products; otherwise all four pairs of
+    /// bounds are tried.
     pub fn mul(&self, other: &Enclosure) -> Enclosure {
-        let precision = self.precision();
-        let mut lo = Float::new(precision);
-        let mut hi = Float::new(precision);
-        let mut product = Float::new(precision);
-        let mut first = true;
-        for left in [&self.lo, &self.hi] {
-            for right in [&other.lo, &other.hi] {
-                product.assign(left);
-                product.mul_assign_round(right, Round::Down);
-                if first || product < lo {
-                    lo.assign(&product);
-                }
-                product.assign(left);
-                product.mul_assign_round(right, Round::Up);
-                if first || product > hi {
-                    hi.assign(&product);
-                }
-                first = false;
-            }
+        let definite = |e: &Enclosure| (e.lo >= 0).then_some(true).or((e.hi <= 0).then_some(false));
+        let (lo, hi) = match (definite(self), definite(other)) {
+            (Some(true), Some(true)) => ((&self.lo, &other.lo), (&self.hi, &other.hi)),
+            (Some(true), Some(false)) => ((&self.hi, &other.lo), (&self.lo, &other.hi)),
+            (Some(false), Some(true)) => ((&self.lo, &other.hi), (&self.hi, &other.lo)),
+            (Some(false), Some(false)) => ((&self.hi, &other.hi), (&self.lo, &other.lo)),
+            _ => return self.mul_straddling(other),
+        };
+        let product = |(a, b): (&Float, &Float), round| {
+            Float::with_val_round(self.precision(), a * b, round).0
+        };
+        Enclosure {
+            lo: product(lo, Round::Down),
+            hi: product(hi, Round::Up),
         }
-        Enclosure { lo, hi }
+    }
+
+    fn mul_straddling(&self, other: &Enclosure) -> Enclosure {
+        let products = |round| {
+            [&self.lo, &self.hi].into_iter().flat_map(move |a| {
+                [&other.lo, &other.hi]
+                    .map(|b| Float::with_val_round(self.precision(), a * b, round).0)
+            })
+        };
+        let ordered = |a: &Float, b: &Float| a.total_cmp(b);
+        Enclosure {
+            lo: products(Round::Down).min_by(ordered).expect("four products"),
+            hi: products(Round::Up).max_by(ordered).expect("four products"),
+        }
+    }
+
+    /// The square, never below zero.
+    pub fn square(&self) -> Enclosure {
+        let product = self.mul(self);
+        if self.contains_zero() {
+            return Enclosure {
+                lo: Float::new(self.precision()),
+                hi: product.hi,
+            };
+        }
+        product
     }
 
     /// The product with an exact integer.
@@ -290,6 +313,22 @@ mod tests {
                 .contains(&Rational::from(&a * -5))
         );
         assert!(x.width() > 0);
+    }
+
+    #[test]
+    fn products_of_all_sign_patterns_hold_every_product() {
+        let bounds = [(-5, -2), (-3, 0), (-2, 7), (0, 0), (0, 4), (1, 6)];
+        let make = |(lo, hi): (i32, i32)| {
+            Enclosure::between(Float::with_val(53, lo), Float::with_val(53, hi))
+        };
+        for x in bounds {
+            for y in bounds {
+                let product = make(x).mul(&make(y));
+                let corners = [x.0 * y.0, x.0 * y.1, x.1 * y.0, x.1 * y.1];
+                assert_eq!(*product.lo(), *corners.iter().min().unwrap());
+                assert_eq!(*product.hi(), *corners.iter().max().unwrap());
+            }
+        }
     }
 
     #[test]

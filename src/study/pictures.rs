@@ -176,7 +176,8 @@ fn ball_chart(results: &Results) -> Chart {
                 .collect()
         };
         let bound = points(&|i| 1.0 - results.line[i].bound[r]);
-        if !bound.is_empty() {
+        // A lone point would show as a mark without a line.
+        if bound.len() > 1 {
             all.push(series("", bound, Mark::Dashed, Some(r)));
         }
         all.push(series(format!("r = {}", r + 1), points(&|i| results.line[i].path_share[r]), Mark::LineDots, Some(r)));
@@ -364,7 +365,7 @@ fn cell_outline(images: &[[f64; 2]], lefts: usize, side: Segment, offset: f64) -
         let (from, to) = (angle((i + m - 1) % m), angle(i));
         let p = sub(images[i], side.0);
         let (position, height) = (p[0] * along[0] + p[1] * along[1], cross(along, p));
-        for step in 0..BORDER_POINTS {
+        for step in 0..=BORDER_POINTS {
             let theta = from + (to - from) * step as f64 / BORDER_POINTS as f64;
             // The line through p at this angle starts on the side height·cot θ before p.
             let start = if height.abs() < 1e-9 * length {

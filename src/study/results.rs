@@ -211,10 +211,12 @@ fn affordable(p: &[u64], most: u64) -> usize {
     (fits.count().max(3) - 1).min(p.len() - 1)
 }
 
-/// Words of this length are listed with their measures and drawn: the longest with at most 150 of them.
+/// Words of this length are listed with their measures and drawn as cells: the longest, from 2 to 12, with at
+/// most 150 of them; 2 when even those are more.
 fn shown_length(p: &[u64]) -> usize {
     let last = p.len() - 1;
-    (1..=last.min(12)).rev().find(|&n| p[n] <= 150).unwrap_or(1).min(last)
+    let few = (2..=last.min(12)).rev().find(|&n| p[n] <= 150);
+    few.unwrap_or(2).min(last)
 }
 
 /// Refuses work on so many words, of all lengths up to one, that would not fit in memory.

@@ -8,7 +8,7 @@
 use super::filtered::Filtered;
 use super::group::FiniteGroup;
 use super::lattice::Lattice;
-use crate::number::{Sign, Tiers};
+use crate::number::{Enclosure, Sign, Tiers};
 use crate::table::facts::{ReflectionGroup, facts};
 use crate::table::{CornerId, SideId, Table, Vector};
 
@@ -115,6 +115,15 @@ pub trait Engine: Sync {
         a: &Self::Point,
         b: &Self::Point,
     ) -> Vector;
+
+    /// An enclosure of the squared distance of two corner images, with bounds of about `precision` bits.
+    fn squared_distance(
+        &self,
+        trail: &mut Trail<Self::Exact>,
+        a: &Self::Point,
+        b: &Self::Point,
+        precision: u32,
+    ) -> Enclosure;
 
     /// The most crossings for which answers are certified.
     fn deepest(&self) -> usize;

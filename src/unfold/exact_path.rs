@@ -8,11 +8,15 @@
 //!   degree at most 2d − 2 with `i128` coefficients, reduced by the minimal polynomial; it is zero
 //!   exactly when all reduced coefficients are. Every operation is checked; an overflow falls through.
 //! - *Any group*: a pose is an exact isometry with big coordinates, whose length grows linearly.
+//!
+//! Distances are wanted as enclosures only, so they have a path of their own: enclosed isometries, which
+//! cost the same at every depth.
 
 use super::engine::ExactTrail;
 use super::group::{FiniteGroup, scaled_coordinates};
 use super::isometry::{Isometry, side_reflections};
-use crate::number::{Field, Real, Sign, Tiers};
+use super::wide_path::{WidePath, WideTables};
+use crate::number::{Enclosure, Field, Real, Sign, Tiers};
 use crate::table::{CornerId, SideId, Table, Vector};
 use rug::Integer;
 
@@ -59,6 +63,7 @@ pub struct ExactPath {
     translations: Vec<i64>,
     row: usize,
     big: Vec<Isometry>,
+    wide: WidePath,
 }
 
 impl ExactTrail for ExactPath {
@@ -71,6 +76,7 @@ impl ExactTrail for ExactPath {
         if self.big.len() > crossings + 1 {
             self.big.truncate(crossings + 1);
         }
+        self.wide.keep(crossings);
     }
 }
 
@@ -94,6 +100,7 @@ impl ExactTables {
             translations: Vec::new(),
             row: self.finite.as_ref().map_or(0, |f| 2 * f.degree),
             big: Vec::new(),
+            wide: WidePath::default(),
         }
     }
 
@@ -148,6 +155,52 @@ impl ExactTables {
         let corner = &self.corners[name.corner.0 as usize];
         path.big[name.crossings as usize].apply(corner, &self.form)
     }
+}
+
+impl ExactTables {
+    /// An enclosure of the squared distance of two corner images.
+    pub fn squared_distance(
+        &self,
+        path: &mut ExactPath,
+        sides: &[SideId],
+        (a, b): (ImageName, ImageName),
+        precision: u32,
+    ) -> Enclosure {
+        let form = self.form.enclosure(precision);
+        if let Some(finite) = &self.finite
+            && let Some(a) = finite.position(path, sides, a)
+            && let Some(b) = finite.position(path, sides, b)
+            && let Some(difference) = checked_difference(&b, &a)
+        {
+            let powers = self.field.powers(precision);
+            let (x, y) = difference.split_at(finite.degree);
+            let coordinate = |coordinates: &[i64]| {
+                let mut sum = Enclosure::zero(precision);
+                for (c, power) in coordinates.iter().zip(powers.iter()) {
+                    sum.add_assign(&power.mul_integer(&Integer::from(*c)));
+                }
+                sum
+            };
+            let square = norm(&coordinate(x), &coordinate(y), &form);
+            return square.div_integer(&finite.scale).div_integer(&finite.scale);
+        }
+        let tables = WideTables {
+            corners: &self.corners,
+            reflections: &self.reflections,
+            form: &form,
+        };
+        let [ax, ay] = path.wide.position(&tables, sides, a, precision);
+        let [bx, by] = path.wide.position(&tables, sides, b, precision);
+        norm(&bx.sub(&ax), &by.sub(&ay), &form)
+    }
+}
+
+fn norm(x: &Enclosure, y: &Enclosure, form: &Enclosure) -> Enclosure {
+    x.square().add(&form.mul(&y.square()))
+}
+
+fn checked_difference(a: &[i64], b: &[i64]) -> Option<Vec<i64>> {
+    a.iter().zip(b).map(|(a, b)| a.checked_sub(*b)).collect()
 }
 
 impl FiniteTables {

@@ -25,7 +25,7 @@ use super::engine::{Engine, Trail};
 use super::exact_path::{ExactPath, ExactTables, ImageName};
 use super::group::FiniteGroup;
 use super::isometry::side_reflections;
-use crate::number::{Real, Sign};
+use crate::number::{Enclosure, Real, Sign};
 use crate::table::{CornerId, SideId, Table, Vector};
 
 /// Relative error of tabulated numbers: `Real::to_f64` is within 2 units in the last place, and the
@@ -301,6 +301,17 @@ impl Engine for Filtered {
         let (sides, path) = trail.split();
         let a = self.exact.position(path, sides, a.name);
         self.exact.position(path, sides, b.name).minus(&a)
+    }
+
+    fn squared_distance(
+        &self,
+        trail: &mut Trail<ExactPath>,
+        a: &FilteredPoint,
+        b: &FilteredPoint,
+        precision: u32,
+    ) -> Enclosure {
+        let (sides, path) = trail.split();
+        self.exact.squared_distance(path, sides, (a.name, b.name), precision)
     }
 
     fn deepest(&self) -> usize {

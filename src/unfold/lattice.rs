@@ -7,7 +7,7 @@
 
 use super::engine::{Engine, Trail};
 use super::group::{FiniteGroup, scaled_coordinates};
-use crate::number::{Real, Sign};
+use crate::number::{Enclosure, Real, Sign};
 use crate::table::{CornerId, SideId, Table, Vector};
 use rug::{Integer, Rational};
 
@@ -23,6 +23,7 @@ pub struct Lattice {
     steps: Vec<(u16, [i64; 2])>,
     image: Vec<[i64; 2]>,
     scale: Integer,
+    form: Real,
     deepest: usize,
 }
 
@@ -62,6 +63,7 @@ impl Lattice {
             steps: group.next.iter().copied().zip(shift).collect(),
             image,
             scale,
+            form: table.form().clone(),
             deepest,
         })
     }
@@ -138,6 +140,19 @@ impl Engine for Lattice {
     fn displacement(&self, _: &mut Trail<()>, a: &[i64; 2], b: &[i64; 2]) -> Vector {
         let [x, y] = minus(b, a);
         Vector::new(self.exact(x), self.exact(y))
+    }
+
+    fn squared_distance(
+        &self,
+        _: &mut Trail<()>,
+        a: &[i64; 2],
+        b: &[i64; 2],
+        precision: u32,
+    ) -> Enclosure {
+        let [x, y] = minus(b, a).map(|c| Integer::from(c as i128 * c as i128));
+        let square = Enclosure::from_integer(&x, precision)
+            .add(&self.form.enclosure(precision).mul_integer(&y));
+        square.div_integer(&self.scale).div_integer(&self.scale)
     }
 
     fn deepest(&self) -> usize {
