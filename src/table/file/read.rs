@@ -217,7 +217,12 @@ fn place_in_string(
     part: &Range<usize>,
 ) -> Range<usize> {
     let raw = &text[string.clone()];
-    let quotes = if raw.starts_with("\"\"\"") || raw.starts_with("'''") { 3 } else { 1 };
+    let mut quotes = if raw.starts_with("\"\"\"") || raw.starts_with("'''") { 3 } else { 1 };
+    // A line break right after three quotes is not part of the string.
+    if quotes == 3 {
+        let rest = &raw[3..];
+        quotes += if rest.starts_with("\r\n") { 2 } else { usize::from(rest.starts_with('\n')) };
+    }
     let start = string.start + quotes;
     if raw.get(quotes..quotes + content.len()) != Some(content) {
         return string.clone();
