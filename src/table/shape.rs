@@ -59,21 +59,21 @@ impl Cosines {
 pub fn regular(k: u32) -> Result<Shape, AdjoinFault> {
     assert!(k >= 3, "a polygon has at least three corners");
     let cosines = Cosines::new(k)?;
-    let cos = |j: u32| cosines.of(&Rational::from((j, k)));
-    // sin(2πj/k) / sin(2π/k) by s_{j+1} = 2c·s_j − s_{j−1}.
-    let twice = cos(1) * Real::from(2);
-    let mut heights = vec![Real::from(0), Real::from(1)];
+    let cosine = cosines.of(&Rational::from((1, k)));
+    let twice = &cosine * Real::from(2);
+    // cos(2πj/k), and sin(2πj/k)/sin(2π/k), both by a_{j+1} = 2c·a_j − a_{j−1}.
+    let mut points = vec![(Real::from(1), Real::from(0)), (cosine.clone(), Real::from(1))];
     for j in 2..k as usize {
-        heights.push(&twice * &heights[j - 1] - &heights[j - 2]);
+        let ((x, y), (x_before, y_before)) = (&points[j - 1], &points[j - 2]);
+        points.push((&twice * x - x_before, &twice * y - y_before));
     }
     let (unit, form) = if k.is_multiple_of(4) {
         let quarter = Rational::from((1, 4));
         (cosines.of(&(quarter - Rational::from((1, k)))), Real::from(1))
     } else {
-        let cosine = cos(1);
         without_square(Real::from(1) - &cosine * &cosine)
     };
-    let corners = (0..k).map(|j| Vector::new(cos(j), &heights[j as usize] * &unit)).collect();
+    let corners = points.into_iter().map(|(x, y)| Vector::new(x, y * &unit)).collect();
     Ok(Shape { corners, form })
 }
 
