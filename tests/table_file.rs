@@ -14,33 +14,108 @@ const BAD: &[(&str, usize, &[&str])] = &[
     ("unclosed-string", 1, &["not valid TOML", "quotes"]),
     ("unclosed-array", 2, &["not valid TOML", "brackets"]),
     ("duplicate-key", 2, &["not valid TOML"]),
-    ("unknown-key-near", 2, &["unknown key `corner`", "did you mean `corners`?"]),
-    ("unknown-key-case", 1, &["unknown key `Title`", "did you mean `title`?"]),
-    ("unknown-key-far", 2, &["unknown key `walls`", "known keys are"]),
+    (
+        "unknown-key-near",
+        2,
+        &["unknown key `corner`", "did you mean `corners`?"],
+    ),
+    (
+        "unknown-key-case",
+        1,
+        &["unknown key `Title`", "did you mean `title`?"],
+    ),
+    (
+        "unknown-key-far",
+        2,
+        &["unknown key `walls`", "known keys are"],
+    ),
     ("two-shapes", 2, &["`corners` and `regular`", "exactly one"]),
-    ("three-shapes", 2, &["`regular` and `triangle` and `corners`", "exactly one"]),
-    ("define", 3, &["`define` is reserved", "not supported in this version"]),
-    ("parameters", 2, &["`parameters` is reserved", "write the values out"]),
+    (
+        "three-shapes",
+        2,
+        &["`regular` and `triangle` and `corners`", "exactly one"],
+    ),
+    (
+        "define",
+        3,
+        &["`define` is reserved", "not supported in this version"],
+    ),
+    (
+        "parameters",
+        2,
+        &["`parameters` is reserved", "write the values out"],
+    ),
     ("outline", 1, &["`outline` is reserved", "corners"]),
     ("holes", 2, &["`holes` is reserved", "without holes"]),
-    ("title-number", 1, &["`title` must be a string", "an integer"]),
+    (
+        "title-number",
+        1,
+        &["`title` must be a string", "an integer"],
+    ),
     ("title-line-break", 1, &["line break", "about"]),
     ("about-array", 1, &["`about` must be a string"]),
-    ("corners-string", 1, &["`corners` must be an array", "a string"]),
+    (
+        "corners-string",
+        1,
+        &["`corners` must be an array", "a string"],
+    ),
     ("corners-empty", 2, &["from 3 to 255 corners", "has 0"]),
     ("corners-two", 1, &["this one has 2", "each corner"]),
     ("corners-many", 1, &["this one has 256"]),
-    ("corner-no-pair", 4, &["corner 1 (counting from 0) must be an array", "pair of numbers"]),
-    ("corner-three-coordinates", 4, &["corner 1 (counting from 0) has 3 coordinates"]),
-    ("corner-one-coordinate", 5, &["corner 2 (counting from 0) has 1 coordinates"]),
-    ("float-coordinate", 4, &["first coordinate of corner 1", "not exact", "\"0.5\""]),
-    ("float-exponent", 4, &["second coordinate of corner 1", "\"1e3\""]),
+    (
+        "corner-no-pair",
+        4,
+        &[
+            "corner 1 (counting from 0) must be an array",
+            "pair of numbers",
+        ],
+    ),
+    (
+        "corner-three-coordinates",
+        4,
+        &["corner 1 (counting from 0) has 3 coordinates"],
+    ),
+    (
+        "corner-one-coordinate",
+        5,
+        &["corner 2 (counting from 0) has 1 coordinates"],
+    ),
+    (
+        "float-coordinate",
+        4,
+        &["first coordinate of corner 1", "not exact", "\"0.5\""],
+    ),
+    (
+        "float-exponent",
+        4,
+        &["second coordinate of corner 1", "\"1e3\""],
+    ),
     ("float-infinite", 4, &["floating-point", "finite"]),
-    ("truth-coordinate", 4, &["must be a number", "a truth value"]),
+    (
+        "truth-coordinate",
+        4,
+        &["must be a number", "a truth value"],
+    ),
     ("date-coordinate", 4, &["must be a number", "a date"]),
-    ("expression-unknown-name", 4, &["first coordinate of corner 1", "unknown name `phi`", "known are"]),
+    (
+        "expression-unknown-name",
+        4,
+        &[
+            "first coordinate of corner 1",
+            "unknown name `phi`",
+            "known are",
+        ],
+    ),
     ("expression-pi", 4, &["transcendental", "355/113"]),
-    ("expression-division", 5, &["second coordinate of corner 2", "division by exact zero", "^^^^^^^^^^^^^"]),
+    (
+        "expression-division",
+        5,
+        &[
+            "second coordinate of corner 2",
+            "division by exact zero",
+            "^^^^^^^^^^^^^",
+        ],
+    ),
     ("expression-negative-root", 4, &["negative", "at least 0"]),
     ("expression-no-root", 4, &["no real root"]),
     ("expression-tie", 4, &["equally near"]),
@@ -48,50 +123,199 @@ const BAD: &[(&str, usize, &[&str])] = &[
     ("expression-empty", 4, &["empty", "write a number"]),
     ("expression-character", 4, &["unexpected character", "sqrt"]),
     ("expression-comma", 4, &["unexpected `,`", "decimal point"]),
-    ("expression-degrees", 4, &["rational multiple of `pi`", "cos(2/7*pi)"]),
+    (
+        "expression-degrees",
+        4,
+        &["rational multiple of `pi`", "cos(2/7*pi)"],
+    ),
     ("expression-tangent", 4, &["infinite"]),
     ("expression-degree", 4, &["degree 254", "at most 64"]),
     ("expression-degree-together", 4, &["degree", "at most 64"]),
-    ("expression-exponent", 4, &["exponent must be an integer", "sqrt"]),
+    (
+        "expression-exponent",
+        4,
+        &["exponent must be an integer", "sqrt"],
+    ),
     ("expression-escaped", 4, &["ends too early"]),
     ("expression-multiline", 3, &["missing before `*`"]),
     ("expression-nested", 4, &["nested deeper", "simplify"]),
-    ("form-zero", 2, &["plane form must be positive", "form = \"3\""]),
-    ("form-negative", 2, &["plane form must be positive", "-0.414"]),
-    ("form-with-regular", 2, &["`form` goes with `corners`", "remove this line"]),
-    ("form-with-triangle", 1, &["`form` goes with `corners`", "`triangle` chooses"]),
-    ("form-float", 2, &["the plane form is a floating-point number", "\"0.75\""]),
-    ("repeated-corner", 7, &["corners 1 and 4 (counting from 0) are the same point", "corner 1"]),
-    ("closed-by-hand", 6, &["corners 0 and 3", "closes by itself"]),
-    ("doubled-corner", 5, &["corners 1 and 2", "remove one of the two"]),
-    ("repeated-in-disguise", 5, &["corners 1 and 2", "same point"]),
-    ("straight-corner", 4, &["corner 1 (counting from 0) is straight", "remove corner 1, [\"1\", \"0\"]"]),
-    ("straight-corner-with-letters", 4, &["straight", "remove a letter, `q`"]),
-    ("straight-in-disguise", 4, &["corner 1 (counting from 0) is straight"]),
-    ("folded-corner", 4, &["at corner 1 (counting from 0) the boundary turns back", "side b", "side a"]),
-    ("sides-cross", 5, &["side a, from corner 0 to corner 1", "side c, from corner 2 to corner 3", "cross", "order"]),
-    ("sides-cross-named", 5, &["side w, from corner 0 to corner 1", "side y"]),
-    ("corner-on-side", 6, &["corner 3 (counting from 0) lies on side a, from corner 0 to corner 1", "must not touch"]),
+    (
+        "form-zero",
+        2,
+        &["plane form must be positive", "form = \"3\""],
+    ),
+    (
+        "form-negative",
+        2,
+        &["plane form must be positive", "-0.414"],
+    ),
+    (
+        "form-with-regular",
+        2,
+        &["`form` goes with `corners`", "remove this line"],
+    ),
+    (
+        "form-with-triangle",
+        1,
+        &["`form` goes with `corners`", "`triangle` chooses"],
+    ),
+    (
+        "form-float",
+        2,
+        &["the plane form is a floating-point number", "\"0.75\""],
+    ),
+    (
+        "repeated-corner",
+        7,
+        &[
+            "corners 1 and 4 (counting from 0) are the same point",
+            "corner 1",
+        ],
+    ),
+    (
+        "closed-by-hand",
+        6,
+        &["corners 0 and 3", "closes by itself"],
+    ),
+    (
+        "doubled-corner",
+        5,
+        &["corners 1 and 2", "remove one of the two"],
+    ),
+    (
+        "repeated-in-disguise",
+        5,
+        &["corners 1 and 2", "same point"],
+    ),
+    (
+        "straight-corner",
+        4,
+        &[
+            "corner 1 (counting from 0) is straight",
+            "remove corner 1, [\"1\", \"0\"]",
+        ],
+    ),
+    (
+        "straight-corner-with-letters",
+        4,
+        &["straight", "remove a letter, `q`"],
+    ),
+    (
+        "straight-in-disguise",
+        4,
+        &["corner 1 (counting from 0) is straight"],
+    ),
+    (
+        "folded-corner",
+        4,
+        &[
+            "at corner 1 (counting from 0) the boundary turns back",
+            "side b",
+            "side a",
+        ],
+    ),
+    (
+        "sides-cross",
+        5,
+        &[
+            "side a, from corner 0 to corner 1",
+            "side c, from corner 2 to corner 3",
+            "cross",
+            "order",
+        ],
+    ),
+    (
+        "sides-cross-named",
+        5,
+        &["side w, from corner 0 to corner 1", "side y"],
+    ),
+    (
+        "corner-on-side",
+        6,
+        &[
+            "corner 3 (counting from 0) lies on side a, from corner 0 to corner 1",
+            "must not touch",
+        ],
+    ),
     ("zero-area", 2, &["zero area", "off the line"]),
     ("pentagram", 5, &["cross"]),
     ("letters-few", 2, &["3 letters for 4 sides"]),
     ("letters-many", 2, &["4 letters for 3 sides"]),
-    ("letters-long", 2, &["letter of side 1 must be one character, this is 2"]),
-    ("letters-empty", 2, &["letter of side 1 must be one character, this is 0"]),
-    ("letters-repeated", 5, &["sides 0 and 2 have the same letter `a`", "not supported in this version"]),
-    ("letters-space", 2, &["cannot be the letter of side 1", "no space"]),
+    (
+        "letters-long",
+        2,
+        &["letter of side 1 must be one character, this is 2"],
+    ),
+    (
+        "letters-empty",
+        2,
+        &["letter of side 1 must be one character, this is 0"],
+    ),
+    (
+        "letters-repeated",
+        5,
+        &[
+            "sides 0 and 2 have the same letter `a`",
+            "not supported in this version",
+        ],
+    ),
+    (
+        "letters-space",
+        2,
+        &["cannot be the letter of side 1", "no space"],
+    ),
     ("letters-comma", 2, &["`,` cannot be the letter", "comma"]),
-    ("letters-quote", 2, &["cannot be the letter of side 1", "quote"]),
-    ("letters-tab", 2, &["cannot be the letter of side 1", "printable"]),
-    ("letters-invisible", 2, &["cannot be the letter of side 1", "printable"]),
-    ("letters-number", 2, &["letter of side 0 must be a string", "an integer"]),
-    ("letters-string", 2, &["`sides` must be an array", "one character for each side"]),
-    ("triangle-two", 1, &["3 angles, here are 2", "in proportion"]),
-    ("triangle-zero", 1, &["angle at corner 1 (counting from 0) must be positive"]),
-    ("triangle-negative", 1, &["angle at corner 2 (counting from 0) must be positive"]),
-    ("triangle-irrational", 1, &["rational proportion", "corners"]),
+    (
+        "letters-quote",
+        2,
+        &["cannot be the letter of side 1", "quote"],
+    ),
+    (
+        "letters-tab",
+        2,
+        &["cannot be the letter of side 1", "printable"],
+    ),
+    (
+        "letters-invisible",
+        2,
+        &["cannot be the letter of side 1", "printable"],
+    ),
+    (
+        "letters-number",
+        2,
+        &["letter of side 0 must be a string", "an integer"],
+    ),
+    (
+        "letters-string",
+        2,
+        &["`sides` must be an array", "one character for each side"],
+    ),
+    (
+        "triangle-two",
+        1,
+        &["3 angles, here are 2", "in proportion"],
+    ),
+    (
+        "triangle-zero",
+        1,
+        &["angle at corner 1 (counting from 0) must be positive"],
+    ),
+    (
+        "triangle-negative",
+        1,
+        &["angle at corner 2 (counting from 0) must be positive"],
+    ),
+    (
+        "triangle-irrational",
+        1,
+        &["rational proportion", "corners"],
+    ),
     ("triangle-float", 1, &["angle at corner 1", "\"2.5\""]),
-    ("triangle-large-field", 1, &["cannot be used", "degree 510", "common denominator"]),
+    (
+        "triangle-large-field",
+        1,
+        &["cannot be used", "degree 510", "common denominator"],
+    ),
     ("triangle-string", 1, &["`triangle` must be an array"]),
     ("regular-two", 1, &["out of range", "from 3 to 255"]),
     ("regular-negative", 1, &["out of range"]),
@@ -126,8 +350,14 @@ fn every_bad_table_is_refused_at_its_line_with_its_reason() {
         let path = folder("tests/bad_tables").join(format!("{name}.toml"));
         let start = Instant::now();
         let error = load(&path).expect_err(name);
-        assert!(start.elapsed() < Duration::from_secs(2), "{name} took {:?}", start.elapsed());
-        let TableFileError::Fault(diagnostic) = &error else { panic!("{name}: {error}") };
+        assert!(
+            start.elapsed() < Duration::from_secs(2),
+            "{name} took {:?}",
+            start.elapsed()
+        );
+        let TableFileError::Fault(diagnostic) = &error else {
+            panic!("{name}: {error}")
+        };
         let shown = error.to_string();
         assert_eq!(diagnostic.line(), *line, "{name}\n{shown}");
         for piece in *pieces {
@@ -137,7 +367,11 @@ fn every_bad_table_is_refused_at_its_line_with_its_reason() {
         assert!(shown.contains(&place), "{name}: no {place} in\n{shown}");
         assert!(!diagnostic.help.is_empty(), "{name}");
         let first = diagnostic.message.chars().next().unwrap();
-        assert!(!first.is_uppercase() && !diagnostic.message.ends_with('.'), "{}", diagnostic.message);
+        assert!(
+            !first.is_uppercase() && !diagnostic.message.ends_with('.'),
+            "{}",
+            diagnostic.message
+        );
         assert!(!shown.contains('\u{1b}'), "{name}: colours");
     }
 }
@@ -160,10 +394,23 @@ fn every_polygon_of_the_shelf_loads_in_less_than_a_second() {
     for path in files {
         let start = Instant::now();
         let loaded = load(&path).unwrap_or_else(|e| panic!("{e}"));
-        assert!(start.elapsed() < Duration::from_secs(1), "{} {:?}", path.display(), start.elapsed());
+        assert!(
+            start.elapsed() < Duration::from_secs(1),
+            "{} {:?}",
+            path.display(),
+            start.elapsed()
+        );
         assert!(loaded.notices.is_empty(), "{:?}", loaded.notices);
-        assert!(loaded.text.contains("about = "), "{} has no reason", path.display());
-        assert!(index.contains(&format!("[{}]", loaded.stem)), "{} is not in the index", loaded.stem);
+        assert!(
+            loaded.text.contains("about = "),
+            "{} has no reason",
+            path.display()
+        );
+        assert!(
+            index.contains(&format!("[{}]", loaded.stem)),
+            "{} is not in the index",
+            loaded.stem
+        );
         assert_ne!(loaded.table.title(), loaded.stem);
     }
 }
@@ -209,7 +456,11 @@ fn the_shelf_has_the_fields_and_forms_that_it_should() {
         assert_eq!(loaded.table.field().degree(), degree, "{name}");
         assert_eq!(*loaded.table.form(), Real::from(form), "{name}");
     }
-    for (name, degree) in [("regular-pentagon", 2), ("heptagonal-triangle", 3), ("regular-15-gon", 4)] {
+    for (name, degree) in [
+        ("regular-pentagon", 2),
+        ("heptagonal-triangle", 3),
+        ("regular-15-gon", 4),
+    ] {
         let loaded = load(&folder("polygons").join(format!("{name}.toml"))).unwrap();
         assert_eq!(loaded.table.field().degree(), degree, "{name}");
     }
@@ -233,23 +484,31 @@ fn the_three_ways_to_write_a_triangle_agree() {
 
 #[test]
 fn roots_that_cancel_leave_a_rational_table() {
-    let loaded = parsed("corners = [[0, 0], [\"sqrt(2)^2\", 0], [0, \"cos(pi/5)*sqrt(5) - 5/4 - sqrt(5)/4 + 1\"]]");
+    let loaded = parsed(
+        "corners = [[0, 0], [\"sqrt(2)^2\", 0], [0, \"cos(pi/5)*sqrt(5) - 5/4 - sqrt(5)/4 + 1\"]]",
+    );
     assert!(loaded.table.field().is_rational());
 }
 
 #[test]
 fn plain_integers_decimals_and_letters_are_understood() {
-    let loaded = parsed("title = \"Loft\"\ncorners = [[0, 0], [1_000, 0x0], [\"0.25\", \"1e3\"]]\nsides = ['α', '\\', '#']\n");
+    let loaded = parsed(
+        "title = \"Loft\"\ncorners = [[0, 0], [1_000, 0x0], [\"0.25\", \"1e3\"]]\nsides = ['α', '\\', '#']\n",
+    );
     assert_eq!(loaded.table.title(), "Loft");
     assert_eq!(loaded.table.letters(), ['α', '\\', '#']);
     assert_eq!(loaded.table.corners()[1].x, Real::from(1000));
-    assert_eq!(loaded.table.corners()[2].x, Real::from(rug::Rational::from((1, 4))));
+    assert_eq!(
+        loaded.table.corners()[2].x,
+        Real::from(rug::Rational::from((1, 4)))
+    );
     assert_eq!(loaded.stem, "quay");
 }
 
 #[test]
 fn the_title_defaults_to_the_stem_and_letters_to_the_alphabet() {
-    let loaded = parse("plans/sail-loft.toml", "regular = 255").map(|l| l.table.title().to_string());
+    let loaded =
+        parse("plans/sail-loft.toml", "regular = 255").map(|l| l.table.title().to_string());
     // 255 = 3·5·17 has degree φ(255)/2 = 64, the largest.
     assert_eq!(loaded.unwrap(), "sail-loft");
     let loaded = parsed("regular = \"3+2\"");
@@ -287,14 +546,26 @@ fn files_that_are_no_text_are_refused() {
         load(&path).unwrap_err()
     };
     let binary = write("binary.toml", &[b'a', 0xff, 0xfe, 0]);
-    assert!(matches!(binary, TableFileError::NotText { offset: 1, .. }), "{binary}");
+    assert!(
+        matches!(binary, TableFileError::NotText { offset: 1, .. }),
+        "{binary}"
+    );
     let zero = write("zero.toml", b"regular = 4\0");
-    assert!(matches!(zero, TableFileError::NotText { offset: 11, .. }), "{zero}");
+    assert!(
+        matches!(zero, TableFileError::NotText { offset: 11, .. }),
+        "{zero}"
+    );
     let large = write("large.toml", &vec![b'#'; LARGEST_FILE + 1]);
     assert!(matches!(large, TableFileError::TooLarge { .. }), "{large}");
     let missing = load(&scratch.path().join("missing.toml")).unwrap_err();
-    assert!(matches!(missing, TableFileError::Unreadable { .. }) && missing.to_string().contains("missing.toml"));
-    assert!(matches!(load(scratch.path()), Err(TableFileError::Unreadable { .. })));
+    assert!(
+        matches!(missing, TableFileError::Unreadable { .. })
+            && missing.to_string().contains("missing.toml")
+    );
+    assert!(matches!(
+        load(scratch.path()),
+        Err(TableFileError::Unreadable { .. })
+    ));
 }
 
 #[test]
@@ -318,7 +589,9 @@ fn no_change_of_one_byte_makes_the_reader_panic() {
                 }
             }
         }
-        let Some(cut) = good.get(..place) else { continue };
+        let Some(cut) = good.get(..place) else {
+            continue;
+        };
         assert!(parse("q.toml", cut).is_err() || cut.contains("]]"), "{cut}");
     }
 }

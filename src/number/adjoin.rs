@@ -16,13 +16,13 @@
 //! Cost: stage 4 dominates, n³ operations on integers of about n times the bits of γ's coefficients;
 //! stage 2 can need factoring a polynomial of degree d·deg f (see [`factor`](super::factor)).
 
-use super::characteristic::characteristic_polynomial;
+use super::algebra::Algebra;
 use super::enclosure::Enclosure;
 use super::factor::{FactorFault, factor, is_squarefree};
 use super::field::{Field, LARGEST_DEGREE};
 use super::modular::{primes_from, reachable_degrees};
 use super::poly;
-use super::real::{Real, reduce_powers, solve_fraction_free};
+use super::real::Real;
 use super::tiers::Sign;
 use rug::ops::Pow;
 use rug::{Integer, Rational};
@@ -46,9 +46,19 @@ pub struct Adjoined {
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum AdjoinFault {
     /// The field would be too large.
-    #[error("the numbers need a field of degree {degree} over the rationals, and at most {LARGEST_DEGREE} is supported")]
+    #[error(
+        "the numbers need a field of degree {degree} or more over the rationals, and at most {LARGEST_DEGREE} is supported"
+    )]
     DegreeTooLarge {
-        /// The degree that would be needed, or that of a polynomial that would have to be factored.
+        /// A degree that would be needed at least.
+        degree: usize,
+    },
+    /// A polynomial would have to be factored that is too large.
+    #[error(
+        "whether these numbers need a larger field is decided by factoring a polynomial of degree {degree}, and at most {LARGEST_NORM} is supported"
+    )]
+    NormTooLarge {
+        /// The degree of the polynomial.
         degree: usize,
     },
     /// Factoring gave up.
@@ -73,7 +83,9 @@ pub fn adjoin_root(
     polynomial: &[Real],
     approximate: &dyn Fn(u32) -> Enclosure,
 ) -> Result<Adjoined, AdjoinFault> {
-    let f = squarefree(monic(polynomial.iter().map(|c| c.lifted_to(field)).collect()));
+    let f = squarefree(monic(
+        polynomial.iter().map(|c| c.lifted_to(field)).collect(),
+    ));
     assert!(f.len() >= 2, "a polynomial with a root is not constant");
     let first_scale = integral_scale(&f);
     let near_first = |bits: u32| enlarged(approximate, &first_scale, bits);
@@ -108,7 +120,11 @@ pub fn adjoin_root(
     };
     let beta = (new_field.generator() - Real::from(j) * &old_generator)
         * Real::from(Rational::from((1, k)));
-    let beta = if field.is_rational() { new_field.generator() } else { beta };
+    let beta = if field.is_rational() {
+        new_field.generator()
+    } else {
+        beta
+    };
     Ok(Adjoined {
         field: new_field,
         old_generator,
@@ -126,13 +142,19 @@ pub fn embed(element: &Real, image: &Real) -> Real {
         .iter()
         .rev()
         .fold(Real::from(0), |sum, c| sum * image + Real::from(c.clone()));
-    numerator * Real::from(Rational::from((Integer::from(1), element.denominator().clone())))
+    numerator
+        * Real::from(Rational::from((
+            Integer::from(1),
+            element.denominator().clone(),
+        )))
 }
 
 /// An enclosure of s times the number that is approximated.
 fn enlarged(approximate: &dyn Fn(u32) -> Enclosure, s: &Rational, bits: u32) -> Enclosure {
     let extra = s.numer().significant_bits();
-    approximate(bits + extra).mul_integer(s.numer()).div_integer(s.denom())
+    approximate(bits + extra)
+        .mul_integer(s.numer())
+        .div_integer(s.denom())
 }
 
 /// An enclosure of jθ + kβ.
@@ -141,9 +163,15 @@ fn combined(theta: &Real, j: i64, k: i64, beta: &dyn Fn(u32) -> Enclosure, bits:
     if j == 0 {
         return part;
     }
-    let theta = theta.enclosure_within(bits + 8).mul_integer(&Integer::from(j));
+    let theta = theta
+        .enclosure_within(bits + 8)
+        .mul_integer(&Integer::from(j));
     // The wider precision first, so that nothing is lost in the sum.
-    if theta.precision() >= part.precision() { theta.add(&part) } else { part.add(&theta) }
+    if theta.precision() >= part.precision() {
+        theta.add(&part)
+    } else {
+        part.add(&theta)
+    }
 }
 
 // Polynomials over K, monic unless said otherwise, constant term first.
@@ -189,10 +217,18 @@ fn squarefree(f: Vec<Real>) -> Vec<Real> {
     if f.len() <= 2 {
         return f;
     }
-    let slope: Vec<Real> =
-        f.iter().enumerate().skip(1).map(|(i, c)| c * Real::from(i as i64)).collect();
+    let slope: Vec<Real> = f
+        .iter()
+        .enumerate()
+        .skip(1)
+        .map(|(i, c)| c * Real::from(i as i64))
+        .collect();
     let common = common_divisor(&f, &slope);
-    if common.len() <= 1 { f } else { divide(&f, &common).0 }
+    if common.len() <= 1 {
+        f
+    } else {
+        divide(&f, &common).0
+    }
 }
 
 /// The exponent of a prime in a nonzero element's coordinates: the largest e with all of them divisible
@@ -217,12 +253,18 @@ fn integral_scale(f: &[Real]) -> Rational {
         // s^i·c_{m−i} must have exponent ≥ 0 at q for each i.
         let needed = (1..=m)
             .filter(|i| !f[m - i].is_zero())
-            .map(|i| (-exponent(&f[m - i], q)).div_euclid(i as i64)
-                + i64::from((-exponent(&f[m - i], q)).rem_euclid(i as i64) != 0))
+            .map(|i| {
+                (-exponent(&f[m - i], q)).div_euclid(i as i64)
+                    + i64::from((-exponent(&f[m - i], q)).rem_euclid(i as i64) != 0)
+            })
             .max()
             .unwrap_or(0);
         let power = Rational::from(Integer::from(q.pow(needed.unsigned_abs() as u32)));
-        if needed >= 0 { scale *= power } else { scale /= power }
+        if needed >= 0 {
+            scale *= power
+        } else {
+            scale /= power
+        }
     };
     let (mut rest_den, mut rest_content) = (den.clone(), content.clone());
     for q in small_primes() {
@@ -249,7 +291,9 @@ fn integral_scale(f: &[Real]) -> Rational {
 }
 
 fn small_primes() -> impl Iterator<Item = u32> {
-    std::iter::once(2).chain(primes_from(3).map(|p| p.prime as u32)).take_while(|q| *q < 20_000)
+    std::iter::once(2)
+        .chain(primes_from(3).map(|p| p.prime as u32))
+        .take_while(|q| *q < 20_000)
 }
 
 /// The polynomial whose roots are s times those of f.
@@ -261,7 +305,10 @@ fn scaled(f: &[Real], s: &Rational) -> Vec<Real> {
         *c = &*c * &power;
         power = &power * &s;
     }
-    debug_assert!(result.iter().all(|c| *c.denominator() == 1), "integral coefficients");
+    debug_assert!(
+        result.iter().all(|c| *c.denominator() == 1),
+        "integral coefficients"
+    );
     result
 }
 
@@ -276,7 +323,7 @@ fn irreducible_factor(
     }
     let degree = field.degree() * (f.len() - 1);
     if degree > LARGEST_NORM {
-        return Err(AdjoinFault::DegreeTooLarge { degree });
+        return Err(AdjoinFault::NormTooLarge { degree });
     }
     let algebra = Algebra::new(field, &f);
     let theta = field.generator();
@@ -305,7 +352,9 @@ fn vanishing_factor(
         factors.retain(|h| evaluate_enclosed(h, &at).contains_zero());
         bits *= 2;
     }
-    factors.pop().expect("one of the factors vanishes at the root")
+    factors
+        .pop()
+        .expect("one of the factors vanishes at the root")
 }
 
 fn evaluate_enclosed(p: &[Integer], at: &Enclosure) -> Enclosure {
@@ -333,7 +382,10 @@ fn isolating_interval(
                 return (lo, hi);
             }
             // The root itself is the lower end, which the interval (lo, hi] leaves out.
-            return (lo - Rational::from((Integer::from(1), Integer::from(1) << bits)), hi);
+            return (
+                lo - Rational::from((Integer::from(1), Integer::from(1) << bits)),
+                hi,
+            );
         }
         bits *= 2;
     }
@@ -357,8 +409,13 @@ fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
         if !prime.is_squarefree(&image) {
             continue;
         }
-        let Some(root) = prime.some_root(&image) else { continue };
-        let f_image: Vec<u64> = f.iter().map(|c| prime.evaluate(c.coordinates(), root)).collect();
+        let Some(root) = prime.some_root(&image) else {
+            continue;
+        };
+        let f_image: Vec<u64> = f
+            .iter()
+            .map(|c| prime.evaluate(c.coordinates(), root))
+            .collect();
         if !prime.is_squarefree(&f_image) {
             continue;
         }
@@ -380,138 +437,6 @@ fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
     false
 }
 
-/// K\[x\]/f for a monic f with coefficients in ℤ[θ]. Elements are coordinates over θ^a·x^b at place
-/// a + d·b; those with integer coordinates form a ring.
-struct Algebra<'a> {
-    field: &'a Field,
-    /// Integer coordinates of the coefficients below the leading one.
-    f: Vec<Vec<Integer>>,
-}
-
-impl<'a> Algebra<'a> {
-    fn new(field: &'a Field, f: &[Real]) -> Algebra<'a> {
-        let below = &f[..f.len() - 1];
-        debug_assert!(below.iter().all(|c| *c.denominator() == 1), "coefficients in ℤ[θ]");
-        Algebra {
-            field,
-            f: below.iter().map(|c| c.lifted_to(field).coordinates().to_vec()).collect(),
-        }
-    }
-
-    fn dimension(&self) -> usize {
-        self.field.degree() * self.f.len()
-    }
-
-    fn times_theta(&self, element: &[Integer]) -> Vec<Integer> {
-        let d = self.field.degree();
-        if d == 1 {
-            let theta = Integer::from(-&self.field.minimal_polynomial()[0]);
-            return element.iter().map(|c| Integer::from(c * &theta)).collect();
-        }
-        let shifted = |part: &[Integer]| {
-            let mut longer = vec![Integer::new()];
-            longer.extend_from_slice(part);
-            reduce_powers(self.field, longer)
-        };
-        element.chunks(d).flat_map(shifted).collect()
-    }
-
-    fn times_x(&self, element: &[Integer]) -> Vec<Integer> {
-        let d = self.field.degree();
-        let top = &element[element.len() - d..];
-        let mut result = vec![Integer::new(); d];
-        result.extend_from_slice(&element[..element.len() - d]);
-        if top.iter().all(|c| *c == 0) {
-            return result;
-        }
-        for (place, coefficient) in result.chunks_mut(d).zip(&self.f) {
-            let product = reduce_powers(self.field, poly::multiply(top, coefficient));
-            for (c, p) in place.iter_mut().zip(product) {
-                *c -= p;
-            }
-        }
-        result
-    }
-
-    /// The product with jθ + kx.
-    fn times_gamma(&self, element: &[Integer], j: i64, k: i64) -> Vec<Integer> {
-        let mut result: Vec<Integer> = self.times_x(element).into_iter().map(|c| c * k).collect();
-        if j != 0 {
-            for (c, t) in result.iter_mut().zip(self.times_theta(element)) {
-                *c += t * j;
-            }
-        }
-        result
-    }
-
-    fn unit(&self, place: usize) -> Vec<Integer> {
-        let mut unit = vec![Integer::new(); self.dimension()];
-        unit[place] = Integer::from(1);
-        unit
-    }
-
-    /// The characteristic polynomial of multiplication by jθ + kx.
-    fn characteristic(&self, j: i64, k: i64) -> Vec<Integer> {
-        // Rows instead of columns: the transpose has the same characteristic polynomial.
-        let rows: Vec<_> =
-            (0..self.dimension()).map(|i| self.times_gamma(&self.unit(i), j, k)).collect();
-        characteristic_polynomial(&rows)
-    }
-
-    /// h(x + kθ) modulo f, as a polynomial over K.
-    fn evaluate(&self, h: &[Integer], k: i64) -> Vec<Real> {
-        let mut value = vec![Integer::new(); self.dimension()];
-        for c in h.iter().rev() {
-            value = self.times_gamma(&value, k, 1);
-            value[0] += c;
-        }
-        let element = |part: &[Integer]| {
-            Real::from_coordinates(self.field, part.to_vec(), Integer::from(1))
-        };
-        trim(value.chunks(self.field.degree()).map(element).collect())
-    }
-
-    /// (j, k, minimal polynomial) of a generator jθ + kx of this field (f irreducible), with the
-    /// smallest coefficients among the first few choices that generate. The choices never run out: the
-    /// ones that fail lie on finitely many lines through the origin.
-    fn generator(&self) -> (i64, i64, Vec<Integer>) {
-        if self.field.is_rational() {
-            return (0, 1, self.characteristic(0, 1));
-        }
-        let size = |p: &[Integer]| p.iter().map(|c| c.clone().abs()).max();
-        let first = [(0, 1), (1, 1), (1, -1)];
-        let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
-        let tried = |(j, k): (i64, i64)| {
-            let p = self.characteristic(j, k);
-            is_squarefree(&p).then_some((j, k, p))
-        };
-        first
-            .into_iter()
-            .filter_map(tried)
-            .min_by_key(|(_, _, p)| size(p))
-            .or_else(|| more.into_iter().find_map(tried))
-            .expect("almost every choice generates")
-    }
-
-    /// θ as a polynomial in γ = jθ + kx, the generator of `field`.
-    fn old_generator(&self, j: i64, k: i64, field: &Field) -> Real {
-        let n = self.dimension();
-        let mut matrix = vec![vec![Integer::new(); n + 1]; n];
-        let mut power = self.unit(0);
-        for column in 0..n {
-            for (row, c) in matrix.iter_mut().zip(&power) {
-                row[column] = c.clone();
-            }
-            if column + 1 < n {
-                power = self.times_gamma(&power, j, k);
-            }
-        }
-        matrix[1][n] = Integer::from(1);
-        let (numerators, denominator) = solve_fraction_free(matrix);
-        Real::from_coordinates(field, numerators, denominator)
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -528,7 +453,10 @@ mod tests {
         let mut roots: Vec<Real> = Vec::new();
         for &n in numbers {
             let grown = with_sqrt(&field, &Real::from(n));
-            roots = roots.iter().map(|r| embed(r, &grown.old_generator)).collect();
+            roots = roots
+                .iter()
+                .map(|r| embed(r, &grown.old_generator))
+                .collect();
             roots.push(grown.root);
             field = grown.field;
         }
@@ -583,8 +511,14 @@ mod tests {
     fn a_cosine_joins_a_square_root() {
         let (field, roots) = sqrt_tower(&[5]);
         let adjoin = |field: &Field, q: u32| {
-            let f: Vec<Real> = cosine::minimal_polynomial(q).into_iter().map(Real::from).collect();
-            adjoin_root(field, &f, &|bits| cosine::twice_cosine_enclosure(1, q, bits)).unwrap()
+            let f: Vec<Real> = cosine::minimal_polynomial(q)
+                .into_iter()
+                .map(Real::from)
+                .collect();
+            adjoin_root(field, &f, &|bits| {
+                cosine::twice_cosine_enclosure(1, q, bits)
+            })
+            .unwrap()
         };
         let seven = adjoin(&field, 7);
         assert_eq!(seven.field.degree(), 6);
@@ -592,7 +526,10 @@ mod tests {
         // 2cos(2π/5) = (√5 − 1)/2 is there already; 2cos(2π/20) only doubles the degree.
         let five = adjoin(&field, 5);
         assert!(five.field.same(&field));
-        assert_eq!(five.root, (&roots[0] - Real::from(1)) * Real::from(Rational::from((1, 2))));
+        assert_eq!(
+            five.root,
+            (&roots[0] - Real::from(1)) * Real::from(Rational::from((1, 2)))
+        );
         let twenty = adjoin(&field, 20);
         assert_eq!(twenty.field.degree(), 4);
         let expected = 2.0 * (std::f64::consts::TAU / 20.0).cos();
@@ -637,6 +574,9 @@ mod tests {
         (f[0], f[33]) = (Real::from(-3), Real::from(1));
         let near = |bits: u32| Enclosure::from_integer(&Integer::from(1), bits);
         let refused = adjoin_root(&grown.field, &f, &near);
-        assert!(matches!(refused, Err(AdjoinFault::DegreeTooLarge { degree: 66 })), "{refused:?}");
+        assert!(
+            matches!(refused, Err(AdjoinFault::DegreeTooLarge { degree: 66 })),
+            "{refused:?}"
+        );
     }
 }

@@ -14,6 +14,7 @@
 //! - [`tiers`]: counts of how often each level of arithmetic decided a sign.
 
 pub mod adjoin;
+mod algebra;
 mod characteristic;
 pub mod cosine;
 pub mod enclosure;
