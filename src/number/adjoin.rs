@@ -20,7 +20,7 @@ use super::algebra::Algebra;
 use super::enclosure::Enclosure;
 use super::factor::{FactorFault, factor, is_squarefree};
 use super::field::{Field, LARGEST_DEGREE};
-use super::modular::{primes_from, reachable_degrees};
+use super::modular::{PrimeField, primes_from, reachable_degrees};
 use super::poly;
 use super::real::Real;
 use super::tiers::Sign;
@@ -83,7 +83,7 @@ pub fn adjoin_root(
     polynomial: &[Real],
     approximate: &dyn Fn(u32) -> Enclosure,
 ) -> Result<Adjoined, AdjoinFault> {
-    let f = squarefree(monic(
+    let f = squarefree(field, monic(
         polynomial.iter().map(|c| c.lifted_to(field)).collect(),
     ));
     assert!(f.len() >= 2, "a polynomial with a root is not constant");
@@ -186,7 +186,10 @@ fn trim(mut f: Vec<Real>) -> Vec<Real> {
 fn monic(f: Vec<Real>) -> Vec<Real> {
     let f = trim(f);
     let Some(lead) = f.last() else { return f };
-    let inverse = lead.inverse().expect("a leading coefficient is not zero");
+    let inverse = match lead.to_rational() {
+        Some(value) => Real::from(value.recip()),
+        None => lead.inverse().expect("a leading coefficient is not zero"),
+    };
     f.iter().map(|c| c * &inverse).collect()
 }
 
@@ -213,8 +216,11 @@ fn common_divisor(a: &[Real], b: &[Real]) -> Vec<Real> {
     a
 }
 
-fn squarefree(f: Vec<Real>) -> Vec<Real> {
-    if f.len() <= 2 {
+/// The product of the distinct irreducible factors of a monic polynomial.
+fn squarefree(field: &Field, f: Vec<Real>) -> Vec<Real> {
+    // Squarefree modulo a prime where the leading coefficient stays 1 proves it; the common divisor over K
+    // would need inverses of large elements.
+    if f.len() <= 2 || images(field, &f).take(4).any(|(p, image)| p.is_squarefree(&image)) {
         return f;
     }
     let slope: Vec<Real> = f
@@ -229,6 +235,34 @@ fn squarefree(f: Vec<Real>) -> Vec<Real> {
     } else {
         divide(&f, &common).0
     }
+}
+
+/// Images of a monic f modulo primes of degree one of K: at a prime p where the minimal polynomial of θ is
+/// squarefree modulo p and has a root r there, θ ↦ r extends to the elements that are integral at p (p does
+/// not divide the index of ℤ[θ]). Only the first few thousand primes are looked at.
+fn images<'a>(
+    field: &'a Field,
+    f: &'a [Real],
+) -> impl Iterator<Item = (PrimeField, Vec<u64>)> + 'a {
+    const PRIMES_SCANNED: usize = 3000;
+    let minimal = field.minimal_polynomial();
+    primes_from(211)
+        .take(PRIMES_SCANNED)
+        .filter_map(move |prime| {
+            let image = prime.reduce_poly(minimal);
+            if !prime.is_squarefree(&image) {
+                return None;
+            }
+            let root = prime.some_root(&image)?;
+            let at_root = |c: &Real| {
+                let den = prime.reduce(c.denominator());
+                (den != 0).then(|| {
+                    prime.mul(prime.evaluate(c.coordinates(), root), prime.inverse(den))
+                })
+            };
+            let image = f.iter().map(at_root).collect::<Option<Vec<u64>>>()?;
+            Some((prime, image))
+        })
 }
 
 /// The exponent of a prime in a nonzero element's coordinates: the largest e with all of them divisible
@@ -392,35 +426,16 @@ fn isolating_interval(
 }
 
 /// True when the degrees of the factors of f modulo primes of degree one of K leave no room for a
-/// factor over K. False means nothing.
-///
-/// At a prime p where the minimal polynomial of θ is squarefree modulo p and has a root r there, θ ↦ r
-/// extends to the elements integral at p (p does not divide the index of ℤ[θ]), and the degrees of a
-/// monic factor of f over K are sums of degrees of factors of the image.
+/// factor over K: the degree of a monic factor of f is a sum of degrees of factors of each image. False
+/// means nothing.
 fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
-    const PRIMES_SCANNED: usize = 3000;
     const PRIMES_USED: usize = 32;
     let m = f.len() - 1;
-    let minimal = field.minimal_polynomial();
     let mut allowed = vec![true; m + 1];
-    let mut used = 0;
-    for prime in primes_from(211).take(PRIMES_SCANNED) {
-        let image = prime.reduce_poly(minimal);
-        if !prime.is_squarefree(&image) {
-            continue;
-        }
-        let Some(root) = prime.some_root(&image) else {
-            continue;
-        };
-        let f_image: Vec<u64> = f
-            .iter()
-            .map(|c| prime.evaluate(c.coordinates(), root))
-            .collect();
-        if !prime.is_squarefree(&f_image) {
-            continue;
-        }
+    let good = images(field, f).filter(|(prime, image)| prime.is_squarefree(image));
+    for (prime, image) in good.take(PRIMES_USED) {
         let degrees = prime
-            .distinct_degrees(&f_image)
+            .distinct_degrees(&image)
             .into_iter()
             .flat_map(|(product, d)| std::iter::repeat_n(d, (product.len() - 1) / d));
         for (kept, reached) in allowed.iter_mut().zip(reachable_degrees(m, degrees)) {
@@ -428,10 +443,6 @@ fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
         }
         if !allowed[1..m].contains(&true) {
             return true;
-        }
-        used += 1;
-        if used == PRIMES_USED {
-            break;
         }
     }
     false

@@ -178,6 +178,23 @@ pub fn multiple_angle(twice_cosine: &Real, j: u32) -> Real {
     current
 }
 
+/// V_j as a polynomial, constant term first.
+pub fn multiple_angle_polynomial(j: u32) -> Vec<Real> {
+    let (mut before, mut current) = (vec![Real::from(2)], vec![Real::from(0), Real::from(1)]);
+    if j == 0 {
+        return before;
+    }
+    for _ in 1..j {
+        let mut next = vec![Real::from(0)];
+        next.extend_from_slice(&current);
+        for (c, b) in next.iter_mut().zip(&before) {
+            *c -= b.clone();
+        }
+        before = std::mem::replace(&mut current, next);
+    }
+    current
+}
+
 /// An enclosure of 2cos(2πp/q) for 0 ≤ p/q ≤ 1/2, of width at most about 2^−bits.
 ///
 /// The cosine falls on \[0, π\], so the ends of an enclosure of the angle give those of the cosine; each is

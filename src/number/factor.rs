@@ -24,7 +24,7 @@ use rug::Integer;
 use thiserror::Error;
 
 /// The most products of lifted factors that are tried: a few seconds of work.
-const MOST_PRODUCTS: u64 = 1 << 26;
+const MOST_PRODUCTS: u64 = 1 << 25;
 
 /// What forming one product counts for in that budget.
 const PRODUCT_COST: u64 = 1 << 14;

@@ -4,7 +4,7 @@ use super::parser::{Kind, Node};
 use super::{Evaluator, ExpressionFault, LARGEST_EXPONENT, MOST_BITS, root};
 use crate::number::adjoin::{AdjoinFault, Adjoined, adjoin_root};
 use crate::number::cosine;
-use crate::number::{Real, Sign};
+use crate::number::{Field, Real, Sign};
 use rug::{Integer, Rational};
 use std::ops::Range;
 
@@ -335,9 +335,8 @@ fn cosine(evaluator: &mut Evaluator, turns: &Rational, span: &Range<usize>) -> O
 
 /// 2cos(2π/q) in the evaluator's field, grown if need be.
 fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> {
-    let rationals = crate::number::Field::rationals();
     if cosine::cosine_degree(q) == 1 {
-        return Ok(cosine::generator_of(&rationals, q));
+        return Ok(cosine::generator_of(&Field::rationals(), q));
     }
     let known = evaluator
         .cosines
@@ -363,16 +362,46 @@ fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> 
         evaluator.pure_cosine = Some(q);
         generator
     } else {
-        let polynomial: Vec<Real> = cosine::minimal_polynomial(q)
-            .into_iter()
-            .map(Real::from)
-            .collect();
+        let polynomial = relative_polynomial(evaluator, q)?;
         let approximate = |bits: u32| cosine::twice_cosine_enclosure(1, q, bits);
         let grown = adjoin_root(&evaluator.field, &polynomial, &approximate)?;
         evaluator.grow(grown)
     };
     evaluator.cosines.insert(q, generator.clone());
     Ok(generator)
+}
+
+/// A polynomial over the evaluator's field with the root 2cos(2π/q), of small degree: the field grows by
+/// the cosines of divisors of q first, so that each step is small.
+///
+/// - q prime: the minimal polynomial.
+/// - q = pᵉ: V_p(x) = 2cos(2π/pᵉ⁻¹), of degree p.
+/// - q = q₁q₂ coprime, 1/q ≡ i/q₁ + j/q₂: with u = 2cos(2πi/q₁) and v = 2cos(2πj/q₂) the two numbers
+///   2cos(a ± b) have sum uv and product u² + v² − 4.
+fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, AdjoinFault> {
+    let prime = (2..).find(|p| q.is_multiple_of(*p)).expect("q is more than 1");
+    let mut part = prime;
+    while q.is_multiple_of(part * prime) {
+        part *= prime;
+    }
+    let rest = q / part;
+    if rest == 1 && part == prime {
+        return Ok(cosine::minimal_polynomial(q).into_iter().map(Real::from).collect());
+    }
+    if rest == 1 {
+        let below = twice_cosine(evaluator, part / prime)?;
+        let mut polynomial = cosine::multiple_angle_polynomial(prime);
+        polynomial[0] -= below;
+        return Ok(polynomial);
+    }
+    let i = (0..part).find(|i| (i * rest) % part == 1 % part).expect("coprime parts");
+    let j = (0..rest).find(|j| (j * part) % rest == 1 % rest).expect("coprime parts");
+    twice_cosine(evaluator, part)?;
+    let v = cosine::multiple_angle(&twice_cosine(evaluator, rest)?, j);
+    // Looked up again, since the second may have grown the field.
+    let u = cosine::multiple_angle(&twice_cosine(evaluator, part)?, i);
+    let product = &u * &u + &v * &v - Real::from(4);
+    Ok(vec![product, -(u * v), Real::from(1)])
 }
 
 fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) -> Outcome<Real> {
@@ -407,6 +436,9 @@ fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) 
     {
         return Ok(root.clone());
     }
+    if let Some(root) = from_known_roots(evaluator, argument) {
+        return Ok(root);
+    }
     if !evaluator.field.is_rational() && bits(argument) * evaluator.field.degree() > MOST_BITS / 2 {
         return Err(too_long(span));
     }
@@ -421,4 +453,30 @@ fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) 
     let root = evaluator.grow(grown);
     evaluator.square_roots.push((argument, root.clone()));
     Ok(root)
+}
+
+/// The square root of a positive rational number that is a square times a product of rational numbers whose
+/// roots are known: √n = √(nΠa)·Π√a / Πa.
+fn from_known_roots(evaluator: &Evaluator, argument: &Real) -> Option<Real> {
+    let wanted = argument.to_rational()?;
+    let known: Vec<(Rational, &Real)> = evaluator
+        .square_roots
+        .iter()
+        .filter_map(|(a, root)| Some((a.to_rational()?, root)))
+        .collect();
+    // Each known root at least doubled the degree, or was found here and not kept: there are few.
+    for subset in 1..1u32 << known.len().min(8) {
+        let chosen = || {
+            let members = known.iter().enumerate();
+            members.filter(move |(i, _)| subset >> i & 1 == 1).map(|(_, k)| k)
+        };
+        let product = chosen().fold(Rational::from(1), |p, (a, _)| p * a);
+        let square = Rational::from(&product * &wanted);
+        if square.numer().is_perfect_square() && square.denom().is_perfect_square() {
+            let root = |n: &Integer| Integer::from(n.sqrt_ref());
+            let outside = Rational::from((root(square.numer()), root(square.denom()))) / product;
+            return Some(chosen().fold(Real::from(outside), |r, (_, root)| r * *root));
+        }
+    }
+    None
 }
