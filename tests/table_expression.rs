@@ -67,6 +67,27 @@ const VALUES: &[(&str, f64, usize)] = &[
     ("sqrt(root(x^3-2, 1.26))", 1.122_462_048_309_373, 6),
     ("sqrt(2)+sqrt(3)+sqrt(5)+sqrt(7)", 8.028083658506354, 16),
     ("cos(2*pi/17)", 0.9324722294043558, 8),
+    (
+        "cos(2*pi/5)+cos(2*pi/7)-cos(2*pi/35)+cos(2*pi/105)",
+        0.9467873374027865,
+        24,
+    ),
+    (
+        "sqrt(2)+sqrt(3)+cos(2*pi/7)+cos(2*pi/24)+cos(2*pi/56)",
+        5.729392207983017,
+        24,
+    ),
+    ("sqrt(2)+cos(2*pi/9)+cos(2*pi/27)", 3.153302876071897, 18),
+    (
+        "sqrt(2)+sqrt(3)+sqrt(5)+sqrt(7)+sqrt(11)+sqrt(2310)",
+        59.407167811653416,
+        32,
+    ),
+    (
+        "root(x^5-2,1)+root(x^5-3,1)+sqrt(5)",
+        4.6304972721123425,
+        50,
+    ),
     ("cos(2*pi/51) + sqrt(2)", 2.4066340720450308, 32),
 ];
 
@@ -105,6 +126,11 @@ fn zeros_in_disguise_are_zero() {
         "root(x^3-2, 1.26)^3 - 2",
         "root(x^3+x^2-2*x-1, 1.2) - 2*cos(2*pi/7)",
         "sqrt(root(x^2-2, 1.4)) - root(x^4-2, 1.1)",
+        "2*cos(pi/32) - sqrt(2+sqrt(2+sqrt(2+sqrt(2))))",
+        "sqrt(2+sqrt(2+sqrt(2+sqrt(2)))) - 2*cos(pi/32)",
+        "sqrt(1-cos(2*pi/31)^2) - sin(2*pi/31)",
+        "sqrt(2)*sqrt(3)*sqrt(5) - sqrt(30)",
+        "sqrt(8)*sqrt(2/9) - 4/3",
     ];
     for text in zeros {
         let mut evaluator = Evaluator::default();

@@ -83,9 +83,10 @@ pub fn adjoin_root(
     polynomial: &[Real],
     approximate: &dyn Fn(u32) -> Enclosure,
 ) -> Result<Adjoined, AdjoinFault> {
-    let f = squarefree(field, monic(
-        polynomial.iter().map(|c| c.lifted_to(field)).collect(),
-    ));
+    let f = squarefree(
+        field,
+        monic(polynomial.iter().map(|c| c.lifted_to(field)).collect()),
+    );
     assert!(f.len() >= 2, "a polynomial with a root is not constant");
     let first_scale = integral_scale(&f);
     let near_first = |bits: u32| enlarged(approximate, &first_scale, bits);
@@ -108,28 +109,84 @@ pub fn adjoin_root(
         return Err(AdjoinFault::DegreeTooLarge { degree });
     }
     let algebra = Algebra::new(field, &g);
-    let (j, k, minimal) = algebra.generator();
+    let Generator {
+        j,
+        k,
+        shrink,
+        minimal,
+    } = choose_generator(field, &algebra, scale.numer());
     let theta = field.generator();
-    let gamma = |bits: u32| combined(&theta, j, k, &beta, bits);
+    let gamma = |bits: u32| enlarged(&|bits| combined(&theta, &j, &k, &beta, bits), &shrink, bits);
     let (lo, hi) = isolating_interval(&minimal, &gamma);
     let new_field = Field::from_isolated_root(minimal, lo, hi);
-    let old_generator = if field.is_rational() {
-        field.generator()
+    let generator = new_field.generator() * Real::from(Rational::from(shrink.recip_ref()));
+    let (old_generator, root) = if field.is_rational() {
+        (field.generator(), generator)
     } else {
-        algebra.old_generator(j, k, &new_field)
-    };
-    let beta = (new_field.generator() - Real::from(j) * &old_generator)
-        * Real::from(Rational::from((1, k)));
-    let beta = if field.is_rational() {
-        new_field.generator()
-    } else {
-        beta
+        let mut coordinates = algebra.theta_in_powers(&j, &k);
+        let mut power = Rational::from(1);
+        for c in &mut coordinates {
+            *c /= &power;
+            power *= &shrink;
+        }
+        let old_generator = Real::from_rational_coordinates(&new_field, &coordinates);
+        let rest = generator - Real::from(j) * &old_generator;
+        (
+            old_generator,
+            rest * Real::from(Rational::from((Integer::from(1), k))),
+        )
     };
     Ok(Adjoined {
         field: new_field,
         old_generator,
-        root: beta * unscale,
+        root: root * unscale,
     })
+}
+
+/// γ = shrink·(jθ + kβ) and its minimal polynomial.
+struct Generator {
+    j: Integer,
+    k: Integer,
+    shrink: Rational,
+    minimal: Vec<Integer>,
+}
+
+/// A generator with the smallest coefficients among the first few choices that generate. The choices never
+/// run out: the ones that fail lie on finitely many lines through the origin.
+///
+/// β is α times an integer that was only needed because ℤ\[θ\] may lack integers of K; so θ is tried with
+/// that factor too, and what all of γ's conjugates have in common is taken out again.
+fn choose_generator(field: &Field, algebra: &Algebra, factor: &Integer) -> Generator {
+    let tried = |(j, k): (Integer, Integer)| {
+        let minimal = algebra.characteristic(&j, &k);
+        if !is_squarefree(&minimal) {
+            return None;
+        }
+        let lifted: Vec<Real> = minimal.into_iter().map(Real::from).collect();
+        let shrink = integral_scale(&lifted);
+        let minimal = scaled(&lifted, &shrink)
+            .iter()
+            .map(|c| c.coordinates()[0].clone())
+            .collect();
+        Some(Generator {
+            j,
+            k,
+            shrink,
+            minimal,
+        })
+    };
+    let pair = |j: i64, k: i64| (Integer::from(factor * j), Integer::from(k));
+    if field.is_rational() {
+        return tried(pair(0, 1)).expect("the root of an irreducible polynomial");
+    }
+    let largest = |g: &Generator| g.minimal.iter().map(|c| c.clone().abs()).max();
+    let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
+    [(0, 1), (1, 1), (1, -1)]
+        .into_iter()
+        .filter_map(|(j, k)| tried(pair(j, k)))
+        .min_by_key(largest)
+        .or_else(|| more.map(|(j, k)| pair(j, k)).find_map(tried))
+        .expect("almost every choice generates")
 }
 
 /// The image of an element under the embedding that takes its field's generator to `image`.
@@ -158,9 +215,16 @@ fn enlarged(approximate: &dyn Fn(u32) -> Enclosure, s: &Rational, bits: u32) -> 
 }
 
 /// An enclosure of jθ + kβ.
-fn combined(theta: &Real, j: i64, k: i64, beta: &dyn Fn(u32) -> Enclosure, bits: u32) -> Enclosure {
-    let part = beta(bits + 8).mul_integer(&Integer::from(k));
-    if j == 0 {
+fn combined(
+    theta: &Real,
+    j: &Integer,
+    k: &Integer,
+    beta: &dyn Fn(u32) -> Enclosure,
+    bits: u32,
+) -> Enclosure {
+    let extra = 8 + j.significant_bits() + k.significant_bits();
+    let part = beta(bits + extra).mul_integer(k);
+    if *j == 0 {
         return part;
     }
     let theta = theta
@@ -220,7 +284,11 @@ fn common_divisor(a: &[Real], b: &[Real]) -> Vec<Real> {
 fn squarefree(field: &Field, f: Vec<Real>) -> Vec<Real> {
     // Squarefree modulo a prime where the leading coefficient stays 1 proves it; the common divisor over K
     // would need inverses of large elements.
-    if f.len() <= 2 || images(field, &f).take(4).any(|(p, image)| p.is_squarefree(&image)) {
+    if f.len() <= 2
+        || images(field, &f)
+            .take(4)
+            .any(|(p, image)| p.is_squarefree(&image))
+    {
         return f;
     }
     let slope: Vec<Real> = f
@@ -256,9 +324,8 @@ fn images<'a>(
             let root = prime.some_root(&image)?;
             let at_root = |c: &Real| {
                 let den = prime.reduce(c.denominator());
-                (den != 0).then(|| {
-                    prime.mul(prime.evaluate(c.coordinates(), root), prime.inverse(den))
-                })
+                (den != 0)
+                    .then(|| prime.mul(prime.evaluate(c.coordinates(), root), prime.inverse(den)))
             };
             let image = f.iter().map(at_root).collect::<Option<Vec<u64>>>()?;
             Some((prime, image))
@@ -363,14 +430,17 @@ fn irreducible_factor(
     let theta = field.generator();
     // All but finitely many k give a squarefree norm (Trager), so this ends.
     let start = if field.is_rational() { 0 } else { 1 };
+    let one = Integer::from(1);
     let (k, norm) = (start..)
-        .map(|k| (k, algebra.characteristic(k, 1)))
-        .find(|(_, norm)| is_squarefree(norm))
+        .map(Integer::from)
+        .map(|k| (algebra.characteristic(&k, &one), k))
+        .find(|(norm, _)| is_squarefree(norm))
+        .map(|(norm, k)| (k, norm))
         .expect("almost every k");
     let factors = factor(&norm)?.factors;
-    let gamma = |bits: u32| combined(&theta, k, 1, beta, bits);
+    let gamma = |bits: u32| combined(&theta, &k, &one, beta, bits);
     let h = vanishing_factor(factors.into_iter().map(|(h, _)| h).collect(), &gamma);
-    let at_gamma = algebra.evaluate(&h, k);
+    let at_gamma = algebra.evaluate(&h, &k);
     Ok(common_divisor(&f, &at_gamma))
 }
 

@@ -1,15 +1,14 @@
 //! The algebra K\[x\]/f over a number field K = ℚ(θ), computed with in integer coordinates.
 //!
-//! Multiplication by jθ + kx is an integer matrix of size d·deg f; its characteristic polynomial, the search
-//! for a generator and the expression of θ in that generator are all linear algebra. Cost: n³ for each, on
+//! Multiplication by jθ + kx is an integer matrix of size d·deg f; its characteristic polynomial, and
+//! θ as a polynomial in a generator comes from a linear system. Cost: n³ for each, on
 //! machine words for the characteristic polynomial and on growing integers for the last.
 
 use super::characteristic::characteristic_polynomial;
-use super::factor::is_squarefree;
 use super::field::Field;
 use super::poly;
 use super::real::{Real, reduce_powers, solve_fraction_free};
-use rug::Integer;
+use rug::{Integer, Rational};
 
 /// K\[x\]/f for a monic f with coefficients in ℤ[θ]. Elements are coordinates over θ^a·x^b at place
 /// a + d·b; those with integer coordinates form a ring.
@@ -71,9 +70,9 @@ impl<'a> Algebra<'a> {
     }
 
     /// The product with jθ + kx.
-    fn times_gamma(&self, element: &[Integer], j: i64, k: i64) -> Vec<Integer> {
+    fn times_gamma(&self, element: &[Integer], j: &Integer, k: &Integer) -> Vec<Integer> {
         let mut result: Vec<Integer> = self.times_x(element).into_iter().map(|c| c * k).collect();
-        if j != 0 {
+        if *j != 0 {
             for (c, t) in result.iter_mut().zip(self.times_theta(element)) {
                 *c += t * j;
             }
@@ -88,7 +87,7 @@ impl<'a> Algebra<'a> {
     }
 
     /// The characteristic polynomial of multiplication by jθ + kx.
-    pub(crate) fn characteristic(&self, j: i64, k: i64) -> Vec<Integer> {
+    pub(crate) fn characteristic(&self, j: &Integer, k: &Integer) -> Vec<Integer> {
         // Rows instead of columns: the transpose has the same characteristic polynomial.
         let rows: Vec<_> = (0..self.dimension())
             .map(|i| self.times_gamma(&self.unit(i), j, k))
@@ -97,10 +96,11 @@ impl<'a> Algebra<'a> {
     }
 
     /// h(x + kθ) modulo f, as a polynomial over K.
-    pub(crate) fn evaluate(&self, h: &[Integer], k: i64) -> Vec<Real> {
+    pub(crate) fn evaluate(&self, h: &[Integer], k: &Integer) -> Vec<Real> {
+        let one = Integer::from(1);
         let mut value = vec![Integer::new(); self.dimension()];
         for c in h.iter().rev() {
-            value = self.times_gamma(&value, k, 1);
+            value = self.times_gamma(&value, k, &one);
             value[0] += c;
         }
         let element =
@@ -108,30 +108,8 @@ impl<'a> Algebra<'a> {
         trimmed(value.chunks(self.field.degree()).map(element).collect())
     }
 
-    /// (j, k, minimal polynomial) of a generator jθ + kx of this field (f irreducible), with the
-    /// smallest coefficients among the first few choices that generate. The choices never run out: the
-    /// ones that fail lie on finitely many lines through the origin.
-    pub(crate) fn generator(&self) -> (i64, i64, Vec<Integer>) {
-        if self.field.is_rational() {
-            return (0, 1, self.characteristic(0, 1));
-        }
-        let size = |p: &[Integer]| p.iter().map(|c| c.clone().abs()).max();
-        let first = [(0, 1), (1, 1), (1, -1)];
-        let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
-        let tried = |(j, k): (i64, i64)| {
-            let p = self.characteristic(j, k);
-            is_squarefree(&p).then_some((j, k, p))
-        };
-        first
-            .into_iter()
-            .filter_map(tried)
-            .min_by_key(|(_, _, p)| size(p))
-            .or_else(|| more.into_iter().find_map(tried))
-            .expect("almost every choice generates")
-    }
-
-    /// θ as a polynomial in γ = jθ + kx, the generator of `field`.
-    pub(crate) fn old_generator(&self, j: i64, k: i64, field: &Field) -> Real {
+    /// The coordinates of θ over the powers of γ = jθ + kx, for a γ that generates.
+    pub(crate) fn theta_in_powers(&self, j: &Integer, k: &Integer) -> Vec<Rational> {
         let n = self.dimension();
         let mut matrix = vec![vec![Integer::new(); n + 1]; n];
         let mut power = self.unit(0);
@@ -145,7 +123,10 @@ impl<'a> Algebra<'a> {
         }
         matrix[1][n] = Integer::from(1);
         let (numerators, denominator) = solve_fraction_free(matrix);
-        Real::from_coordinates(field, numerators, denominator)
+        numerators
+            .into_iter()
+            .map(|c| Rational::from((c, denominator.clone())))
+            .collect()
     }
 }
 

@@ -379,14 +379,19 @@ fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> 
 /// - q = q₁q₂ coprime, 1/q ≡ i/q₁ + j/q₂: with u = 2cos(2πi/q₁) and v = 2cos(2πj/q₂) the two numbers
 ///   2cos(a ± b) have sum uv and product u² + v² − 4.
 fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, AdjoinFault> {
-    let prime = (2..).find(|p| q.is_multiple_of(*p)).expect("q is more than 1");
+    let prime = (2..)
+        .find(|p| q.is_multiple_of(*p))
+        .expect("q is more than 1");
     let mut part = prime;
     while q.is_multiple_of(part * prime) {
         part *= prime;
     }
     let rest = q / part;
     if rest == 1 && part == prime {
-        return Ok(cosine::minimal_polynomial(q).into_iter().map(Real::from).collect());
+        return Ok(cosine::minimal_polynomial(q)
+            .into_iter()
+            .map(Real::from)
+            .collect());
     }
     if rest == 1 {
         let below = twice_cosine(evaluator, part / prime)?;
@@ -394,8 +399,12 @@ fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, A
         polynomial[0] -= below;
         return Ok(polynomial);
     }
-    let i = (0..part).find(|i| (i * rest) % part == 1 % part).expect("coprime parts");
-    let j = (0..rest).find(|j| (j * part) % rest == 1 % rest).expect("coprime parts");
+    let i = (0..part)
+        .find(|i| (i * rest) % part == 1 % part)
+        .expect("coprime parts");
+    let j = (0..rest)
+        .find(|j| (j * part) % rest == 1 % rest)
+        .expect("coprime parts");
     twice_cosine(evaluator, part)?;
     let v = cosine::multiple_angle(&twice_cosine(evaluator, rest)?, j);
     // Looked up again, since the second may have grown the field.
@@ -468,7 +477,9 @@ fn from_known_roots(evaluator: &Evaluator, argument: &Real) -> Option<Real> {
     for subset in 1..1u32 << known.len().min(8) {
         let chosen = || {
             let members = known.iter().enumerate();
-            members.filter(move |(i, _)| subset >> i & 1 == 1).map(|(_, k)| k)
+            members
+                .filter(move |(i, _)| subset >> i & 1 == 1)
+                .map(|(_, k)| k)
         };
         let product = chosen().fold(Rational::from(1), |p, (a, _)| p * a);
         let square = Rational::from(&product * &wanted);
