@@ -73,12 +73,12 @@ const BAD: &[(&str, usize, &[&str])] = &[
     (
         "corner-three-coordinates",
         4,
-        &["corner 1 (counting from 0) has 3 coordinates"],
+        &["corner 1 (counting from 0) must have 2 coordinates, here are 3"],
     ),
     (
         "corner-one-coordinate",
         5,
-        &["corner 2 (counting from 0) has 1 coordinates"],
+        &["corner 2 (counting from 0) must have 2 coordinates, here are 1"],
     ),
     (
         "float-coordinate",

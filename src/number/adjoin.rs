@@ -18,13 +18,13 @@
 
 use super::algebra::Algebra;
 use super::enclosure::Enclosure;
-use super::factor::{FactorFault, factor, is_squarefree};
+use super::factor::{FactorFault, factor, surely_squarefree};
 use super::field::{Field, LARGEST_DEGREE};
-use super::modular::{PrimeField, primes_from, reachable_degrees};
+use super::modular::reachable_degrees;
+use super::over_field::{common_divisor, images, integral_scale, monic, scaled, squarefree};
 use super::poly;
 use super::real::Real;
 use super::tiers::Sign;
-use rug::ops::Pow;
 use rug::{Integer, Rational};
 use thiserror::Error;
 
@@ -120,8 +120,8 @@ pub fn adjoin_root(
     let (lo, hi) = isolating_interval(&minimal, &gamma);
     let new_field = Field::from_isolated_root(minimal, lo, hi);
     let generator = new_field.generator() * Real::from(Rational::from(shrink.recip_ref()));
-    let (old_generator, root) = if field.is_rational() {
-        (field.generator(), generator)
+    let old_generator = if field.is_rational() {
+        field.generator()
     } else {
         let mut coordinates = algebra.theta_in_powers(&j, &k);
         let mut power = Rational::from(1);
@@ -129,13 +129,10 @@ pub fn adjoin_root(
             *c /= &power;
             power *= &shrink;
         }
-        let old_generator = Real::from_rational_coordinates(&new_field, &coordinates);
-        let rest = generator - Real::from(j) * &old_generator;
-        (
-            old_generator,
-            rest * Real::from(Rational::from((Integer::from(1), k))),
-        )
+        Real::from_rational_coordinates(&new_field, &coordinates)
     };
+    let root = (generator - Real::from(j) * &old_generator)
+        * Real::from(Rational::from((Integer::from(1), k)));
     Ok(Adjoined {
         field: new_field,
         old_generator,
@@ -159,7 +156,7 @@ struct Generator {
 fn choose_generator(field: &Field, algebra: &Algebra, factor: &Integer) -> Generator {
     let tried = |(j, k): (Integer, Integer)| {
         let minimal = algebra.characteristic(&j, &k);
-        if !is_squarefree(&minimal) {
+        if !surely_squarefree(&minimal) {
             return None;
         }
         let lifted: Vec<Real> = minimal.into_iter().map(Real::from).collect();
@@ -176,14 +173,18 @@ fn choose_generator(field: &Field, algebra: &Algebra, factor: &Integer) -> Gener
         })
     };
     let pair = |j: i64, k: i64| (Integer::from(factor * j), Integer::from(k));
-    if field.is_rational() {
-        return tried(pair(0, 1)).expect("the root of an irreducible polynomial");
-    }
     let largest = |g: &Generator| g.minimal.iter().map(|c| c.clone().abs()).max();
     let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
-    [(0, 1), (1, 1), (1, -1)]
-        .into_iter()
-        .filter_map(|(j, k)| tried(pair(j, k)))
+    // Over ℚ the first choice generates; nothing is gained from the others.
+    let first = [(0, 1), (1, 1), (1, -1)];
+    let first = if field.is_rational() {
+        &first[..1]
+    } else {
+        &first[..]
+    };
+    first
+        .iter()
+        .filter_map(|&(j, k)| tried(pair(j, k)))
         .min_by_key(largest)
         .or_else(|| more.map(|(j, k)| pair(j, k)).find_map(tried))
         .expect("almost every choice generates")
@@ -238,181 +239,6 @@ fn combined(
     }
 }
 
-// Polynomials over K, monic unless said otherwise, constant term first.
-
-fn trim(mut f: Vec<Real>) -> Vec<Real> {
-    while f.last().is_some_and(Real::is_zero) {
-        f.pop();
-    }
-    f
-}
-
-fn monic(f: Vec<Real>) -> Vec<Real> {
-    let f = trim(f);
-    let Some(lead) = f.last() else { return f };
-    let inverse = match lead.to_rational() {
-        Some(value) => Real::from(value.recip()),
-        None => lead.inverse().expect("a leading coefficient is not zero"),
-    };
-    f.iter().map(|c| c * &inverse).collect()
-}
-
-fn divide(a: &[Real], divisor: &[Real]) -> (Vec<Real>, Vec<Real>) {
-    let mut rest = a.to_vec();
-    let mut quotient = vec![Real::from(0); (a.len() + 1).saturating_sub(divisor.len())];
-    while rest.len() >= divisor.len() {
-        let shift = rest.len() - divisor.len();
-        let factor = rest.pop().expect("nonempty");
-        for (i, c) in divisor[..divisor.len() - 1].iter().enumerate() {
-            rest[shift + i] -= c * &factor;
-        }
-        quotient[shift] = factor;
-    }
-    (quotient, trim(rest))
-}
-
-fn common_divisor(a: &[Real], b: &[Real]) -> Vec<Real> {
-    let (mut a, mut b) = (monic(a.to_vec()), monic(b.to_vec()));
-    while !b.is_empty() {
-        let rest = monic(divide(&a, &b).1);
-        a = std::mem::replace(&mut b, rest);
-    }
-    a
-}
-
-/// The product of the distinct irreducible factors of a monic polynomial.
-fn squarefree(field: &Field, f: Vec<Real>) -> Vec<Real> {
-    // Squarefree modulo a prime where the leading coefficient stays 1 proves it; the common divisor over K
-    // would need inverses of large elements.
-    if f.len() <= 2
-        || images(field, &f)
-            .take(4)
-            .any(|(p, image)| p.is_squarefree(&image))
-    {
-        return f;
-    }
-    let slope: Vec<Real> = f
-        .iter()
-        .enumerate()
-        .skip(1)
-        .map(|(i, c)| c * Real::from(i as i64))
-        .collect();
-    let common = common_divisor(&f, &slope);
-    if common.len() <= 1 {
-        f
-    } else {
-        divide(&f, &common).0
-    }
-}
-
-/// Images of a monic f modulo primes of degree one of K: at a prime p where the minimal polynomial of θ is
-/// squarefree modulo p and has a root r there, θ ↦ r extends to the elements that are integral at p (p does
-/// not divide the index of ℤ[θ]). Only the first few thousand primes are looked at.
-fn images<'a>(
-    field: &'a Field,
-    f: &'a [Real],
-) -> impl Iterator<Item = (PrimeField, Vec<u64>)> + 'a {
-    const PRIMES_SCANNED: usize = 3000;
-    let minimal = field.minimal_polynomial();
-    primes_from(211)
-        .take(PRIMES_SCANNED)
-        .filter_map(move |prime| {
-            let image = prime.reduce_poly(minimal);
-            if !prime.is_squarefree(&image) {
-                return None;
-            }
-            let root = prime.some_root(&image)?;
-            let at_root = |c: &Real| {
-                let den = prime.reduce(c.denominator());
-                (den != 0)
-                    .then(|| prime.mul(prime.evaluate(c.coordinates(), root), prime.inverse(den)))
-            };
-            let image = f.iter().map(at_root).collect::<Option<Vec<u64>>>()?;
-            Some((prime, image))
-        })
-}
-
-/// The exponent of a prime in a nonzero element's coordinates: the largest e with all of them divisible
-/// by q^e.
-fn exponent(c: &Real, q: &Integer) -> i64 {
-    let count = |n: &Integer| i64::from(n.clone().remove_factor(q).1);
-    let numerators = c.coordinates().iter().filter(|n| **n != 0).map(count).min();
-    numerators.expect("nonzero") - count(c.denominator())
-}
-
-/// s with all coefficients of s^m·f(x/s) in ℤ[θ], as small as the primes found allow.
-fn integral_scale(f: &[Real]) -> Rational {
-    let m = f.len() - 1;
-    let mut den = Integer::from(1);
-    let mut content = Integer::new();
-    for c in f[..m].iter().filter(|c| !c.is_zero()) {
-        den.lcm_mut(c.denominator());
-        c.coordinates().iter().for_each(|n| content.gcd_mut(n));
-    }
-    let mut scale = Rational::from(1);
-    let mut apply = |q: &Integer| {
-        // s^i·c_{m−i} must have exponent ≥ 0 at q for each i.
-        let needed = (1..=m)
-            .filter(|i| !f[m - i].is_zero())
-            .map(|i| {
-                (-exponent(&f[m - i], q)).div_euclid(i as i64)
-                    + i64::from((-exponent(&f[m - i], q)).rem_euclid(i as i64) != 0)
-            })
-            .max()
-            .unwrap_or(0);
-        let power = Rational::from(Integer::from(q.pow(needed.unsigned_abs() as u32)));
-        if needed >= 0 {
-            scale *= power
-        } else {
-            scale /= power
-        }
-    };
-    let (mut rest_den, mut rest_content) = (den.clone(), content.clone());
-    for q in small_primes() {
-        if rest_den == 1 && rest_content <= 1 {
-            break;
-        }
-        let q = Integer::from(q);
-        if rest_den.is_divisible(&q) || (rest_content != 0 && rest_content.is_divisible(&q)) {
-            rest_den.remove_factor_mut(&q);
-            if rest_content != 0 {
-                rest_content.remove_factor_mut(&q);
-            }
-            apply(&q);
-        }
-    }
-    // What is left has only large primes: a factor that a denominator has goes in once for each, a
-    // square comes out of x² − n.
-    if rest_den != 1 {
-        scale *= rest_den;
-    } else if m == 2 && f[1].is_zero() && rest_content > 1 && rest_content.is_perfect_square() {
-        scale /= rest_content.sqrt();
-    }
-    scale
-}
-
-fn small_primes() -> impl Iterator<Item = u32> {
-    std::iter::once(2)
-        .chain(primes_from(3).map(|p| p.prime as u32))
-        .take_while(|q| *q < 20_000)
-}
-
-/// The polynomial whose roots are s times those of f.
-fn scaled(f: &[Real], s: &Rational) -> Vec<Real> {
-    let s = Real::from(s.clone());
-    let mut power = Real::from(1);
-    let mut result = f.to_vec();
-    for c in result.iter_mut().rev() {
-        *c = &*c * &power;
-        power = &power * &s;
-    }
-    debug_assert!(
-        result.iter().all(|c| *c.denominator() == 1),
-        "integral coefficients"
-    );
-    result
-}
-
 /// The irreducible factor over K of the squarefree integral f that vanishes at β.
 fn irreducible_factor(
     field: &Field,
@@ -434,7 +260,7 @@ fn irreducible_factor(
     let (k, norm) = (start..)
         .map(Integer::from)
         .map(|k| (algebra.characteristic(&k, &one), k))
-        .find(|(norm, _)| is_squarefree(norm))
+        .find(|(norm, _)| surely_squarefree(norm))
         .map(|(norm, k)| (k, norm))
         .expect("almost every k");
     let factors = factor(&norm)?.factors;

@@ -6,6 +6,7 @@
 
 use super::characteristic::characteristic_polynomial;
 use super::field::Field;
+use super::over_field::trim;
 use super::poly;
 use super::real::{Real, reduce_powers, solve_fraction_free};
 use rug::{Integer, Rational};
@@ -105,7 +106,7 @@ impl<'a> Algebra<'a> {
         }
         let element =
             |part: &[Integer]| Real::from_coordinates(self.field, part.to_vec(), Integer::from(1));
-        trimmed(value.chunks(self.field.degree()).map(element).collect())
+        trim(value.chunks(self.field.degree()).map(element).collect())
     }
 
     /// The coordinates of θ over the powers of γ = jθ + kx, for a γ that generates.
@@ -128,11 +129,4 @@ impl<'a> Algebra<'a> {
             .map(|c| Rational::from((c, denominator.clone())))
             .collect()
     }
-}
-
-fn trimmed(mut f: Vec<Real>) -> Vec<Real> {
-    while f.last().is_some_and(Real::is_zero) {
-        f.pop();
-    }
-    f
 }

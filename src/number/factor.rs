@@ -89,12 +89,20 @@ pub fn factor(p: &[Integer]) -> Result<Factorisation, FactorFault> {
 /// If p is zero.
 pub fn is_squarefree(p: &[Integer]) -> bool {
     assert!(!p.is_empty(), "the zero polynomial");
-    // Squarefree modulo a prime that keeps the degree proves it.
-    let quick = primes_from(1_000_003).take(4).any(|field| {
+    surely_squarefree(p) || gcd(p, &derivative(p)).len() == 1
+}
+
+/// True when p is squarefree modulo one of a few primes that keep its degree, which proves that it is
+/// squarefree. False means nothing, and for a squarefree p it is rare.
+///
+/// # Panics
+/// If p is zero.
+pub fn surely_squarefree(p: &[Integer]) -> bool {
+    assert!(!p.is_empty(), "the zero polynomial");
+    primes_from(1_000_003).take(4).any(|field| {
         let image = field.reduce_poly(p);
         image.len() == p.len() && field.is_squarefree(&image)
-    });
-    quick || gcd(p, &derivative(p)).len() == 1
+    })
 }
 
 /// The squarefree part: the product of the distinct irreducible factors.

@@ -22,6 +22,7 @@ pub mod factor;
 pub mod field;
 mod hensel;
 mod modular;
+mod over_field;
 pub mod poly;
 pub mod real;
 pub mod tiers;

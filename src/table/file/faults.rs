@@ -98,7 +98,7 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
             let mut found = source.diagnostic(
                 &at(second),
                 format!(
-                    "{} and {} {counting} cross",
+                    "{}, and {} {counting}, cross",
                     layout.side(first),
                     layout.side(second)
                 ),
@@ -129,7 +129,7 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
         TableFault::FoldedCorner { corner } => {
             let k = layout.corners.len();
             let message = format!(
-                "at corner {corner} {counting} the boundary turns back: {} runs back along side {}",
+                "at corner {corner} {counting} the boundary turns back: {}, runs along side {}",
                 layout.side(corner),
                 layout.letters[(corner + k - 1) % k],
             );

@@ -288,7 +288,7 @@ fn array<'v, 'i>(
 }
 
 fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
-    let value = document.get("corners").expect("checked before");
+    let (key, value) = document.get_key_value("corners").expect("checked before");
     let example = "write `corners = [[\"0\", \"0\"], [\"1\", \"0\"], [\"0\", \"1\"]]`";
     let items = array(source, value, "`corners`", example)?;
     // Before the numbers are evaluated: the count bounds the work.
@@ -298,7 +298,7 @@ fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
             items.len()
         );
         return source.fault(
-            &value.span(),
+            &key.span(),
             message,
             "write one pair of coordinates for each corner",
         );
@@ -310,7 +310,7 @@ fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
         let what = format!("corner {i} (counting from 0)");
         let pair = array(source, item, &what, help)?;
         if pair.len() != 2 {
-            let message = format!("{what} has {} coordinates instead of 2", pair.len());
+            let message = format!("{what} must have 2 coordinates, here are {}", pair.len());
             return source.fault(&item.span(), message, help);
         }
         for (name, coordinate) in ["first", "second"].into_iter().zip(pair) {
@@ -332,7 +332,7 @@ fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
         .collect();
     let layout = Layout {
         corners: items.iter().map(Spanned::span).collect(),
-        all: value.span(),
+        all: key.span(),
         form: form_span,
         letters: sides.letters.clone(),
         letter_spans: sides.spans,
