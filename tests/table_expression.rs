@@ -67,6 +67,27 @@ const VALUES: &[(&str, f64, usize)] = &[
     ("sqrt(root(x^3-2, 1.26))", 1.122_462_048_309_373, 6),
     ("sqrt(2)+sqrt(3)+sqrt(5)+sqrt(7)", 8.028083658506354, 16),
     ("cos(2*pi/17)", 0.9324722294043558, 8),
+    (
+        "cos(2*pi/5)+cos(2*pi/7)-cos(2*pi/35)+cos(2*pi/105)",
+        0.9467873374027865,
+        24,
+    ),
+    (
+        "sqrt(2)+sqrt(3)+cos(2*pi/7)+cos(2*pi/24)+cos(2*pi/56)",
+        5.729392207983017,
+        24,
+    ),
+    ("sqrt(2)+cos(2*pi/9)+cos(2*pi/27)", 3.153302876071897, 18),
+    (
+        "sqrt(2)+sqrt(3)+sqrt(5)+sqrt(7)+sqrt(11)+sqrt(2310)",
+        59.407167811653416,
+        32,
+    ),
+    (
+        "root(x^5-2,1)+root(x^5-3,1)+sqrt(5)",
+        4.6304972721123425,
+        50,
+    ),
     ("cos(2*pi/51) + sqrt(2)", 2.4066340720450308, 32),
 ];
 
@@ -75,11 +96,21 @@ fn values_agree_with_floating_point_and_need_the_stated_degree() {
     for (text, expected, degree) in VALUES {
         let start = Instant::now();
         let mut evaluator = Evaluator::default();
-        let value = evaluator.evaluate(text).unwrap_or_else(|e| panic!("{text}: {e} {:?}", e.span));
+        let value = evaluator
+            .evaluate(text)
+            .unwrap_or_else(|e| panic!("{text}: {e} {:?}", e.span));
         let error = (value.to_f64() - expected).abs();
-        assert!(error < 1e-12 * expected.abs().max(1.0), "{text}: {} for {expected}", value.to_f64());
+        assert!(
+            error < 1e-12 * expected.abs().max(1.0),
+            "{text}: {} for {expected}",
+            value.to_f64()
+        );
         assert_eq!(evaluator.field().degree(), *degree, "{text}");
-        assert!(start.elapsed() < Duration::from_secs(5), "{text} took {:?}", start.elapsed());
+        assert!(
+            start.elapsed() < Duration::from_secs(5),
+            "{text} took {:?}",
+            start.elapsed()
+        );
     }
 }
 
@@ -95,10 +126,17 @@ fn zeros_in_disguise_are_zero() {
         "root(x^3-2, 1.26)^3 - 2",
         "root(x^3+x^2-2*x-1, 1.2) - 2*cos(2*pi/7)",
         "sqrt(root(x^2-2, 1.4)) - root(x^4-2, 1.1)",
+        "2*cos(pi/32) - sqrt(2+sqrt(2+sqrt(2+sqrt(2))))",
+        "sqrt(2+sqrt(2+sqrt(2+sqrt(2)))) - 2*cos(pi/32)",
+        "sqrt(1-cos(2*pi/31)^2) - sin(2*pi/31)",
+        "sqrt(2)*sqrt(3)*sqrt(5) - sqrt(30)",
+        "sqrt(8)*sqrt(2/9) - 4/3",
     ];
     for text in zeros {
         let mut evaluator = Evaluator::default();
-        let value = evaluator.evaluate(text).unwrap_or_else(|e| panic!("{text}: {e}"));
+        let value = evaluator
+            .evaluate(text)
+            .unwrap_or_else(|e| panic!("{text}: {e}"));
         assert!(value.is_zero(), "{text} = {}", value.decimal(20));
     }
 }
@@ -124,7 +162,12 @@ const FAULTS: &[(&str, &str, &str, &str)] = &[
     ("1.", "1.", "decimal point", "1.0"),
     (".", ".", "decimal point", "0"),
     ("1e99999", "1e99999", "power of ten", "1000"),
-    ("foo", "foo", "unknown name `foo`", "sqrt, cos, sin, tan, root"),
+    (
+        "foo",
+        "foo",
+        "unknown name `foo`",
+        "sqrt, cos, sin, tan, root",
+    ),
     ("1 + phi*2", "phi", "unknown name `phi`", "known are"),
     ("x^2", "x", "unknown name `x`", "root"),
     ("sqrt", "sqrt", "unknown name `sqrt`", "parentheses"),
@@ -139,26 +182,61 @@ const FAULTS: &[(&str, &str, &str, &str)] = &[
     ("cos(sqrt(2)*pi)", "pi", "irrational multiple", "2/7"),
     ("tan(pi/2)", "tan(pi/2)", "infinite", "pole"),
     ("1/0", "0", "division by exact zero", "zero"),
-    ("1/(sqrt(2)^2-2)", "(sqrt(2)^2-2)", "division by exact zero", "zero"),
-    ("1/(cos(2*pi/5)-(sqrt(5)-1)/4)", "(cos(2*pi/5)-(sqrt(5)-1)/4)", "division by exact zero", "zero"),
+    (
+        "1/(sqrt(2)^2-2)",
+        "(sqrt(2)^2-2)",
+        "division by exact zero",
+        "zero",
+    ),
+    (
+        "1/(cos(2*pi/5)-(sqrt(5)-1)/4)",
+        "(cos(2*pi/5)-(sqrt(5)-1)/4)",
+        "division by exact zero",
+        "zero",
+    ),
     ("0^-1", "0", "division by exact zero", "zero"),
     ("sqrt(-2)", "-2", "negative", "at least 0"),
     ("sqrt(1-sqrt(2))", "1-sqrt(2)", "negative", "at least 0"),
-    ("sqrt(2, 3)", "sqrt(2, 3)", "takes 1 argument", "one expression"),
-    ("root(x^3-2)", "root(x^3-2)", "takes 2 arguments", "root(x^3"),
+    (
+        "sqrt(2, 3)",
+        "sqrt(2, 3)",
+        "takes 1 argument",
+        "one expression",
+    ),
+    (
+        "root(x^3-2)",
+        "root(x^3-2)",
+        "takes 2 arguments",
+        "root(x^3",
+    ),
     ("root(x^2+1, 0)", "x^2+1", "no real root", "one"),
     ("root(x^2-2, 0)", "0", "equally near", "nearer"),
     ("root(x^3-x, 1/2)", "1/2", "equally near", "nearer"),
     ("root(5, 1)", "5", "constant polynomial", "in x"),
-    ("root(x^2-2, sqrt(2))", "sqrt(2)", "must be rational", "decimal"),
-    ("root(x^2-sqrt(2), 1)", "sqrt(2)", "must be rational", "rational coefficients"),
+    (
+        "root(x^2-2, sqrt(2))",
+        "sqrt(2)",
+        "must be rational",
+        "decimal",
+    ),
+    (
+        "root(x^2-sqrt(2), 1)",
+        "sqrt(2)",
+        "must be rational",
+        "rational coefficients",
+    ),
     ("root(1/x, 1)", "x", "no polynomial", "multiply out"),
     ("root(x^-1, 1)", "-1", "no polynomial", "exponents"),
     ("root(x^65-2, 1)", "x^65", "degree 65", "64"),
     ("2^(1/2)", "(1/2)", "exponent must be an integer", "sqrt"),
     ("2^1001", "1001", "exponent is too large", "1000"),
     ("cos(2*pi/1021)", "cos(2*pi/1021)", "degree", "lower degree"),
-    ("sqrt(2)+root(x^33-3,1)", "root(x^33-3,1)", "degree 66", "lower degree"),
+    (
+        "sqrt(2)+root(x^33-3,1)",
+        "root(x^33-3,1)",
+        "degree 66",
+        "lower degree",
+    ),
 ];
 
 #[test]
@@ -168,7 +246,11 @@ fn faults_point_at_their_place_and_say_what_to_write() {
         assert_eq!(&text[fault.span.clone()], *part, "{text}: {fault}");
         assert!(fault.message.contains(message), "{text}: {}", fault.message);
         assert!(fault.help.contains(help), "{text}: {}", fault.help);
-        assert!(fault.message.starts_with(|c: char| !c.is_uppercase()), "{}", fault.message);
+        assert!(
+            fault.message.starts_with(|c: char| !c.is_uppercase()),
+            "{}",
+            fault.message
+        );
     }
 }
 
@@ -181,7 +263,9 @@ fn nothing_runs_away() {
     let too_long = format!("1{}", "+1".repeat(2100));
     let digits = "9".repeat(1001);
     let most_digits = "9".repeat(1000);
-    let roots: String = [2, 3, 5, 7, 11, 13, 17, 19].map(|p| format!("sqrt({p})")).join("+");
+    let roots: String = [2, 3, 5, 7, 11, 13, 17, 19]
+        .map(|p| format!("sqrt({p})"))
+        .join("+");
     let nested = (0..9).fold("2".to_string(), |inner, _| format!("sqrt(1+{inner})"));
     let cosines = "cos(2*pi/127)+cos(2*pi/113)".to_string();
     let powers = "((1+sqrt(2)+sqrt(3)+sqrt(5))^900)^900".to_string();
@@ -201,19 +285,31 @@ fn nothing_runs_away() {
         let start = Instant::now();
         let fault = Evaluator::default().evaluate(text).expect_err(text);
         assert!(fault.message.contains(message), "{fault}");
-        assert!(start.elapsed() < Duration::from_secs(10), "{message}: {:?}", start.elapsed());
+        assert!(
+            start.elapsed() < Duration::from_secs(10),
+            "{message}: {:?}",
+            start.elapsed()
+        );
     }
     for text in [&long_sum, &most_digits, &large_root] {
         let start = Instant::now();
-        Evaluator::default().evaluate(text).unwrap_or_else(|e| panic!("{e}"));
-        assert!(start.elapsed() < Duration::from_secs(10), "{:?}", start.elapsed());
+        Evaluator::default()
+            .evaluate(text)
+            .unwrap_or_else(|e| panic!("{e}"));
+        assert!(
+            start.elapsed() < Duration::from_secs(10),
+            "{:?}",
+            start.elapsed()
+        );
     }
 }
 
 #[test]
 fn every_short_text_gives_a_value_or_a_fault_inside_it() {
     // All sequences of up to four of these pieces.
-    let pieces = ["1", "0", "x", "pi", "(", ")", "+", "-", "*", "/", "^", ",", "sqrt(", "root(", ".", "é"];
+    let pieces = [
+        "1", "0", "x", "pi", "(", ")", "+", "-", "*", "/", "^", ",", "sqrt(", "root(", ".", "é",
+    ];
     for length in 1..=4u32 {
         for mut code in 0..pieces.len().pow(length) {
             let mut text = String::new();
@@ -222,7 +318,11 @@ fn every_short_text_gives_a_value_or_a_fault_inside_it() {
                 code /= pieces.len();
             }
             if let Err(fault) = Evaluator::default().evaluate(&text) {
-                assert!(text.get(fault.span.clone()).is_some(), "{text}: {:?}", fault.span);
+                assert!(
+                    text.get(fault.span.clone()).is_some(),
+                    "{text}: {:?}",
+                    fault.span
+                );
                 assert!(!fault.message.is_empty() && !fault.help.is_empty());
             }
         }
@@ -232,8 +332,17 @@ fn every_short_text_gives_a_value_or_a_fault_inside_it() {
 #[test]
 fn numbers_of_one_evaluator_end_in_one_field() {
     let mut evaluator = Evaluator::default();
-    let texts = ["sqrt(2)", "1/3", "cos(2*pi/7)", "sqrt(2)*cos(2*pi/7)", "sin(pi/4)"];
-    let mut numbers: Vec<Real> = texts.iter().map(|t| evaluator.evaluate(t).unwrap()).collect();
+    let texts = [
+        "sqrt(2)",
+        "1/3",
+        "cos(2*pi/7)",
+        "sqrt(2)*cos(2*pi/7)",
+        "sin(pi/4)",
+    ];
+    let mut numbers: Vec<Real> = texts
+        .iter()
+        .map(|t| evaluator.evaluate(t).unwrap())
+        .collect();
     let field = evaluator.finish(&mut numbers);
     assert_eq!(field.degree(), 6);
     assert_eq!(&numbers[0] * &numbers[2], numbers[3]);
@@ -255,7 +364,10 @@ fn an_evaluator_can_start_in_a_field() {
     let mut second = Evaluator::new(first.field().clone());
     let same = second.evaluate("cos(2*pi/7)").unwrap();
     assert_eq!(same, root);
-    assert!(second.field().same(first.field()), "the cosine was there already");
+    assert!(
+        second.field().same(first.field()),
+        "the cosine was there already"
+    );
     let grown = second.evaluate("sqrt(2)").unwrap();
     assert_eq!(second.field().degree(), 6);
     assert_eq!(&second.lift(&root) * &grown, &grown * &second.lift(&root));

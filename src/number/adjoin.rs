@@ -16,15 +16,15 @@
 //! Cost: stage 4 dominates, n³ operations on integers of about n times the bits of γ's coefficients;
 //! stage 2 can need factoring a polynomial of degree d·deg f (see [`factor`](super::factor)).
 
-use super::characteristic::characteristic_polynomial;
+use super::algebra::Algebra;
 use super::enclosure::Enclosure;
-use super::factor::{FactorFault, factor, is_squarefree};
+use super::factor::{FactorFault, factor, surely_squarefree};
 use super::field::{Field, LARGEST_DEGREE};
-use super::modular::{primes_from, reachable_degrees};
+use super::modular::reachable_degrees;
+use super::over_field::{common_divisor, images, integral_scale, monic, scaled, squarefree};
 use super::poly;
-use super::real::{Real, reduce_powers, solve_fraction_free};
+use super::real::Real;
 use super::tiers::Sign;
-use rug::ops::Pow;
 use rug::{Integer, Rational};
 use thiserror::Error;
 
@@ -46,9 +46,19 @@ pub struct Adjoined {
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum AdjoinFault {
     /// The field would be too large.
-    #[error("the numbers need a field of degree {degree} over the rationals, and at most {LARGEST_DEGREE} is supported")]
+    #[error(
+        "the numbers need a field of degree {degree} or more over the rationals, and at most {LARGEST_DEGREE} is supported"
+    )]
     DegreeTooLarge {
-        /// The degree that would be needed, or that of a polynomial that would have to be factored.
+        /// A degree that would be needed at least.
+        degree: usize,
+    },
+    /// A polynomial would have to be factored that is too large.
+    #[error(
+        "whether these numbers need a larger field is decided by factoring a polynomial of degree {degree}, and at most {LARGEST_NORM} is supported"
+    )]
+    NormTooLarge {
+        /// The degree of the polynomial.
         degree: usize,
     },
     /// Factoring gave up.
@@ -73,7 +83,10 @@ pub fn adjoin_root(
     polynomial: &[Real],
     approximate: &dyn Fn(u32) -> Enclosure,
 ) -> Result<Adjoined, AdjoinFault> {
-    let f = squarefree(monic(polynomial.iter().map(|c| c.lifted_to(field)).collect()));
+    let f = squarefree(
+        field,
+        monic(polynomial.iter().map(|c| c.lifted_to(field)).collect()),
+    );
     assert!(f.len() >= 2, "a polynomial with a root is not constant");
     let first_scale = integral_scale(&f);
     let near_first = |bits: u32| enlarged(approximate, &first_scale, bits);
@@ -96,24 +109,85 @@ pub fn adjoin_root(
         return Err(AdjoinFault::DegreeTooLarge { degree });
     }
     let algebra = Algebra::new(field, &g);
-    let (j, k, minimal) = algebra.generator();
+    let Generator {
+        j,
+        k,
+        shrink,
+        minimal,
+    } = choose_generator(field, &algebra, scale.numer());
     let theta = field.generator();
-    let gamma = |bits: u32| combined(&theta, j, k, &beta, bits);
+    let gamma = |bits: u32| enlarged(&|bits| combined(&theta, &j, &k, &beta, bits), &shrink, bits);
     let (lo, hi) = isolating_interval(&minimal, &gamma);
     let new_field = Field::from_isolated_root(minimal, lo, hi);
+    let generator = new_field.generator() * Real::from(Rational::from(shrink.recip_ref()));
     let old_generator = if field.is_rational() {
         field.generator()
     } else {
-        algebra.old_generator(j, k, &new_field)
+        let mut coordinates = algebra.theta_in_powers(&j, &k);
+        let mut power = Rational::from(1);
+        for c in &mut coordinates {
+            *c /= &power;
+            power *= &shrink;
+        }
+        Real::from_rational_coordinates(&new_field, &coordinates)
     };
-    let beta = (new_field.generator() - Real::from(j) * &old_generator)
-        * Real::from(Rational::from((1, k)));
-    let beta = if field.is_rational() { new_field.generator() } else { beta };
+    let root = (generator - Real::from(j) * &old_generator)
+        * Real::from(Rational::from((Integer::from(1), k)));
     Ok(Adjoined {
         field: new_field,
         old_generator,
-        root: beta * unscale,
+        root: root * unscale,
     })
+}
+
+/// γ = shrink·(jθ + kβ) and its minimal polynomial.
+struct Generator {
+    j: Integer,
+    k: Integer,
+    shrink: Rational,
+    minimal: Vec<Integer>,
+}
+
+/// A generator with the smallest coefficients among the first few choices that generate. The choices never
+/// run out: the ones that fail lie on finitely many lines through the origin.
+///
+/// β is α times an integer that was only needed because ℤ\[θ\] may lack integers of K; so θ is tried with
+/// that factor too, and what all of γ's conjugates have in common is taken out again.
+fn choose_generator(field: &Field, algebra: &Algebra, factor: &Integer) -> Generator {
+    let tried = |(j, k): (Integer, Integer)| {
+        let minimal = algebra.characteristic(&j, &k);
+        if !surely_squarefree(&minimal) {
+            return None;
+        }
+        let lifted: Vec<Real> = minimal.into_iter().map(Real::from).collect();
+        let shrink = integral_scale(&lifted);
+        let minimal = scaled(&lifted, &shrink)
+            .iter()
+            .map(|c| c.coordinates()[0].clone())
+            .collect();
+        Some(Generator {
+            j,
+            k,
+            shrink,
+            minimal,
+        })
+    };
+    let pair = |j: i64, k: i64| (Integer::from(factor * j), Integer::from(k));
+    let largest = |g: &Generator| g.minimal.iter().map(|c| c.clone().abs()).max();
+    let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
+    // Over ℚ the first choice generates; nothing is gained from the others.
+    let first = [(0, 1), (1, 1), (1, -1)];
+    let first = if field.is_rational() {
+        &first[..1]
+    } else {
+        &first[..]
+    };
+    first
+        .iter()
+        .filter_map(|&(j, k)| tried(pair(j, k)))
+        .min_by_key(largest)
+        .or_else(|| more.map(|(j, k)| pair(j, k)).find_map(tried))
+        .expect("almost every choice generates")
 }
 
 /// The image of an element under the embedding that takes its field's generator to `image`.
@@ -126,143 +200,43 @@ pub fn embed(element: &Real, image: &Real) -> Real {
         .iter()
         .rev()
         .fold(Real::from(0), |sum, c| sum * image + Real::from(c.clone()));
-    numerator * Real::from(Rational::from((Integer::from(1), element.denominator().clone())))
+    numerator
+        * Real::from(Rational::from((
+            Integer::from(1),
+            element.denominator().clone(),
+        )))
 }
 
 /// An enclosure of s times the number that is approximated.
 fn enlarged(approximate: &dyn Fn(u32) -> Enclosure, s: &Rational, bits: u32) -> Enclosure {
     let extra = s.numer().significant_bits();
-    approximate(bits + extra).mul_integer(s.numer()).div_integer(s.denom())
+    approximate(bits + extra)
+        .mul_integer(s.numer())
+        .div_integer(s.denom())
 }
 
 /// An enclosure of jθ + kβ.
-fn combined(theta: &Real, j: i64, k: i64, beta: &dyn Fn(u32) -> Enclosure, bits: u32) -> Enclosure {
-    let part = beta(bits + 8).mul_integer(&Integer::from(k));
-    if j == 0 {
+fn combined(
+    theta: &Real,
+    j: &Integer,
+    k: &Integer,
+    beta: &dyn Fn(u32) -> Enclosure,
+    bits: u32,
+) -> Enclosure {
+    let extra = 8 + j.significant_bits() + k.significant_bits();
+    let part = beta(bits + extra).mul_integer(k);
+    if *j == 0 {
         return part;
     }
-    let theta = theta.enclosure_within(bits + 8).mul_integer(&Integer::from(j));
+    let theta = theta
+        .enclosure_within(bits + 8)
+        .mul_integer(&Integer::from(j));
     // The wider precision first, so that nothing is lost in the sum.
-    if theta.precision() >= part.precision() { theta.add(&part) } else { part.add(&theta) }
-}
-
-// Polynomials over K, monic unless said otherwise, constant term first.
-
-fn trim(mut f: Vec<Real>) -> Vec<Real> {
-    while f.last().is_some_and(Real::is_zero) {
-        f.pop();
+    if theta.precision() >= part.precision() {
+        theta.add(&part)
+    } else {
+        part.add(&theta)
     }
-    f
-}
-
-fn monic(f: Vec<Real>) -> Vec<Real> {
-    let f = trim(f);
-    let Some(lead) = f.last() else { return f };
-    let inverse = lead.inverse().expect("a leading coefficient is not zero");
-    f.iter().map(|c| c * &inverse).collect()
-}
-
-fn divide(a: &[Real], divisor: &[Real]) -> (Vec<Real>, Vec<Real>) {
-    let mut rest = a.to_vec();
-    let mut quotient = vec![Real::from(0); (a.len() + 1).saturating_sub(divisor.len())];
-    while rest.len() >= divisor.len() {
-        let shift = rest.len() - divisor.len();
-        let factor = rest.pop().expect("nonempty");
-        for (i, c) in divisor[..divisor.len() - 1].iter().enumerate() {
-            rest[shift + i] -= c * &factor;
-        }
-        quotient[shift] = factor;
-    }
-    (quotient, trim(rest))
-}
-
-fn common_divisor(a: &[Real], b: &[Real]) -> Vec<Real> {
-    let (mut a, mut b) = (monic(a.to_vec()), monic(b.to_vec()));
-    while !b.is_empty() {
-        let rest = monic(divide(&a, &b).1);
-        a = std::mem::replace(&mut b, rest);
-    }
-    a
-}
-
-fn squarefree(f: Vec<Real>) -> Vec<Real> {
-    if f.len() <= 2 {
-        return f;
-    }
-    let slope: Vec<Real> =
-        f.iter().enumerate().skip(1).map(|(i, c)| c * Real::from(i as i64)).collect();
-    let common = common_divisor(&f, &slope);
-    if common.len() <= 1 { f } else { divide(&f, &common).0 }
-}
-
-/// The exponent of a prime in a nonzero element's coordinates: the largest e with all of them divisible
-/// by q^e.
-fn exponent(c: &Real, q: &Integer) -> i64 {
-    let count = |n: &Integer| i64::from(n.clone().remove_factor(q).1);
-    let numerators = c.coordinates().iter().filter(|n| **n != 0).map(count).min();
-    numerators.expect("nonzero") - count(c.denominator())
-}
-
-/// s with all coefficients of s^m·f(x/s) in ℤ[θ], as small as the primes found allow.
-fn integral_scale(f: &[Real]) -> Rational {
-    let m = f.len() - 1;
-    let mut den = Integer::from(1);
-    let mut content = Integer::new();
-    for c in f[..m].iter().filter(|c| !c.is_zero()) {
-        den.lcm_mut(c.denominator());
-        c.coordinates().iter().for_each(|n| content.gcd_mut(n));
-    }
-    let mut scale = Rational::from(1);
-    let mut apply = |q: &Integer| {
-        // s^i·c_{m−i} must have exponent ≥ 0 at q for each i.
-        let needed = (1..=m)
-            .filter(|i| !f[m - i].is_zero())
-            .map(|i| (-exponent(&f[m - i], q)).div_euclid(i as i64)
-                + i64::from((-exponent(&f[m - i], q)).rem_euclid(i as i64) != 0))
-            .max()
-            .unwrap_or(0);
-        let power = Rational::from(Integer::from(q.pow(needed.unsigned_abs() as u32)));
-        if needed >= 0 { scale *= power } else { scale /= power }
-    };
-    let (mut rest_den, mut rest_content) = (den.clone(), content.clone());
-    for q in small_primes() {
-        if rest_den == 1 && rest_content <= 1 {
-            break;
-        }
-        let q = Integer::from(q);
-        if rest_den.is_divisible(&q) || (rest_content != 0 && rest_content.is_divisible(&q)) {
-            rest_den.remove_factor_mut(&q);
-            if rest_content != 0 {
-                rest_content.remove_factor_mut(&q);
-            }
-            apply(&q);
-        }
-    }
-    // What is left has only large primes: a factor that a denominator has goes in once for each, a
-    // square comes out of x² − n.
-    if rest_den != 1 {
-        scale *= rest_den;
-    } else if m == 2 && f[1].is_zero() && rest_content > 1 && rest_content.is_perfect_square() {
-        scale /= rest_content.sqrt();
-    }
-    scale
-}
-
-fn small_primes() -> impl Iterator<Item = u32> {
-    std::iter::once(2).chain(primes_from(3).map(|p| p.prime as u32)).take_while(|q| *q < 20_000)
-}
-
-/// The polynomial whose roots are s times those of f.
-fn scaled(f: &[Real], s: &Rational) -> Vec<Real> {
-    let s = Real::from(s.clone());
-    let mut power = Real::from(1);
-    let mut result = f.to_vec();
-    for c in result.iter_mut().rev() {
-        *c = &*c * &power;
-        power = &power * &s;
-    }
-    debug_assert!(result.iter().all(|c| *c.denominator() == 1), "integral coefficients");
-    result
 }
 
 /// The irreducible factor over K of the squarefree integral f that vanishes at β.
@@ -276,20 +250,23 @@ fn irreducible_factor(
     }
     let degree = field.degree() * (f.len() - 1);
     if degree > LARGEST_NORM {
-        return Err(AdjoinFault::DegreeTooLarge { degree });
+        return Err(AdjoinFault::NormTooLarge { degree });
     }
     let algebra = Algebra::new(field, &f);
     let theta = field.generator();
     // All but finitely many k give a squarefree norm (Trager), so this ends.
     let start = if field.is_rational() { 0 } else { 1 };
+    let one = Integer::from(1);
     let (k, norm) = (start..)
-        .map(|k| (k, algebra.characteristic(k, 1)))
-        .find(|(_, norm)| is_squarefree(norm))
+        .map(Integer::from)
+        .map(|k| (algebra.characteristic(&k, &one), k))
+        .find(|(norm, _)| surely_squarefree(norm))
+        .map(|(norm, k)| (k, norm))
         .expect("almost every k");
     let factors = factor(&norm)?.factors;
-    let gamma = |bits: u32| combined(&theta, k, 1, beta, bits);
+    let gamma = |bits: u32| combined(&theta, &k, &one, beta, bits);
     let h = vanishing_factor(factors.into_iter().map(|(h, _)| h).collect(), &gamma);
-    let at_gamma = algebra.evaluate(&h, k);
+    let at_gamma = algebra.evaluate(&h, &k);
     Ok(common_divisor(&f, &at_gamma))
 }
 
@@ -305,7 +282,9 @@ fn vanishing_factor(
         factors.retain(|h| evaluate_enclosed(h, &at).contains_zero());
         bits *= 2;
     }
-    factors.pop().expect("one of the factors vanishes at the root")
+    factors
+        .pop()
+        .expect("one of the factors vanishes at the root")
 }
 
 fn evaluate_enclosed(p: &[Integer], at: &Enclosure) -> Enclosure {
@@ -333,37 +312,26 @@ fn isolating_interval(
                 return (lo, hi);
             }
             // The root itself is the lower end, which the interval (lo, hi] leaves out.
-            return (lo - Rational::from((Integer::from(1), Integer::from(1) << bits)), hi);
+            return (
+                lo - Rational::from((Integer::from(1), Integer::from(1) << bits)),
+                hi,
+            );
         }
         bits *= 2;
     }
 }
 
 /// True when the degrees of the factors of f modulo primes of degree one of K leave no room for a
-/// factor over K. False means nothing.
-///
-/// At a prime p where the minimal polynomial of θ is squarefree modulo p and has a root r there, θ ↦ r
-/// extends to the elements integral at p (p does not divide the index of ℤ[θ]), and the degrees of a
-/// monic factor of f over K are sums of degrees of factors of the image.
+/// factor over K: the degree of a monic factor of f is a sum of degrees of factors of each image. False
+/// means nothing.
 fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
-    const PRIMES_SCANNED: usize = 3000;
     const PRIMES_USED: usize = 32;
     let m = f.len() - 1;
-    let minimal = field.minimal_polynomial();
     let mut allowed = vec![true; m + 1];
-    let mut used = 0;
-    for prime in primes_from(211).take(PRIMES_SCANNED) {
-        let image = prime.reduce_poly(minimal);
-        if !prime.is_squarefree(&image) {
-            continue;
-        }
-        let Some(root) = prime.some_root(&image) else { continue };
-        let f_image: Vec<u64> = f.iter().map(|c| prime.evaluate(c.coordinates(), root)).collect();
-        if !prime.is_squarefree(&f_image) {
-            continue;
-        }
+    let good = images(field, f).filter(|(prime, image)| prime.is_squarefree(image));
+    for (prime, image) in good.take(PRIMES_USED) {
         let degrees = prime
-            .distinct_degrees(&f_image)
+            .distinct_degrees(&image)
             .into_iter()
             .flat_map(|(product, d)| std::iter::repeat_n(d, (product.len() - 1) / d));
         for (kept, reached) in allowed.iter_mut().zip(reachable_degrees(m, degrees)) {
@@ -372,144 +340,8 @@ fn certainly_irreducible(field: &Field, f: &[Real]) -> bool {
         if !allowed[1..m].contains(&true) {
             return true;
         }
-        used += 1;
-        if used == PRIMES_USED {
-            break;
-        }
     }
     false
-}
-
-/// K\[x\]/f for a monic f with coefficients in ℤ[θ]. Elements are coordinates over θ^a·x^b at place
-/// a + d·b; those with integer coordinates form a ring.
-struct Algebra<'a> {
-    field: &'a Field,
-    /// Integer coordinates of the coefficients below the leading one.
-    f: Vec<Vec<Integer>>,
-}
-
-impl<'a> Algebra<'a> {
-    fn new(field: &'a Field, f: &[Real]) -> Algebra<'a> {
-        let below = &f[..f.len() - 1];
-        debug_assert!(below.iter().all(|c| *c.denominator() == 1), "coefficients in ℤ[θ]");
-        Algebra {
-            field,
-            f: below.iter().map(|c| c.lifted_to(field).coordinates().to_vec()).collect(),
-        }
-    }
-
-    fn dimension(&self) -> usize {
-        self.field.degree() * self.f.len()
-    }
-
-    fn times_theta(&self, element: &[Integer]) -> Vec<Integer> {
-        let d = self.field.degree();
-        if d == 1 {
-            let theta = Integer::from(-&self.field.minimal_polynomial()[0]);
-            return element.iter().map(|c| Integer::from(c * &theta)).collect();
-        }
-        let shifted = |part: &[Integer]| {
-            let mut longer = vec![Integer::new()];
-            longer.extend_from_slice(part);
-            reduce_powers(self.field, longer)
-        };
-        element.chunks(d).flat_map(shifted).collect()
-    }
-
-    fn times_x(&self, element: &[Integer]) -> Vec<Integer> {
-        let d = self.field.degree();
-        let top = &element[element.len() - d..];
-        let mut result = vec![Integer::new(); d];
-        result.extend_from_slice(&element[..element.len() - d]);
-        if top.iter().all(|c| *c == 0) {
-            return result;
-        }
-        for (place, coefficient) in result.chunks_mut(d).zip(&self.f) {
-            let product = reduce_powers(self.field, poly::multiply(top, coefficient));
-            for (c, p) in place.iter_mut().zip(product) {
-                *c -= p;
-            }
-        }
-        result
-    }
-
-    /// The product with jθ + kx.
-    fn times_gamma(&self, element: &[Integer], j: i64, k: i64) -> Vec<Integer> {
-        let mut result: Vec<Integer> = self.times_x(element).into_iter().map(|c| c * k).collect();
-        if j != 0 {
-            for (c, t) in result.iter_mut().zip(self.times_theta(element)) {
-                *c += t * j;
-            }
-        }
-        result
-    }
-
-    fn unit(&self, place: usize) -> Vec<Integer> {
-        let mut unit = vec![Integer::new(); self.dimension()];
-        unit[place] = Integer::from(1);
-        unit
-    }
-
-    /// The characteristic polynomial of multiplication by jθ + kx.
-    fn characteristic(&self, j: i64, k: i64) -> Vec<Integer> {
-        // Rows instead of columns: the transpose has the same characteristic polynomial.
-        let rows: Vec<_> =
-            (0..self.dimension()).map(|i| self.times_gamma(&self.unit(i), j, k)).collect();
-        characteristic_polynomial(&rows)
-    }
-
-    /// h(x + kθ) modulo f, as a polynomial over K.
-    fn evaluate(&self, h: &[Integer], k: i64) -> Vec<Real> {
-        let mut value = vec![Integer::new(); self.dimension()];
-        for c in h.iter().rev() {
-            value = self.times_gamma(&value, k, 1);
-            value[0] += c;
-        }
-        let element = |part: &[Integer]| {
-            Real::from_coordinates(self.field, part.to_vec(), Integer::from(1))
-        };
-        trim(value.chunks(self.field.degree()).map(element).collect())
-    }
-
-    /// (j, k, minimal polynomial) of a generator jθ + kx of this field (f irreducible), with the
-    /// smallest coefficients among the first few choices that generate. The choices never run out: the
-    /// ones that fail lie on finitely many lines through the origin.
-    fn generator(&self) -> (i64, i64, Vec<Integer>) {
-        if self.field.is_rational() {
-            return (0, 1, self.characteristic(0, 1));
-        }
-        let size = |p: &[Integer]| p.iter().map(|c| c.clone().abs()).max();
-        let first = [(0, 1), (1, 1), (1, -1)];
-        let more = (2..).flat_map(|k| [(1, k), (1, -k), (k, 1), (k, -1)]);
-        let tried = |(j, k): (i64, i64)| {
-            let p = self.characteristic(j, k);
-            is_squarefree(&p).then_some((j, k, p))
-        };
-        first
-            .into_iter()
-            .filter_map(tried)
-            .min_by_key(|(_, _, p)| size(p))
-            .or_else(|| more.into_iter().find_map(tried))
-            .expect("almost every choice generates")
-    }
-
-    /// θ as a polynomial in γ = jθ + kx, the generator of `field`.
-    fn old_generator(&self, j: i64, k: i64, field: &Field) -> Real {
-        let n = self.dimension();
-        let mut matrix = vec![vec![Integer::new(); n + 1]; n];
-        let mut power = self.unit(0);
-        for column in 0..n {
-            for (row, c) in matrix.iter_mut().zip(&power) {
-                row[column] = c.clone();
-            }
-            if column + 1 < n {
-                power = self.times_gamma(&power, j, k);
-            }
-        }
-        matrix[1][n] = Integer::from(1);
-        let (numerators, denominator) = solve_fraction_free(matrix);
-        Real::from_coordinates(field, numerators, denominator)
-    }
 }
 
 #[cfg(test)]
@@ -528,7 +360,10 @@ mod tests {
         let mut roots: Vec<Real> = Vec::new();
         for &n in numbers {
             let grown = with_sqrt(&field, &Real::from(n));
-            roots = roots.iter().map(|r| embed(r, &grown.old_generator)).collect();
+            roots = roots
+                .iter()
+                .map(|r| embed(r, &grown.old_generator))
+                .collect();
             roots.push(grown.root);
             field = grown.field;
         }
@@ -583,8 +418,14 @@ mod tests {
     fn a_cosine_joins_a_square_root() {
         let (field, roots) = sqrt_tower(&[5]);
         let adjoin = |field: &Field, q: u32| {
-            let f: Vec<Real> = cosine::minimal_polynomial(q).into_iter().map(Real::from).collect();
-            adjoin_root(field, &f, &|bits| cosine::twice_cosine_enclosure(1, q, bits)).unwrap()
+            let f: Vec<Real> = cosine::minimal_polynomial(q)
+                .into_iter()
+                .map(Real::from)
+                .collect();
+            adjoin_root(field, &f, &|bits| {
+                cosine::twice_cosine_enclosure(1, q, bits)
+            })
+            .unwrap()
         };
         let seven = adjoin(&field, 7);
         assert_eq!(seven.field.degree(), 6);
@@ -592,7 +433,10 @@ mod tests {
         // 2cos(2π/5) = (√5 − 1)/2 is there already; 2cos(2π/20) only doubles the degree.
         let five = adjoin(&field, 5);
         assert!(five.field.same(&field));
-        assert_eq!(five.root, (&roots[0] - Real::from(1)) * Real::from(Rational::from((1, 2))));
+        assert_eq!(
+            five.root,
+            (&roots[0] - Real::from(1)) * Real::from(Rational::from((1, 2)))
+        );
         let twenty = adjoin(&field, 20);
         assert_eq!(twenty.field.degree(), 4);
         let expected = 2.0 * (std::f64::consts::TAU / 20.0).cos();
@@ -637,6 +481,9 @@ mod tests {
         (f[0], f[33]) = (Real::from(-3), Real::from(1));
         let near = |bits: u32| Enclosure::from_integer(&Integer::from(1), bits);
         let refused = adjoin_root(&grown.field, &f, &near);
-        assert!(matches!(refused, Err(AdjoinFault::DegreeTooLarge { degree: 66 })), "{refused:?}");
+        assert!(
+            matches!(refused, Err(AdjoinFault::DegreeTooLarge { degree: 66 })),
+            "{refused:?}"
+        );
     }
 }

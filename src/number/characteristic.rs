@@ -49,10 +49,14 @@ pub(crate) fn characteristic_polynomial(matrix: &[Vec<Integer>]) -> Vec<Integer>
 
 fn modulo_prime(matrix: &[Vec<Integer>], field: PrimeField) -> Vec<u64> {
     let n = matrix.len();
-    let mut h: Vec<Vec<u64>> =
-        matrix.iter().map(|row| row.iter().map(|c| field.reduce(c)).collect()).collect();
+    let mut h: Vec<Vec<u64>> = matrix
+        .iter()
+        .map(|row| row.iter().map(|c| field.reduce(c)).collect())
+        .collect();
     for column in 0..n.saturating_sub(2) {
-        let Some(pivot) = (column + 1..n).find(|&i| h[i][column] != 0) else { continue };
+        let Some(pivot) = (column + 1..n).find(|&i| h[i][column] != 0) else {
+            continue;
+        };
         if pivot != column + 1 {
             h.swap(pivot, column + 1);
             h.iter_mut().for_each(|row| row.swap(pivot, column + 1));
@@ -63,8 +67,9 @@ fn modulo_prime(matrix: &[Vec<Integer>], field: PrimeField) -> Vec<u64> {
             if factor == 0 {
                 continue;
             }
-            for j in 0..n {
-                h[i][j] = field.sub(h[i][j], field.mul(factor, h[column + 1][j]));
+            let pivot_row = h[column + 1].clone();
+            for (c, p) in h[i].iter_mut().zip(pivot_row) {
+                *c = field.sub(*c, field.mul(factor, p));
             }
             for row in h.iter_mut() {
                 row[column + 1] = field.add(row[column + 1], field.mul(factor, row[i]));
@@ -98,7 +103,9 @@ mod tests {
 
     #[test]
     fn companion_matrices_give_their_polynomial_back() {
-        let p: Vec<Integer> = [-7_i64, 0, 123_456_789_012_345, -3, 5, 1].map(Integer::from).to_vec();
+        let p: Vec<Integer> = [-7_i64, 0, 123_456_789_012_345, -3, 5, 1]
+            .map(Integer::from)
+            .to_vec();
         let n = p.len() - 1;
         let mut m = vec![vec![Integer::new(); n]; n];
         for i in 0..n {

@@ -28,7 +28,11 @@ pub fn totient(q: u32) -> u32 {
         }
         d += 1;
     }
-    if rest > 1 { result - result / rest } else { result }
+    if rest > 1 {
+        result - result / rest
+    } else {
+        result
+    }
 }
 
 /// The degree of 2cos(2π/q).
@@ -42,7 +46,7 @@ pub fn cosine_degree(q: u32) -> usize {
 /// # Errors
 /// [`AdjoinFault::DegreeTooLarge`] when the cosine's degree is past [`LARGEST_DEGREE`].
 pub fn reduced_angle(turns: &Rational) -> Result<(bool, u32, u32), AdjoinFault> {
-    let mut part = Rational::from(turns - turns.clone().floor());
+    let mut part = turns - turns.clone().floor();
     let mut negative = false;
     if part.denom().mod_u(4) == 2 {
         // cos(t) = −cos(t − π), and the numerator becomes even.
@@ -53,17 +57,25 @@ pub fn reduced_angle(turns: &Rational) -> Result<(bool, u32, u32), AdjoinFault> 
         }
     }
     if part > Rational::from((1, 2)) {
-        part = Rational::from(1 - part);
+        part = 1 - part;
     }
     let too_large = |degree| AdjoinFault::DegreeTooLarge { degree };
-    let q = part.denom().to_u32().filter(|q| *q <= LARGEST_ORDER).ok_or_else(|| {
-        let half = Integer::from(part.denom().sqrt_ref()) / 4u32;
-        too_large(half.to_usize().unwrap_or(usize::MAX))
-    })?;
+    let q = part
+        .denom()
+        .to_u32()
+        .filter(|q| *q <= LARGEST_ORDER)
+        .ok_or_else(|| {
+            let half = Integer::from(part.denom().sqrt_ref()) / 4u32;
+            too_large(half.to_usize().unwrap_or(usize::MAX))
+        })?;
     if cosine_degree(q) > LARGEST_DEGREE {
         return Err(too_large(cosine_degree(q)));
     }
-    Ok((negative, part.numer().to_u32().expect("at most the denominator"), q))
+    Ok((
+        negative,
+        part.numer().to_u32().expect("at most the denominator"),
+        q,
+    ))
 }
 
 /// The minimal polynomial of 2cos(2π/q), monic over ℤ.
@@ -80,7 +92,10 @@ pub fn minimal_polynomial(q: u32) -> Vec<Integer> {
     let cyclotomic = cyclotomic(q as usize);
     let middle = (cyclotomic.len() - 1) / 2;
     let mut result = vec![Integer::new(); middle + 1];
-    let mut chain = [vec![Integer::from(2)], vec![Integer::new(), Integer::from(1)]];
+    let mut chain = [
+        vec![Integer::from(2)],
+        vec![Integer::new(), Integer::from(1)],
+    ];
     result[0] += &cyclotomic[middle];
     for j in 1..=middle {
         for (c, v) in result.iter_mut().zip(&chain[1]) {
@@ -131,7 +146,11 @@ pub fn cosine_field(q: u32) -> Result<Field, AdjoinFault> {
     // The gap is about 1/q², far above the error of a floating-point cosine; the constructor proves it.
     let below = 2.0 * (1.5 * std::f64::consts::TAU / f64::from(q)).cos();
     let lo = Rational::from_f64(below).expect("a finite number");
-    Ok(Field::from_isolated_root(minimal_polynomial(q), lo, Rational::from(2)))
+    Ok(Field::from_isolated_root(
+        minimal_polynomial(q),
+        lo,
+        Rational::from(2),
+    ))
 }
 
 /// 2cos(2π/q) in the field of [`cosine_field`]`(q)`.
@@ -154,6 +173,23 @@ pub fn multiple_angle(twice_cosine: &Real, j: u32) -> Real {
     }
     for _ in 1..j {
         let next = twice_cosine * &current - before;
+        before = std::mem::replace(&mut current, next);
+    }
+    current
+}
+
+/// V_j as a polynomial, constant term first.
+pub fn multiple_angle_polynomial(j: u32) -> Vec<Real> {
+    let (mut before, mut current) = (vec![Real::from(2)], vec![Real::from(0), Real::from(1)]);
+    if j == 0 {
+        return before;
+    }
+    for _ in 1..j {
+        let mut next = vec![Real::from(0)];
+        next.extend_from_slice(&current);
+        for (c, b) in next.iter_mut().zip(&before) {
+            *c -= b.clone();
+        }
         before = std::mem::replace(&mut current, next);
     }
     current
@@ -209,13 +245,27 @@ mod tests {
 
     #[test]
     fn angles_reduce_to_the_same_cosine() {
-        for (p, q) in [(1, 10), (3, 10), (7, 10), (-5, 14), (22, 7), (1, 2), (0, 1), (5, 12), (11, 6)] {
+        for (p, q) in [
+            (1, 10),
+            (3, 10),
+            (7, 10),
+            (-5, 14),
+            (22, 7),
+            (1, 2),
+            (0, 1),
+            (5, 12),
+            (11, 6),
+        ] {
             let turns = Rational::from((p, q));
             let (negative, rp, rq) = reduced_angle(&turns).unwrap();
             assert_ne!(rq % 4, 2);
-            let exact = twice_cosine_enclosure(rp, rq, 60).to_f64() * if negative { -1.0 } else { 1.0 };
+            let exact =
+                twice_cosine_enclosure(rp, rq, 60).to_f64() * if negative { -1.0 } else { 1.0 };
             let expected = 2.0 * (std::f64::consts::TAU * turns.to_f64()).cos();
-            assert!((exact - expected).abs() < 1e-12, "{p}/{q}: {exact} {expected}");
+            assert!(
+                (exact - expected).abs() < 1e-12,
+                "{p}/{q}: {exact} {expected}"
+            );
             let field = cosine_field(rq).unwrap();
             let value = multiple_angle(&generator_of(&field, rq), rp);
             let value = if negative { -value } else { value };
@@ -227,7 +277,10 @@ mod tests {
     fn angles_of_large_order_are_refused() {
         for q in [1021_u64, 99_991, 1_000_000_007, 1_000_000_000_000_000_003] {
             let turns = Rational::from((1, q));
-            assert!(matches!(reduced_angle(&turns), Err(AdjoinFault::DegreeTooLarge { .. })));
+            assert!(matches!(
+                reduced_angle(&turns),
+                Err(AdjoinFault::DegreeTooLarge { .. })
+            ));
         }
     }
 }

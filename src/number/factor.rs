@@ -24,7 +24,7 @@ use rug::Integer;
 use thiserror::Error;
 
 /// The most products of lifted factors that are tried: a few seconds of work.
-const MOST_PRODUCTS: u64 = 1 << 26;
+const MOST_PRODUCTS: u64 = 1 << 25;
 
 /// What forming one product counts for in that budget.
 const PRODUCT_COST: u64 = 1 << 14;
@@ -39,7 +39,9 @@ pub enum FactorFault {
     #[error("the zero polynomial has no factors")]
     Zero,
     /// Too many products of factors modulo a prime.
-    #[error("a polynomial of degree {degree} splits into {parts} parts modulo every prime tried: too many to recombine")]
+    #[error(
+        "a polynomial of degree {degree} splits into {parts} parts modulo every prime tried: too many to recombine"
+    )]
     TooManyProducts {
         /// Degree of the polynomial.
         degree: usize,
@@ -87,12 +89,20 @@ pub fn factor(p: &[Integer]) -> Result<Factorisation, FactorFault> {
 /// If p is zero.
 pub fn is_squarefree(p: &[Integer]) -> bool {
     assert!(!p.is_empty(), "the zero polynomial");
-    // Squarefree modulo a prime that keeps the degree proves it.
-    let quick = primes_from(1_000_003).take(4).any(|field| {
+    surely_squarefree(p) || gcd(p, &derivative(p)).len() == 1
+}
+
+/// True when p is squarefree modulo one of a few primes that keep its degree, which proves that it is
+/// squarefree. False means nothing, and for a squarefree p it is rare.
+///
+/// # Panics
+/// If p is zero.
+pub fn surely_squarefree(p: &[Integer]) -> bool {
+    assert!(!p.is_empty(), "the zero polynomial");
+    primes_from(1_000_003).take(4).any(|field| {
         let image = field.reduce_poly(p);
         image.len() == p.len() && field.is_squarefree(&image)
-    });
-    quick || gcd(p, &derivative(p)).len() == 1
+    })
 }
 
 /// The squarefree part: the product of the distinct irreducible factors.
@@ -151,11 +161,16 @@ fn factor_squarefree(f: &[Integer]) -> Result<Vec<Vec<Integer>>, FactorFault> {
     let mut allowed = vec![true; n + 1];
     let mut best: Option<(PrimeField, usize)> = None;
     let lead = f.last().expect("nonzero");
-    let good = primes_from(1009).filter(|field| field.reduce(lead) != 0).map(|field| {
-        let image = field.monic(&field.reduce_poly(f));
-        (field, image)
-    });
-    for (field, image) in good.filter(|(field, image)| field.is_squarefree(image)).take(PRIMES_TRIED) {
+    let good = primes_from(1009)
+        .filter(|field| field.reduce(lead) != 0)
+        .map(|field| {
+            let image = field.monic(&field.reduce_poly(f));
+            (field, image)
+        });
+    for (field, image) in good
+        .filter(|(field, image)| field.is_squarefree(image))
+        .take(PRIMES_TRIED)
+    {
         let degrees: Vec<usize> = field
             .distinct_degrees(&image)
             .into_iter()
@@ -172,10 +187,14 @@ fn factor_squarefree(f: &[Integer]) -> Result<Vec<Vec<Integer>>, FactorFault> {
             best = Some((field, degrees.len()));
         }
     }
-    let (field, _) = best.expect("a squarefree polynomial stays squarefree modulo almost all primes");
+    let (field, _) =
+        best.expect("a squarefree polynomial stays squarefree modulo almost all primes");
     let parts = field.factor(&field.monic(&field.reduce_poly(f)));
     Recombination::new(f, field, parts, allowed).run()
 }
+
+/// A true factor and the lifted parts that it is made of.
+type Found = (Vec<Integer>, Vec<usize>);
 
 /// Looks for the true factors among the products of the lifted ones.
 struct Recombination {
@@ -194,19 +213,29 @@ impl Recombination {
     fn new(f: &[Integer], field: PrimeField, parts: Vec<ModularPoly>, allowed: Vec<bool>) -> Self {
         let n = f.len() - 1;
         let lead = f.last().expect("nonzero");
-        let norm = f.iter().map(|c| Integer::from(c.square_ref())).sum::<Integer>().sqrt() + 1u32;
+        let norm = f
+            .iter()
+            .map(|c| Integer::from(c.square_ref()))
+            .sum::<Integer>()
+            .sqrt()
+            + 1u32;
         // Past twice |lc|·2^n·‖f‖₂; and past 2⁶⁴ times the bound on the sum of squares of roots (see
         // `slack`), which makes the one-word tests selective.
         let largest = f.iter().map(|c| c.clone().abs()).max().expect("nonzero");
-        let squares = Integer::from(largest + lead).square() * (n as u64 + 1);
+        let squares = (largest + lead).square() * (n as u64 + 1);
         let bound = ((norm * lead) << (n as u32 + 1)).max(squares << 64u32);
         let mut modulus = Integer::from(field.prime);
         while modulus <= bound {
             modulus *= field.prime;
         }
-        let inverse = lead.clone().invert(&modulus).expect("the prime does not divide lc");
-        let monic: Vec<Integer> =
-            f.iter().map(|c| Integer::from(c * &inverse).modulo(&modulus)).collect();
+        let inverse = lead
+            .clone()
+            .invert(&modulus)
+            .expect("the prime does not divide lc");
+        let monic: Vec<Integer> = f
+            .iter()
+            .map(|c| Integer::from(c * &inverse).modulo(&modulus))
+            .collect();
         let original_parts = parts.len();
         Recombination {
             rest: f.to_vec(),
@@ -247,7 +276,7 @@ impl Recombination {
     /// The sums of the roots and of their squares are additive over the chosen parts. Times lc and lc²
     /// they are integers for a true factor, small against the modulus; as fractions of the modulus in one
     /// word each they must be near zero. Only then is the product formed and divided.
-    fn factor_of(&mut self, size: usize) -> Result<Option<(Vec<Integer>, Vec<usize>)>, FactorFault> {
+    fn factor_of(&mut self, size: usize) -> Result<Option<Found>, FactorFault> {
         let lead = self.rest.last().expect("nonzero");
         let fractions: Vec<[u64; 2]> = self.lifted.iter().map(|p| self.sums(p, lead)).collect();
         let slack = self.slack();
@@ -265,7 +294,11 @@ impl Recombination {
                 });
             }
             self.budget -= 1;
-            let sum = |j: usize| chosen.iter().fold(0u64, |sum, &i| sum.wrapping_add(fractions[i][j]));
+            let sum = |j: usize| {
+                chosen
+                    .iter()
+                    .fold(0u64, |sum, &i| sum.wrapping_add(fractions[i][j]))
+            };
             if near_zero(sum(0), slack[0]) && near_zero(sum(1), slack[1]) {
                 self.budget = self.budget.saturating_sub(PRODUCT_COST);
                 if let Some(factor) = self.try_product(&chosen) {
@@ -298,7 +331,12 @@ impl Recombination {
     /// lc²·Σ|r|² ≤ n·(|lc| + max|c|)². Each cut-off loses less than one unit.
     fn slack(&self) -> [u64; 2] {
         let lead = self.rest.last().expect("nonzero").clone().abs();
-        let largest = self.rest.iter().map(|c| c.clone().abs()).max().expect("nonzero");
+        let largest = self
+            .rest
+            .iter()
+            .map(|c| c.clone().abs())
+            .max()
+            .expect("nonzero");
         let radius = largest + lead;
         let first = Integer::from(&radius * self.rest.len() as u64);
         let second = Integer::from(&first * &radius);
@@ -418,7 +456,7 @@ mod tests {
             let mut odd = vec![Integer::new(); p.len()];
             for (n, c) in p.iter().enumerate() {
                 for j in 0..=n {
-                    let binomial = Integer::from(Integer::from(n).binomial(j as u32));
+                    let binomial = Integer::from(n).binomial(j as u32);
                     let half = Integer::from(Integer::u_pow_u(a as u32, (j / 2) as u32));
                     let term = binomial * half * c;
                     if j % 2 == 0 {

@@ -72,7 +72,8 @@ pub(crate) fn lift(
         return vec![reduced(f.to_vec(), modulus)];
     }
     let (left, right) = factors.split_at(factors.len() / 2);
-    let multiply = |part: &[ModularPoly]| part.iter().fold(vec![1], |acc, p| field.product(&acc, p));
+    let multiply =
+        |part: &[ModularPoly]| part.iter().fold(vec![1], |acc, p| field.product(&acc, p));
     let (g, h) = (multiply(left), multiply(right));
     let (g, h) = lift_pair(f, &g, &h, field, modulus);
     let mut lifted = lift(&g, left, field, modulus);
@@ -127,7 +128,9 @@ mod tests {
             let factors = field.factor(&reduced_f);
             let modulus = Integer::from(Integer::u_pow_u(field.prime as u32, 11));
             let lifted = lift(&f, &factors, field, &modulus);
-            let all = lifted.iter().fold(vec![Integer::from(1)], |a, p| product(&a, p, &modulus));
+            let all = lifted
+                .iter()
+                .fold(vec![Integer::from(1)], |a, p| product(&a, p, &modulus));
             assert_eq!(all, reduced(f.clone(), &modulus));
             for (high, low) in lifted.iter().zip(&factors) {
                 assert_eq!(field.reduce_poly(high), *low);

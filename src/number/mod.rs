@@ -14,6 +14,7 @@
 //! - [`tiers`]: counts of how often each level of arithmetic decided a sign.
 
 pub mod adjoin;
+mod algebra;
 mod characteristic;
 pub mod cosine;
 pub mod enclosure;
@@ -21,6 +22,7 @@ pub mod factor;
 pub mod field;
 mod hensel;
 mod modular;
+mod over_field;
 pub mod poly;
 pub mod real;
 pub mod tiers;

@@ -20,7 +20,11 @@ pub(crate) struct PrimeField {
 impl PrimeField {
     pub(crate) fn add(self, a: u64, b: u64) -> u64 {
         let sum = a + b;
-        if sum >= self.prime { sum - self.prime } else { sum }
+        if sum >= self.prime {
+            sum - self.prime
+        } else {
+            sum
+        }
     }
 
     pub(crate) fn sub(self, a: u64, b: u64) -> u64 {
@@ -62,9 +66,9 @@ impl PrimeField {
 
     /// The value at a point.
     pub(crate) fn evaluate(self, p: &[Integer], point: u64) -> u64 {
-        p.iter()
-            .rev()
-            .fold(0, |value, c| self.add(self.mul(value, point), self.reduce(c)))
+        p.iter().rev().fold(0, |value, c| {
+            self.add(self.mul(value, point), self.reduce(c))
+        })
     }
 
     pub(crate) fn product(self, a: &[u64], b: &[u64]) -> ModularPoly {
@@ -82,7 +86,11 @@ impl PrimeField {
 
     pub(crate) fn difference(self, a: &[u64], b: &[u64]) -> ModularPoly {
         let at = |p: &[u64], i: usize| p.get(i).copied().unwrap_or(0);
-        trimmed((0..a.len().max(b.len())).map(|i| self.sub(at(a, i), at(b, i))).collect())
+        trimmed(
+            (0..a.len().max(b.len()))
+                .map(|i| self.sub(at(a, i), at(b, i)))
+                .collect(),
+        )
     }
 
     /// Quotient and remainder.
@@ -107,7 +115,9 @@ impl PrimeField {
     }
 
     pub(crate) fn monic(self, p: &[u64]) -> ModularPoly {
-        let Some(lead) = p.last() else { return Vec::new() };
+        let Some(lead) = p.last() else {
+            return Vec::new();
+        };
         let factor = self.inverse(*lead);
         p.iter().map(|c| self.mul(*c, factor)).collect()
     }
@@ -143,7 +153,11 @@ impl PrimeField {
 
     pub(crate) fn derivative(self, p: &[u64]) -> ModularPoly {
         let terms = p.iter().enumerate().skip(1);
-        trimmed(terms.map(|(i, c)| self.mul(*c, i as u64 % self.prime)).collect())
+        trimmed(
+            terms
+                .map(|(i, c)| self.mul(*c, i as u64 % self.prime))
+                .collect(),
+        )
     }
 
     /// True when p has no repeated factor.
@@ -239,9 +253,14 @@ impl PrimeField {
         degree: usize,
         random: &mut u64,
     ) -> Option<(ModularPoly, ModularPoly)> {
-        let sample = trimmed((1..p.len()).map(|_| splitmix(random) % self.prime).collect());
+        let sample = trimmed(
+            (1..p.len())
+                .map(|_| splitmix(random) % self.prime)
+                .collect(),
+        );
         // Half of the elements of each residue field are squares: a^((q−1)/2) is 1 or −1 there.
-        let exponent = (Integer::from(Integer::u_pow_u(self.prime as u32, degree as u32)) - 1u32) / 2u32;
+        let exponent =
+            (Integer::from(Integer::u_pow_u(self.prime as u32, degree as u32)) - 1u32) / 2u32;
         let power = self.power_modulo(&sample, &exponent, p);
         let common = self.gcd(&self.difference(&power, &[1]), p);
         if common.len() <= 1 || common.len() == p.len() {
@@ -304,11 +323,16 @@ mod tests {
             p[0] = field.prime - 1;
             p[12] = 1;
             let factors = field.factor(&p);
-            let product = factors.iter().fold(vec![1], |acc, f| field.product(&acc, f));
+            let product = factors
+                .iter()
+                .fold(vec![1], |acc, f| field.product(&acc, f));
             assert_eq!(product, p);
             for factor in &factors {
-                let degrees: Vec<usize> =
-                    field.distinct_degrees(factor).into_iter().map(|(_, d)| d).collect();
+                let degrees: Vec<usize> = field
+                    .distinct_degrees(factor)
+                    .into_iter()
+                    .map(|(_, d)| d)
+                    .collect();
                 assert_eq!(degrees, [factor.len() - 1]);
             }
             let root = field.some_root(&p).expect("1 is a root");

@@ -33,7 +33,10 @@ impl Diagnostic {
     /// The column of the fault in characters, from 1.
     pub fn column(&self) -> usize {
         let before = self.before();
-        before[before.rfind('\n').map_or(0, |at| at + 1)..].chars().count() + 1
+        before[before.rfind('\n').map_or(0, |at| at + 1)..]
+            .chars()
+            .count()
+            + 1
     }
 
     fn before(&self) -> &str {
@@ -43,7 +46,10 @@ impl Diagnostic {
 
 /// The last character boundary that is not past the byte.
 fn floor(text: &str, byte: usize) -> usize {
-    (0..=byte.min(text.len())).rev().find(|at| text.is_char_boundary(*at)).unwrap_or(0)
+    (0..=byte.min(text.len()))
+        .rev()
+        .find(|at| text.is_char_boundary(*at))
+        .unwrap_or(0)
 }
 
 /// A span inside the text, on character boundaries.
@@ -58,12 +64,18 @@ impl fmt::Display for Diagnostic {
         let primary = AnnotationKind::Primary.span(within(&self.source, &self.span));
         let mut snippet = Snippet::source(self.source.as_str())
             .path(self.file.as_str())
-            .annotation(if self.label.is_empty() { primary } else { primary.label(self.label.as_str()) });
+            .annotation(if self.label.is_empty() {
+                primary
+            } else {
+                primary.label(self.label.as_str())
+            });
         for (span, label) in &self.context {
             let place = AnnotationKind::Context.span(within(&self.source, span));
             snippet = snippet.annotation(place.label(label.as_str()));
         }
-        let mut group = Level::ERROR.primary_title(self.message.as_str()).element(snippet);
+        let mut group = Level::ERROR
+            .primary_title(self.message.as_str())
+            .element(snippet);
         if !self.help.is_empty() {
             group = group.element(Level::HELP.message(self.help.as_str()));
         }
@@ -90,7 +102,13 @@ mod tests {
     #[test]
     fn the_text_names_file_line_column_and_shows_the_line() {
         let shown = sample("title = \"é\"\nform = \"1/0\"\n", 22..23).to_string();
-        for part in ["error: something is wrong", "quay.toml:2:10", "form = \"1/0\"", "^ here", "help: write"] {
+        for part in [
+            "error: something is wrong",
+            "quay.toml:2:10",
+            "form = \"1/0\"",
+            "^ here",
+            "help: write",
+        ] {
             assert!(shown.contains(part), "{part} in\n{shown}");
         }
     }

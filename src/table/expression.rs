@@ -169,7 +169,9 @@ impl Evaluator {
         for (argument, root) in &mut self.square_roots {
             (*argument, *root) = (moved(argument), moved(root));
         }
-        self.chosen_roots.iter_mut().for_each(|(_, _, root)| *root = moved(root));
+        self.chosen_roots
+            .iter_mut()
+            .for_each(|(_, _, root)| *root = moved(root));
         if !self.field.is_rational() {
             self.earlier.push((self.field.clone(), image));
         }

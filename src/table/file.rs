@@ -55,13 +55,17 @@ pub enum TableFileError {
         reason: std::io::Error,
     },
     /// The file is too large.
-    #[error("{file}: this file is larger than {LARGEST_FILE} bytes, the most that a table file can have")]
+    #[error(
+        "{file}: this file is larger than {LARGEST_FILE} bytes, the most that a table file can have"
+    )]
     TooLarge {
         /// The name as given.
         file: String,
     },
     /// The file is no text.
-    #[error("{file}: this is not a text file in UTF-8: byte {offset} fits no character; write the table in a plain text editor")]
+    #[error(
+        "{file}: this is not a text file in UTF-8: byte {offset} fits no character; write the table in a plain text editor"
+    )]
     NotText {
         /// The name as given.
         file: String,
@@ -85,7 +89,10 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
     };
     let handle = std::fs::File::open(path).map_err(unreadable)?;
     let mut bytes = Vec::new();
-    handle.take(LARGEST_FILE as u64 + 1).read_to_end(&mut bytes).map_err(unreadable)?;
+    handle
+        .take(LARGEST_FILE as u64 + 1)
+        .read_to_end(&mut bytes)
+        .map_err(unreadable)?;
     if bytes.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge { file });
     }
@@ -102,7 +109,9 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
 /// As [`TableFileError`] says, except for reading.
 pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError> {
     if text.len() > LARGEST_FILE {
-        return Err(TableFileError::TooLarge { file: file_name.into() });
+        return Err(TableFileError::TooLarge {
+            file: file_name.into(),
+        });
     }
     let text = text.strip_prefix('\u{feff}').unwrap_or(text);
     if let Some(offset) = text.find('\0') {
@@ -111,9 +120,10 @@ pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError>
             offset,
         });
     }
-    let stem = Path::new(file_name)
-        .file_stem()
-        .map_or_else(|| file_name.to_string(), |s| s.to_string_lossy().into_owned());
+    let stem = Path::new(file_name).file_stem().map_or_else(
+        || file_name.to_string(),
+        |s| s.to_string_lossy().into_owned(),
+    );
     let table = read::table(file_name, text, &stem).map_err(TableFileError::Fault)?;
     let mut notices = Vec::new();
     if table.turned_round() {

@@ -8,9 +8,7 @@
 
 use super::Vector;
 use crate::number::adjoin::AdjoinFault;
-use crate::number::cosine::{
-    cosine_field, generator_of, multiple_angle, reduced_angle,
-};
+use crate::number::cosine::{cosine_field, generator_of, multiple_angle, reduced_angle};
 use crate::number::{Field, Real};
 use rug::{Integer, Rational};
 
@@ -59,21 +57,30 @@ impl Cosines {
 pub fn regular(k: u32) -> Result<Shape, AdjoinFault> {
     assert!(k >= 3, "a polygon has at least three corners");
     let cosines = Cosines::new(k)?;
-    let cos = |j: u32| cosines.of(&Rational::from((j, k)));
-    // sin(2πj/k) / sin(2π/k) by s_{j+1} = 2c·s_j − s_{j−1}.
-    let twice = cos(1) * Real::from(2);
-    let mut heights = vec![Real::from(0), Real::from(1)];
+    let cosine = cosines.of(&Rational::from((1, k)));
+    let twice = &cosine * Real::from(2);
+    // cos(2πj/k), and sin(2πj/k)/sin(2π/k), both by a_{j+1} = 2c·a_j − a_{j−1}.
+    let mut points = vec![
+        (Real::from(1), Real::from(0)),
+        (cosine.clone(), Real::from(1)),
+    ];
     for j in 2..k as usize {
-        heights.push(&twice * &heights[j - 1] - &heights[j - 2]);
+        let ((x, y), (x_before, y_before)) = (&points[j - 1], &points[j - 2]);
+        points.push((&twice * x - x_before, &twice * y - y_before));
     }
     let (unit, form) = if k.is_multiple_of(4) {
         let quarter = Rational::from((1, 4));
-        (cosines.of(&(quarter - Rational::from((1, k)))), Real::from(1))
+        (
+            cosines.of(&(quarter - Rational::from((1, k)))),
+            Real::from(1),
+        )
     } else {
-        let cosine = cos(1);
         without_square(Real::from(1) - &cosine * &cosine)
     };
-    let corners = (0..k).map(|j| Vector::new(cos(j), &heights[j as usize] * &unit)).collect();
+    let corners = points
+        .into_iter()
+        .map(|(x, y)| Vector::new(x, y * &unit))
+        .collect();
     Ok(Shape { corners, form })
 }
 
@@ -88,14 +95,19 @@ pub fn regular(k: u32) -> Result<Shape, AdjoinFault> {
 pub fn triangle(proportions: &[Rational; 3]) -> Result<Shape, AdjoinFault> {
     assert!(proportions.iter().all(|p| *p > 0), "angles are positive");
     let total: Rational = proportions.iter().sum();
-    let shares: Vec<Rational> = proportions.iter().map(|p| Rational::from(p / &total)).collect();
+    let shares: Vec<Rational> = proportions
+        .iter()
+        .map(|p| Rational::from(p / &total))
+        .collect();
     let mut order = Integer::from(1);
     shares.iter().for_each(|share| order.lcm_mut(share.denom()));
     let s = match order.to_u32() {
         Some(s) => s,
         // Reducing the finest angle gives the refusal with its degree.
-        None => return Err(reduced_angle(&Rational::from((Integer::from(1), order)))
-            .expect_err("an order past 32 bits")),
+        None => {
+            return Err(reduced_angle(&Rational::from((Integer::from(1), order)))
+                .expect_err("an order past 32 bits"));
+        }
     };
     let cosines = Cosines::new(s)?;
     let cos = |turns: Rational| cosines.of(&turns);
@@ -104,7 +116,9 @@ pub fn triangle(proportions: &[Rational; 3]) -> Result<Shape, AdjoinFault> {
     let [a, b, c]: [Real; 3] = std::array::from_fn(|i| cos(shares[i].clone()));
     let half = Real::from(Rational::from((1, 2)));
     // sin A·cos… : x = cos A·sin B / sin C = 1/2 + (cos 2A − cos 2B) / (2(1 − cos 2C)).
-    let below = (&one - &c).inverse().expect("an angle strictly between 0 and π");
+    let below = (&one - &c)
+        .inverse()
+        .expect("an angle strictly between 0 and π");
     let x = &half + &half * (&a - &b) * &below;
     let (y, form) = if s.is_multiple_of(4) {
         (height(&shares, s, &cos, &below), one)
@@ -148,7 +162,9 @@ fn height(
 /// (u, g₀) with u²·g₀ = g: for a rational g a squarefree integer g₀ as far as trial division finds squares,
 /// otherwise u = 1.
 fn without_square(g: Real) -> (Real, Real) {
-    let Some(value) = g.to_rational() else { return (Real::from(1), g) };
+    let Some(value) = g.to_rational() else {
+        return (Real::from(1), g);
+    };
     // n/d = n·d/d²
     let mut kernel = Integer::from(value.numer() * value.denom());
     let mut outside = Integer::from(1);
@@ -172,11 +188,19 @@ mod tests {
 
     fn plane(shape: &Shape) -> Vec<(f64, f64)> {
         let unit = shape.form.to_f64().sqrt();
-        shape.corners.iter().map(|c| (c.x.to_f64(), c.y.to_f64() * unit)).collect()
+        shape
+            .corners
+            .iter()
+            .map(|c| (c.x.to_f64(), c.y.to_f64() * unit))
+            .collect()
     }
 
     fn degree(shape: &Shape) -> usize {
-        let numbers = shape.corners.iter().flat_map(|c| [&c.x, &c.y]).chain([&shape.form]);
+        let numbers = shape
+            .corners
+            .iter()
+            .flat_map(|c| [&c.x, &c.y])
+            .chain([&shape.form]);
         numbers.map(|n| n.field().degree()).max().unwrap()
     }
 
@@ -187,10 +211,17 @@ mod tests {
                 continue;
             }
             let shape = regular(k).unwrap();
-            assert_eq!(degree(&shape), crate::number::cosine::cosine_degree(k).max(1), "k = {k}");
+            assert_eq!(
+                degree(&shape),
+                crate::number::cosine::cosine_degree(k).max(1),
+                "k = {k}"
+            );
             for (j, (x, y)) in plane(&shape).into_iter().enumerate() {
                 let angle = TAU * j as f64 / f64::from(k);
-                assert!((x - angle.cos()).abs() + (y - angle.sin()).abs() < 1e-12, "k = {k}");
+                assert!(
+                    (x - angle.cos()).abs() + (y - angle.sin()).abs() < 1e-12,
+                    "k = {k}"
+                );
             }
             for corner in &shape.corners {
                 let norm = &corner.x * &corner.x + &shape.form * &corner.y * &corner.y;
@@ -216,7 +247,11 @@ mod tests {
                     };
                     for (i, share) in [a, b, c].into_iter().enumerate() {
                         let expected = PI * share as f64 / (a + b + c) as f64;
-                        assert!((at(i) - expected).abs() < 1e-9, "{a} {b} {c} at {i}: {}", at(i));
+                        assert!(
+                            (at(i) - expected).abs() < 1e-9,
+                            "{a} {b} {c} at {i}: {}",
+                            at(i)
+                        );
                     }
                 }
             }
@@ -225,7 +260,12 @@ mod tests {
 
     #[test]
     fn familiar_triangles_are_rational() {
-        for (proportions, form) in [([1, 1, 1], 3), ([2, 1, 1], 1), ([1, 1, 2], 1), ([1, 2, 3], 3)] {
+        for (proportions, form) in [
+            ([1, 1, 1], 3),
+            ([2, 1, 1], 1),
+            ([1, 1, 2], 1),
+            ([1, 2, 3], 3),
+        ] {
             let shape = triangle(&proportions.map(Rational::from)).unwrap();
             assert_eq!(shape.form, Real::from(form), "{proportions:?}");
             assert_eq!(degree(&shape), 1);
@@ -236,7 +276,10 @@ mod tests {
 
     #[test]
     fn fields_too_large_are_refused() {
-        assert!(matches!(regular(251), Err(AdjoinFault::DegreeTooLarge { degree: 125 })));
+        assert!(matches!(
+            regular(251),
+            Err(AdjoinFault::DegreeTooLarge { degree: 125 })
+        ));
         let huge = Rational::from((1, 1_000_000_007_i64));
         let refused = triangle(&[huge, Rational::from(1), Rational::from(2)]);
         assert!(matches!(refused, Err(AdjoinFault::DegreeTooLarge { .. })));

@@ -1,7 +1,8 @@
 //! Which polygons are tables.
 //!
 //! A table is a simple polygon: sides meet only at common corners, no corner repeats, none is straight.
-//! All tests are exact orientations and comparisons in the table's field. Cost: k²/2 pairs of sides.
+//! All tests are exact orientations and comparisons in the table's field; a floating-point filter with a
+//! proved bound decides most of them. Cost: k²/2 pairs of sides.
 
 use super::{MOST_SIDES, Vector, orientation};
 use crate::number::{Real, Sign};
@@ -163,30 +164,74 @@ fn check_corners(corners: &[Vector]) -> Result<(), TableFault> {
     Ok(())
 }
 
+/// The corners with floating-point copies of them.
+struct Outline<'a> {
+    corners: &'a [Vector],
+    copies: Vec<(f64, f64)>,
+    /// A determinant of the copies beyond this has the right sign.
+    error: f64,
+}
+
+impl<'a> Outline<'a> {
+    /// The bound: let M be the largest absolute value of a copy. [`Real::to_f64`] is the nearest number or
+    /// a neighbour, so a copy is off by at most 2⁻⁵¹·M, a difference of two by 5·2⁻⁵²·M (its own rounding
+    /// included), a product of two differences by 22·2⁻⁵²·M², and the difference of two products, itself
+    /// rounded, by 48·2⁻⁵²·M² < 2⁻⁴⁶·M².
+    fn new(corners: &'a [Vector]) -> Outline<'a> {
+        let copies: Vec<(f64, f64)> =
+            corners.iter().map(|c| (c.x.to_f64(), c.y.to_f64())).collect();
+        let largest = copies.iter().fold(0.0_f64, |m, (x, y)| m.max(x.abs()).max(y.abs()));
+        let bound = largest * largest * (-46_f64).exp2();
+        // Out of the range of normal numbers the bound does not hold: always take the exact route.
+        let error = if bound.is_normal() { bound } else { f64::INFINITY };
+        Outline {
+            corners,
+            copies,
+            error,
+        }
+    }
+
+    fn orientation(&self, a: usize, b: usize, c: usize) -> Sign {
+        let [(ax, ay), (bx, by), (cx, cy)] = [a, b, c].map(|i| self.copies[i]);
+        let determinant = (bx - ax) * (cy - ay) - (by - ay) * (cx - ax);
+        if determinant > self.error {
+            Sign::Positive
+        } else if determinant < -self.error {
+            Sign::Negative
+        } else {
+            orientation(&self.corners[a], &self.corners[b], &self.corners[c])
+        }
+    }
+
+    /// True when corner c lies strictly inside the segment from corner a to corner b.
+    fn on_segment(&self, a: usize, b: usize, c: usize) -> bool {
+        self.orientation(a, b, c) == Sign::Zero
+            && strictly_between(&self.corners[a], &self.corners[b], &self.corners[c])
+    }
+
+    /// True when the segments ab and cd cross at a point inside both.
+    fn cross_properly(&self, [a, b]: [usize; 2], [c, d]: [usize; 2]) -> bool {
+        let opposite = |s: Sign, t: Sign| s != Sign::Zero && s == t.flip();
+        opposite(self.orientation(a, b, c), self.orientation(a, b, d))
+            && opposite(self.orientation(c, d, a), self.orientation(c, d, b))
+    }
+}
+
 fn check_sides(corners: &[Vector]) -> Result<(), TableFault> {
     let k = corners.len();
+    let outline = Outline::new(corners);
+    let ends = |side: usize| [side, (side + 1) % k];
     for first in 0..k {
-        let (a, b) = (&corners[first], &corners[(first + 1) % k]);
         for second in first + 1..k {
-            let (c, d) = (&corners[second], &corners[(second + 1) % k]);
-            let ends = [second, (second + 1) % k];
-            for (index, point) in ends.into_iter().zip([c, d]) {
-                if index != first && index != (first + 1) % k && on_segment(a, b, point) {
-                    return Err(TableFault::CornerOnSide {
-                        corner: index,
-                        side: first,
-                    });
+            for (side, other) in [(first, second), (second, first)] {
+                let [a, b] = ends(side);
+                for corner in ends(other) {
+                    if corner != a && corner != b && outline.on_segment(a, b, corner) {
+                        return Err(TableFault::CornerOnSide { corner, side });
+                    }
                 }
             }
-            for (index, point) in [first, (first + 1) % k].into_iter().zip([a, b]) {
-                if !ends.contains(&index) && on_segment(c, d, point) {
-                    return Err(TableFault::CornerOnSide {
-                        corner: index,
-                        side: second,
-                    });
-                }
-            }
-            if cross_properly(a, b, c, d) {
+            if outline.cross_properly(ends(first), ends(second)) {
                 return Err(TableFault::SidesCross { first, second });
             }
         }
@@ -198,17 +243,6 @@ fn check_sides(corners: &[Vector]) -> Result<(), TableFault> {
 fn strictly_between(a: &Vector, b: &Vector, c: &Vector) -> bool {
     let inside = |p: &Real, q: &Real, r: &Real| (p < r && r < q) || (q < r && r < p);
     inside(&a.x, &b.x, &c.x) || inside(&a.y, &b.y, &c.y)
-}
-
-fn on_segment(a: &Vector, b: &Vector, c: &Vector) -> bool {
-    orientation(a, b, c) == Sign::Zero && strictly_between(a, b, c)
-}
-
-/// True when the segments ab and cd cross at a point inside both.
-fn cross_properly(a: &Vector, b: &Vector, c: &Vector, d: &Vector) -> bool {
-    let opposite = |s: Sign, t: Sign| s != Sign::Zero && s == t.flip();
-    opposite(orientation(a, b, c), orientation(a, b, d))
-        && opposite(orientation(c, d, a), orientation(c, d, b))
 }
 
 /// The corner that is least in (x, y) order is convex; the turn there is the turn of the polygon.

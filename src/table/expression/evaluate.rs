@@ -4,7 +4,7 @@ use super::parser::{Kind, Node};
 use super::{Evaluator, ExpressionFault, LARGEST_EXPONENT, MOST_BITS, root};
 use crate::number::adjoin::{AdjoinFault, Adjoined, adjoin_root};
 use crate::number::cosine;
-use crate::number::{Real, Sign};
+use crate::number::{Field, Real, Sign};
 use rug::{Integer, Rational};
 use std::ops::Range;
 
@@ -60,7 +60,9 @@ fn value(evaluator: &mut Evaluator, node: &Node) -> Outcome<Value> {
 pub(super) fn unknown_name(name: &str, span: &Range<usize>) -> ExpressionFault {
     let help = match name {
         "x" => "`x` stands only in the polynomial of `root(polynomial, value)`".to_string(),
-        _ if FUNCTIONS.contains(&name) => format!("write its argument in parentheses: `{name}(...)`"),
+        _ if FUNCTIONS.contains(&name) => {
+            format!("write its argument in parentheses: `{name}(...)`")
+        }
         _ if name.eq_ignore_ascii_case("pi") => "write `pi`".to_string(),
         _ => format!("known are `pi` and the functions {}", FUNCTIONS.join(", ")),
     };
@@ -77,9 +79,10 @@ fn sum(evaluator: &mut Evaluator, terms: &[(bool, Node)]) -> Outcome<Value> {
         };
         total = Some(match (total, term) {
             (None, term) => term,
-            (Some(Value::Number(a)), Value::Number(b)) => {
-                Value::Number(bounded(evaluator.lift(&a) + evaluator.lift(&b), &node.span)?)
-            }
+            (Some(Value::Number(a)), Value::Number(b)) => Value::Number(bounded(
+                evaluator.lift(&a) + evaluator.lift(&b),
+                &node.span,
+            )?),
             (Some(Value::Angle(a)), Value::Angle(b)) => Value::Angle(a + b),
             // Zero is a multiple of π too.
             (Some(Value::Number(a)), Value::Angle(b)) if a.is_zero() => Value::Angle(b),
@@ -105,23 +108,23 @@ fn product(evaluator: &mut Evaluator, factors: &[(bool, Node)]) -> Outcome<Value
             continue;
         };
         total = Some(match (before, factor, divide) {
-            (Value::Number(a), Value::Number(b), false) => {
-                Value::Number(bounded(evaluator.lift(&a) * evaluator.lift(&b), &node.span)?)
-            }
+            (Value::Number(a), Value::Number(b), false) => Value::Number(bounded(
+                evaluator.lift(&a) * evaluator.lift(&b),
+                &node.span,
+            )?),
             (Value::Number(a), Value::Number(b), true) => {
                 let (a, b) = (evaluator.lift(&a), evaluator.lift(&b));
                 Value::Number(bounded(a * inverse(&b, &node.span)?, &node.span)?)
             }
-            (Value::Angle(a), Value::Number(b), false) | (Value::Number(b), Value::Angle(a), false) => {
+            (Value::Angle(a), Value::Number(b), false)
+            | (Value::Number(b), Value::Angle(a), false) => {
                 Value::Angle(a * rational_part(&b, &node.span)?)
             }
             (Value::Angle(a), Value::Number(b), true) => {
                 let b = inverse(&evaluator.lift(&b), &node.span)?;
                 Value::Angle(a * rational_part(&b, &node.span)?)
             }
-            (Value::Angle(a), Value::Angle(b), true) if b != 0 => {
-                Value::Number(Real::from(Rational::from(a / b)))
-            }
+            (Value::Angle(a), Value::Angle(b), true) if b != 0 => Value::Number(Real::from(a / b)),
             (_, Value::Angle(_), _) => {
                 return Err(ExpressionFault::new(
                     &node.span,
@@ -146,14 +149,24 @@ fn rational_part(number: &Real, span: &Range<usize>) -> Outcome<Rational> {
 
 fn inverse(number: &Real, span: &Range<usize>) -> Outcome<Real> {
     number.inverse().ok_or_else(|| {
-        ExpressionFault::new(span, "division by exact zero", "the divisor must not be zero")
+        ExpressionFault::new(
+            span,
+            "division by exact zero",
+            "the divisor must not be zero",
+        )
     })
 }
 
 /// The longest coordinate or denominator, in bits.
 fn bits(number: &Real) -> usize {
-    let longest = number.coordinates().iter().map(Integer::significant_bits).max();
-    longest.unwrap_or(0).max(number.denominator().significant_bits()) as usize
+    let longest = number
+        .coordinates()
+        .iter()
+        .map(Integer::significant_bits)
+        .max();
+    longest
+        .unwrap_or(0)
+        .max(number.denominator().significant_bits()) as usize
 }
 
 /// Refuses a number that would make later steps slow; brings a rational one back to ℚ.
@@ -177,31 +190,47 @@ fn too_long(span: &Range<usize>) -> ExpressionFault {
 
 pub(super) fn integer_exponent(evaluator: &mut Evaluator, node: &Node) -> Outcome<i32> {
     let exponent = number(evaluator, node)?;
-    let whole = exponent.to_rational().filter(|e| e.is_integer()).ok_or_else(|| {
-        ExpressionFault::new(
-            &node.span,
-            "an exponent must be an integer",
-            "write `sqrt(a)` for `a^(1/2)`, and `root(x^3 - 2, 1.26)` for other roots",
-        )
-    })?;
+    let whole = exponent
+        .to_rational()
+        .filter(|e| e.is_integer())
+        .ok_or_else(|| {
+            ExpressionFault::new(
+                &node.span,
+                "an exponent must be an integer",
+                "write `sqrt(a)` for `a^(1/2)`, and `root(x^3 - 2, 1.26)` for other roots",
+            )
+        })?;
     let limit = LARGEST_EXPONENT as i32;
-    whole.numer().to_i32().filter(|e| (-limit..=limit).contains(e)).ok_or_else(|| {
-        ExpressionFault::new(
-            &node.span,
-            "the exponent is too large",
-            format!("write one from -{LARGEST_EXPONENT} to {LARGEST_EXPONENT}"),
-        )
-    })
+    whole
+        .numer()
+        .to_i32()
+        .filter(|e| (-limit..=limit).contains(e))
+        .ok_or_else(|| {
+            ExpressionFault::new(
+                &node.span,
+                "the exponent is too large",
+                format!("write one from -{LARGEST_EXPONENT} to {LARGEST_EXPONENT}"),
+            )
+        })
 }
 
-fn power(base: &Real, exponent: i32, span: &Range<usize>, base_span: &Range<usize>) -> Outcome<Real> {
+fn power(
+    base: &Real,
+    exponent: i32,
+    span: &Range<usize>,
+    base_span: &Range<usize>,
+) -> Outcome<Real> {
     let size = exponent.unsigned_abs();
     let trivial = bits(base) <= 1 && base.field().is_rational();
     if !trivial && bits(base) * base.coordinates().len() * size as usize > MOST_BITS {
         return Err(too_long(span));
     }
     let result = bounded(base.pow(size), span)?;
-    if exponent < 0 { bounded(inverse(&result, base_span)?, span) } else { Ok(result) }
+    if exponent < 0 {
+        bounded(inverse(&result, base_span)?, span)
+    } else {
+        Ok(result)
+    }
 }
 
 fn call(
@@ -222,10 +251,15 @@ fn call(
     }
     let expected = if name == "root" { 2 } else { 1 };
     if arguments.len() != expected {
-        let message = format!("`{name}` takes {expected} argument{}, not {}",
-            if expected == 1 { "" } else { "s" }, arguments.len());
+        let message = format!(
+            "`{name}` takes {expected} argument{}, not {}",
+            if expected == 1 { "" } else { "s" },
+            arguments.len()
+        );
         let help = match name {
-            "root" => "write `root(x^3 - 2, 1.26)`: a polynomial in x and a value near the root".into(),
+            "root" => {
+                "write `root(x^3 - 2, 1.26)`: a polynomial in x and a value near the root".into()
+            }
             _ => format!("write `{name}(...)` with one expression inside"),
         };
         return Err(ExpressionFault::new(span, message, help));
@@ -293,16 +327,21 @@ fn cosine(evaluator: &mut Evaluator, turns: &Rational, span: &Range<usize>) -> O
     let (negative, p, q) = cosine::reduced_angle(turns).map_err(fault)?;
     let generator = twice_cosine(evaluator, q).map_err(fault)?;
     let half = Rational::from((if negative { -1 } else { 1 }, 2));
-    bounded(cosine::multiple_angle(&generator, p) * Real::from(half), span)
+    bounded(
+        cosine::multiple_angle(&generator, p) * Real::from(half),
+        span,
+    )
 }
 
 /// 2cos(2π/q) in the evaluator's field, grown if need be.
 fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> {
-    let rationals = crate::number::Field::rationals();
     if cosine::cosine_degree(q) == 1 {
-        return Ok(cosine::generator_of(&rationals, q));
+        return Ok(cosine::generator_of(&Field::rationals(), q));
     }
-    let known = evaluator.cosines.iter().find(|(known, _)| known.is_multiple_of(q));
+    let known = evaluator
+        .cosines
+        .iter()
+        .find(|(known, _)| known.is_multiple_of(q));
     if let Some((known, generator)) = known {
         return Ok(cosine::multiple_angle(generator, known / q));
     }
@@ -323,8 +362,7 @@ fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> 
         evaluator.pure_cosine = Some(q);
         generator
     } else {
-        let polynomial: Vec<Real> =
-            cosine::minimal_polynomial(q).into_iter().map(Real::from).collect();
+        let polynomial = relative_polynomial(evaluator, q)?;
         let approximate = |bits: u32| cosine::twice_cosine_enclosure(1, q, bits);
         let grown = adjoin_root(&evaluator.field, &polynomial, &approximate)?;
         evaluator.grow(grown)
@@ -333,13 +371,58 @@ fn twice_cosine(evaluator: &mut Evaluator, q: u32) -> Result<Real, AdjoinFault> 
     Ok(generator)
 }
 
+/// A polynomial over the evaluator's field with the root 2cos(2π/q), of small degree: the field grows by
+/// the cosines of divisors of q first, so that each step is small.
+///
+/// - q prime: the minimal polynomial.
+/// - q = pᵉ: V_p(x) = 2cos(2π/pᵉ⁻¹), of degree p.
+/// - q = q₁q₂ coprime, 1/q ≡ i/q₁ + j/q₂: with u = 2cos(2πi/q₁) and v = 2cos(2πj/q₂) the two numbers
+///   2cos(a ± b) have sum uv and product u² + v² − 4.
+fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, AdjoinFault> {
+    let prime = (2..)
+        .find(|p| q.is_multiple_of(*p))
+        .expect("q is more than 1");
+    let mut part = prime;
+    while q.is_multiple_of(part * prime) {
+        part *= prime;
+    }
+    let rest = q / part;
+    if rest == 1 && part == prime {
+        return Ok(cosine::minimal_polynomial(q)
+            .into_iter()
+            .map(Real::from)
+            .collect());
+    }
+    if rest == 1 {
+        let below = twice_cosine(evaluator, part / prime)?;
+        let mut polynomial = cosine::multiple_angle_polynomial(prime);
+        polynomial[0] -= below;
+        return Ok(polynomial);
+    }
+    let i = (0..part)
+        .find(|i| (i * rest) % part == 1 % part)
+        .expect("coprime parts");
+    let j = (0..rest)
+        .find(|j| (j * part) % rest == 1 % rest)
+        .expect("coprime parts");
+    twice_cosine(evaluator, part)?;
+    let v = cosine::multiple_angle(&twice_cosine(evaluator, rest)?, j);
+    // Looked up again, since the second may have grown the field.
+    let u = cosine::multiple_angle(&twice_cosine(evaluator, part)?, i);
+    let product = &u * &u + &v * &v - Real::from(4);
+    Ok(vec![product, -(u * v), Real::from(1)])
+}
+
 fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) -> Outcome<Real> {
     match argument.sign() {
         Sign::Zero => return Ok(Real::from(0)),
         Sign::Negative => {
             return Err(ExpressionFault::new(
                 span,
-                format!("the square root of a negative number ({}) is not real", argument.decimal(6)),
+                format!(
+                    "the square root of a negative number ({}) is not real",
+                    argument.decimal(6)
+                ),
                 "write a number that is at least 0",
             ));
         }
@@ -350,10 +433,20 @@ fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) 
         && value.denom().is_perfect_square()
     {
         let root = |n: &Integer| Integer::from(n.sqrt_ref());
-        return Ok(Real::from(Rational::from((root(value.numer()), root(value.denom())))));
+        return Ok(Real::from(Rational::from((
+            root(value.numer()),
+            root(value.denom()),
+        ))));
     }
-    if let Some((_, root)) = evaluator.square_roots.iter().find(|(known, _)| known == argument) {
+    if let Some((_, root)) = evaluator
+        .square_roots
+        .iter()
+        .find(|(known, _)| known == argument)
+    {
         return Ok(root.clone());
+    }
+    if let Some(root) = from_known_roots(evaluator, argument) {
+        return Ok(root);
     }
     if !evaluator.field.is_rational() && bits(argument) * evaluator.field.degree() > MOST_BITS / 2 {
         return Err(too_long(span));
@@ -369,4 +462,32 @@ fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) 
     let root = evaluator.grow(grown);
     evaluator.square_roots.push((argument, root.clone()));
     Ok(root)
+}
+
+/// The square root of a positive rational number that is a square times a product of rational numbers whose
+/// roots are known: √n = √(nΠa)·Π√a / Πa.
+fn from_known_roots(evaluator: &Evaluator, argument: &Real) -> Option<Real> {
+    let wanted = argument.to_rational()?;
+    let known: Vec<(Rational, &Real)> = evaluator
+        .square_roots
+        .iter()
+        .filter_map(|(a, root)| Some((a.to_rational()?, root)))
+        .collect();
+    // Each known root at least doubled the degree, or was found here and not kept: there are few.
+    for subset in 1..1u32 << known.len().min(8) {
+        let chosen = || {
+            let members = known.iter().enumerate();
+            members
+                .filter(move |(i, _)| subset >> i & 1 == 1)
+                .map(|(_, k)| k)
+        };
+        let product = chosen().fold(Rational::from(1), |p, (a, _)| p * a);
+        let square = Rational::from(&product * &wanted);
+        if square.numer().is_perfect_square() && square.denom().is_perfect_square() {
+            let root = |n: &Integer| Integer::from(n.sqrt_ref());
+            let outside = Rational::from((root(square.numer()), root(square.denom()))) / product;
+            return Some(chosen().fold(Real::from(outside), |r, (_, root)| r * *root));
+        }
+    }
+    None
 }

@@ -42,7 +42,11 @@ pub(super) fn tokens(text: &str) -> Result<Vec<(Token, Range<usize>)>, Expressio
             at += 1;
             if text[start..].starts_with("**") {
                 let help = "write `^` for a power";
-                return Err(ExpressionFault::new(&(start..start + 2), "unexpected `**`", help));
+                return Err(ExpressionFault::new(
+                    &(start..start + 2),
+                    "unexpected `**`",
+                    help,
+                ));
             }
             found.push((Token::Mark(c), start..at));
         } else {
@@ -115,10 +119,15 @@ fn number(text: &str, span: Range<usize>) -> Result<Rational, ExpressionFault> {
         Ok(value) if value.unsigned_abs() <= u64::from(LARGEST_EXPONENT) => value,
         _ => {
             let message = "the power of ten of a number is too large".into();
-            return fault(message, format!("write one from -{LARGEST_EXPONENT} to {LARGEST_EXPONENT}"));
+            return fault(
+                message,
+                format!("write one from -{LARGEST_EXPONENT} to {LARGEST_EXPONENT}"),
+            );
         }
     };
-    let digits: Integer = format!("{whole}{fraction}").parse().expect("decimal digits");
+    let digits: Integer = format!("{whole}{fraction}")
+        .parse()
+        .expect("decimal digits");
     let power = exponent - fraction.len() as i64;
     let scale = Integer::from(10).pow(power.unsigned_abs() as u32);
     Ok(if power >= 0 {

@@ -44,7 +44,11 @@ pub(super) fn parse(text: &str) -> Result<Node, ExpressionFault> {
     };
     if parser.tokens.is_empty() {
         let help = "write a number, such as `3/4` or `sqrt(2)`";
-        return Err(ExpressionFault::new(&(0..text.len()), "the expression is empty", help));
+        return Err(ExpressionFault::new(
+            &(0..text.len()),
+            "the expression is empty",
+            help,
+        ));
     }
     let tree = parser.sum()?;
     match parser.tokens.get(parser.next) {
@@ -89,7 +93,9 @@ impl Parser {
     }
 
     fn here(&self) -> Range<usize> {
-        self.tokens.get(self.next).map_or(self.end..self.end, |(_, span)| span.clone())
+        self.tokens
+            .get(self.next)
+            .map_or(self.end..self.end, |(_, span)| span.clone())
     }
 
     /// Runs a rule one level deeper.
@@ -236,7 +242,11 @@ impl Parser {
                 self.next += 1;
                 Ok(span.end)
             }
-            None => Err(ExpressionFault::new(open, "this `(` is never closed", "add a `)`")),
+            None => Err(ExpressionFault::new(
+                open,
+                "this `(` is never closed",
+                "add a `)`",
+            )),
             Some((token, span)) => Err(left_over(token, span)),
         }
     }

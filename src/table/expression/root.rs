@@ -42,14 +42,19 @@ pub(super) fn nearest(
     }
     let p = squarefree_part(&cleared(&coefficients));
     let size: usize = p.iter().map(|c| c.significant_bits() as usize).sum();
-    if size > MOST_BITS || value.numer().significant_bits() + value.denom().significant_bits() > 8192 {
+    if size > MOST_BITS
+        || value.numer().significant_bits() + value.denom().significant_bits() > 8192
+    {
         return Err(ExpressionFault::new(
             &polynomial.span,
             "the numbers in this root are too long",
             "use shorter coefficients and a shorter value",
         ));
     }
-    let known = evaluator.chosen_roots.iter().find(|(q, near, _)| *q == p && *near == value);
+    let known = evaluator
+        .chosen_roots
+        .iter()
+        .find(|(q, near, _)| *q == p && *near == value);
     if let Some((_, _, root)) = known {
         return Ok(root.clone());
     }
@@ -163,7 +168,9 @@ fn reflected(p: &[Integer], v: &Rational) -> Vec<Integer> {
 fn cleared(p: &[Rational]) -> Vec<Integer> {
     let mut den = Integer::from(1);
     p.iter().for_each(|c| den.lcm_mut(c.denom()));
-    p.iter().map(|c| Rational::from(c * &den).into_numer_denom().0).collect()
+    p.iter()
+        .map(|c| Rational::from(c * &den).into_numer_denom().0)
+        .collect()
 }
 
 fn product(a: &[Rational], b: &[Rational]) -> Vec<Rational> {
@@ -199,18 +206,24 @@ fn rational_polynomial(
                 format!("polynomials of degree at most {LARGEST_DEGREE} are supported"),
             ));
         }
-        let bits = |c: &Rational| (c.numer().significant_bits() + c.denom().significant_bits()) as usize;
+        let bits =
+            |c: &Rational| (c.numer().significant_bits() + c.denom().significant_bits()) as usize;
         if p.iter().map(bits).sum::<usize>() > MOST_BITS {
             let help = "use shorter numbers or smaller exponents";
-            return Err(ExpressionFault::new(&node.span, "the coefficients are too long", help));
+            return Err(ExpressionFault::new(
+                &node.span,
+                "the coefficients are too long",
+                help,
+            ));
         }
         Ok(trimmed(p))
     };
     match &node.kind {
         Kind::Name(name) if name == "x" => Ok(vec![Rational::new(), Rational::from(1)]),
-        Kind::Negated(inner) => {
-            Ok(rational_polynomial(evaluator, inner)?.into_iter().map(|c| -c).collect())
-        }
+        Kind::Negated(inner) => Ok(rational_polynomial(evaluator, inner)?
+            .into_iter()
+            .map(|c| -c)
+            .collect()),
         Kind::Sum(terms) => {
             let mut total: Vec<Rational> = Vec::new();
             for (subtract, term) in terms {
@@ -231,11 +244,19 @@ fn rational_polynomial(
                     (true, [c]) => total.iter().map(|t| Rational::from(t / c)).collect(),
                     (true, []) => {
                         let help = "the divisor must not be zero";
-                        return Err(ExpressionFault::new(&part.span, "division by exact zero", help));
+                        return Err(ExpressionFault::new(
+                            &part.span,
+                            "division by exact zero",
+                            help,
+                        ));
                     }
                     (true, _) => {
                         let help = "divide by numbers only, or multiply out";
-                        return Err(ExpressionFault::new(&part.span, "this is no polynomial", help));
+                        return Err(ExpressionFault::new(
+                            &part.span,
+                            "this is no polynomial",
+                            help,
+                        ));
                     }
                 };
             }
@@ -247,7 +268,11 @@ fn rational_polynomial(
                 let exponent_value = integer_exponent(evaluator, exponent)?;
                 if exponent_value < 0 {
                     let help = "use exponents from 0 up in the polynomial";
-                    return Err(ExpressionFault::new(&exponent.span, "this is no polynomial", help));
+                    return Err(ExpressionFault::new(
+                        &exponent.span,
+                        "this is no polynomial",
+                        help,
+                    ));
                 }
                 let mut total = vec![Rational::from(1)];
                 for _ in 0..exponent_value {

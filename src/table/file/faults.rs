@@ -23,7 +23,10 @@ impl Layout {
     /// "side b, from corner 1 to corner 2".
     fn side(&self, side: usize) -> String {
         let next = (side + 1) % self.corners.len();
-        format!("side {}, from corner {side} to corner {next}", self.letters[side])
+        format!(
+            "side {}, from corner {side} to corner {next}",
+            self.letters[side]
+        )
     }
 
     /// The corners at the two ends of a side.
@@ -37,9 +40,11 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
     let counting = "(counting from 0)";
     let at = |corner: usize| layout.corners[corner].clone();
     match *fault {
-        TableFault::TooFewCorners { .. } | TableFault::TooManyCorners { .. } => {
-            source.diagnostic(&layout.all, fault.to_string(), "write one pair for each corner")
-        }
+        TableFault::TooFewCorners { .. } | TableFault::TooManyCorners { .. } => source.diagnostic(
+            &layout.all,
+            fault.to_string(),
+            "write one pair for each corner",
+        ),
         TableFault::ZeroArea => source.diagnostic(
             &layout.all,
             fault.to_string(),
@@ -55,7 +60,11 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
             fault.to_string(),
             "write one letter for each side",
         ),
-        TableFault::RepeatedLetter { first, second, letter } => {
+        TableFault::RepeatedLetter {
+            first,
+            second,
+            letter,
+        } => {
             let span = |side: usize| layout.letter_spans.get(side).unwrap_or(&layout.all).clone();
             let mut found = source.diagnostic(
                 &span(second),
@@ -88,7 +97,11 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
         TableFault::SidesCross { first, second } => {
             let mut found = source.diagnostic(
                 &at(second),
-                format!("{} and {} {counting} cross", layout.side(first), layout.side(second)),
+                format!(
+                    "{}, and {} {counting}, cross",
+                    layout.side(first),
+                    layout.side(second)
+                ),
                 "write the corners in the order in which they follow each other round the table",
             );
             found.label = format!("corner {second}");
@@ -101,7 +114,10 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
             let written = source.text.get(at(corner)).unwrap_or_default();
             let mut help = format!("remove corner {corner}, {written}: the table stays the same");
             if !layout.letter_spans.is_empty() {
-                help += &format!("; and remove a letter, `{}`, from `sides`", layout.letters[corner]);
+                help += &format!(
+                    "; and remove a letter, `{}`, from `sides`",
+                    layout.letters[corner]
+                );
             }
             let message = format!(
                 "corner {corner} {counting} is straight: it lies on the segment between its neighbours"
@@ -113,7 +129,7 @@ pub(super) fn diagnostic(source: Source, layout: &Layout, fault: &TableFault) ->
         TableFault::FoldedCorner { corner } => {
             let k = layout.corners.len();
             let message = format!(
-                "at corner {corner} {counting} the boundary turns back: {} runs back along side {}",
+                "at corner {corner} {counting} the boundary turns back: {}, runs along side {}",
                 layout.side(corner),
                 layout.letters[(corner + k - 1) % k],
             );
@@ -141,7 +157,9 @@ fn add_corners(found: &mut Diagnostic, layout: &Layout, corners: &[usize], excep
     for &corner in corners {
         if !seen.contains(&corner) {
             seen.push(corner);
-            found.context.push((layout.corners[corner].clone(), format!("corner {corner}")));
+            found
+                .context
+                .push((layout.corners[corner].clone(), format!("corner {corner}")));
         }
     }
 }

@@ -15,7 +15,9 @@ type Value<'i> = Spanned<DeValue<'i>>;
 pub(super) type Outcome<T> = Result<T, Box<Diagnostic>>;
 
 const SHAPES: [&str; 3] = ["corners", "triangle", "regular"];
-const KEYS: [&str; 7] = ["title", "about", "corners", "triangle", "regular", "sides", "form"];
+const KEYS: [&str; 7] = [
+    "title", "about", "corners", "triangle", "regular", "sides", "form",
+];
 const RESERVED: [&str; 4] = ["define", "parameters", "outline", "holes"];
 
 /// The text that spans point into.
@@ -64,13 +66,19 @@ pub(super) fn table(file: &str, text: &str, stem: &str) -> Outcome<Table> {
     let document = document.into_inner();
     check_keys(source, &document)?;
     let title = title(source, &document, stem)?;
-    let chosen: Vec<&str> = SHAPES.into_iter().filter(|key| document.contains_key(*key)).collect();
+    let chosen: Vec<&str> = SHAPES
+        .into_iter()
+        .filter(|key| document.contains_key(*key))
+        .collect();
     if let Some((key, _)) = document.get_key_value("form")
         && let [only] = chosen[..]
         && only != "corners"
     {
         let message = format!("`form` goes with `corners`, not with `{}`", chosen[0]);
-        let help = format!("remove this line: `{}` chooses the plane form itself", chosen[0]);
+        let help = format!(
+            "remove this line: `{}` chooses the plane form itself",
+            chosen[0]
+        );
         return source.fault(&key.span(), message, help);
     }
     let get = |key: &str| document.get(key).expect("a key that is there");
@@ -125,7 +133,9 @@ fn check_keys(source: Source, document: &DeTable) -> Outcome<()> {
 /// The known key within two edits, if there is one.
 fn nearest_key(name: &str) -> Option<&'static str> {
     let lower = name.to_lowercase();
-    let nearest = KEYS.into_iter().min_by_key(|key| edit_distance(key, &lower))?;
+    let nearest = KEYS
+        .into_iter()
+        .min_by_key(|key| edit_distance(key, &lower))?;
     (edit_distance(nearest, &lower) <= 2).then_some(nearest)
 }
 
@@ -160,17 +170,29 @@ fn title(source: Source, document: &DeTable, stem: &str) -> Outcome<String> {
     if let Some(about) = document.get("about")
         && about.get_ref().as_str().is_none()
     {
-        let message = format!("`about` must be a string, this is {}", kind(about.get_ref()));
+        let message = format!(
+            "`about` must be a string, this is {}",
+            kind(about.get_ref())
+        );
         return source.fault(&about.span(), message, "write the text in quotes");
     }
-    let Some(value) = document.get("title") else { return Ok(stem.into()) };
+    let Some(value) = document.get("title") else {
+        return Ok(stem.into());
+    };
     let Some(text) = value.get_ref().as_str() else {
-        let message = format!("`title` must be a string, this is {}", kind(value.get_ref()));
+        let message = format!(
+            "`title` must be a string, this is {}",
+            kind(value.get_ref())
+        );
         return source.fault(&value.span(), message, "write the title in quotes");
     };
     if text.chars().any(char::is_control) {
         let message = "the title holds a line break or another control character";
-        return source.fault(&value.span(), message, "write it on one line; longer text goes into `about`");
+        return source.fault(
+            &value.span(),
+            message,
+            "write it on one line; longer text goes into `about`",
+        );
     }
     Ok(text.to_string())
 }
@@ -194,7 +216,10 @@ fn number(source: Source, evaluator: &mut Evaluator, value: &Value, what: &str) 
             let written = source.text.get(span.clone()).unwrap_or(float.as_str());
             let finite = written.chars().any(|c| c.is_ascii_digit());
             let help = if finite {
-                format!("write it in quotes, as the exact decimal \"{}\"", written.replace('_', ""))
+                format!(
+                    "write it in quotes, as the exact decimal \"{}\"",
+                    written.replace('_', "")
+                )
             } else {
                 "write a finite number in quotes".into()
             };
@@ -203,7 +228,11 @@ fn number(source: Source, evaluator: &mut Evaluator, value: &Value, what: &str) 
         }
         other => {
             let message = format!("{what} must be a number, this is {}", kind(other));
-            source.fault(&span, message, "write an exact expression in quotes, such as \"3/4\"")
+            source.fault(
+                &span,
+                message,
+                "write an exact expression in quotes, such as \"3/4\"",
+            )
         }
     }
 }
@@ -217,7 +246,20 @@ fn place_in_string(
     part: &Range<usize>,
 ) -> Range<usize> {
     let raw = &text[string.clone()];
-    let quotes = if raw.starts_with("\"\"\"") || raw.starts_with("'''") { 3 } else { 1 };
+    let mut quotes = if raw.starts_with("\"\"\"") || raw.starts_with("'''") {
+        3
+    } else {
+        1
+    };
+    // A line break right after three quotes is not part of the string.
+    if quotes == 3 {
+        let rest = &raw[3..];
+        quotes += if rest.starts_with("\r\n") {
+            2
+        } else {
+            usize::from(rest.starts_with('\n'))
+        };
+    }
     let start = string.start + quotes;
     if raw.get(quotes..quotes + content.len()) != Some(content) {
         return string.clone();
@@ -229,23 +271,37 @@ fn place_in_string(
     start + part.start..start + part.end
 }
 
-fn array<'v, 'i>(source: Source, value: &'v Value<'i>, what: &str, help: &str) -> Outcome<&'v [Value<'i>]> {
+fn array<'v, 'i>(
+    source: Source,
+    value: &'v Value<'i>,
+    what: &str,
+    help: &str,
+) -> Outcome<&'v [Value<'i>]> {
     match value.get_ref() {
         DeValue::Array(items) => Ok(items),
-        other => {
-            source.fault(&value.span(), format!("{what} must be an array, this is {}", kind(other)), help)
-        }
+        other => source.fault(
+            &value.span(),
+            format!("{what} must be an array, this is {}", kind(other)),
+            help,
+        ),
     }
 }
 
 fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
-    let value = document.get("corners").expect("checked before");
+    let (key, value) = document.get_key_value("corners").expect("checked before");
     let example = "write `corners = [[\"0\", \"0\"], [\"1\", \"0\"], [\"0\", \"1\"]]`";
     let items = array(source, value, "`corners`", example)?;
     // Before the numbers are evaluated: the count bounds the work.
     if items.len() < 3 || items.len() > MOST_SIDES {
-        let message = format!("a table has from 3 to {MOST_SIDES} corners, this one has {}", items.len());
-        return source.fault(&value.span(), message, "write one pair of coordinates for each corner");
+        let message = format!(
+            "a table has from 3 to {MOST_SIDES} corners, this one has {}",
+            items.len()
+        );
+        return source.fault(
+            &key.span(),
+            message,
+            "write one pair of coordinates for each corner",
+        );
     }
     let mut evaluator = Evaluator::default();
     let mut numbers = Vec::new();
@@ -254,7 +310,7 @@ fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
         let what = format!("corner {i} (counting from 0)");
         let pair = array(source, item, &what, help)?;
         if pair.len() != 2 {
-            let message = format!("{what} has {} coordinates instead of 2", pair.len());
+            let message = format!("{what} must have 2 coordinates, here are {}", pair.len());
             return source.fault(&item.span(), message, help);
         }
         for (name, coordinate) in ["first", "second"].into_iter().zip(pair) {
@@ -270,11 +326,13 @@ fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
     let sides = letters(source, document, items.len())?;
     evaluator.finish(&mut numbers);
     let form = numbers.pop().expect("pushed last");
-    let points: Vec<Vector> =
-        numbers.chunks(2).map(|pair| Vector::new(pair[0].clone(), pair[1].clone())).collect();
+    let points: Vec<Vector> = numbers
+        .chunks(2)
+        .map(|pair| Vector::new(pair[0].clone(), pair[1].clone()))
+        .collect();
     let layout = Layout {
         corners: items.iter().map(Spanned::span).collect(),
-        all: value.span(),
+        all: key.span(),
         form: form_span,
         letters: sides.letters.clone(),
         letter_spans: sides.spans,
@@ -332,12 +390,26 @@ fn triangle(source: Source, value: &Value, document: &DeTable, title: &str) -> O
             }
         };
     }
-    shaped(source, value, document, title, shape::triangle(&proportions))
+    shaped(
+        source,
+        value,
+        document,
+        title,
+        shape::triangle(&proportions),
+    )
 }
 
 fn regular(source: Source, value: &Value, document: &DeTable, title: &str) -> Outcome<Table> {
-    let count = number(source, &mut Evaluator::default(), value, "the number of corners")?;
-    let whole = count.to_rational().filter(|c| c.is_integer()).and_then(|c| c.numer().to_u32());
+    let count = number(
+        source,
+        &mut Evaluator::default(),
+        value,
+        "the number of corners",
+    )?;
+    let whole = count
+        .to_rational()
+        .filter(|c| c.is_integer())
+        .and_then(|c| c.numer().to_u32());
     match whole.filter(|k| (3..=MOST_SIDES as u32).contains(k)) {
         Some(k) => shaped(source, value, document, title, shape::regular(k)),
         None => source.fault(
@@ -370,16 +442,25 @@ fn letters(source: Source, document: &DeTable, count: usize) -> Outcome<Sides> {
     };
     for (i, item) in items.iter().enumerate() {
         let Some(text) = item.get_ref().as_str() else {
-            let message = format!("the letter of side {i} must be a string, this is {}", kind(item.get_ref()));
+            let message = format!(
+                "the letter of side {i} must be a string, this is {}",
+                kind(item.get_ref())
+            );
             return source.fault(&item.span(), message, help);
         };
         let mut characters = text.chars();
         let (Some(letter), None) = (characters.next(), characters.next()) else {
-            let message = format!("the letter of side {i} must be one character, this is {}", text.chars().count());
+            let message = format!(
+                "the letter of side {i} must be one character, this is {}",
+                text.chars().count()
+            );
             return source.fault(&item.span(), message, help);
         };
         if !is_letter(letter) {
-            let message = format!("`{}` cannot be the letter of side {i}", letter.escape_debug());
+            let message = format!(
+                "`{}` cannot be the letter of side {i}",
+                letter.escape_debug()
+            );
             let help = "choose a printable character that is no space, comma or quote";
             return source.fault(&item.span(), message, help);
         }
