@@ -17,11 +17,8 @@ use std::ops::Range;
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, options.quiet)?;
-    let table = &loaded.table;
-    let start = Start {
-        aim: parse_aim(table, &options.aim)?,
-        ..parse_start(table, &options.start)?
-    };
+    let (table, start) = parse_launch(&loaded.table, &options.start, &options.aim)?;
+    let table = &table;
     let tables = TraceTables::new(table);
     let mut tracer = Tracer::new(&tables, start).map_err(|f| Fault::BadInput(f.to_string()))?;
     let wants_states = options.format != Format::Text;
@@ -94,7 +91,27 @@ fn fault(option: &str, text: &str, span: Range<usize>, message: String, help: &s
     }))
 }
 
-fn parse_start(table: &Table, text: &str) -> Result<Start, Fault> {
+/// Reads the start and the aim. Their numbers may need a larger field than the table's; the table comes back
+/// written in that field.
+fn parse_launch(table: &Table, start: &str, aim: &str) -> Result<(Table, Start), Fault> {
+    let mut evaluator = Evaluator::new(table.field().clone());
+    let (side, fraction) = parse_start(table, &mut evaluator, start)?;
+    let aim = parse_aim(&mut evaluator, aim)?;
+    let field = evaluator.field().clone();
+    let lifted = |number: &Real| evaluator.lift(number).lifted_to(&field);
+    let start = Start {
+        side,
+        fraction: lifted(&fraction),
+        aim: Vector::new(lifted(&aim.x), lifted(&aim.y)),
+    };
+    Ok((table.in_field(&field, lifted), start))
+}
+
+fn parse_start(
+    table: &Table,
+    evaluator: &mut Evaluator,
+    text: &str,
+) -> Result<(SideId, Real), Fault> {
     let help = "write LETTER@FRACTION, such as a@1/3: a third of the way along side a";
     let Some(at) = text.find('@') else {
         let message = "the start has no `@` between its side and its fraction".into();
@@ -111,33 +128,28 @@ fn parse_start(table: &Table, text: &str) -> Result<Start, Fault> {
         let help = format!("its sides are {}", known.join(", "));
         return Err(fault("--start", text, 0..at, message, &help));
     };
-    let fraction = evaluate(table, "--start", text, at + 1..text.len())?;
-    let start = Start {
-        side,
-        fraction,
-        aim: Vector::new(1.into(), 0.into()),
-    };
-    if start.fraction <= Real::from(0) || start.fraction >= Real::from(1) {
+    let fraction = evaluate(evaluator, "--start", text, at + 1..text.len())?;
+    if fraction <= Real::from(0) || fraction >= Real::from(1) {
         let message = format!(
             "the start must lie inside its side: {} is not strictly between 0 and 1",
             text[at + 1..].trim()
         );
         return Err(fault("--start", text, at + 1..text.len(), message, help));
     }
-    Ok(start)
+    Ok((side, fraction))
 }
 
-fn parse_aim(table: &Table, text: &str) -> Result<Vector, Fault> {
+fn parse_aim(evaluator: &mut Evaluator, text: &str) -> Result<Vector, Fault> {
     let help = "write a vector X,Y in the table's coordinates, such as 2,5 or sqrt(2),1";
     let commas = top_level_commas(text);
     let [comma] = commas[..] else {
         let message = format!("the aim needs two coordinates, this has {}", commas.len() + 1);
         return Err(fault("--aim", text, 0..text.len(), message, help));
     };
-    let aim = Vector::new(
-        evaluate(table, "--aim", text, 0..comma)?,
-        evaluate(table, "--aim", text, comma + 1..text.len())?,
-    );
+    let x = evaluate(evaluator, "--aim", text, 0..comma)?;
+    let y = evaluate(evaluator, "--aim", text, comma + 1..text.len())?;
+    // The second number may have made the field larger.
+    let aim = Vector::new(evaluator.lift(&x), y);
     if aim.is_zero() {
         let message = "the aim is the zero vector, which has no direction".into();
         return Err(fault("--aim", text, 0..text.len(), message, help));
@@ -160,22 +172,17 @@ fn top_level_commas(text: &str) -> Vec<usize> {
     found
 }
 
-/// Evaluates a part of an option's text in the table's field.
-fn evaluate(table: &Table, option: &str, text: &str, part: Range<usize>) -> Result<Real, Fault> {
-    let mut evaluator = Evaluator::new(table.field().clone());
-    let value = evaluator.evaluate(&text[part.clone()]).map_err(|e| {
+/// Evaluates a part of an option's text.
+fn evaluate(
+    evaluator: &mut Evaluator,
+    option: &str,
+    text: &str,
+    part: Range<usize>,
+) -> Result<Real, Fault> {
+    evaluator.evaluate(&text[part.clone()]).map_err(|e| {
         let span = part.start + e.span.start..part.start + e.span.end;
         fault(option, text, span, e.message, &e.help)
-    })?;
-    if !value.field().is_rational() && !value.field().same(table.field()) {
-        let message = "this number does not lie in the field of the table's coordinates".into();
-        let help = format!(
-            "use numbers of that field: {}",
-            table.field().describe("t")
-        );
-        return Err(fault(option, text, part, message, &help));
-    }
-    Ok(value)
+    })
 }
 
 #[derive(Serialize)]

@@ -11,6 +11,7 @@ use crate::figure::{
 use crate::language::beams::WordBeam;
 use crate::table::{Table, Vector};
 use crate::unfold::isometry::{Isometry, side_reflections};
+use nalgebra::Vector2;
 use std::f64::consts::PI;
 
 /// A picture of a study.
@@ -191,9 +192,15 @@ fn ball_chart(results: &Results) -> Chart {
     }
 }
 
-/// Coordinates in the true Euclidean plane, for drawing.
-fn flat(v: &Vector, root_form: f64) -> [f64; 2] {
-    [v.x.to_f64(), v.y.to_f64() * root_form]
+/// A point of the true Euclidean plane, for drawing.
+type Point = Vector2<f64>;
+
+fn flat(v: &Vector, root_form: f64) -> Point {
+    Point::new(v.x.to_f64(), v.y.to_f64() * root_form)
+}
+
+fn array(p: Point) -> [f64; 2] {
+    p.into()
 }
 
 fn root_form(table: &Table) -> f64 {
@@ -204,7 +211,7 @@ fn root_form(table: &Table) -> f64 {
 pub fn shape(table: &Table) -> TableShape {
     let root = root_form(table);
     TableShape {
-        corners: table.corners().iter().map(|c| flat(c, root)).collect(),
+        corners: table.corners().iter().map(|c| array(flat(c, root))).collect(),
         letters: table.letters().iter().map(char::to_string).collect(),
         ..TableShape::default()
     }
@@ -233,77 +240,77 @@ fn corridor_shape(table: &Table, beam: &WordBeam) -> Corridor {
     let place = |pose: &Isometry, i: usize| flat(&pose.apply(home.corner(i), home.form()), root);
     let letter = |side: usize| table.letters()[side].to_string();
     let mut corridor = Corridor::default();
+    let mut gates = Vec::new();
     for (i, side) in beam.word.iter().enumerate() {
         let s = side.0 as usize;
-        let gate = (place(&pose, s), place(&pose, s + 1));
-        corridor.gates.push((gate.0, gate.1, letter(s)));
+        gates.push((place(&pose, s), place(&pose, s + 1)));
         if i > 0 {
             pose = pose.after(&reflections[s], home.form());
         }
         // The last letter is the side where the word ends: the copy beyond it is not entered.
         if i + 1 < beam.word.len() {
-            corridor.copies.push((0..home.sides()).map(|c| place(&pose, c)).collect());
+            let copy = (0..home.sides()).map(|c| array(place(&pose, c)));
+            corridor.copies.push(copy.collect());
         }
     }
-    let images: Vec<[f64; 2]> = beam.images.iter().map(|v| flat(v, root)).collect();
-    let first = &corridor.gates[0];
-    let last = &corridor.gates[corridor.gates.len() - 1];
-    corridor.beam = vec![swept(&images, beam.lefts, (first.0, first.1), (last.0, last.1))];
-    corridor.line = middle_line(&images, beam.lefts, (first.0, first.1), (last.0, last.1));
-    corridor.pivots = images;
+    let images: Vec<Point> = beam.images.iter().map(|v| flat(v, root)).collect();
+    let (first, last) = (gates[0], gates[gates.len() - 1]);
+    corridor.beam = vec![swept(&images, beam.lefts, first, last)];
+    corridor.line = middle_line(&images, beam.lefts, first, last);
+    corridor.pivots = images.into_iter().map(array).collect();
+    corridor.gates = gates
+        .into_iter()
+        .zip(&beam.word)
+        .map(|((from, to), side)| (array(from), array(to), letter(side.0 as usize)))
+        .collect();
     corridor
 }
 
-type Segment = ([f64; 2], [f64; 2]);
+type Segment = (Point, Point);
+
+/// The rightmost and the leftmost line of a beam, as pairs of corner images.
+fn extreme_lines(images: &[Point], lefts: usize) -> (Segment, Segment) {
+    let rightmost = (images[lefts - 1], images[lefts]);
+    let leftmost = (images[images.len() - 1], images[0]);
+    (rightmost, leftmost)
+}
 
 /// The region that the beam sweeps between two gates. On its left: the rightmost line from the first gate to
 /// the nearest left image, the left images outward, then the leftmost line to the last gate; likewise on
 /// its right.
-fn swept(images: &[[f64; 2]], lefts: usize, first: Segment, last: Segment) -> Vec<[f64; 2]> {
+fn swept(images: &[Point], lefts: usize, first: Segment, last: Segment) -> Vec<[f64; 2]> {
     let (left, right) = images.split_at(lefts);
-    let (left_far, left_near) = (left[0], left[lefts - 1]);
-    let (right_far, right_near) = (right[0], right[right.len() - 1]);
-    let rightmost = (left_near, right_far);
-    let leftmost = (right_near, left_far);
+    let (rightmost, leftmost) = extreme_lines(images, lefts);
     let mut outline = vec![meet(rightmost, first)];
     outline.extend(left.iter().rev());
     outline.push(meet(leftmost, last));
     outline.push(meet(rightmost, last));
     outline.extend(right.iter());
     outline.push(meet(leftmost, first));
-    outline
+    outline.into_iter().map(array).collect()
 }
 
 /// A line of the beam half way between its rightmost and its leftmost line.
-fn middle_line(images: &[[f64; 2]], lefts: usize, first: Segment, last: Segment) -> Option<Segment> {
-    let rightmost = (images[lefts - 1], images[lefts]);
-    let leftmost = (images[images.len() - 1], images[0]);
-    let half = |a: [f64; 2], b: [f64; 2]| [(a[0] + b[0]) / 2.0, (a[1] + b[1]) / 2.0];
-    let ends = (
-        half(meet(rightmost, first), meet(leftmost, first)),
-        half(meet(rightmost, last), meet(leftmost, last)),
-    );
-    (ends.0 != ends.1).then_some(ends)
+fn middle_line(
+    images: &[Point],
+    lefts: usize,
+    first: Segment,
+    last: Segment,
+) -> Option<([f64; 2], [f64; 2])> {
+    let (rightmost, leftmost) = extreme_lines(images, lefts);
+    let half = |gate| (meet(rightmost, gate) + meet(leftmost, gate)) / 2.0;
+    let (from, to) = (half(first), half(last));
+    (from != to).then_some((from.into(), to.into()))
 }
 
 /// Where two lines meet; the first point of the second line when they are parallel.
-fn meet(line: Segment, other: Segment) -> [f64; 2] {
-    let d = sub(line.1, line.0);
-    let e = sub(other.1, other.0);
-    let denominator = cross(d, e);
+fn meet(line: Segment, other: Segment) -> Point {
+    let (d, e) = (line.1 - line.0, other.1 - other.0);
+    let denominator = d.perp(&e);
     if denominator.abs() < 1e-12 {
         return other.0;
     }
-    let t = cross(d, sub(line.0, other.0)) / denominator;
-    [other.0[0] + t * e[0], other.0[1] + t * e[1]]
-}
-
-fn sub(a: [f64; 2], b: [f64; 2]) -> [f64; 2] {
-    [a[0] - b[0], a[1] - b[1]]
-}
-
-fn cross(a: [f64; 2], b: [f64; 2]) -> f64 {
-    a[0] * b[1] - a[1] * b[0]
+    other.0 + e * (d.perp(&(line.0 - other.0)) / denominator)
 }
 
 /// Points on each curved border of a cell.
@@ -312,12 +319,11 @@ const BORDER_POINTS: usize = 16;
 fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
     let root = root_form(table);
     let home = table.moved_to_origin();
-    let corners: Vec<[f64; 2]> = home.corners().iter().map(|c| flat(c, root)).collect();
+    let corners: Vec<Point> = home.corners().iter().map(|c| flat(c, root)).collect();
     let k = corners.len();
     let mut at = vec![0.0];
     for i in 0..k {
-        let v = sub(corners[(i + 1) % k], corners[i]);
-        at.push(at[i] + v[0].hypot(v[1]));
+        at.push(at[i] + (corners[(i + 1) % k] - corners[i]).norm());
     }
     let mut cells = Cells {
         boundary_marks: (0..=k).map(|i| (at[i], (i % k).to_string())).collect(),
@@ -329,7 +335,7 @@ fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
             .iter()
             .map(|beam| {
                 let side = beam.word[0].0 as usize;
-                let images: Vec<[f64; 2]> = beam.images.iter().map(|v| flat(v, root)).collect();
+                let images: Vec<Point> = beam.images.iter().map(|v| flat(v, root)).collect();
                 CellShape {
                     outline: cell_outline(&images, beam.lefts, (corners[side], corners[(side + 1) % k]), at[side]),
                     word: spell(table, beam),
@@ -346,25 +352,25 @@ fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
 
 /// The border of a cell in coordinates (position on the boundary, angle with the side): along each corner
 /// image, the lines through it turn from one vertex of the cell to the next.
-fn cell_outline(images: &[[f64; 2]], lefts: usize, side: Segment, offset: f64) -> Vec<[f64; 2]> {
+fn cell_outline(images: &[Point], lefts: usize, side: Segment, offset: f64) -> Vec<[f64; 2]> {
     let m = images.len();
-    let along = sub(side.1, side.0);
-    let length = along[0].hypot(along[1]);
-    let along = [along[0] / length, along[1] / length];
+    let along = side.1 - side.0;
+    let length = along.norm();
+    let along = along / length;
     // The angle of the vertex line through images i and i+1.
     let angle = |i: usize| {
         let (a, b) = (images[i], images[(i + 1) % m]);
         let crosses = i + 1 == lefts || i + 1 == m;
-        let d = if crosses { sub(b, a) } else { sub(a, b) };
+        let d = if crosses { b - a } else { a - b };
         // Rounding must not turn a line along the side round by a full turn.
-        let raw = cross(along, d).atan2(along[0] * d[0] + along[1] * d[1]);
+        let raw = along.perp(&d).atan2(along.dot(&d));
         if raw < -1e-9 { raw + 2.0 * PI } else { raw.max(0.0) }
     };
     let mut outline = Vec::new();
     for i in 0..m {
         let (from, to) = (angle((i + m - 1) % m), angle(i));
-        let p = sub(images[i], side.0);
-        let (position, height) = (p[0] * along[0] + p[1] * along[1], cross(along, p));
+        let p = images[i] - side.0;
+        let (position, height) = (along.dot(&p), along.perp(&p));
         for step in 0..=BORDER_POINTS {
             let theta = from + (to - from) * step as f64 / BORDER_POINTS as f64;
             // The line through p at this angle starts on the side height·cot θ before p.

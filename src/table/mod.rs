@@ -204,6 +204,18 @@ impl Table {
         self.turned_round
     }
 
+    /// The same table written in a larger field. `lift` takes each number of the old field to the same number
+    /// in the new one.
+    pub fn in_field(&self, field: &Field, lift: impl Fn(&Real) -> Real) -> Table {
+        let lift = |number: &Real| lift(number).lifted_to(field);
+        Table {
+            corners: self.corners.iter().map(|c| Vector::new(lift(&c.x), lift(&c.y))).collect(),
+            form: lift(&self.form),
+            field: field.clone(),
+            ..self.clone()
+        }
+    }
+
     /// The same table with corner 0 at the origin.
     pub fn moved_to_origin(&self) -> Table {
         let first = &self.corners[0];
