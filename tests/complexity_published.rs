@@ -13,7 +13,12 @@ use support::{
 fn assert_complexity(table: &Table, expected: &[u64]) {
     let beams = p_by_beams(table, expected.len());
     let fans = p_by_fans(table, expected.len());
-    assert_eq!((beams[0], fans[0]), (1, 1), "the empty word: {}", table.title());
+    assert_eq!(
+        (beams[0], fans[0]),
+        (1, 1),
+        "the empty word: {}",
+        table.title()
+    );
     assert_eq!(&beams[1..], expected, "by beams: {}", table.title());
     assert_eq!(&fans[1..], expected, "by fans: {}", table.title());
 }
@@ -81,7 +86,13 @@ fn equilateral_complexity_recomputed() {
 #[test]
 fn equilateral_diagonals_are_totients() {
     let expected: Vec<u64> = (0..=60)
-        .map(|n| if n % 2 == 1 { 3 * coprime_below((n + 3) / 2) } else { 0 })
+        .map(|n| {
+            if n % 2 == 1 {
+                3 * coprime_below((n + 3) / 2)
+            } else {
+                0
+            }
+        })
         .collect();
     assert_eq!(diagonal_counts(&equilateral(), 60), expected);
 }
@@ -129,7 +140,12 @@ fn l_of_three_squares_complexity_recomputed() {
 
 /// p(n)/n³ and its extrapolation 2·p(n)/n³ − p(n/2)/(n/2)³, which a term in n² does not disturb.
 fn cubic_ratio(table: &Table, n: usize) -> (f64, f64) {
-    assert_eq!(p_by_beams(table, 60), p_by_fans(table, 60), "{}", table.title());
+    assert_eq!(
+        p_by_beams(table, 60),
+        p_by_fans(table, 60),
+        "{}",
+        table.title()
+    );
     let p = p_by_fans(table, n);
     let ratio = |n: usize| p[n] as f64 / (n as f64).powi(3);
     (ratio(n), 2.0 * ratio(n) - ratio(n / 2))
@@ -151,7 +167,11 @@ fn cubic_limits_of_the_tables_that_tile() {
         let error = ratio / limit - 1.0;
         assert!(error.abs() < 0.01, "{}: {error}", table.title());
         let error = extrapolated / limit - 1.0;
-        assert!(error.abs() < 3e-4, "{}: {error} extrapolated", table.title());
+        assert!(
+            error.abs() < 3e-4,
+            "{}: {error} extrapolated",
+            table.title()
+        );
     }
 }
 

@@ -28,7 +28,11 @@ fn tables() -> Vec<Table> {
 /// Words that carry the table's letters.
 fn spelled(table: &Table, longest: usize) -> Vec<BTreeSet<String>> {
     let language = language(table, longest);
-    let spell = |word: &Vec<u8>| word.iter().map(|side| table.letters()[*side as usize]).collect();
+    let spell = |word: &Vec<u8>| {
+        word.iter()
+            .map(|side| table.letters()[*side as usize])
+            .collect()
+    };
     (0..=longest)
         .map(|n| words(&language, n).iter().map(spell).collect())
         .collect()
@@ -61,7 +65,10 @@ fn languages_are_closed_under_reversal() {
         assert_eq!(language.first_without_reversal(), None, "{}", table.title());
         // The same from the definition, on one level.
         let level: BTreeSet<Vec<u8>> = words(&language, 7).into_iter().collect();
-        let reversed = level.iter().map(|w| w.iter().rev().copied().collect()).collect();
+        let reversed = level
+            .iter()
+            .map(|w| w.iter().rev().copied().collect())
+            .collect();
         assert_eq!(level, reversed, "{}", table.title());
     }
 }
@@ -71,10 +78,19 @@ fn languages_are_closed_under_reversal() {
 fn levels_are_sorted_and_searchable() {
     for table in tables() {
         let language = language(&table, 8);
-        assert_eq!(language.complexity(), p_by_beams(&table, 8), "{}", table.title());
+        assert_eq!(
+            language.complexity(),
+            p_by_beams(&table, 8),
+            "{}",
+            table.title()
+        );
         for n in 1..=8 {
             let level = words(&language, n);
-            assert!(level.is_sorted_by(|a, b| a < b), "length {n} of {}", table.title());
+            assert!(
+                level.is_sorted_by(|a, b| a < b),
+                "length {n} of {}",
+                table.title()
+            );
             for (id, word) in (0..).zip(&level) {
                 assert_eq!(language.find(word), Some(id));
                 let (prefix, suffix) = (language.prefix(n, id), language.suffix(n, id));
@@ -90,7 +106,11 @@ fn levels_are_sorted_and_searchable() {
 fn no_letter_follows_itself() {
     for table in tables() {
         for word in words(&language(&table, 6), 6) {
-            assert!(word.windows(2).all(|w| w[0] != w[1]), "{word:?} of {}", table.title());
+            assert!(
+                word.windows(2).all(|w| w[0] != w[1]),
+                "{word:?} of {}",
+                table.title()
+            );
         }
     }
 }
@@ -105,7 +125,12 @@ fn renumbering_the_corners_changes_no_word() {
             corners.rotate_left(turn);
             letters.rotate_left(turn);
             let turned = rebuilt(&table, corners, letters);
-            assert_eq!(spelled(&turned, 7), expected, "{} from corner {turn}", table.title());
+            assert_eq!(
+                spelled(&turned, 7),
+                expected,
+                "{} from corner {turn}",
+                table.title()
+            );
         }
     }
 }
@@ -123,7 +148,9 @@ fn mirroring_changes_no_word() {
 
         let k = table.sides();
         let corners = table.corners().iter().rev().map(mirror).collect();
-        let letters = (0..k).map(|i| table.letters()[(2 * k - 2 - i) % k]).collect();
+        let letters = (0..k)
+            .map(|i| table.letters()[(2 * k - 2 - i) % k])
+            .collect();
         let reversed = rebuilt(&table, corners, letters);
         assert!(!reversed.turned_round(), "{}", table.title());
         assert_eq!(spelled(&reversed, 7), expected, "{}", table.title());
@@ -139,14 +166,29 @@ fn similarities_change_no_word() {
     for table in tables() {
         let expected = language(&table, 7);
         let p = p_by_fans(&table, 9);
-        for (factor, shifted) in [((355, 113), false), ((-1, 1_000_003), false), ((1, 1), true), ((10_000_000, 3), true)] {
+        for (factor, shifted) in [
+            ((355, 113), false),
+            ((-1, 1_000_003), false),
+            ((1, 1), true),
+            ((10_000_000, 3), true),
+        ] {
             let factor = Real::from(Rational::from(factor));
             let changed = moved(&table, |c| {
                 let scaled = c.times(&factor);
                 if shifted { scaled.plus(&shift) } else { scaled }
             });
-            assert_eq!(language(&changed, 7), expected, "{} times {factor}", table.title());
-            assert_eq!(p_by_fans(&changed, 9), p, "{} times {factor}", table.title());
+            assert_eq!(
+                language(&changed, 7),
+                expected,
+                "{} times {factor}",
+                table.title()
+            );
+            assert_eq!(
+                p_by_fans(&changed, 9),
+                p,
+                "{} times {factor}",
+                table.title()
+            );
         }
     }
 }
@@ -157,8 +199,18 @@ fn turning_changes_no_word() {
     let turn = Vector::new(3.into(), 4.into());
     for table in tables() {
         let changed = moved(&table, |c| c.product(&turn, table.form()));
-        assert_eq!(language(&changed, 7), language(&table, 7), "{}", table.title());
-        assert_eq!(p_by_fans(&changed, 9), p_by_fans(&table, 9), "{}", table.title());
+        assert_eq!(
+            language(&changed, 7),
+            language(&table, 7),
+            "{}",
+            table.title()
+        );
+        assert_eq!(
+            p_by_fans(&changed, 9),
+            p_by_fans(&table, 9),
+            "{}",
+            table.title()
+        );
     }
 }
 
@@ -182,10 +234,19 @@ fn multiplicities_are_diagonals_word_by_word() {
                 assert_eq!(bilateral_multiplicity(&language, word), expected);
             }
             let b = p[n + 2] as i64 - 2 * p[n + 1] as i64 + p[n] as i64;
-            assert_eq!(multiplicities.iter().sum::<i64>(), b, "b({n}) of {}", table.title());
+            assert_eq!(
+                multiplicities.iter().sum::<i64>(),
+                b,
+                "b({n}) of {}",
+                table.title()
+            );
         }
         with_code.remove(&Vec::new());
-        assert!(with_code.is_empty(), "codes outside the language of {}", table.title());
+        assert!(
+            with_code.is_empty(),
+            "codes outside the language of {}",
+            table.title()
+        );
     }
 }
 
@@ -203,10 +264,19 @@ fn bilateral_multiplicity(language: &Language, word: &[u8]) -> i64 {
 }
 
 /// What a run finds, with the record of the tiers.
-type Findings = (Language, Tiers, Vec<u64>, Tiers, Vec<(CornerId, CornerId, Vec<SideId>)>);
+type Findings = (
+    Language,
+    Tiers,
+    Vec<u64>,
+    Tiers,
+    Vec<(CornerId, CornerId, Vec<SideId>)>,
+);
 
 fn findings(table: &Table, longest: usize, threads: usize) -> Findings {
-    let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().expect("a pool");
+    let pool = rayon::ThreadPoolBuilder::new()
+        .num_threads(threads)
+        .build()
+        .expect("a pool");
     pool.install(|| {
         let (engine, mesh) = prepared(table, longest);
         let control = Control::new();
@@ -225,7 +295,11 @@ fn results_do_not_depend_on_threads() {
     for table in named_tables() {
         let longest = 14;
         let one = findings(&table, longest, 1);
-        assert!(one.0.count(longest) > 256, "{} is not divided", table.title());
+        assert!(
+            one.0.count(longest) > 256,
+            "{} is not divided",
+            table.title()
+        );
         assert!(one.1.total() > 0 && one.3.total() > 0, "{}", table.title());
         for threads in [2, 7] {
             let more = findings(&table, longest, threads);
@@ -241,8 +315,18 @@ fn shorter_runs_are_beginnings_of_longer_ones() {
         let p = p_by_beams(&table, 13);
         let all = language(&table, 13);
         for longest in 0..13 {
-            assert_eq!(p_by_beams(&table, longest), p[..=longest], "{}", table.title());
-            assert_eq!(p_by_fans(&table, longest), p[..=longest], "{}", table.title());
+            assert_eq!(
+                p_by_beams(&table, longest),
+                p[..=longest],
+                "{}",
+                table.title()
+            );
+            assert_eq!(
+                p_by_fans(&table, longest),
+                p[..=longest],
+                "{}",
+                table.title()
+            );
             let shorter = language(&table, longest);
             for n in 0..=longest {
                 assert_eq!(words(&shorter, n), words(&all, n), "{}", table.title());

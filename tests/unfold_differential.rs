@@ -20,7 +20,12 @@ type Corners = Vec<(Rational, Rational)>;
 
 /// Tables of 3 … 8 corners, every other one convex.
 fn random_corners(seeds: std::ops::Range<u64>) -> impl Iterator<Item = (u64, Corners)> {
-    seeds.map(|seed| (seed, random_polygon(seed, 3 + (seed / 2) as usize % 6, seed % 2 == 0)))
+    seeds.map(|seed| {
+        (
+            seed,
+            random_polygon(seed, 3 + (seed / 2) as usize % 6, seed % 2 == 0),
+        )
+    })
 }
 
 fn rational(text: &str) -> Rational {
@@ -39,19 +44,57 @@ fn fractions(corners: &[&str]) -> Corners {
 /// By hand: what random tables may miss. Each is a table; the name says why it is here.
 fn degenerate_corners() -> Vec<(&'static str, Corners)> {
     let comb = [
-        (0, 0), (9, 0), (9, 3), (7, 3), (7, 1), (5, 1), (5, 3), (3, 3), (3, 1), (1, 1), (1, 3), (0, 3),
+        (0, 0),
+        (9, 0),
+        (9, 3),
+        (7, 3),
+        (7, 1),
+        (5, 1),
+        (5, 3),
+        (3, 3),
+        (3, 1),
+        (1, 1),
+        (1, 3),
+        (0, 3),
     ];
-    let star_of_collinear_corners = [(0, 0), (2, 1), (4, 0), (3, 2), (4, 4), (2, 3), (0, 4), (1, 2)];
+    let star_of_collinear_corners = [
+        (0, 0),
+        (2, 1),
+        (4, 0),
+        (3, 2),
+        (4, 4),
+        (2, 3),
+        (0, 4),
+        (1, 2),
+    ];
     let spiral = [
-        (0, 0), (5, 0), (5, 4), (1, 4), (1, 2), (3, 2), (3, 3), (4, 3), (4, 1), (0, 1),
+        (0, 0),
+        (5, 0),
+        (5, 4),
+        (1, 4),
+        (1, 2),
+        (3, 2),
+        (3, 3),
+        (4, 3),
+        (4, 1),
+        (0, 1),
     ];
     vec![
         ("comb: rows of collinear corners", lattice_table(&comb)),
-        ("star: each long diagonal meets two corners", lattice_table(&star_of_collinear_corners)),
+        (
+            "star: each long diagonal meets two corners",
+            lattice_table(&star_of_collinear_corners),
+        ),
         ("spiral: visible only round corners", lattice_table(&spiral)),
-        ("tiny angles", fractions(&["0 0", "1000000 1", "2000000 0", "1000000 1000"])),
+        (
+            "tiny angles",
+            fractions(&["0 0", "1000000 1", "2000000 0", "1000000 1000"]),
+        ),
         ("needle", fractions(&["0 0", "1000000000 0", "1 1/1000000"])),
-        ("nearly straight corner", fractions(&["0 0", "1 -1/1000000000000", "2 0", "1 1"])),
+        (
+            "nearly straight corner",
+            fractions(&["0 0", "1 -1/1000000000000", "2 0", "1 1"]),
+        ),
         (
             "coordinates near 10^12 with denominators",
             fractions(&[
@@ -114,10 +157,25 @@ fn degenerate_corners() -> Vec<(&'static str, Corners)> {
 fn assert_arithmetics_agree(table: &Table, longest: usize) {
     let (tiered, big) = (Arithmetic::Tiered, Arithmetic::BigOnly);
     let grown = language_by(table, longest, tiered);
-    assert_eq!(grown, language_by(table, longest, big), "words of {}", table.title());
-    assert_eq!(grown.complexity(), p_by_beams(table, longest), "{}", table.title());
+    assert_eq!(
+        grown,
+        language_by(table, longest, big),
+        "words of {}",
+        table.title()
+    );
+    assert_eq!(
+        grown.complexity(),
+        p_by_beams(table, longest),
+        "{}",
+        table.title()
+    );
     let found = diagonals_by(table, longest, tiered);
-    assert_eq!(found, diagonals_by(table, longest, big), "diagonals of {}", table.title());
+    assert_eq!(
+        found,
+        diagonals_by(table, longest, big),
+        "diagonals of {}",
+        table.title()
+    );
     for (n, expected) in diagonal_counts(table, longest).iter().enumerate() {
         let listed = found.iter().filter(|d| d.code.len() == n).count() as u64;
         assert_eq!(listed, *expected, "N({n}) of {}", table.title());
@@ -127,11 +185,18 @@ fn assert_arithmetics_agree(table: &Table, longest: usize) {
 /// Words as sets, and N(n), agree with the oracle.
 fn assert_oracle_agrees(title: &str, corners: &Corners, longest: usize) {
     let table = rational_table(title, 1, corners);
-    assert!(!table.turned_round(), "the oracle wants counterclockwise corners");
+    assert!(
+        !table.turned_round(),
+        "the oracle wants counterclockwise corners"
+    );
     let grown = language(&table, longest);
     for (n, expected) in oracle::languages(corners, longest).iter().enumerate() {
         let found: Vec<Vec<u8>> = words(&grown, n);
-        assert_eq!(found.len(), expected.len(), "p({n}) of {title}: {corners:?}");
+        assert_eq!(
+            found.len(),
+            expected.len(),
+            "p({n}) of {title}: {corners:?}"
+        );
         let found: BTreeSet<Vec<u8>> = found.into_iter().collect();
         assert_eq!(found, *expected, "L_{n} of {title}: {corners:?}");
     }
@@ -139,14 +204,22 @@ fn assert_oracle_agrees(title: &str, corners: &Corners, longest: usize) {
         .iter()
         .map(|n| *n as u64)
         .collect();
-    assert_eq!(diagonal_counts(&table, longest - 1), expected, "N of {title}: {corners:?}");
+    assert_eq!(
+        diagonal_counts(&table, longest - 1),
+        expected,
+        "N of {title}: {corners:?}"
+    );
 }
 
 #[test]
 fn random_tables_routes_agree() {
     for (seed, corners) in random_corners(0..200) {
         let table = rational_table(&format!("seed {seed}"), 1, &corners);
-        assert_eq!(p_by_beams(&table, 8), p_by_fans(&table, 8), "seed {seed}: {corners:?}");
+        assert_eq!(
+            p_by_beams(&table, 8),
+            p_by_fans(&table, 8),
+            "seed {seed}: {corners:?}"
+        );
     }
 }
 
@@ -200,7 +273,10 @@ fn named_tables_arithmetics_agree() {
 fn tiny_disturbances_are_seen() {
     let disturbed = degenerate_corners();
     let find = |title: &str| {
-        let (_, corners) = disturbed.iter().find(|(t, _)| *t == title).expect("is listed");
+        let (_, corners) = disturbed
+            .iter()
+            .find(|(t, _)| *t == title)
+            .expect("is listed");
         rational_table(title, 1, corners)
     };
     let star = find("star: each long diagonal meets two corners");
@@ -215,7 +291,12 @@ fn tiny_disturbances_are_seen() {
 fn assert_same_over_root_field(table: &Table, n: i64, longest: usize) {
     let lifted = over_root_field(table, n);
     assert_eq!(*lifted.form(), Real::from(1), "the form is used up");
-    assert_eq!(language(table, longest), language(&lifted, longest), "{}", table.title());
+    assert_eq!(
+        language(table, longest),
+        language(&lifted, longest),
+        "{}",
+        table.title()
+    );
     let root = lifted.field().generator();
     let most = longest - 1;
     let stretched: Vec<Diagonal> = diagonals_by(table, most, Arithmetic::Tiered)
@@ -261,7 +342,11 @@ fn square_forms_are_scales() {
                 ..d
             })
             .collect();
-        assert_eq!(stretched, diagonals_by(&scaled, 5, Arithmetic::Tiered), "seed {seed}");
+        assert_eq!(
+            stretched,
+            diagonals_by(&scaled, 5, Arithmetic::Tiered),
+            "seed {seed}"
+        );
     }
 }
 
@@ -275,7 +360,11 @@ fn rational_corners_in_a_larger_field_change_nothing() {
         let scaled = plain.corners().iter().map(|c| c.times(&root)).collect();
         let scaled = table_of(plain.title(), scaled, 1.into());
         assert_eq!(language(&plain, 6), language(&scaled, 6), "seed {seed}");
-        assert_eq!(diagonal_counts(&plain, 6), diagonal_counts(&scaled, 6), "seed {seed}");
+        assert_eq!(
+            diagonal_counts(&plain, 6),
+            diagonal_counts(&scaled, 6),
+            "seed {seed}"
+        );
     }
 }
 
@@ -291,8 +380,10 @@ fn diagonals_unfold_as_listed() {
     for (title, corners) in tables {
         let table = rational_table(&title, 1, &corners);
         let found = diagonals_by(&table, 4, Arithmetic::Tiered);
-        let distinct: BTreeSet<(CornerId, CornerId, &[SideId])> =
-            found.iter().map(|d| (d.start, d.end, &d.code[..])).collect();
+        let distinct: BTreeSet<(CornerId, CornerId, &[SideId])> = found
+            .iter()
+            .map(|d| (d.start, d.end, &d.code[..]))
+            .collect();
         assert_eq!(distinct.len(), found.len(), "no diagonal twice: {title}");
         for diagonal in &found {
             assert_unfolds(&title, &corners, diagonal);
@@ -317,11 +408,17 @@ fn assert_unfolds(title: &str, corners: &Corners, diagonal: &Diagonal) {
             Some(side) => crossing(&copy, side, &origin, &vector)
                 .unwrap_or_else(|| panic!("{title}: {diagonal:?} misses side {side}")),
         };
-        assert!(entry.0 < exit && exit <= 1, "{title}: {diagonal:?} crosses in order");
+        assert!(
+            entry.0 < exit && exit <= 1,
+            "{title}: {diagonal:?} crosses in order"
+        );
         // The segment runs inside this copy from entry to exit: it starts inside and meets nothing.
         let middle = Rational::from(&entry.0 + &exit) / 2u32;
         let middle = oracle::along(&origin, &middle, &vector);
-        assert!(is_inside(&copy, &middle), "{title}: {diagonal:?} leaves the table");
+        assert!(
+            is_inside(&copy, &middle),
+            "{title}: {diagonal:?} leaves the table"
+        );
         for (i, corner) in copy.iter().enumerate() {
             let to_corner = oracle::between(&origin, corner);
             if oracle::cross(&vector, &to_corner).is_zero() {
@@ -333,11 +430,17 @@ fn assert_unfolds(title: &str, corners: &Corners, diagonal: &Diagonal) {
         }
         for side in (0..k).filter(|side| Some(*side) != entry.1 && Some(*side) != exit_side) {
             if let Some(at) = crossing(&copy, side, &origin, &vector) {
-                assert!(at < entry.0 || at > exit, "{title}: {diagonal:?} crosses side {side}");
+                assert!(
+                    at < entry.0 || at > exit,
+                    "{title}: {diagonal:?} crosses side {side}"
+                );
             }
         }
         let Some(side) = exit_side else { break };
-        let (a, along) = (copy[side].clone(), oracle::between(&copy[side], &copy[(side + 1) % k]));
+        let (a, along) = (
+            copy[side].clone(),
+            oracle::between(&copy[side], &copy[(side + 1) % k]),
+        );
         copy = copy
             .iter()
             .map(|corner| {

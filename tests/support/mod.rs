@@ -175,7 +175,9 @@ pub fn language(table: &Table, longest: usize) -> Language {
 pub fn language_by(table: &Table, longest: usize, arithmetic: Arithmetic) -> Language {
     let (engine, mesh) = engine(table, longest, arithmetic);
     let grown = walk::grow(&engine, &mesh, longest, &Control::new());
-    grown.unwrap_or_else(|fault| panic!("{}: {fault}", table.title())).0
+    grown
+        .unwrap_or_else(|fault| panic!("{}: {fault}", table.title()))
+        .0
 }
 
 /// All diagonals that cross at most so many sides.
@@ -185,19 +187,25 @@ pub fn diagonals(table: &Table, most: usize) -> Vec<Diagonal> {
 
 pub fn diagonals_by(table: &Table, most: usize, arithmetic: Arithmetic) -> Vec<Diagonal> {
     let (engine, mesh) = engine(table, most, arithmetic);
-    diagonals::list(&engine, &mesh, most, &Control::new()).expect("nobody stops it").0
+    diagonals::list(&engine, &mesh, most, &Control::new())
+        .expect("nobody stops it")
+        .0
 }
 
 /// N(0), …, N(most).
 pub fn diagonal_counts(table: &Table, most: usize) -> Vec<u64> {
     let (engine, mesh) = engine(table, most, Arithmetic::Tiered);
-    diagonals::count(&engine, &mesh, most, &Control::new()).expect("nobody stops it").0
+    diagonals::count(&engine, &mesh, most, &Control::new())
+        .expect("nobody stops it")
+        .0
 }
 
 /// p(0), …, p(longest) by walking the beams.
 pub fn p_by_beams(table: &Table, longest: usize) -> Vec<u64> {
     let (engine, mesh) = engine(table, longest, Arithmetic::Tiered);
-    walk::count(&engine, &mesh, longest, &Control::new()).expect("nobody stops it").0
+    walk::count(&engine, &mesh, longest, &Control::new())
+        .expect("nobody stops it")
+        .0
 }
 
 /// p(0), …, p(longest) from the diagonals that the fans find.
@@ -208,7 +216,9 @@ pub fn p_by_fans(table: &Table, longest: usize) -> Vec<u64> {
 
 /// The words of one length, as letters' indices, in the order of the language.
 pub fn words(language: &Language, length: usize) -> Vec<Vec<u8>> {
-    (0..language.count(length) as u32).map(|w| language.word(length, w)).collect()
+    (0..language.count(length) as u32)
+        .map(|w| language.word(length, w))
+        .collect()
 }
 
 /// How many of 1 … n have no common divisor with n, counted one by one.
