@@ -350,6 +350,47 @@ fn square_forms_are_scales() {
     }
 }
 
+/// Coordinates so large or so small that floating point, or its products, cannot hold them: the filter must
+/// give way, and rounding an irrational number beyond the range must end.
+#[test]
+fn scales_beyond_floating_point_change_nothing() {
+    let star = degenerate_corners().swap_remove(1);
+    let tables = [
+        rational_table(star.0, 1, &star.1),
+        support::crooked(),
+        support::regular_pentagon(),
+        support::irrational_kite(),
+    ];
+    for table in tables {
+        let expected = language(&table, 6);
+        for exponent in [30, 150, 157, 160, 162, 320] {
+            let large = Real::from(rational(&format!("1{}", "0".repeat(exponent))));
+            let small = large.inverse().expect("not zero");
+            for factor in [large, small] {
+                let corners = table.corners().iter().map(|c| c.times(&factor)).collect();
+                let scaled = table_of(table.title(), corners, table.form().clone());
+                assert!(language(&scaled, 6) == expected, "{}, 10^±{exponent}", table.title());
+            }
+        }
+    }
+}
+
+/// The filter's bound grows with the depth: far down, where it matters, big integers must agree.
+#[test]
+fn deep_walks_agree_with_big_integers() {
+    for (table, longest) in [
+        (support::crooked(), 9),
+        (support::regular_pentagon(), 11),
+        (support::irrational_kite(), 11),
+        (rational_table("needle", 1, &fractions(&["0 0", "100 0", "1 1/7"])), 24),
+        (rational_table("triangle", 1, &fractions(&["0 0", "5 0", "1 3"])), 18),
+    ] {
+        let tiered = language_by(&table, longest, Arithmetic::Tiered);
+        assert!(tiered == language_by(&table, longest, Arithmetic::BigOnly), "{}", table.title());
+        assert_eq!(tiered.complexity(), p_by_fans(&table, longest), "{}", table.title());
+    }
+}
+
 /// Over a field of degree 2 whose elements are all rational by chance, the walk is that of the rationals.
 #[test]
 fn rational_corners_in_a_larger_field_change_nothing() {
