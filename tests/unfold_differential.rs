@@ -369,7 +369,11 @@ fn scales_beyond_floating_point_change_nothing() {
             for factor in [large, small] {
                 let corners = table.corners().iter().map(|c| c.times(&factor)).collect();
                 let scaled = table_of(table.title(), corners, table.form().clone());
-                assert!(language(&scaled, 6) == expected, "{}, 10^±{exponent}", table.title());
+                assert!(
+                    language(&scaled, 6) == expected,
+                    "{}, 10^±{exponent}",
+                    table.title()
+                );
             }
         }
     }
@@ -382,12 +386,27 @@ fn deep_walks_agree_with_big_integers() {
         (support::crooked(), 9),
         (support::regular_pentagon(), 11),
         (support::irrational_kite(), 11),
-        (rational_table("needle", 1, &fractions(&["0 0", "100 0", "1 1/7"])), 24),
-        (rational_table("triangle", 1, &fractions(&["0 0", "5 0", "1 3"])), 18),
+        (
+            rational_table("needle", 1, &fractions(&["0 0", "100 0", "1 1/7"])),
+            24,
+        ),
+        (
+            rational_table("triangle", 1, &fractions(&["0 0", "5 0", "1 3"])),
+            18,
+        ),
     ] {
         let tiered = language_by(&table, longest, Arithmetic::Tiered);
-        assert!(tiered == language_by(&table, longest, Arithmetic::BigOnly), "{}", table.title());
-        assert_eq!(tiered.complexity(), p_by_fans(&table, longest), "{}", table.title());
+        assert!(
+            tiered == language_by(&table, longest, Arithmetic::BigOnly),
+            "{}",
+            table.title()
+        );
+        assert_eq!(
+            tiered.complexity(),
+            p_by_fans(&table, longest),
+            "{}",
+            table.title()
+        );
     }
 }
 
