@@ -11,7 +11,8 @@ use reboundary::run::Control;
 use reboundary::table::{Table, Vector};
 use reboundary::unfold::engine::{Engine, Trail};
 use reboundary::unfold::with_engine;
-use rug::Rational;
+use rug::ops::Pow;
+use rug::{Integer, Rational};
 use std::collections::BTreeMap;
 use support::{language, named_tables, prepared, rational_table, table_of, words};
 
@@ -356,6 +357,40 @@ fn measures_scale_like_lengths() {
                     .mul_integer(&5.into())
                     .meets(&large.mul_integer(&3.into()))
             );
+        }
+    }
+}
+
+/// The check must neither fail on a huge table nor be empty on a tiny one.
+#[test]
+fn level_sums_are_checked_at_every_scale() {
+    for table in [
+        support::legs_three_and_four(),
+        support::crooked(),
+        support::regular_pentagon(),
+    ] {
+        for exponent in [40u32, 80] {
+            let power = Integer::from(10).pow(exponent);
+            for factor in [Rational::from(&power), Rational::from((1, &power))] {
+                let factor = Real::from(factor);
+                let corners = table.corners().iter().map(|c| c.times(&factor)).collect();
+                let scaled = table_of(table.title(), corners, table.form().clone());
+                let found = measures(&scaled, 5, 5);
+                assert!(
+                    found.levels.iter().all(|level| level.holds),
+                    "{}",
+                    table.title()
+                );
+                for missing in &found.kept {
+                    let mut sum = found.levels[4].sum.clone();
+                    sum.sub_assign(missing);
+                    assert!(
+                        !sum.meets(&found.whole),
+                        "{} at 10^±{exponent}",
+                        table.title()
+                    );
+                }
+            }
         }
     }
 }

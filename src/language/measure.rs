@@ -123,7 +123,8 @@ pub struct LevelSum {
     pub length: usize,
     /// Certified sum of their measures.
     pub sum: Enclosure,
-    /// True when the sum's enclosure is at most 10⁻³⁰ wide and shares a point with that of 2·perimeter.
+    /// True when the sum's enclosure is at most 10⁻³⁰ of 2·perimeter wide and shares a point with that of
+    /// 2·perimeter.
     pub holds: bool,
 }
 
@@ -138,10 +139,17 @@ pub struct Measures {
     pub kept: Vec<Enclosure>,
 }
 
-/// Bits of the bounds; distances are enclosed to at least as many places after the point.
+/// Bits of the bounds for a table of perimeter about 1; distances are enclosed to at least as many places
+/// after the point.
 const PRECISION: u32 = 192;
 
-/// The width that a level's sum must stay below: 10⁻³⁰.
+/// The same for any table: a perimeter of about 2^±e takes e more bits for lengths, 2e more for squares.
+fn precision_for(table: &Table) -> u32 {
+    let exponent = table.perimeter(64).hi().get_exp().unwrap_or(0);
+    PRECISION + 2 * exponent.unsigned_abs()
+}
+
+/// The width that a level's sum must stay below, as a share of 2·perimeter: 10⁻³⁰.
 pub fn largest_width() -> Float {
     Float::with_val(64, Float::parse("1e-30").expect("a number"))
 }
@@ -162,13 +170,14 @@ pub fn measure(
     kept: usize,
     control: &Control,
 ) -> Result<Measures, GrowthFault> {
+    let precision = precision_for(table);
     let parts: Vec<Sums> = with_engine!(engine, engine => {
         let form = table.form();
-        let new = |part| Sums::new(part, form, kept);
+        let new = |part| Sums::new(part, form, kept, precision);
         walk_beams(engine, mesh, longest, control, new)?.0
     });
-    let whole = table.perimeter(PRECISION).mul_integer(&Integer::from(2));
-    let mut sums = vec![Enclosure::zero(PRECISION); longest];
+    let whole = table.perimeter(precision).mul_integer(&Integer::from(2));
+    let mut sums = vec![Enclosure::zero(precision); longest];
     let mut kept_measures = Vec::new();
     for part in parts {
         for (sum, more) in sums.iter_mut().zip(&part.sums) {
@@ -176,11 +185,12 @@ pub fn measure(
         }
         kept_measures.extend(part.kept_measures);
     }
+    let narrow = largest_width() * whole.lo();
     let levels = (1..)
         .zip(sums)
         .map(|(length, sum)| LevelSum {
             length,
-            holds: sum.width() <= largest_width() && sum.meets(&whole),
+            holds: sum.width() <= narrow && sum.meets(&whole),
             sum,
         })
         .collect();
@@ -196,6 +206,7 @@ struct Sums {
     part: Part,
     form: Real,
     kept: usize,
+    precision: u32,
     sums: Vec<Enclosure>,
     /// In a subtree: the measure of the current word of each length.
     current: Vec<Option<Enclosure>>,
@@ -203,11 +214,12 @@ struct Sums {
 }
 
 impl Sums {
-    fn new(part: Part, form: &Real, kept: usize) -> Sums {
+    fn new(part: Part, form: &Real, kept: usize, precision: u32) -> Sums {
         Sums {
             part,
             form: form.clone(),
             kept,
+            precision,
             sums: Vec::new(),
             current: Vec::new(),
             kept_measures: Vec::new(),
@@ -217,9 +229,9 @@ impl Sums {
 
 impl<E: Engine> Visitor<E> for Sums {
     fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>) {
-        let n = visit.length;
+        let (n, precision) = (visit.length, self.precision);
         if self.sums.len() < n {
-            self.sums.resize_with(n, || Enclosure::zero(PRECISION));
+            self.sums.resize_with(n, || Enclosure::zero(precision));
             self.current.resize(n + 1, None);
         }
         let inherited = match self.part {
@@ -227,9 +239,9 @@ impl<E: Engine> Visitor<E> for Sums {
             _ => None,
         };
         let measure = inherited.unwrap_or_else(|| {
-            let mut sum = Enclosure::zero(PRECISION);
+            let mut sum = Enclosure::zero(precision);
             for (sign, radicand) in distances(visit, trail, &self.form) {
-                let root = radicand.enclosure_within(PRECISION).sqrt();
+                let root = radicand.enclosure_within(precision).sqrt();
                 if sign > 0 {
                     sum.add_assign(&root);
                 } else {
