@@ -109,16 +109,17 @@ fn vertices<P>(cell: &[P], lefts: usize) -> impl Iterator<Item = (i64, &P, &P)> 
     })
 }
 
-/// An enclosure of the measure of a word's beam.
+/// An enclosure of the measure of a word's beam, with bounds of `precision` bits.
 ///
 /// Cost: one enclosed distance for each vertex of the cell.
 pub fn enclosed_measure<E: Engine>(
     visit: &Visit<'_, E>,
     trail: &mut Trail<E::Exact>,
+    precision: u32,
 ) -> Enclosure {
-    let mut sum = Enclosure::zero(PRECISION);
+    let mut sum = Enclosure::zero(precision);
     for (sign, a, b) in vertices(visit.cell, visit.lefts) {
-        let distance = visit.engine.squared_distance(trail, a, b, PRECISION).sqrt();
+        let distance = visit.engine.squared_distance(trail, a, b, precision).sqrt();
         if sign > 0 {
             sum.add_assign(&distance);
         } else {
@@ -135,7 +136,8 @@ pub struct LevelSum {
     pub length: usize,
     /// Certified sum of their measures.
     pub sum: Enclosure,
-    /// True when the sum's enclosure is at most 10⁻³⁰ wide and shares a point with that of 2·perimeter.
+    /// True when the sum's enclosure is at most 10⁻³⁰ of 2·perimeter wide and shares a point with that of
+    /// 2·perimeter.
     pub holds: bool,
 }
 
@@ -150,11 +152,17 @@ pub struct Measures {
     pub kept: Vec<Enclosure>,
 }
 
-/// Bits of the bounds. A sum must be known to about 100 places after the point; the rest is room for large
-/// coordinates, many crossings and many terms.
+/// Bits of the bounds for a table of perimeter about 1. A sum must be known to about 100 places after the
+/// point; the rest is room for many crossings and many terms.
 const PRECISION: u32 = 192;
 
-/// The width that a level's sum must stay below: 10⁻³⁰.
+/// The same for any table: a perimeter of about 2^±e takes e more bits for lengths, 2e more for squares.
+pub fn precision_for(table: &Table) -> u32 {
+    let exponent = table.perimeter(64).hi().get_exp().unwrap_or(0);
+    PRECISION + 2 * exponent.unsigned_abs()
+}
+
+/// The width that a level's sum must stay below, as a share of 2·perimeter: 10⁻³⁰.
 pub fn largest_width() -> Float {
     Float::with_val(64, Float::parse("1e-30").expect("a number"))
 }
@@ -175,12 +183,13 @@ pub fn measure(
     kept: usize,
     control: &Control,
 ) -> Result<Measures, GrowthFault> {
+    let precision = precision_for(table);
     let parts: Vec<Sums> = with_engine!(engine, engine => {
-        let new = |part| Sums::new(part, kept);
+        let new = |part| Sums::new(part, kept, precision);
         walk_beams(engine, mesh, longest, control, new)?.0
     });
-    let whole = table.perimeter(PRECISION).mul_integer(&Integer::from(2));
-    let mut sums = vec![Enclosure::zero(PRECISION); longest];
+    let whole = table.perimeter(precision).mul_integer(&Integer::from(2));
+    let mut sums = vec![Enclosure::zero(precision); longest];
     let mut kept_measures = Vec::new();
     for part in parts {
         for (sum, more) in sums.iter_mut().zip(&part.sums) {
@@ -188,11 +197,12 @@ pub fn measure(
         }
         kept_measures.extend(part.kept_measures);
     }
+    let narrow = largest_width() * whole.lo();
     let levels = (1..)
         .zip(sums)
         .map(|(length, sum)| LevelSum {
             length,
-            holds: sum.width() <= largest_width() && sum.meets(&whole),
+            holds: sum.width() <= narrow && sum.meets(&whole),
             sum,
         })
         .collect();
@@ -207,6 +217,7 @@ pub fn measure(
 struct Sums {
     part: Part,
     kept: usize,
+    precision: u32,
     sums: Vec<Enclosure>,
     /// In a subtree: the measure of the current word of each length.
     current: Vec<Option<Enclosure>>,
@@ -214,10 +225,11 @@ struct Sums {
 }
 
 impl Sums {
-    fn new(part: Part, kept: usize) -> Sums {
+    fn new(part: Part, kept: usize, precision: u32) -> Sums {
         Sums {
             part,
             kept,
+            precision,
             sums: Vec::new(),
             current: Vec::new(),
             kept_measures: Vec::new(),
@@ -227,16 +239,16 @@ impl Sums {
 
 impl<E: Engine> Visitor<E> for Sums {
     fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>) {
-        let n = visit.length;
+        let (n, precision) = (visit.length, self.precision);
         if self.sums.len() < n {
-            self.sums.resize_with(n, || Enclosure::zero(PRECISION));
+            self.sums.resize_with(n, || Enclosure::zero(precision));
             self.current.resize(n + 1, None);
         }
         let inherited = match self.part {
             Part::Subtree if !visit.cut => self.current[n - 1].clone(),
             _ => None,
         };
-        let measure = inherited.unwrap_or_else(|| enclosed_measure(visit, trail));
+        let measure = inherited.unwrap_or_else(|| enclosed_measure(visit, trail, precision));
         self.sums[n - 1].add_assign(&measure);
         if n == self.kept {
             self.kept_measures.push(measure.clone());

@@ -181,7 +181,9 @@ impl Real {
         loop {
             let found = self.enclosure(precision);
             let (lo, hi) = (found.lo().to_f64(), found.hi().to_f64());
-            if (hi - lo).abs() <= 4.0 * f64::EPSILON * lo.abs().max(hi.abs()) {
+            // Beyond the range of floating point the bounds end up equal (perhaps infinite), since an
+            // irrational number is no midpoint between neighbours.
+            if lo == hi || (hi - lo).abs() <= 4.0 * f64::EPSILON * lo.abs().max(hi.abs()) {
                 return found.to_f64();
             }
             precision *= 2;

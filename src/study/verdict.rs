@@ -169,7 +169,7 @@ fn checks(evidence: &Evidence<'_>) -> Vec<Statement> {
             "the cylinder measures of the words of length n sum to 2·perimeter",
             evidence.measure_fault,
             longest,
-            "certified enclosures no wider than 10⁻³⁰ that share a point; a missing word would break the sum",
+            "certified enclosures no wider than 10⁻³⁰ of 2·perimeter that share a point; a missing word would break the sum",
         ),
         computed_or_violated(
             "branch_bound",

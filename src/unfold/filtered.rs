@@ -168,7 +168,9 @@ fn error_bounds(reach: f64, deepest: usize) -> Vec<f64> {
             translation_error += growth;
             let f = 2.0 * point_error + 2.0 * UNIT * extent;
             let size = 2.0 * extent + f;
-            1.001 * (4.0 * size * f + 2.0 * f * f + 8.0 * UNIT * size * size)
+            // Below the normal numbers roundings are absolute, and the reach may have lost its places or
+            // be zero; every product that this can spoil is less than the smallest normal number.
+            1.001 * (4.0 * size * f + 2.0 * f * f + 8.0 * UNIT * size * size) + f64::MIN_POSITIVE
         })
         .collect()
 }
