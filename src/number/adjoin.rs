@@ -2,7 +2,7 @@
 //!
 //! Let K = ℚ(θ) have degree d and let α be a real root of f over K. Stages:
 //!
-//! 1. *Scale*: a rational s with f's root β = s·α integral over ℤ[θ], and no prime too many in it.
+//! 1. *Scale*: a rational s with f's root β = s·α integral over ℤ\[θ\], and no prime too many in it.
 //! 2. *The irreducible factor* g of f with g(β) = 0. Often f itself is proved irreducible by its degrees
 //!    modulo primes of degree one of K. Otherwise Trager's route: the characteristic polynomial of
 //!    β + kθ on K\[x\]/f is the norm of f(x − kθ); when it is squarefree its factors h over ℚ belong to the
