@@ -61,7 +61,11 @@ pub struct Exactness {
 impl Exactness {
     /// As the engine takes it.
     pub fn arithmetic(self) -> Arithmetic {
-        if self.exact_only { Arithmetic::BigOnly } else { Arithmetic::Tiered }
+        if self.exact_only {
+            Arithmetic::BigOnly
+        } else {
+            Arithmetic::Tiered
+        }
     }
 }
 
@@ -92,7 +96,9 @@ pub enum Route {
 fn parse_length(text: &str) -> Result<usize, String> {
     match text.parse::<usize>() {
         Ok(length) if length <= LONGEST => Ok(length),
-        Ok(length) => Err(format!("{length} is too long; the longest words that can be asked for have {LONGEST} letters")),
+        Ok(length) => Err(format!(
+            "{length} is too long; the longest words that can be asked for have {LONGEST} letters"
+        )),
         Err(_) => Err(format!("write a whole number from 0 to {LONGEST}")),
     }
 }
@@ -106,7 +112,9 @@ fn parse_positive_length(text: &str) -> Result<usize, String> {
 
 fn parse_study_length(text: &str) -> Result<usize, String> {
     match parse_length(text)? {
-        length @ 0..=2 => Err(format!("a study needs words of length at least 3, not {length}")),
+        length @ 0..=2 => Err(format!(
+            "a study needs words of length at least 3, not {length}"
+        )),
         length => Ok(length),
     }
 }

@@ -92,5 +92,9 @@ fn write_text(table: &Table, found: &[Diagonal], out: &mut dyn Write) -> io::Res
             ]
         })
         .collect();
-    write_columns(out, &["sides", "from", "to", "code", "x", "y", "length"], &rows)
+    write_columns(
+        out,
+        &["sides", "from", "to", "code", "x", "y", "length"],
+        &rows,
+    )
 }

@@ -52,7 +52,10 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
         GraphFormat::Csv => write_csv(&graphs, options.radii, out),
         GraphFormat::Graphml => write_graphml(&language, length, table.letters(), out),
         GraphFormat::Json => {
-            let orders = graphs.iter().map(|counts| Order { counts, line: line_figures(counts) });
+            let orders = graphs.iter().map(|counts| Order {
+                counts,
+                line: line_figures(counts),
+            });
             write_json(
                 out,
                 &GraphRecord {
@@ -69,7 +72,13 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
 
 fn rows(graphs: &[GraphCounts], radii: usize) -> (Vec<String>, Vec<Vec<String>>) {
     let mut header: Vec<String> = [
-        "order", "vertices", "arcs", "left_special", "right_special", "bispecial", "unique_both",
+        "order",
+        "vertices",
+        "arcs",
+        "left_special",
+        "right_special",
+        "bispecial",
+        "unique_both",
     ]
     .map(String::from)
     .to_vec();
@@ -78,7 +87,13 @@ fn rows(graphs: &[GraphCounts], radii: usize) -> (Vec<String>, Vec<Vec<String>>)
         .iter()
         .map(|g| {
             let mut row = vec![
-                g.order as u64, g.vertices, g.arcs, g.left_special, g.right_special, g.bispecial, g.unique_both,
+                g.order as u64,
+                g.vertices,
+                g.arcs,
+                g.left_special,
+                g.right_special,
+                g.bispecial,
+                g.unique_both,
             ];
             row.extend(&g.path_balls);
             row.iter().map(u64::to_string).collect()

@@ -33,7 +33,11 @@ pub fn main() -> ExitCode {
             // Clap prints help to standard output and usage faults to standard error; a closed pipe is no
             // fault of ours.
             let _ = error.print();
-            return ExitCode::from(if error.use_stderr() { fault::BAD_INPUT } else { 0 });
+            return ExitCode::from(if error.use_stderr() {
+                fault::BAD_INPUT
+            } else {
+                0
+            });
         }
     };
     match run(arguments) {

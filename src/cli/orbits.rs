@@ -32,7 +32,9 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
             Some(_) => "nothing was written",
             None => "the orbits printed so far are complete",
         };
-        return Err(Fault::Stopped(format!("a signal came before all orbits were traced; {what}")));
+        return Err(Fault::Stopped(format!(
+            "a signal came before all orbits were traced; {what}"
+        )));
     }
     done
 }

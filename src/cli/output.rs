@@ -39,11 +39,7 @@ pub fn emit(
 }
 
 /// Writes rows of cells in columns, right-aligned.
-pub fn write_columns(
-    out: &mut dyn Write,
-    header: &[&str],
-    rows: &[Vec<String>],
-) -> io::Result<()> {
+pub fn write_columns(out: &mut dyn Write, header: &[&str], rows: &[Vec<String>]) -> io::Result<()> {
     let width = |c: usize| {
         let cells = rows.iter().map(|row| row[c].chars().count());
         cells.chain([header[c].chars().count()]).max().unwrap_or(0)

@@ -27,7 +27,9 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         )));
     }
     let request = Request {
-        length: options.length.or(options.graph_order.map(|order| order + 1)),
+        length: options
+            .length
+            .or(options.graph_order.map(|order| order + 1)),
         radii: options.radii,
         arithmetic: options.exactness.arithmetic(),
         memory: options.budget_memory,
@@ -59,8 +61,15 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
 
 /// The command that reproduces the study, without folders and threads.
 fn command(options: &StudyOptions, results: &Results) -> String {
-    let name = options.table.file_name().unwrap_or_default().to_string_lossy();
-    let mut command = format!("reboundary study {name} --length {} --radii {}", results.length, options.radii);
+    let name = options
+        .table
+        .file_name()
+        .unwrap_or_default()
+        .to_string_lossy();
+    let mut command = format!(
+        "reboundary study {name} --length {} --radii {}",
+        results.length, options.radii
+    );
     if let Some(order) = options.graph_order {
         command.push_str(&format!(" --graph-order {order}"));
     }
@@ -72,9 +81,19 @@ fn command(options: &StudyOptions, results: &Results) -> String {
 
 fn summary(results: &Results, out: &Path, to: &mut dyn Write) -> io::Result<()> {
     let n = results.length;
-    writeln!(to, "{}: {} words of length {n}", results.table.title(), results.counts.p[n])?;
+    writeln!(
+        to,
+        "{}: {} words of length {n}",
+        results.table.title(),
+        results.counts.p[n]
+    )?;
     for statement in &results.statements {
-        writeln!(to, "  {:<12} {}", statement.standing.label(), statement.claim)?;
+        writeln!(
+            to,
+            "  {:<12} {}",
+            statement.standing.label(),
+            statement.claim
+        )?;
     }
     writeln!(to, "Open {}", out.join("report.html").display())
 }

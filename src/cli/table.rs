@@ -51,7 +51,11 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
         )?;
     }
     if table.form.exact != "1" {
-        writeln!(out, "  plane form       x^2 + g*y^2 with g = {}", exact(&table.form))?;
+        writeln!(
+            out,
+            "  plane form       x^2 + g*y^2 with g = {}",
+            exact(&table.form)
+        )?;
     }
     let yes = |b: bool| if b { "yes" } else { "no" };
     writeln!(out, "  convex           {}", yes(table.convex))?;
@@ -71,7 +75,11 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
     }
     for side in &table.sides {
         let [from, to] = side.corners;
-        writeln!(out, "  side {:<11} corner {from} to corner {to}, length {}", side.letter, side.length)?;
+        writeln!(
+            out,
+            "  side {:<11} corner {from} to corner {to}, length {}",
+            side.letter, side.length
+        )?;
     }
     Ok(())
 }
@@ -80,7 +88,15 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
 fn write_csv(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
     csv.write_record([
-        "corner", "x", "y", "x_decimal", "y_decimal", "angle", "side", "squared_length", "length",
+        "corner",
+        "x",
+        "y",
+        "x_decimal",
+        "y_decimal",
+        "angle",
+        "side",
+        "squared_length",
+        "length",
     ])?;
     for (i, corner) in table.corners.iter().enumerate() {
         let side = &table.sides[i];

@@ -143,7 +143,10 @@ fn parse_aim(evaluator: &mut Evaluator, text: &str) -> Result<Vector, Fault> {
     let help = "write a vector X,Y in the table's coordinates, such as 2,5 or sqrt(2),1";
     let commas = top_level_commas(text);
     let [comma] = commas[..] else {
-        let message = format!("the aim needs two coordinates, this has {}", commas.len() + 1);
+        let message = format!(
+            "the aim needs two coordinates, this has {}",
+            commas.len() + 1
+        );
         return Err(fault("--aim", text, 0..text.len(), message, help));
     };
     let x = evaluate(evaluator, "--aim", text, 0..comma)?;
@@ -244,7 +247,16 @@ fn record(table: &Table, word: &[SideId], states: &[State], end: Option<Step>) -
 fn write_csv(table: &Table, states: &[State], out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
     csv.write_record([
-        "hit", "side", "fraction", "x", "y", "fraction_decimal", "x_decimal", "y_decimal", "direction_x", "direction_y",
+        "hit",
+        "side",
+        "fraction",
+        "x",
+        "y",
+        "fraction_decimal",
+        "x_decimal",
+        "y_decimal",
+        "direction_x",
+        "direction_y",
     ])?;
     for (i, state) in states.iter().enumerate() {
         let (fraction, point) = (Exact::new(&state.fraction), ExactVector::new(&state.point));

@@ -145,7 +145,10 @@ fn walk_fans<E: Engine, L: Listener<E>>(
     control: &Control,
     new_listener: impl Fn() -> L + Sync,
 ) -> Result<(Vec<L>, Tiers), Stopped> {
-    assert!(most <= engine.deepest(), "the engine must reach the last crossing");
+    assert!(
+        most <= engine.deepest(),
+        "the engine must reach the last crossing"
+    );
     let mut head = new_listener();
     let mut tiers = Tiers::default();
     let mut seeds = Vec::new();
@@ -166,7 +169,17 @@ fn walk_fans<E: Engine, L: Listener<E>>(
                     fan,
                 })
             };
-            advance(engine, mesh, most, seed.corner, seed.path.len(), &seed.fan, &mut trail, &mut head, &mut emit);
+            advance(
+                engine,
+                mesh,
+                most,
+                seed.corner,
+                seed.path.len(),
+                &seed.fan,
+                &mut trail,
+                &mut head,
+                &mut emit,
+            );
             tiers.absorb(trail.tiers);
         }
         seeds = next;
@@ -239,15 +252,32 @@ fn advance<E: Engine, L: Listener<E>>(
     listener: &mut L,
     emit: &mut impl FnMut(Fan<E>, &[SideId]),
 ) {
-    let mut send = |trail: &mut Trail<E::Exact>, exit: Exit, left: E::Point, right: E::Point| match exit {
-        Exit::Pass(gate) => emit(Fan { gate, left, right, ..*fan }, &trail.path()[..crossings]),
-        Exit::Bounce(side, gate) if crossings < most => {
-            trail.cross(crossings, side);
-            let pose = engine.reflect(&fan.pose, side);
-            emit(Fan { pose, gate, left, right }, trail.path());
-        }
-        Exit::Bounce(..) => {}
-    };
+    let mut send =
+        |trail: &mut Trail<E::Exact>, exit: Exit, left: E::Point, right: E::Point| match exit {
+            Exit::Pass(gate) => emit(
+                Fan {
+                    gate,
+                    left,
+                    right,
+                    ..*fan
+                },
+                &trail.path()[..crossings],
+            ),
+            Exit::Bounce(side, gate) if crossings < most => {
+                trail.cross(crossings, side);
+                let pose = engine.reflect(&fan.pose, side);
+                emit(
+                    Fan {
+                        pose,
+                        gate,
+                        left,
+                        right,
+                    },
+                    trail.path(),
+                );
+            }
+            Exit::Bounce(..) => {}
+        };
     match fan::step(engine, mesh, trail, fan) {
         Step::Through(exit) => send(trail, exit, fan.left, fan.right),
         Step::Split {
@@ -287,7 +317,12 @@ fn walk_seed<E: Engine, L: Listener<E>>(
         side: SideId(0),
     }];
     let mut steps = 0u64;
-    while let Some(Waiting { mut fan, crossings, side }) = stack.pop() {
+    while let Some(Waiting {
+        mut fan,
+        crossings,
+        side,
+    }) = stack.pop()
+    {
         let mut crossings = crossings as usize;
         if crossings > root {
             trail.cross(crossings - 1, side);
@@ -349,5 +384,7 @@ fn walk_seed<E: Engine, L: Listener<E>>(
 }
 
 fn last_side<X: crate::unfold::engine::ExactTrail>(trail: &Trail<X>, crossings: usize) -> SideId {
-    crossings.checked_sub(1).map_or(SideId(0), |last| trail.path()[last])
+    crossings
+        .checked_sub(1)
+        .map_or(SideId(0), |last| trail.path()[last])
 }

@@ -33,7 +33,12 @@ pub fn write_graphml(
     xml.write_event(Event::Start(root))?;
     for (id, owner, name, kind) in KEYS {
         let mut key = BytesStart::new("key");
-        for attribute in [("id", id), ("for", owner), ("attr.name", name), ("attr.type", kind)] {
+        for attribute in [
+            ("id", id),
+            ("for", owner),
+            ("attr.name", name),
+            ("attr.type", kind),
+        ] {
             key.push_attribute(attribute);
         }
         xml.write_event(Event::Empty(key))?;
@@ -56,8 +61,14 @@ pub fn write_graphml(
     }
     for arc in 0..language.count(order + 1) as WordId {
         let mut edge = BytesStart::new("edge");
-        edge.push_attribute(("source", format!("v{}", language.prefix(order + 1, arc)).as_str()));
-        edge.push_attribute(("target", format!("v{}", language.suffix(order + 1, arc)).as_str()));
+        edge.push_attribute((
+            "source",
+            format!("v{}", language.prefix(order + 1, arc)).as_str(),
+        ));
+        edge.push_attribute((
+            "target",
+            format!("v{}", language.suffix(order + 1, arc)).as_str(),
+        ));
         xml.write_event(Event::Start(edge))?;
         let letter = letters[language.last_letter(order + 1, arc) as usize];
         data(&mut xml, "letter", &letter.to_string())?;

@@ -42,7 +42,9 @@ impl RootSum {
 
     /// The terms as (coefficient, radicand), radicands increasing.
     pub fn terms(&self) -> impl Iterator<Item = (&Rational, &Real)> {
-        self.terms.iter().map(|(radicand, coefficient)| (coefficient, radicand))
+        self.terms
+            .iter()
+            .map(|(radicand, coefficient)| (coefficient, radicand))
     }
 
     /// An enclosure with bounds of `precision` bits; each root is first enclosed to within 2^−precision.
@@ -105,7 +107,11 @@ fn vertices<P>(cell: &[P], lefts: usize) -> impl Iterator<Item = (i64, &P, &P)> 
     let m = cell.len();
     (0..m).map(move |i| {
         let between_sides = i + 1 == lefts || i + 1 == m;
-        (if between_sides { 1 } else { -1 }, &cell[i], &cell[(i + 1) % m])
+        (
+            if between_sides { 1 } else { -1 },
+            &cell[i],
+            &cell[(i + 1) % m],
+        )
     })
 }
 

@@ -36,7 +36,9 @@ pub struct Language {
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum LanguageFault {
     /// A factor of a word is missing.
-    #[error("the words are not closed under factors: word {word} of length {length} has a suffix that is missing")]
+    #[error(
+        "the words are not closed under factors: word {word} of length {length} has a suffix that is missing"
+    )]
     NotFactorial {
         /// Length of the offending word.
         length: usize,
@@ -103,7 +105,8 @@ impl Language {
         words: impl IntoIterator<Item = &'a [u8]>,
         longest: usize,
     ) -> Result<Language, LanguageFault> {
-        let mut factors: Vec<std::collections::BTreeSet<Vec<u8>>> = vec![Default::default(); longest + 1];
+        let mut factors: Vec<std::collections::BTreeSet<Vec<u8>>> =
+            vec![Default::default(); longest + 1];
         for word in words {
             for length in 1..=longest {
                 for factor in word.windows(length) {
@@ -269,7 +272,11 @@ impl Language {
             let level = &self.levels[n];
             let first: Vec<u8> = match n {
                 1 => level.letter.clone(),
-                _ => level.parent.iter().map(|p| first_letter[*p as usize]).collect(),
+                _ => level
+                    .parent
+                    .iter()
+                    .map(|p| first_letter[*p as usize])
+                    .collect(),
             };
             let mut next = Vec::with_capacity(first.len());
             for (w, letter) in first.iter().enumerate() {
@@ -286,7 +293,10 @@ impl Language {
 }
 
 fn child_ranges(parent: &[WordId], parents: usize) -> Vec<WordId> {
-    assert!(parent.is_sorted(), "a level must be in the order of its parents");
+    assert!(
+        parent.is_sorted(),
+        "a level must be in the order of its parents"
+    );
     let mut first = vec![0; parents + 1];
     for p in parent {
         first[*p as usize + 1] += 1;

@@ -14,9 +14,9 @@ use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
 use crate::table::SideId;
 use crate::unfold::beam::{self, Front, Spread};
+use crate::unfold::engine::AnyEngine;
 use crate::unfold::engine::{Engine, Trail};
 use crate::unfold::{Mesh, with_engine};
-use crate::unfold::engine::AnyEngine;
 use rayon::prelude::*;
 use thiserror::Error;
 
@@ -84,7 +84,10 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
 ) -> Result<(Vec<V>, Tiers), Stopped> {
-    assert!(longest <= engine.deepest() + 1, "the engine must reach the longest word");
+    assert!(
+        longest <= engine.deepest() + 1,
+        "the engine must reach the longest word"
+    );
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
     let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
@@ -246,7 +249,14 @@ fn walk_subtree<E: Engine, V: Visitor<E>>(
         if length < longest {
             beam::spread(engine, mesh, &mut trail, &waiting.front, cell, &mut out);
             points.truncate(start);
-            push_pieces(engine, &waiting.front, waiting.crossings, &out, &mut stack, &mut points);
+            push_pieces(
+                engine,
+                &waiting.front,
+                waiting.crossings,
+                &out,
+                &mut stack,
+                &mut points,
+            );
         } else {
             points.truncate(start);
         }

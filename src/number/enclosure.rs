@@ -182,7 +182,9 @@ impl Enclosure {
         };
         let ordered = |a: &Float, b: &Float| a.total_cmp(b);
         Enclosure {
-            lo: products(Round::Down).min_by(ordered).expect("four products"),
+            lo: products(Round::Down)
+                .min_by(ordered)
+                .expect("four products"),
             hi: products(Round::Up).max_by(ordered).expect("four products"),
         }
     }

@@ -61,7 +61,10 @@ impl StartLaw {
             let across = (1.0 - along * along).sqrt();
             let [x, y] = self.along[side];
             // The inner normal of a counterclockwise side is to its left.
-            let aim = [along * x - across * y, (along * y + across * x) / self.root_form];
+            let aim = [
+                along * x - across * y,
+                (along * y + across * x) / self.root_form,
+            ];
             let aim = aim.map(|c| dyadic(c, 30));
             let start = Start {
                 side: SideId(side as u8),
@@ -95,7 +98,13 @@ pub struct Sample {
 
 /// Orbit `index` of a seed: a word of `letters` letters from a random exact start. A periodic orbit is
 /// continued round its period.
-pub fn sample(tables: &TraceTables, law: &StartLaw, seed: u64, index: u64, letters: usize) -> Sample {
+pub fn sample(
+    tables: &TraceTables,
+    law: &StartLaw,
+    seed: u64,
+    index: u64,
+    letters: usize,
+) -> Sample {
     let mut random = ChaCha8Rng::seed_from_u64(seed);
     random.set_stream(index);
     loop {

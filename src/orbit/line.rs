@@ -118,7 +118,8 @@ impl FloatLine {
     pub fn side_of(&self, tables: &LineTables, corner: usize) -> Option<Sign> {
         let v = tables.float_corners[corner];
         let value = self.d[0] * v[1] - self.d[1] * v[0] - self.moment;
-        let bound = tables.reach * (self.direction_error + 4.0 * TABULATED) + 1.01 * self.moment_error;
+        let bound =
+            tables.reach * (self.direction_error + 4.0 * TABULATED) + 1.01 * self.moment_error;
         if value > bound {
             Some(Sign::Positive)
         } else if value < -bound {
@@ -170,7 +171,10 @@ impl WideLine {
         let scale = line.d.x.to_f64().abs().max(line.d.y.to_f64().abs());
         let bits = WIDE + scale.log2().abs().ceil() as u32 + 8;
         WideLine {
-            d: [line.d.x.enclosure_within(bits), line.d.y.enclosure_within(bits)],
+            d: [
+                line.d.x.enclosure_within(bits),
+                line.d.y.enclosure_within(bits),
+            ],
             moment: line.moment.enclosure_within(bits),
         }
     }
@@ -241,5 +245,7 @@ impl ExactLine {
 
 /// The point at a fraction of a side.
 pub fn point_on(table: &Table, side: usize, fraction: &Real) -> Vector {
-    table.corner(side).plus(&table.side_vector(side).times(fraction))
+    table
+        .corner(side)
+        .plus(&table.side_vector(side).times(fraction))
 }

@@ -59,7 +59,9 @@ pub struct Start {
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum StartFault {
     /// The point is a corner or beyond one.
-    #[error("the start must lie inside its side: the fraction {fraction} is not strictly between 0 and 1")]
+    #[error(
+        "the start must lie inside its side: the fraction {fraction} is not strictly between 0 and 1"
+    )]
     NotInsideSide {
         /// The fraction as a decimal.
         fraction: String,

@@ -42,7 +42,11 @@ impl Control {
     /// [`Stopped`] when the work is to end.
     pub fn tick(&self, steps: u64) -> Result<(), Stopped> {
         self.done.fetch_add(steps, Ordering::Relaxed);
-        if self.is_stopped() { Err(Stopped) } else { Ok(()) }
+        if self.is_stopped() {
+            Err(Stopped)
+        } else {
+            Ok(())
+        }
     }
 
     /// Steps reported so far.

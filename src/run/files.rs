@@ -61,7 +61,9 @@ pub fn write_whole(
     };
     let mut file = NamedTempFile::new_in(folder).map_err(fault)?;
     let mut buffered = BufWriter::new(&mut file);
-    fill(&mut buffered).and_then(|()| buffered.flush()).map_err(fault)?;
+    fill(&mut buffered)
+        .and_then(|()| buffered.flush())
+        .map_err(fault)?;
     drop(buffered);
     file.as_file().sync_all().map_err(fault)?;
     make_readable(file.path()).map_err(fault)?;
@@ -159,7 +161,8 @@ fn check_free(target: &Path, mark: &str) -> Result<(), OutputFault> {
     if !target.exists() {
         return Ok(());
     }
-    let empty = target.is_dir() && fs::read_dir(target).is_ok_and(|mut entries| entries.next().is_none());
+    let empty =
+        target.is_dir() && fs::read_dir(target).is_ok_and(|mut entries| entries.next().is_none());
     if empty || target.join(mark).is_file() {
         Ok(())
     } else {
@@ -184,7 +187,11 @@ mod tests {
         });
         assert!(matches!(broken, Err(OutputFault::System { .. })));
         assert_eq!(fs::read(&path).unwrap(), b"old");
-        assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1, "no leftovers");
+        assert_eq!(
+            fs::read_dir(folder.path()).unwrap().count(),
+            1,
+            "no leftovers"
+        );
         let nowhere = write_whole(&folder.path().join("no/file"), |_| Ok(()));
         assert!(matches!(nowhere, Err(OutputFault::NoParent { .. })));
     }
@@ -195,16 +202,26 @@ mod tests {
         let target = place.path().join("result");
         for text in ["first", "second"] {
             let folder = ResultFolder::new(&target, "mark").unwrap();
-            folder.write("mark", |out| out.write_all(text.as_bytes())).unwrap();
-            folder.write("deep/file", |out| out.write_all(b"x")).unwrap();
+            folder
+                .write("mark", |out| out.write_all(text.as_bytes()))
+                .unwrap();
+            folder
+                .write("deep/file", |out| out.write_all(b"x"))
+                .unwrap();
             folder.finish().unwrap();
             assert_eq!(fs::read_to_string(target.join("mark")).unwrap(), text);
         }
         let abandoned = ResultFolder::new(&target, "mark").unwrap();
-        abandoned.write("mark", |out| out.write_all(b"third")).unwrap();
+        abandoned
+            .write("mark", |out| out.write_all(b"third"))
+            .unwrap();
         drop(abandoned);
         assert_eq!(fs::read_to_string(target.join("mark")).unwrap(), "second");
-        assert_eq!(fs::read_dir(place.path()).unwrap().count(), 1, "no leftovers");
+        assert_eq!(
+            fs::read_dir(place.path()).unwrap().count(),
+            1,
+            "no leftovers"
+        );
         assert!(matches!(
             ResultFolder::new(&target, "other mark"),
             Err(OutputFault::Occupied { .. })

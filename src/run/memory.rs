@@ -7,7 +7,9 @@ pub fn available() -> Option<u64> {
 }
 
 fn parse_available(meminfo: &str) -> Option<u64> {
-    let line = meminfo.lines().find_map(|line| line.strip_prefix("MemAvailable:"))?;
+    let line = meminfo
+        .lines()
+        .find_map(|line| line.strip_prefix("MemAvailable:"))?;
     let kibibytes: u64 = line.trim().strip_suffix("kB")?.trim().parse().ok()?;
     Some(kibibytes * 1024)
 }

@@ -139,7 +139,9 @@ fn write_tables(
     folder.write("complexity.csv", |out| write_complexity(results, out))?;
     folder.write("factor-graphs.csv", |out| write_graphs(results, out))?;
     folder.write("measures.csv", |out| write_measures(results, out))?;
-    folder.write("diagonals.csv", |out| write_diagonals(&results.table, listed, out))
+    folder.write("diagonals.csv", |out| {
+        write_diagonals(&results.table, listed, out)
+    })
 }
 
 /// One row for each n; values that need longer words than the study has are empty.
@@ -154,7 +156,10 @@ fn write_complexity(results: &Results, out: &mut dyn Write) -> io::Result<()> {
             counts.p[n].to_string(),
             cell(&counts.first_difference),
             cell(&counts.second_difference),
-            results.diagonals.get(n).map_or(String::new(), u64::to_string),
+            results
+                .diagonals
+                .get(n)
+                .map_or(String::new(), u64::to_string),
             results.p_by_diagonals[n].to_string(),
         ])?;
     }
@@ -165,7 +170,13 @@ fn write_graphs(results: &Results, out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
     let radii = results.graphs.first().map_or(0, |g| g.path_balls.len());
     let mut header: Vec<String> = [
-        "order", "vertices", "arcs", "left_special", "right_special", "bispecial", "unique_both",
+        "order",
+        "vertices",
+        "arcs",
+        "left_special",
+        "right_special",
+        "bispecial",
+        "unique_both",
     ]
     .map(String::from)
     .to_vec();
@@ -205,7 +216,15 @@ fn write_measures(results: &Results, out: &mut dyn Write) -> io::Result<()> {
 pub fn write_diagonals(table: &Table, listed: &[Diagonal], out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
     csv.write_record([
-        "crossings", "start_corner", "end_corner", "code", "x", "y", "x_decimal", "y_decimal", "length",
+        "crossings",
+        "start_corner",
+        "end_corner",
+        "code",
+        "x",
+        "y",
+        "x_decimal",
+        "y_decimal",
+        "length",
     ])?;
     for diagonal in listed {
         let vector = ExactVector::new(&diagonal.displacement);
@@ -233,7 +252,11 @@ pub fn spell_code(table: &Table, code: &[SideId]) -> String {
 fn write_words(results: &Results, out: &mut dyn Write) -> io::Result<()> {
     let n = results.length;
     for w in 0..results.language.count(n) as WordId {
-        writeln!(out, "{}", spell(&results.language, n, w, results.table.letters()))?;
+        writeln!(
+            out,
+            "{}",
+            spell(&results.language, n, w, results.table.letters())
+        )?;
     }
     Ok(())
 }

@@ -84,7 +84,12 @@ pub fn pictures(
     Ok(all)
 }
 
-fn series(name: impl Into<String>, points: Vec<(f64, f64)>, mark: Mark, ink: Option<usize>) -> Series {
+fn series(
+    name: impl Into<String>,
+    points: Vec<(f64, f64)>,
+    mark: Mark,
+    ink: Option<usize>,
+) -> Series {
     Series {
         name: name.into(),
         points,
@@ -100,15 +105,34 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
     let mut curves = Vec::new();
     let mut text = String::from("Number p(n) of words of length n on logarithmic axes");
     if let Some(range) = cubic_range(p, from, last) {
-        let cubic = |c: f64| (from..=last).map(|n| (n as f64, c * (n as f64).powi(3))).collect();
-        curves.push(series(format!("{:.4}·n³", range.largest), cubic(range.largest), Mark::Dashed, Some(1)));
-        curves.push(series(format!("{:.4}·n³", range.smallest), cubic(range.smallest), Mark::Dotted, Some(2)));
+        let cubic = |c: f64| {
+            (from..=last)
+                .map(|n| (n as f64, c * (n as f64).powi(3)))
+                .collect()
+        };
+        curves.push(series(
+            format!("{:.4}·n³", range.largest),
+            cubic(range.largest),
+            Mark::Dashed,
+            Some(1),
+        ));
+        curves.push(series(
+            format!("{:.4}·n³", range.smallest),
+            cubic(range.smallest),
+            Mark::Dotted,
+            Some(2),
+        ));
         text.push_str(&format!(
             ", between the smallest and the largest multiple of n³ that it touches for {from} ≤ n ≤ {last}"
         ));
     }
     text.push('.');
-    curves.push(series("p(n)", (1..=last).map(|n| (n as f64, p[n] as f64)).collect(), Mark::LineDots, Some(0)));
+    curves.push(series(
+        "p(n)",
+        (1..=last).map(|n| (n as f64, p[n] as f64)).collect(),
+        Mark::LineDots,
+        Some(0),
+    ));
     let growth = Chart {
         x_label: "length n".into(),
         y_label: "number of words".into(),
@@ -142,7 +166,11 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
             ),
             series(
                 "p(n+1)/p(n) − 1",
-                results.line.iter().map(|f| (f.order as f64, f.growth)).collect(),
+                results
+                    .line
+                    .iter()
+                    .map(|f| (f.order as f64, f.growth))
+                    .collect(),
                 Mark::LineDots,
                 Some(0),
             ),
@@ -150,11 +178,15 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
         ..Chart::default()
     };
     Ok(vec![
-        picture("growth.svg", "Growth of the complexity", text, |c| draw_chart(&growth, c))?,
+        picture("growth.svg", "Growth of the complexity", text, |c| {
+            draw_chart(&growth, c)
+        })?,
         picture(
             "quotient.svg",
             "The quotient p(n)/n³",
-            format!("p(n)/n³ for {from} ≤ n ≤ {last}. It stays between positive bounds exactly when p grows like n³."),
+            format!(
+                "p(n)/n³ for {from} ≤ n ≤ {last}. It stays between positive bounds exactly when p grows like n³."
+            ),
             |c| draw_chart(&quotient, c),
         )?,
         picture(
@@ -181,7 +213,12 @@ fn ball_chart(results: &Results) -> Chart {
         if bound.len() > 1 {
             all.push(series("", bound, Mark::Dashed, Some(r)));
         }
-        all.push(series(format!("r = {}", r + 1), points(&|i| results.line[i].path_share[r]), Mark::LineDots, Some(r)));
+        all.push(series(
+            format!("r = {}", r + 1),
+            points(&|i| results.line[i].path_share[r]),
+            Mark::LineDots,
+            Some(r),
+        ));
     }
     Chart {
         x_label: "length n".into(),
@@ -211,14 +248,21 @@ fn root_form(table: &Table) -> f64 {
 pub fn shape(table: &Table) -> TableShape {
     let root = root_form(table);
     TableShape {
-        corners: table.corners().iter().map(|c| array(flat(c, root))).collect(),
+        corners: table
+            .corners()
+            .iter()
+            .map(|c| array(flat(c, root)))
+            .collect(),
         letters: table.letters().iter().map(char::to_string).collect(),
         ..TableShape::default()
     }
 }
 
 fn spell(table: &Table, beam: &WordBeam) -> String {
-    beam.word.iter().map(|s| table.letters()[s.0 as usize]).collect()
+    beam.word
+        .iter()
+        .map(|s| table.letters()[s.0 as usize])
+        .collect()
 }
 
 /// The beam that shows most: among the words with the most different letters the one whose cell has the most
@@ -337,7 +381,12 @@ fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
                 let side = beam.word[0].0 as usize;
                 let images: Vec<Point> = beam.images.iter().map(|v| flat(v, root)).collect();
                 CellShape {
-                    outline: cell_outline(&images, beam.lefts, (corners[side], corners[(side + 1) % k]), at[side]),
+                    outline: cell_outline(
+                        &images,
+                        beam.lefts,
+                        (corners[side], corners[(side + 1) % k]),
+                        at[side],
+                    ),
                     word: spell(table, beam),
                     shade: 0,
                 }
@@ -364,7 +413,11 @@ fn cell_outline(images: &[Point], lefts: usize, side: Segment, offset: f64) -> V
         let d = if crosses { b - a } else { a - b };
         // Rounding must not turn a line along the side round by a full turn.
         let raw = along.perp(&d).atan2(along.dot(&d));
-        if raw < -1e-9 { raw + 2.0 * PI } else { raw.max(0.0) }
+        if raw < -1e-9 {
+            raw + 2.0 * PI
+        } else {
+            raw.max(0.0)
+        }
     };
     let mut outline = Vec::new();
     for i in 0..m {

@@ -166,7 +166,10 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
     let form = if table.form.exact == "1" {
         "x² + y²".into()
     } else {
-        format!("x² + g·y² with g = {}: second coordinates are in units of √g", exact(&table.form))
+        format!(
+            "x² + g·y² with g = {}: second coordinates are in units of √g",
+            exact(&table.form)
+        )
     };
     let group = match table.reflection_group_order {
         Some(order) => format!("finite, order {order}"),
@@ -186,7 +189,10 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
     ];
     page.push_str("<table class=\"facts\"><tbody>\n");
     for (name, value) in &facts {
-        page.push_str(&format!("<tr><th scope=\"row\">{name}</th><td>{}</td></tr>\n", escape(value)));
+        page.push_str(&format!(
+            "<tr><th scope=\"row\">{name}</th><td>{}</td></tr>\n",
+            escape(value)
+        ));
     }
     page.push_str("</tbody></table>\n");
     let rows = table.corners.iter().enumerate().map(|(i, corner)| {
@@ -200,7 +206,11 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
             short(&side.length),
         ]
     });
-    number_table(page, &strings(["corner", "x", "y", "angle", "side after it", "length"]), rows);
+    number_table(
+        page,
+        &strings(["corner", "x", "y", "angle", "side after it", "length"]),
+        rows,
+    );
 }
 
 fn growth_section(page: &mut String, results: &Results, pictures: &[Picture]) {
@@ -210,7 +220,9 @@ fn growth_section(page: &mut String, results: &Results, pictures: &[Picture]) {
             "Counting words by beams and by generalized diagonals gives the same p(n) for every n ≤ {}.",
             results.length
         ),
-        Some(n) => format!("The two routes to p(n) differ, first at n = {n}: do not use these counts."),
+        Some(n) => {
+            format!("The two routes to p(n) differ, first at n = {n}: do not use these counts.")
+        }
     };
     page.push_str(&format!("<p>{agree}</p>\n"));
     for file in ["growth.svg", "quotient.svg", "ratio.svg"] {
@@ -225,7 +237,10 @@ fn growth_section(page: &mut String, results: &Results, pictures: &[Picture]) {
             counts.p[n].to_string(),
             cell(&counts.first_difference),
             cell(&counts.second_difference),
-            results.diagonals.get(n).map_or(String::new(), u64::to_string),
+            results
+                .diagonals
+                .get(n)
+                .map_or(String::new(), u64::to_string),
         ]
     });
     number_table(page, &strings(["n", "p(n)", "s(n)", "b(n)", "N(n)"]), rows);
@@ -239,15 +254,29 @@ fn graph_section(page: &mut String, results: &Results, pictures: &[Picture], exp
          The file <code>factor-graph.graphml</code> holds the one of order {exported}.</p>\n"
     ));
     figure(page, pictures, "path-balls.svg");
-    page.push_str("<details><summary>Special words, and words whose balls are paths, by order</summary>\n");
+    page.push_str(
+        "<details><summary>Special words, and words whose balls are paths, by order</summary>\n",
+    );
     let radii = results.graphs.first().map_or(0, |g| g.path_balls.len());
     let mut header = strings([
-        "n", "vertices", "arcs", "left special", "right special", "bispecial", "unique both ways",
+        "n",
+        "vertices",
+        "arcs",
+        "left special",
+        "right special",
+        "bispecial",
+        "unique both ways",
     ]);
     header.extend((1..=radii).map(|r| format!("path balls r = {r}")));
     let rows = results.graphs.iter().map(|g| {
         let mut row = vec![
-            g.order as u64, g.vertices, g.arcs, g.left_special, g.right_special, g.bispecial, g.unique_both,
+            g.order as u64,
+            g.vertices,
+            g.arcs,
+            g.left_special,
+            g.right_special,
+            g.bispecial,
+            g.unique_both,
         ];
         row.extend(&g.path_balls);
         row.iter().map(u64::to_string).collect()
@@ -305,7 +334,19 @@ fn diagonal_section(page: &mut String, results: &Results, diagonals: &[Diagonal]
             short(&root_decimal(&d.displacement.squared_length(table.form()))),
         ]
     });
-    number_table(page, &strings(["sides crossed", "from corner", "to corner", "code", "x", "y", "length"]), rows);
+    number_table(
+        page,
+        &strings([
+            "sides crossed",
+            "from corner",
+            "to corner",
+            "code",
+            "x",
+            "y",
+            "length",
+        ]),
+        rows,
+    );
     page.push_str("</details>\n");
 }
 

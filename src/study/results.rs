@@ -8,10 +8,10 @@ use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
 use crate::factor_graph::criterion::{LineFigures, line_figures};
+use crate::language::Language;
 use crate::language::measure::{self, Measures};
 use crate::language::tree::BYTES_PER_WORD;
 use crate::language::walk::{self, GrowthFault};
-use crate::language::Language;
 use crate::number::Tiers;
 use crate::run::{Control, Stopped, memory};
 use crate::table::Table;
@@ -151,7 +151,9 @@ pub fn compute(
     let (mut diagonals, fan_tiers) =
         diagonals::count(&engine, &mesh, horizon.saturating_sub(2), control)?;
     let mut p_by_diagonals = p_from_diagonals(table.sides() as u64, &diagonals, horizon);
-    let length = request.length.unwrap_or_else(|| affordable(&p_by_diagonals, DEFAULT_WORDS));
+    let length = request
+        .length
+        .unwrap_or_else(|| affordable(&p_by_diagonals, DEFAULT_WORDS));
     p_by_diagonals.truncate(length + 1);
     diagonals.truncate(length.saturating_sub(2) + 1);
     let words: u64 = p_by_diagonals.iter().sum();

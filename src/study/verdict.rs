@@ -174,7 +174,11 @@ fn checks(evidence: &Evidence<'_>) -> Vec<Statement> {
         computed_or_violated(
             "branch_bound",
             "the share of words with a special word nearer than r is at most (6r − 4)·s(n)/p(n)",
-            evidence.line.iter().find(|f| !f.within_bound).map(|f| f.order),
+            evidence
+                .line
+                .iter()
+                .find(|f| !f.within_bound)
+                .map(|f| f.order),
             longest.saturating_sub(1),
             "compared in integers for every order and radius of the study; an elementary count, true of every bi-extendable language",
         ),
@@ -208,7 +212,9 @@ fn language_laws(evidence: &Evidence<'_>) -> Vec<Statement> {
             "every factor of a word is a word",
             Standing::Proved,
             None,
-            format!("a stretch of a corner-free orbit is one; also seen for every word to length {longest}, by its suffix link"),
+            format!(
+                "a stretch of a corner-free orbit is one; also seen for every word to length {longest}, by its suffix link"
+            ),
         ),
         prolongable,
         computed_or_violated(
@@ -244,7 +250,10 @@ fn growth(evidence: &Evidence<'_>) -> Vec<Statement> {
             "c₁n³ ≤ p(n) ≤ c₂n³ for some positive c₁, c₂ and all large n",
             Standing::NotDecided,
             None,
-            format!("the theorem for convex rational tables does not apply: {}", evidence.missing()),
+            format!(
+                "the theorem for convex rational tables does not apply: {}",
+                evidence.missing()
+            ),
         )
     };
     let mut all = vec![bounds];
@@ -264,7 +273,11 @@ fn growth(evidence: &Evidence<'_>) -> Vec<Statement> {
         let n = longest / 2;
         all.push(statement(
             "local_exponent",
-            format!("log₂(p({})/p({n})) = {:.4}", 2 * n, local_exponent(evidence.p, n)),
+            format!(
+                "log₂(p({})/p({n})) = {:.4}",
+                2 * n,
+                local_exponent(evidence.p, n)
+            ),
             Standing::Computed,
             Some(2 * n),
             format!(
@@ -287,7 +300,8 @@ fn ceil6(x: f64) -> f64 {
 
 /// The three conditions of arXiv 2402.15877 that each imply the line limit.
 fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
-    let exponent = (evidence.longest() >= 4).then(|| local_exponent(evidence.p, evidence.longest() / 2));
+    let exponent =
+        (evidence.longest() >= 4).then(|| local_exponent(evidence.p, evidence.longest() / 2));
     let too_fast = |id, claim: &str, least: f64| {
         if evidence.is_convex_rational() {
             return statement(
@@ -304,7 +318,9 @@ fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
                 format!("{claim} — seems not to hold"),
                 Standing::Trend,
                 None,
-                format!("the local exponent at the end of the study is {e:.4}, well above {least:.4}"),
+                format!(
+                    "the local exponent at the end of the study is {e:.4}, well above {least:.4}"
+                ),
             ),
             _ => statement(
                 id,
@@ -324,13 +340,18 @@ fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
             format!("cubic asymptotics of tables that tile, {CUBIC_SOURCE}; {CHECKED_INTEGRABLE}"),
         )
     } else {
-        let figures = evidence.range().map(|_| drift(evidence.p)).unwrap_or_default();
+        let figures = evidence
+            .range()
+            .map(|_| drift(evidence.p))
+            .unwrap_or_default();
         statement(
             "sufficient_asymptotic",
             "p(n) ~ c·nᵃ for some c and a",
             Standing::NotDecided,
             None,
-            format!("no theorem known to this program gives a limit of p(n)/n³ for this table{figures}"),
+            format!(
+                "no theorem known to this program gives a limit of p(n)/n³ for this table{figures}"
+            ),
         )
     };
     vec![
@@ -382,8 +403,13 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
         ];
     }
     let trend = ratio_trend(evidence.line);
-    let standing = if trend.is_some() { Standing::Trend } else { Standing::NotDecided };
-    let figures = trend.unwrap_or_else(|| "the figures of this study do not suggest an answer".into());
+    let standing = if trend.is_some() {
+        Standing::Trend
+    } else {
+        Standing::NotDecided
+    };
+    let figures =
+        trend.unwrap_or_else(|| "the figures of this study do not suggest an answer".into());
     vec![
         statement(
             "ratio_criterion",
@@ -397,7 +423,9 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
             line_claim,
             standing,
             None,
-            format!("equivalent to the ratio criterion ({CRITERION_SOURCE}), since the language is factorial, prolongable and subexponential; {figures}"),
+            format!(
+                "equivalent to the ratio criterion ({CRITERION_SOURCE}), since the language is factorial, prolongable and subexponential; {figures}"
+            ),
         ),
     ]
 }

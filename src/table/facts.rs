@@ -66,7 +66,8 @@ pub fn facts(table: &Table) -> Facts {
     let multiples: Option<Vec<Rational>> = angles.iter().map(in_pi).collect();
     let half = Rational::from((1, 2));
     let three_halves = Rational::from((3, 2));
-    let all = |test: &dyn Fn(&Rational) -> bool| multiples.as_ref().is_some_and(|m| m.iter().all(test));
+    let all =
+        |test: &dyn Fn(&Rational) -> bool| multiples.as_ref().is_some_and(|m| m.iter().all(test));
     let group = match &multiples {
         None => ReflectionGroup::Infinite,
         Some(multiples) => {
@@ -75,7 +76,8 @@ pub fn facts(table: &Table) -> Facts {
                 r
             });
             ReflectionGroup::Finite {
-                r: r.to_u64().expect("an angle's denominator is at most 8 times the squared degree"),
+                r: r.to_u64()
+                    .expect("an angle's denominator is at most 8 times the squared degree"),
             }
         }
     };
@@ -253,7 +255,10 @@ mod tests {
     fn the_3_4_5_triangle_has_one_rational_angle() {
         // Niven's theorem: the only rational cosines of rational multiples of π are 0, ±1/2, ±1.
         let facts = facts(&table(&[(0, 0), (4, 0), (0, 3)], 1));
-        assert_eq!(facts.angles, [multiple(1, 2), Angle::Irrational, Angle::Irrational]);
+        assert_eq!(
+            facts.angles,
+            [multiple(1, 2), Angle::Irrational, Angle::Irrational]
+        );
         assert_eq!(facts.group, ReflectionGroup::Infinite);
     }
 
@@ -261,7 +266,10 @@ mod tests {
     fn obtuse_angles_are_told_from_their_supplements() {
         let facts = facts(&table(&[(0, 0), (4, 0), (1, 1)], 3));
         // Corner 0 has slope √3·1/1: π/3. Corner 1 has tan = √3/3: π/6.
-        assert_eq!(facts.angles, [multiple(1, 3), multiple(1, 6), multiple(1, 2)]);
+        assert_eq!(
+            facts.angles,
+            [multiple(1, 3), multiple(1, 6), multiple(1, 2)]
+        );
         assert_eq!(multiple(2, 7).describe(), "2π/7");
     }
 }

@@ -209,7 +209,11 @@ impl Table {
     pub fn in_field(&self, field: &Field, lift: impl Fn(&Real) -> Real) -> Table {
         let lift = |number: &Real| lift(number).lifted_to(field);
         Table {
-            corners: self.corners.iter().map(|c| Vector::new(lift(&c.x), lift(&c.y))).collect(),
+            corners: self
+                .corners
+                .iter()
+                .map(|c| Vector::new(lift(&c.x), lift(&c.y)))
+                .collect(),
             form: lift(&self.form),
             field: field.clone(),
             ..self.clone()

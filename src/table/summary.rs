@@ -142,7 +142,9 @@ pub fn summary(table: &Table, facts: &Facts) -> TableSummary {
         mean_chord: decimal(|bits| {
             let area = squared_area(table, facts).enclosure_within(bits).sqrt();
             let chord = crate::number::Enclosure::pi(bits).mul(&area);
-            chord.div(&table.perimeter(bits)).expect("a perimeter is positive")
+            chord
+                .div(&table.perimeter(bits))
+                .expect("a perimeter is positive")
         }),
     }
 }

@@ -37,7 +37,9 @@ pub fn triangulate(table: &Table) -> Vec<Triangle> {
         let n = rest.len();
         let ear = (0..n)
             .find(|&i| is_ear(corners, &rest, i))
-            .unwrap_or_else(|| unreachable!("a simple polygon with more than 3 corners has an ear"));
+            .unwrap_or_else(|| {
+                unreachable!("a simple polygon with more than 3 corners has an ear")
+            });
         triples.push([rest[(ear + n - 1) % n], rest[ear], rest[(ear + 1) % n]]);
         rest.remove(ear);
     }
@@ -113,10 +115,31 @@ mod tests {
             table(&[(0, 0), (1, 0), (0, 1)]),
             table(&[(0, 0), (2, 0), (2, 1), (1, 1), (1, 2), (0, 2)]),
             // Comb with collinear corners.
-            table(&[(0, 0), (6, 0), (6, 2), (5, 1), (4, 2), (3, 1), (2, 2), (1, 1), (0, 2)]),
+            table(&[
+                (0, 0),
+                (6, 0),
+                (6, 2),
+                (5, 1),
+                (4, 2),
+                (3, 1),
+                (2, 2),
+                (1, 1),
+                (0, 2),
+            ]),
             // Cross: many corners on common lines.
             table(&[
-                (1, 0), (2, 0), (2, 1), (3, 1), (3, 2), (2, 2), (2, 3), (1, 3), (1, 2), (0, 2), (0, 1), (1, 1),
+                (1, 0),
+                (2, 0),
+                (2, 1),
+                (3, 1),
+                (3, 2),
+                (2, 2),
+                (2, 3),
+                (1, 3),
+                (1, 2),
+                (0, 2),
+                (0, 1),
+                (1, 1),
             ]),
         ];
         for table in &tables {

@@ -178,12 +178,20 @@ impl<'a> Outline<'a> {
     /// included), a product of two differences by 22·2⁻⁵²·M², and the difference of two products, itself
     /// rounded, by 48·2⁻⁵²·M² < 2⁻⁴⁶·M².
     fn new(corners: &'a [Vector]) -> Outline<'a> {
-        let copies: Vec<(f64, f64)> =
-            corners.iter().map(|c| (c.x.to_f64(), c.y.to_f64())).collect();
-        let largest = copies.iter().fold(0.0_f64, |m, (x, y)| m.max(x.abs()).max(y.abs()));
+        let copies: Vec<(f64, f64)> = corners
+            .iter()
+            .map(|c| (c.x.to_f64(), c.y.to_f64()))
+            .collect();
+        let largest = copies
+            .iter()
+            .fold(0.0_f64, |m, (x, y)| m.max(x.abs()).max(y.abs()));
         let bound = largest * largest * (-46_f64).exp2();
         // Out of the range of normal numbers the bound does not hold: always take the exact route.
-        let error = if bound.is_normal() { bound } else { f64::INFINITY };
+        let error = if bound.is_normal() {
+            bound
+        } else {
+            f64::INFINITY
+        };
         Outline {
             corners,
             copies,

@@ -93,7 +93,14 @@ pub fn start<E: Engine>(engine: &E, mesh: &Mesh, side: SideId) -> (Front<E>, [E:
     let gate = mesh.gate_of_side(side);
     let (left, right) = mesh.ends(gate, engine.is_mirrored(&pose));
     let cell = [engine.place(&pose, left), engine.place(&pose, right)];
-    (Front { pose, gate, lefts: 1 }, cell)
+    (
+        Front {
+            pose,
+            gate,
+            lefts: 1,
+        },
+        cell,
+    )
 }
 
 /// Follows a beam through one copy of the table, from the gate that it enters to the sides that it hits.
@@ -188,10 +195,21 @@ fn cut<E: Engine>(
     let rights = end - start - lefts;
     // Chain of left images l₀ (farthest) … and its inner vertices (l_j, l_{j+1}): the leftmost line
     // before l₀ has the apex on its right, the rightmost line after the last on its left.
-    let (left_until, left_from) = split_chain(engine, trail, &points[start..start + lefts], apex, Sign::Negative);
+    let (left_until, left_from) = split_chain(
+        engine,
+        trail,
+        &points[start..start + lefts],
+        apex,
+        Sign::Negative,
+    );
     // Chain of right images r₀ (farthest) …: the rightmost line comes before r₀, the leftmost after.
-    let (right_until, right_from) =
-        split_chain(engine, trail, &points[start + lefts..end], apex, Sign::Positive);
+    let (right_until, right_from) = split_chain(
+        engine,
+        trail,
+        &points[start + lefts..end],
+        apex,
+        Sign::Positive,
+    );
 
     let first = points.len();
     points.extend_from_within(start..start + left_until);

@@ -48,7 +48,10 @@ impl<X: ExactTrail> Trail<X> {
     /// If an earlier crossing is missing.
     #[inline]
     pub fn cross(&mut self, crossing: usize, side: SideId) {
-        assert!(crossing <= self.path.len(), "crossings are recorded in order");
+        assert!(
+            crossing <= self.path.len(),
+            "crossings are recorded in order"
+        );
         self.path.truncate(crossing);
         self.path.push(side);
         self.exact.keep(crossing);
@@ -190,7 +193,9 @@ impl AnyEngine {
     /// One line for reports: how signs are decided.
     pub fn describe(&self) -> &'static str {
         match self {
-            AnyEngine::Lattice(_) => "machine integers (finite reflection group over the rationals)",
+            AnyEngine::Lattice(_) => {
+                "machine integers (finite reflection group over the rationals)"
+            }
             AnyEngine::Filtered(filtered) => filtered.describe(),
         }
     }

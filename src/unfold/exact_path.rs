@@ -126,7 +126,9 @@ impl ExactTables {
         }
         tiers.big += 1;
         let (a, b, v) = points;
-        let a = a.map_or(Vector::new(0.into(), 0.into()), |a| self.position(path, sides, a));
+        let a = a.map_or(Vector::new(0.into(), 0.into()), |a| {
+            self.position(path, sides, a)
+        });
         let b = self.position(path, sides, b);
         let v = self.position(path, sides, v);
         b.minus(&a).cross(&v.minus(&a)).sign()
@@ -150,7 +152,8 @@ impl ExactTables {
         while path.big.len() <= name.crossings as usize {
             let side = sides[path.big.len() - 1];
             let last = path.big.last().expect("starts with the home pose");
-            path.big.push(last.after(&self.reflections[side.0 as usize], &self.form));
+            path.big
+                .push(last.after(&self.reflections[side.0 as usize], &self.form));
         }
         let corner = &self.corners[name.corner.0 as usize];
         path.big[name.crossings as usize].apply(corner, &self.form)
@@ -249,7 +252,8 @@ impl FiniteTables {
             match path.origin {
                 Some(corner) => {
                     let at = corner.0 as usize * row;
-                    path.translations.extend(self.image[at..at + row].iter().map(|c| -c));
+                    path.translations
+                        .extend(self.image[at..at + row].iter().map(|c| -c));
                 }
                 None => path.translations.extend(std::iter::repeat_n(0, row)),
             }

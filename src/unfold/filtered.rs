@@ -58,7 +58,9 @@ enum Linear {
         image: Vec<[f64; 2]>,
     },
     /// A product of rotations: the reflections as (w, c).
-    Product { reflections: Vec<([f64; 2], [f64; 2])> },
+    Product {
+        reflections: Vec<([f64; 2], [f64; 2])>,
+    },
 }
 
 /// A copy of the table.
@@ -217,7 +219,9 @@ impl Engine for Filtered {
     fn reflect(&self, pose: &FilteredPose, side: SideId) -> FilteredPose {
         let s = side.0 as usize;
         match &self.linear {
-            Linear::Tabulated { mirrored, steps, .. } => {
+            Linear::Tabulated {
+                mirrored, steps, ..
+            } => {
                 let (element, shift) = steps[pose.element as usize * self.k + s];
                 FilteredPose {
                     w: pose.w,
@@ -313,7 +317,8 @@ impl Engine for Filtered {
         precision: u32,
     ) -> Enclosure {
         let (sides, path) = trail.split();
-        self.exact.squared_distance(path, sides, (a.name, b.name), precision)
+        self.exact
+            .squared_distance(path, sides, (a.name, b.name), precision)
     }
 
     fn deepest(&self) -> usize {

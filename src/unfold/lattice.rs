@@ -50,10 +50,13 @@ impl Lattice {
         };
         let shift: Vec<[i64; 2]> = group.shift.iter().map(integral).collect::<Option<_>>()?;
         let image: Vec<[i64; 2]> = group.image.iter().map(integral).collect::<Option<_>>()?;
-        let largest = |vectors: &[[i64; 2]]| vectors.iter().flatten().map(|c| c.unsigned_abs()).max();
+        let largest =
+            |vectors: &[[i64; 2]]| vectors.iter().flatten().map(|c| c.unsigned_abs()).max();
         let (far, step) = (largest(&image)?, largest(&shift)?);
         // Home translation at most `far`, then one shift a crossing, then the image itself.
-        let bound = (deepest as u64).checked_mul(step)?.checked_add(far.checked_mul(2)?)?;
+        let bound = (deepest as u64)
+            .checked_mul(step)?
+            .checked_add(far.checked_mul(2)?)?;
         if bound > LARGEST_COORDINATE as u64 {
             return None;
         }

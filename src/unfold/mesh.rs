@@ -128,7 +128,11 @@ impl Mesh {
     /// Left and right end of a gate as a line enters it, in a copy of the given parity.
     pub fn ends(&self, gate: GateId, mirrored: bool) -> (CornerId, CornerId) {
         let (left, right) = self.ends[gate.0 as usize];
-        if mirrored { (right, left) } else { (left, right) }
+        if mirrored {
+            (right, left)
+        } else {
+            (left, right)
+        }
     }
 
     /// All wedges: each triangle has three.

@@ -33,7 +33,10 @@ pub struct WidePath {
 }
 
 fn enclose(v: &Vector, precision: u32) -> Pair {
-    [v.x.enclosure_within(precision), v.y.enclosure_within(precision)]
+    [
+        v.x.enclosure_within(precision),
+        v.y.enclosure_within(precision),
+    ]
 }
 
 /// w·z, or w·z̄ when mirrored.
@@ -78,11 +81,18 @@ impl WidePath {
         if self.reflections.is_empty() {
             let pairs = |r: &Isometry| (enclose(&r.w, precision), enclose(&r.t, precision));
             self.reflections = tables.reflections.iter().map(pairs).collect();
-            self.corners = tables.corners.iter().map(|c| enclose(c, precision)).collect();
+            self.corners = tables
+                .corners
+                .iter()
+                .map(|c| enclose(c, precision))
+                .collect();
         }
         if self.poses.is_empty() {
             let identity = Isometry::identity();
-            self.poses.push((enclose(&identity.w, precision), enclose(&identity.t, precision)));
+            self.poses.push((
+                enclose(&identity.w, precision),
+                enclose(&identity.t, precision),
+            ));
         }
         while self.poses.len() <= name.crossings as usize {
             let here = self.poses.len() - 1;
