@@ -330,7 +330,7 @@ fn walk_seed<E: Engine, L: Listener<E>>(
         // One fan is followed in registers; only its splits touch the stack.
         loop {
             steps += 1;
-            if steps % STEPS_PER_TICK == 0 {
+            if steps.is_multiple_of(STEPS_PER_TICK) {
                 control.tick(STEPS_PER_TICK)?;
             }
             let exit = match fan::step(engine, mesh, &mut trail, &fan) {

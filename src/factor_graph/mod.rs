@@ -5,7 +5,7 @@
 //!
 //! - [`census`]: counts of special words, and the share of words whose balls are paths.
 //! - [`criterion`]: the line-limit criterion and the bound that goes with it.
-//! - [`export`]: GraphML.
+//! - [`export`]: graphs as GraphML.
 
 pub mod census;
 pub mod criterion;

@@ -75,7 +75,7 @@ fn extract_square(value: Rational) -> (Rational, Real) {
     }
     // Exact whatever the bound: a square factor that is missed only stays under the root.
     let mut p = 2u32;
-    while p < 1 << 10 && Integer::from(p * p) <= rest {
+    while p < 1 << 10 && p * p <= rest {
         let square = Integer::from(p * p);
         while rest.is_divisible(&square) {
             rest.div_exact_mut(&square);

@@ -108,10 +108,10 @@ impl Language {
         let mut factors: Vec<std::collections::BTreeSet<Vec<u8>>> =
             vec![Default::default(); longest + 1];
         for word in words {
-            for length in 1..=longest {
+            for (length, level) in factors.iter_mut().enumerate().skip(1) {
                 for factor in word.windows(length) {
-                    if !factors[length].contains(factor) {
-                        factors[length].insert(factor.to_vec());
+                    if !level.contains(factor) {
+                        level.insert(factor.to_vec());
                     }
                 }
             }

@@ -221,7 +221,7 @@ fn walk_subtree<E: Engine, V: Visitor<E>>(
     let mut points: Vec<E::Point> = Vec::new();
     let mut stack: Vec<Waiting<E>> = Vec::new();
     let mut out = Spread::default();
-    let mut steps = 0;
+    let mut steps = 0u64;
     // Words seen so far, by crossings.
     let mut seen: Vec<WordId> = vec![0; longest];
     seen[root] = 1;
@@ -261,7 +261,7 @@ fn walk_subtree<E: Engine, V: Visitor<E>>(
             points.truncate(start);
         }
         steps += 1;
-        if steps % STEPS_PER_TICK == 0 {
+        if steps.is_multiple_of(STEPS_PER_TICK) {
             control.tick(STEPS_PER_TICK)?;
         }
     }

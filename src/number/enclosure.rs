@@ -266,7 +266,7 @@ impl Enclosure {
     pub fn decimal(&self, digits: usize) -> Option<String> {
         let scale = Integer::from(Integer::u_pow_u(10, digits as u32));
         let nearest = |bound: &Float| -> Option<Integer> {
-            let exact = Rational::from(bound.to_rational()? * &scale);
+            let exact = bound.to_rational()? * &scale;
             Some(Integer::from(exact.round_ref()))
         };
         let (low, high) = (nearest(&self.lo)?, nearest(&self.hi)?);

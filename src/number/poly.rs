@@ -209,7 +209,7 @@ pub fn roots_between(chain: &[Vec<Integer>], lo: &Rational, hi: &Rational) -> us
 pub fn root_bound(p: &[Integer]) -> Rational {
     let lead = p.last().expect("the zero polynomial").clone().abs();
     let largest = p.iter().map(|c| c.clone().abs()).max().expect("nonempty");
-    let bound = Integer::from(largest / lead) + 2u32;
+    let bound = largest / lead + 2u32;
     Rational::from(Integer::from(2).pow(bound.significant_bits()))
 }
 

@@ -59,7 +59,7 @@ impl Real {
         }
         let scaled = coordinates
             .iter()
-            .map(|c| Integer::from(c.numer() * Integer::from(&den / c.denom())))
+            .map(|c| Integer::from(&den / c.denom()) * c.numer())
             .collect();
         let reduced = reduce_powers(field, scaled);
         Real::from_coordinates(field, reduced, den)
@@ -209,8 +209,8 @@ impl Real {
         let mut matrix = vec![vec![Integer::new(); d + 1]; d];
         let mut column = self.coordinates.clone();
         for j in 0..d {
-            for i in 0..d {
-                matrix[i][j] = column[i].clone();
+            for (row, entry) in matrix.iter_mut().zip(&column) {
+                row[j] = entry.clone();
             }
             column.insert(0, Integer::new());
             column = reduce_powers(&self.field, column);

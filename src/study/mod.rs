@@ -3,8 +3,8 @@
 //! - [`results`]: the computation, stage by stage, on the rooms below.
 //! - [`verdict`]: what follows from it, with the standing of every statement.
 //! - [`pictures`]: the figures of a study.
-//! - [`record`]: `study.json`.
-//! - [`report`]: `report.html`.
+//! - [`record`]: the file `study.json`.
+//! - [`report`]: the file `report.html`.
 //! - [`folder`]: all files of a study.
 
 pub mod folder;

@@ -420,9 +420,9 @@ fn cell_outline(images: &[Point], lefts: usize, side: Segment, offset: f64) -> V
         }
     };
     let mut outline = Vec::new();
-    for i in 0..m {
+    for (i, image) in images.iter().enumerate() {
         let (from, to) = (angle((i + m - 1) % m), angle(i));
-        let p = images[i] - side.0;
+        let p = image - side.0;
         let (position, height) = (along.dot(&p), along.perp(&p));
         for step in 0..=BORDER_POINTS {
             let theta = from + (to - from) * step as f64 / BORDER_POINTS as f64;

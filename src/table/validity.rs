@@ -137,6 +137,10 @@ pub fn check(corners: &[Vector], letters: &[char], form: &Real) -> Result<Turn, 
 }
 
 fn check_distinct(corners: &[Vector]) -> Result<(), TableFault> {
+    #[expect(
+        clippy::mutable_key_type,
+        reason = "the caches inside a field take no part in equality or hash"
+    )]
     let mut seen = std::collections::HashMap::new();
     for (second, corner) in corners.iter().enumerate() {
         if let Some(first) = seen.insert(corner, second) {

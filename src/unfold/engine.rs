@@ -148,7 +148,7 @@ pub enum AnyEngine {
     /// Finite group over the rationals.
     Lattice(Lattice),
     /// Everything else.
-    Filtered(Filtered),
+    Filtered(Box<Filtered>),
 }
 
 /// Runs an expression with the concrete engine inside an [`AnyEngine`] bound to a name.
@@ -157,7 +157,10 @@ macro_rules! with_engine {
     ($any:expr, $engine:ident => $body:expr) => {
         match $any {
             $crate::unfold::engine::AnyEngine::Lattice($engine) => $body,
-            $crate::unfold::engine::AnyEngine::Filtered($engine) => $body,
+            $crate::unfold::engine::AnyEngine::Filtered($engine) => {
+                let $engine = &**$engine;
+                $body
+            }
         }
     };
 }
@@ -180,14 +183,14 @@ impl AnyEngine {
             _ => None,
         };
         if arithmetic == Arithmetic::BigOnly {
-            return AnyEngine::Filtered(Filtered::big_only(table, deepest));
+            return AnyEngine::Filtered(Box::new(Filtered::big_only(table, deepest)));
         }
         if let Some(group) = &group
             && let Some(lattice) = Lattice::new(table, group, deepest)
         {
             return AnyEngine::Lattice(lattice);
         }
-        AnyEngine::Filtered(Filtered::new(table, group.as_ref(), deepest))
+        AnyEngine::Filtered(Box::new(Filtered::new(table, group.as_ref(), deepest)))
     }
 
     /// One line for reports: how signs are decided.

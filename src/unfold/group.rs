@@ -37,6 +37,10 @@ impl FiniteGroup {
             ..isometry.clone()
         };
         let mut elements = vec![Isometry::identity()];
+        #[expect(
+            clippy::mutable_key_type,
+            reason = "the caches inside a field take no part in equality or hash"
+        )]
         let mut index: HashMap<(Vector, bool), u16> = HashMap::new();
         index.insert((elements[0].w.clone(), false), 0);
         let mut next = Vec::new();
