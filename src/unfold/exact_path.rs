@@ -14,6 +14,7 @@
 
 use super::engine::ExactTrail;
 use super::group::{FiniteGroup, scaled_coordinates};
+use super::half_turn::HalfTurns;
 use super::isometry::{Isometry, side_reflections};
 use super::wide_path::{WidePath, WideTables};
 use crate::number::{Enclosure, Field, Real, Sign, Tiers};
@@ -37,6 +38,7 @@ pub struct ExactTables {
     corners: Vec<Vector>,
     reflections: Vec<Isometry>,
     finite: Option<FiniteTables>,
+    half_turns: Option<HalfTurns>,
 }
 
 /// The finite group over the integer lattice of the field.
@@ -89,6 +91,7 @@ impl ExactTables {
             corners: table.corners().to_vec(),
             reflections: side_reflections(table),
             finite: group.and_then(|group| FiniteTables::new(table, group)),
+            half_turns: group.is_none().then(|| HalfTurns::new(table)),
         }
     }
 
@@ -124,8 +127,15 @@ impl ExactTables {
             tiers.integer += 1;
             return sign;
         }
-        tiers.big += 1;
         let (a, b, v) = points;
+        if let Some(half_turns) = &self.half_turns {
+            let first = a.or(path.origin.map(|corner| ImageName { crossings: 0, corner }));
+            if first.is_some_and(|a| half_turns.prove_collinear(sides, a, b, v)) {
+                tiers.symmetry += 1;
+                return Sign::Zero;
+            }
+        }
+        tiers.big += 1;
         let a = a.map_or(Vector::new(0.into(), 0.into()), |a| {
             self.position(path, sides, a)
         });

@@ -6,6 +6,7 @@
 //! - [`lattice`]: the engine for finite groups over the rationals: machine integers only.
 //! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
 //! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
+//! - [`half_turn`]: collinear triples proved by a symmetry.
 //! - [`wide_path`]: enclosed positions along a path, for distances.
 //! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
 //! - [`fan`]: all rays from one corner with one itinerary.
@@ -16,6 +17,7 @@ pub mod exact_path;
 pub mod fan;
 pub mod filtered;
 pub mod group;
+pub mod half_turn;
 pub mod isometry;
 pub mod lattice;
 pub mod mesh;
