@@ -209,12 +209,12 @@ fn ratio_rows(case: &Case, control: &Control) {
             let ratio = exact.0.as_secs_f64() / twin.0.as_secs_f64();
             let tiers = exact.1.1;
             println!(
-                "{:<26} {route:<5} n={n:<4} exact {:>8.2} ns/step  twin {:>8.2} ns/step  ratio {ratio:>6.2} (target {target})  {:>7.2} M steps/s  tiers f {} i {} s {} b {}  twin {}",
+                "{:<26} {route:<5} n={n:<4} exact {:>8.2} ns/step  twin {:>8.2} ns/step  ratio {ratio:>6.2} (target {target})  {:>7.2} M steps/s  tiers f {} i {} s {} e {} b {}  twin {}",
                 case.file,
                 exact.0.as_secs_f64() * 1e9 / steps as f64,
                 twin.0.as_secs_f64() * 1e9 / steps as f64,
                 steps as f64 / exact.0.as_secs_f64() / 1e6,
-                tiers.float, tiers.integer, tiers.symmetry, tiers.big,
+                tiers.float, tiers.integer, tiers.symmetry, tiers.enclosure, tiers.big,
                 if exact.1.0 == twin.1.0 { "agrees" } else { "DIFFERS" },
             );
         };

@@ -46,6 +46,8 @@ pub struct Tiers {
     pub integer: u64,
     /// A zero proved by a symmetry of the path.
     pub symmetry: u64,
+    /// Enclosures of a few hundred bits.
+    pub enclosure: u64,
     /// Integers of any size.
     pub big: u64,
 }
@@ -56,11 +58,12 @@ impl Tiers {
         self.float += other.float;
         self.integer += other.integer;
         self.symmetry += other.symmetry;
+        self.enclosure += other.enclosure;
         self.big += other.big;
     }
 
     /// All decisions.
     pub fn total(&self) -> u64 {
-        self.float + self.integer + self.symmetry + self.big
+        self.float + self.integer + self.symmetry + self.enclosure + self.big
     }
 }

@@ -6,12 +6,14 @@
 //! - [`lattice`]: the engine for finite groups over the rationals: machine integers only.
 //! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
 //! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
+//! - [`big_path`]: exact poses in integers of any size.
 //! - [`half_turn`]: collinear triples proved by a symmetry.
 //! - [`wide_path`]: enclosed positions along a path, for distances.
 //! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
 //! - [`fan`]: all rays from one corner with one itinerary.
 
 pub mod beam;
+pub mod big_path;
 pub mod engine;
 pub mod exact_path;
 pub mod fan;
