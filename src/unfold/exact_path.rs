@@ -7,7 +7,7 @@
 //!   1, θ, …, θ^(d−1). They grow linearly with the crossings. The orientation is a polynomial in θ of
 //!   degree at most 2d − 2 with `i128` coefficients, reduced by the minimal polynomial; it is zero
 //!   exactly when all reduced coefficients are. Every operation is checked; an overflow falls through.
-//! - *Any group*: a symmetry of the path may prove a zero ([`half_turn`](super::half_turn)); enclosures of [`WIDE`] bits
+//! - *Any group*: a symmetry of the path may prove a zero ([`symmetry`](super::symmetry)); enclosures of [`WIDE`] bits
 //!   settle most other signs ([`wide_path`](super::wide_path)); integers of any size settle all
 //!   ([`big_path`](super::big_path)).
 //!
@@ -17,7 +17,7 @@
 use super::big_path::{BigPath, BigTables};
 use super::engine::ExactTrail;
 use super::group::{FiniteGroup, scaled_coordinates};
-use super::half_turn::HalfTurns;
+use super::symmetry::Symmetries;
 use super::isometry::{Isometry, side_reflections};
 use super::wide_path::{WidePath, WideTables};
 use crate::number::{Enclosure, Field, Real, Sign, Tiers};
@@ -44,7 +44,7 @@ pub struct ExactTables {
     corners: Vec<Vector>,
     reflections: Vec<Isometry>,
     finite: Option<FiniteTables>,
-    half_turns: HalfTurns,
+    symmetries: Symmetries,
     big: BigTables,
     /// False to leave out everything but integers of any size.
     shortcuts: bool,
@@ -98,7 +98,7 @@ impl ExactTables {
             form: table.form().clone(),
             corners: table.corners().to_vec(),
             finite: group.and_then(|group| FiniteTables::new(table, group)),
-            half_turns: HalfTurns::new(table),
+            symmetries: Symmetries::new(table),
             big: BigTables::new(table.field(), table.form(), table.corners(), &reflections),
             shortcuts: true,
             reflections,
@@ -153,8 +153,9 @@ impl ExactTables {
             corner: path.origin.expect("a walk of rays has an origin"),
         });
         if self.shortcuts {
-            if self.half_turns.prove_collinear(sides, a, b, v) {
+            if self.symmetries.prove_collinear(sides, a, b, v) {
                 tiers.symmetry += 1;
+                debug_assert_eq!(self.big.turn(&mut path.big, sides, [a, b, v]), Sign::Zero);
                 return Sign::Zero;
             }
             if let Some(sign) = self.wide_turn(path, sides, [a, b, v]) {

@@ -26,6 +26,7 @@
 //! chain, and each link halves the distance along the line.
 
 use super::exact_path::ImageName;
+use super::symmetry::common_corner;
 use crate::table::facts::{Angle, angle};
 use crate::table::{CornerId, SideId, Table};
 
@@ -40,7 +41,7 @@ pub struct HalfTurns {
 
 /// What a crossing counts as in a palindrome beside its side.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
-enum Symbol {
+pub(super) enum Symbol {
     /// Itself only.
     Crossing,
     /// One of the whole block of crossings round an image of a corner.
@@ -55,15 +56,15 @@ enum Symbol {
 
 /// A path with its symbols.
 #[derive(Clone, Copy)]
-struct Path<'a> {
-    sides: &'a [SideId],
-    symbols: &'a [Symbol],
+pub(super) struct Path<'a> {
+    pub(super) sides: &'a [SideId],
+    pub(super) symbols: &'a [Symbol],
 }
 
 impl Path<'_> {
     /// True when the crossings i … j − 1 read backward are, up to the order inside whole blocks, the crossings
     /// from … from + (j − i) − 1.
-    fn mirrors(&self, i: usize, j: usize, from: usize) -> bool {
+    pub(super) fn mirrors(&self, i: usize, j: usize, from: usize) -> bool {
         let end = from + (j - i);
         (0..j - i).all(|step| {
             let (l, r) = (j - 1 - step, from + step);
@@ -101,24 +102,17 @@ impl HalfTurns {
         }
     }
 
-    /// True when `v`, the latest of three images, is proved to be on the line through the other two.
-    pub fn prove_collinear(&self, path: &[SideId], p: ImageName, q: ImageName, v: ImageName) -> bool {
-        if self.half_orders.iter().all(Option::is_none) {
-            return false;
-        }
-        let path = Path {
-            sides: path,
-            symbols: &self.symbols(path),
-        };
-        self.prove(path, [p, q], v, LONGEST_CHAIN)
+    /// True when `v` is proved to be on the line through the two images by a chain of half-turns.
+    pub(super) fn prove(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName) -> bool {
+        self.half_orders.iter().any(Option::is_some) && self.chain(path, line, v, LONGEST_CHAIN)
     }
 
     /// For each crossing whether it belongs to a whole block of 2m crossings round one corner.
-    fn symbols(&self, path: &[SideId]) -> Vec<Symbol> {
+    pub(super) fn symbols(&self, path: &[SideId]) -> Vec<Symbol> {
         let mut symbols = vec![Symbol::Crossing; path.len()];
         let mut at = 0;
         while at + 1 < path.len() {
-            let corner = self.common_corner(path[at], path[at + 1]);
+            let corner = common_corner(self.half_orders.len(), path[at], path[at + 1]);
             let image = corner.map(|corner| ImageName {
                 crossings: at as u32,
                 corner,
@@ -141,7 +135,7 @@ impl HalfTurns {
         symbols
     }
 
-    fn prove(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName, links: usize) -> bool {
+    fn chain(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName, links: usize) -> bool {
         let ends = self.run(path.sides, v);
         line.iter().filter(|target| target.corner == v.corner).any(|target| {
             let starts = self.run(path.sides, *target);
@@ -152,7 +146,7 @@ impl HalfTurns {
                     return false;
                 };
                 line.iter().any(|on_line| self.same_point(path.sides, *on_line, centre))
-                    || (links > 0 && self.prove(path, line, centre, links - 1))
+                    || (links > 0 && self.chain(path, line, centre, links - 1))
             })
         })
     }
@@ -170,7 +164,7 @@ impl HalfTurns {
         if c == 0 || c >= length {
             return None;
         }
-        let corner = self.common_corner(path.sides[c - 1], path.sides[c])?;
+        let corner = common_corner(self.half_orders.len(), path.sides[c - 1], path.sides[c])?;
         let m = self.half_orders[corner.0 as usize]?;
         let image = ImageName {
             crossings: c as u32,
@@ -186,18 +180,6 @@ impl HalfTurns {
         (fits && path.mirrors(i, c - m, c + m)).then_some(image)
     }
 
-    fn common_corner(&self, a: SideId, b: SideId) -> Option<CornerId> {
-        let k = self.half_orders.len();
-        let follows = |first: SideId, second: SideId| (first.0 as usize + 1) % k == second.0 as usize;
-        if follows(a, b) {
-            Some(CornerId(b.0))
-        } else if follows(b, a) {
-            Some(CornerId(a.0))
-        } else {
-            None
-        }
-    }
-
     fn same_point(&self, path: &[SideId], a: ImageName, b: ImageName) -> bool {
         let (first, last) = self.run(path, b);
         a.corner == b.corner && (first..=last).contains(&(a.crossings as usize))
@@ -205,7 +187,7 @@ impl HalfTurns {
 
     /// The copies first ..= last in which the image is the same point: all crossings between them are of the
     /// two sides at its corner.
-    fn run(&self, path: &[SideId], image: ImageName) -> (usize, usize) {
+    pub(super) fn run(&self, path: &[SideId], image: ImageName) -> (usize, usize) {
         let at = (image.crossings as usize).min(path.len());
         let here = |side: &SideId| self.is_side_at(*side, image.corner);
         let before = path[..at].iter().rev().take_while(|s| here(s)).count();

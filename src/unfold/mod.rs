@@ -7,7 +7,7 @@
 //! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
 //! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
 //! - [`big_path`]: exact poses in integers of any size.
-//! - [`half_turn`]: collinear triples proved by a symmetry.
+//! - [`symmetry`] and [`half_turn`]: collinear images proved by the symmetry of a path.
 //! - [`wide_path`]: enclosed positions along a path, for distances.
 //! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
 //! - [`fan`]: all rays from one corner with one itinerary.
@@ -20,6 +20,7 @@ pub mod fan;
 pub mod filtered;
 pub mod group;
 pub mod half_turn;
+pub mod symmetry;
 pub mod isometry;
 pub mod lattice;
 pub mod mesh;
