@@ -22,16 +22,18 @@
 //! A name is not unique: crossing a side at a corner leaves its image where it is. Names are compared up to
 //! such crossings.
 //!
-//! A positive answer is a proof. A negative one says nothing. Cost: a few passes over the path for each link of the
-//! chain, and each link halves the distance along the line.
+//! A positive answer is a proof. A negative one says nothing. Cost: a bounded number of passes over the path.
 
 use super::exact_path::ImageName;
 use super::symmetry::common_corner;
 use crate::table::facts::{Angle, angle};
 use crate::table::{CornerId, SideId, Table};
 
-/// Links of a chain: each halves the distance, so this reaches every length.
-const LONGEST_CHAIN: usize = 64;
+/// Centres that one proof may argue about.
+const MOST_TRIED: usize = 12;
+
+/// Points of a line that are kept to argue from.
+const MOST_KNOWN: usize = 6;
 
 /// The corners of a table whose angle is π/(2m), by corner: m.
 #[derive(Clone, Debug)]
@@ -74,8 +76,16 @@ impl Path<'_> {
             // Equal blocks at mirrored places, both whole inside the ranges: every crossing of them passes here.
             match (self.symbols[l], self.symbols[r]) {
                 (
-                    Symbol::Block { corner, offset, length },
-                    Symbol::Block { corner: other, offset: place, .. },
+                    Symbol::Block {
+                        corner,
+                        offset,
+                        length,
+                    },
+                    Symbol::Block {
+                        corner: other,
+                        offset: place,
+                        ..
+                    },
                 ) => {
                     corner == other
                         && offset + place + 1 == length
@@ -104,7 +114,24 @@ impl HalfTurns {
 
     /// True when `v` is proved to be on the line through the two images by a chain of half-turns.
     pub(super) fn prove(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName) -> bool {
-        self.half_orders.iter().any(Option::is_some) && self.chain(path, line, v, LONGEST_CHAIN)
+        if self.half_orders.iter().all(Option::is_none) {
+            return false;
+        }
+        let mut known = line.to_vec();
+        // The centre of a half-turn between two points of the line is a third one.
+        let mut pair = (0, 1);
+        while pair.1 < known.len() && known.len() < MOST_KNOWN {
+            let centre = self.centre_between(path, known[pair.0], known[pair.1]);
+            known.extend(
+                centre.filter(|c| !known.iter().any(|k| self.same_point(path.sides, *k, *c))),
+            );
+            pair = if pair.0 + 1 < pair.1 {
+                (pair.0 + 1, pair.1)
+            } else {
+                (0, pair.1 + 1)
+            };
+        }
+        self.chain(path, &known, v, &mut Vec::new())
     }
 
     /// For each crossing whether it belongs to a whole block of 2m crossings round one corner.
@@ -125,7 +152,11 @@ impl HalfTurns {
                 Some((corner, end)) => {
                     let length = end - at;
                     for (offset, symbol) in symbols[at..end].iter_mut().enumerate() {
-                        *symbol = Symbol::Block { corner, offset, length };
+                        *symbol = Symbol::Block {
+                            corner,
+                            offset,
+                            length,
+                        };
                     }
                     at = end;
                 }
@@ -135,20 +166,47 @@ impl HalfTurns {
         symbols
     }
 
-    fn chain(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName, links: usize) -> bool {
-        let ends = self.run(path.sides, v);
-        line.iter().filter(|target| target.corner == v.corner).any(|target| {
-            let starts = self.run(path.sides, *target);
-            // Twice the centre is the sum of two indices at which the images are T and V.
-            let sums = starts.0 + ends.0..=starts.1 + ends.1;
-            sums.filter(|sum| sum.is_multiple_of(2)).any(|sum| {
-                let Some(centre) = self.centre(path, sum / 2, starts, ends) else {
-                    return false;
-                };
-                line.iter().any(|on_line| self.same_point(path.sides, *on_line, centre))
-                    || (links > 0 && self.chain(path, line, centre, links - 1))
-            })
+    /// `tried` holds the centres that were argued about before; each is argued about once.
+    fn chain(
+        &self,
+        path: Path<'_>,
+        known: &[ImageName],
+        v: ImageName,
+        tried: &mut Vec<ImageName>,
+    ) -> bool {
+        known.iter().any(|target| {
+            let Some(centre) = self.centre_between(path, *target, v) else {
+                return false;
+            };
+            if known
+                .iter()
+                .any(|on_line| self.same_point(path.sides, *on_line, centre))
+            {
+                return true;
+            }
+            if tried.len() == MOST_TRIED || tried.contains(&centre) {
+                return false;
+            }
+            tried.push(centre);
+            self.chain(path, known, centre, tried)
         })
+    }
+
+    /// The image about which a half-turn takes the one image to the other.
+    fn centre_between(&self, path: Path<'_>, a: ImageName, b: ImageName) -> Option<ImageName> {
+        if a.corner != b.corner {
+            return None;
+        }
+        let (a, b) = if a.crossings <= b.crossings {
+            (a, b)
+        } else {
+            (b, a)
+        };
+        let (starts, ends) = (self.run(path.sides, a), self.run(path.sides, b));
+        // Twice the centre is the sum of two indices at which the images are a and b.
+        let sums = starts.0 + ends.0..=starts.1 + ends.1;
+        sums.filter(|sum| sum.is_multiple_of(2))
+            .find_map(|sum| self.centre(path, sum / 2, starts, ends))
     }
 
     /// The image about which the path is a palindrome round index c, far enough to take an index in `starts` to one
@@ -176,7 +234,8 @@ impl HalfTurns {
         // The index nearest to the centre that serves both T and V.
         let i = starts.1.min((2 * c).saturating_sub(ends.0));
         let mirror = 2 * c - i;
-        let fits = starts.0 <= i && i <= c - m && mirror <= length && ends.0 <= mirror && mirror <= ends.1;
+        let fits =
+            starts.0 <= i && i <= c - m && mirror <= length && ends.0 <= mirror && mirror <= ends.1;
         (fits && path.mirrors(i, c - m, c + m)).then_some(image)
     }
 

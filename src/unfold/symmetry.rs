@@ -5,19 +5,19 @@
 //! images P, Q, V of a path are on one line, by one of three arguments.
 //!
 //! - *Half-turns* about corners of angle π/(2m): see [`half_turn`](super::half_turn).
-//! - *Mirrors.* If the path between two images X, Y of one corner is a palindrome about a crossing of side s, then Y is the
-//!   mirror image of X in that image of s, so XY is perpendicular to it. If two of the segments PQ, QV, PV are
-//!   perpendicular to parallel side images, the three are collinear.
+//! - *Directions.* If the path between two images X, Y of one corner is a palindrome about a crossing of side s, then Y is the
+//!   mirror image of X in that image of s, so XY is perpendicular to it. If X and Y are the ends of one image of side s, XY is
+//!   parallel to it. If two of the segments PQ, QV, PV are so proved parallel to each other, the three are collinear.
 //! - *Translations.* If the path has period g from P to V, and the product of the reflections of one period is a translation
 //!   τ, then images of one corner at indices that differ by multiples of g differ by multiples of one vector. If Q and P, and V and Q are so
 //!   related, the three are collinear.
 //!
-//! **Directions.** Let θ_s be the angle of side s. After the crossings s₁, …, s_n the linear part of the pose turns by
-//! 2(θ_{s₁} − θ_{s₂} + …) = 2·B_n·θ, after a mirror for odd n; so side s of the copy has the angle (2B_n + (−1)ⁿe_s)·θ modulo π. Two side images are
-//! parallel if the difference of these integer vectors lies in the lattice of relations that the rational angles of the table give:
-//! if sides s, t meet at an angle with denominator q in units of π, then q·(θ_s − θ_t) is a multiple of π. A word of even length is a
-//! translation if its B lies in that lattice. (This is the condition for stable periodic words of Galperin, Stepin, Vorobets, Russian
-//! Math. Surveys 47 (1992), when no angle is rational.)
+//! **Angles.** Let θ_s be the angle of side s. After the crossings s₁, …, s_n the linear part of the pose turns by
+//! 2(θ_{s₁} − θ_{s₂} + …) = 2·B_n·θ, after a mirror for odd n; so side s of the copy has the angle (2B_n + (−1)ⁿe_s)·θ
+//! modulo π. The angle of such an integer vector is known modulo π when it is a combination of differences e_s − e_t of
+//! sides that meet at a rational angle. A word of even length is a translation if B·θ is known to be 0 modulo π. (Where no angle is
+//! rational this is the condition for stable periodic words of Galperin, Stepin, Vorobets, Russian Math. Surveys 47
+//! (1992).)
 //!
 //! A positive answer is a proof. A negative one says nothing. Cost: a few passes over the path.
 
@@ -25,28 +25,35 @@ use super::exact_path::ImageName;
 use super::half_turn::{HalfTurns, Path};
 use crate::table::facts::{Angle, angle};
 use crate::table::{CornerId, SideId, Table};
+use rug::Rational;
 
 /// A table's symmetries, prepared.
 #[derive(Debug)]
 pub struct Symmetries {
     half_turns: HalfTurns,
-    /// By corner: the denominator of its angle in units of π, when that is rational.
-    denominators: Vec<Option<i64>>,
+    /// By corner: its angle in units of π, when that is rational.
+    angles: Vec<Option<Rational>>,
 }
 
-/// A crossing that two images are mirrored in, as its index on the path.
-type Mirror = usize;
+/// The proved direction of a segment between two images.
+#[derive(Clone, Copy, Debug)]
+enum Direction {
+    /// Perpendicular to the side crossed at this index of the path.
+    Perpendicular(usize),
+    /// Along this side of the copy after so many crossings.
+    Along(SideId, usize),
+}
 
 impl Symmetries {
     /// Looks at all angles of a table.
     pub fn new(table: &Table) -> Symmetries {
-        let denominator = |corner| match angle(table, corner) {
-            Angle::RationalMultipleOfPi(q) => q.denom().to_i64(),
+        let rational = |corner| match angle(table, corner) {
+            Angle::RationalMultipleOfPi(q) => Some(q),
             Angle::Irrational => None,
         };
         Symmetries {
             half_turns: HalfTurns::new(table),
-            denominators: (0..table.sides()).map(denominator).collect(),
+            angles: (0..table.sides()).map(rational).collect(),
         }
     }
 
@@ -58,86 +65,132 @@ impl Symmetries {
         b: ImageName,
         v: ImageName,
     ) -> bool {
-        let (p, q) = if a.crossings <= b.crossings { (a, b) } else { (b, a) };
+        let (p, q) = if a.crossings <= b.crossings {
+            (a, b)
+        } else {
+            (b, a)
+        };
         let symbols = self.half_turns.symbols(sides);
-        let path = Path { sides, symbols: &symbols };
+        let path = Path {
+            sides,
+            symbols: &symbols,
+        };
         self.half_turns.prove(path, [p, q], v)
-            || self.prove_by_mirrors(path, p, q, v)
+            || self.prove_by_directions(path, p, q, v)
             || self.prove_by_translation(sides, p, q, v)
     }
 
-    fn prove_by_mirrors(&self, path: Path<'_>, p: ImageName, q: ImageName, v: ImageName) -> bool {
-        let mirrors = [(p, q), (q, v), (p, v)].map(|(x, y)| self.mirror(path, x, y));
-        let parallel = |i: usize, j: usize| match (mirrors[i], mirrors[j]) {
-            (Some(e), Some(f)) => self.are_parallel(path.sides, e.min(f), e.max(f)),
+    fn prove_by_directions(
+        &self,
+        path: Path<'_>,
+        p: ImageName,
+        q: ImageName,
+        v: ImageName,
+    ) -> bool {
+        let directions = [(p, q), (q, v), (p, v)].map(|(x, y)| self.direction(path, x, y));
+        let parallel = |i: usize, j: usize| match (directions[i], directions[j]) {
+            (Some(d), Some(e)) => self.are_parallel(path.sides, d, e),
             _ => false,
         };
         parallel(0, 1) || parallel(1, 2) || parallel(0, 2)
     }
 
-    /// The crossing in which the second image is the mirror image of the first.
-    fn mirror(&self, path: Path<'_>, x: ImageName, y: ImageName) -> Option<Mirror> {
-        if x.corner != y.corner {
-            return None;
+    fn direction(&self, path: Path<'_>, x: ImageName, y: ImageName) -> Option<Direction> {
+        if x.corner == y.corner {
+            return self.mirror(path, x, y).map(Direction::Perpendicular);
         }
+        let k = self.angles.len() as u8;
+        let side = if (x.corner.0 + 1) % k == y.corner.0 {
+            x.corner.0
+        } else if (y.corner.0 + 1) % k == x.corner.0 {
+            y.corner.0
+        } else {
+            return None;
+        };
+        // One copy in which both are where their names say.
+        let (xs, ys) = (
+            self.half_turns.run(path.sides, x),
+            self.half_turns.run(path.sides, y),
+        );
+        let copy = xs.0.max(ys.0);
+        (copy <= xs.1.min(ys.1)).then_some(Direction::Along(SideId(side), copy))
+    }
+
+    /// The crossing in which the second image is the mirror image of the first.
+    fn mirror(&self, path: Path<'_>, x: ImageName, y: ImageName) -> Option<usize> {
         let starts = self.half_turns.run(path.sides, x);
         let ends = self.half_turns.run(path.sides, y);
         let sums = starts.0 + ends.0..=starts.1 + ends.1;
-        sums.filter(|sum| sum % 2 == 1).map(|sum| sum / 2).find(|&e| {
-            // The index nearest to the mirror that serves both images.
-            let i = starts.1.min((2 * e + 1).saturating_sub(ends.0));
-            let end = 2 * e + 1 - i;
-            starts.0 <= i
-                && i <= e
-                && (ends.0..=ends.1).contains(&end)
-                && end <= path.sides.len()
-                && path.mirrors(i, e, e + 1)
-        })
+        sums.filter(|sum| sum % 2 == 1)
+            .map(|sum| sum / 2)
+            .find(|&e| {
+                // The index nearest to the mirror that serves both images.
+                let i = starts.1.min((2 * e + 1).saturating_sub(ends.0));
+                let end = 2 * e + 1 - i;
+                starts.0 <= i
+                    && i <= e
+                    && (ends.0..=ends.1).contains(&end)
+                    && end <= path.sides.len()
+                    && path.mirrors(i, e, e + 1)
+            })
     }
 
-    /// True when the sides crossed at two indices, e ≤ f, are proved parallel.
-    fn are_parallel(&self, sides: &[SideId], e: usize, f: usize) -> bool {
-        let mut difference = self.alternating(sides, e..f);
-        for entry in &mut difference {
-            *entry *= 2;
-        }
+    fn are_parallel(&self, sides: &[SideId], d: Direction, e: Direction) -> bool {
+        let parts = |direction| match direction {
+            Direction::Perpendicular(at) => (sides[at], at, true),
+            Direction::Along(side, at) => (side, at, false),
+        };
+        let ((d_side, d_at, d_turned), (e_side, e_at, e_turned)) = (parts(d), parts(e));
+        // Angle of the one side image minus that of the other.
+        let (from, to) = (d_at.min(e_at), d_at.max(e_at));
+        let mut difference = self.alternating(sides, from..to);
         let sign = |at: usize| if at.is_multiple_of(2) { 1 } else { -1 };
-        difference[sides[f].0 as usize] += sign(f);
-        difference[sides[e].0 as usize] -= sign(e);
-        self.is_relation(&difference)
+        for entry in &mut difference {
+            *entry *= if e_at >= d_at { 2 } else { -2 };
+        }
+        difference[e_side.0 as usize] += sign(e_at);
+        difference[d_side.0 as usize] -= sign(d_at);
+        let quarter_turn = Rational::from((i32::from(d_turned != e_turned), 2));
+        self.angle_of(&difference) == Some(quarter_turn)
     }
 
     /// Σ (−1)^i e_{sides[i]} over a range of indices.
     fn alternating(&self, sides: &[SideId], range: std::ops::Range<usize>) -> Vec<i64> {
-        let mut sum = vec![0; self.denominators.len()];
+        let mut sum = vec![0; self.angles.len()];
         for i in range {
             sum[sides[i].0 as usize] += if i.is_multiple_of(2) { 1 } else { -1 };
         }
         sum
     }
 
-    /// True when the vector is an integer combination of q·(e_s − e_t) over the corners with a rational angle, where sides
-    /// s and t meet and q is the angle's denominator.
+    /// The angle vector·θ modulo π, in units of π and in [0, 1), when the vector is a combination of differences of sides
+    /// that meet at a rational angle.
     ///
-    /// These corners join the sides to paths (not all corners are rational). On each path the entries must sum to zero,
-    /// and the sum up to each joint must be a multiple of its q.
-    fn is_relation(&self, vector: &[i64]) -> bool {
+    /// These corners join the sides to paths (not all corners are rational), on each of which the entries must sum to
+    /// zero. At a corner with angle α, θ of the side before minus θ of the side after is α modulo π, and it counts as often
+    /// as the entries before it on its path say.
+    fn angle_of(&self, vector: &[i64]) -> Option<Rational> {
         let k = vector.len();
-        let Some(first) = self.denominators.iter().position(Option::is_none) else {
-            return vector.iter().all(|x| *x == 0);
+        let mut angle = Rational::new();
+        let Some(first) = self.angles.iter().position(Option::is_none) else {
+            return vector.iter().all(|x| *x == 0).then_some(angle);
         };
-        // Side `first` begins a path, because the corner before it is not a joint.
+        // Side `first` begins a path, because the corner before it joins nothing.
         let mut carried = 0;
         for step in 0..k {
             let side = (first + step) % k;
-            match self.denominators[side] {
-                None if carried != 0 => return false,
-                Some(q) if carried % q != 0 => return false,
+            match &self.angles[side] {
+                None if carried != 0 => return None,
+                Some(alpha) if carried != 0 => angle += Rational::from(alpha * carried),
                 _ => {}
             }
             carried += vector[side];
         }
-        carried == 0
+        if carried != 0 {
+            return None;
+        }
+        let whole = Rational::from(angle.floor_ref());
+        Some(angle - whole)
     }
 
     fn prove_by_translation(
@@ -161,7 +214,9 @@ impl Symmetries {
                     g.is_multiple_of(2)
                         && i + g <= sides.len()
                         && (i..l.max(j).saturating_sub(g)).all(|n| sides[n] == sides[n + g])
-                        && self.is_relation(&self.alternating(sides, i..i + g))
+                        && self
+                            .angle_of(&self.alternating(sides, i..i + g))
+                            .is_some_and(|angle| angle == 0)
                 })
             })
         })
