@@ -16,7 +16,7 @@ use std::io::{self, Write};
 const BATCH: u64 = 4096;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let tables = TraceTables::new(table);
     let law = StartLaw::new(table);
@@ -73,7 +73,7 @@ fn write_all(
 
 fn row(table: &Table, index: u64, sample: &Sample, format: Format) -> String {
     let word = spell_code(table, &sample.word);
-    let side = table.letters()[sample.start.side.0 as usize];
+    let side = table.letter(sample.start.side);
     let (fraction, aim) = (&sample.start.fraction, &sample.start.aim);
     match format {
         Format::Text => word,
