@@ -57,11 +57,19 @@ fn every_file_loads_at_once_and_without_notices() {
     }
 }
 
+/// The tables whose words are single beams, so that generalized diagonals lead to p too.
+fn files_with_one_beam_a_word() -> Vec<PathBuf> {
+    let mut files = all_files();
+    files.retain(|file| loaded(file).table.has_one_beam_a_word());
+    assert!(files.len() >= 20, "{files:?}");
+    files
+}
+
 /// Most tables reach length 24; those with many sides stop before 200 000 words of one length.
 #[test]
 fn both_routes_agree_on_every_file() {
     let mut full = 0;
-    for file in all_files() {
+    for file in files_with_one_beam_a_word() {
         let table = loaded(&file).table;
         let by_fans = p_by_fans(&table, LONGEST);
         let length = by_fans.iter().take_while(|p| **p < MOST_WORDS).count() - 1;
@@ -92,7 +100,7 @@ fn measures_fill_the_phase_space_on_every_file() {
         for level in &measures.levels {
             assert!(level.holds, "{}, length {}", file.display(), level.length);
         }
-        assert_eq!(measures.kept.len() as u64, by_fans[2]);
+        assert_eq!(measures.kept.len() as u64, p_by_beams(&table, 2)[2]);
     }
 }
 
@@ -105,7 +113,7 @@ fn rewritten(table: &Table, corners: Vec<Vector>) -> Table {
 
 #[test]
 fn p_does_not_depend_on_how_a_table_is_written() {
-    for file in all_files() {
+    for file in files_with_one_beam_a_word() {
         let table = loaded(&file).table;
         let expected = p_by_beams(&table, 8);
         let mut renumbered = table.corners().to_vec();

@@ -239,12 +239,11 @@ impl Table {
         &self.corners
     }
 
-    /// A corner by its index, which is also the corner that the side of this index starts from.
-    ///
-    /// # Panics
-    /// If there is no such corner.
+    /// A corner by its index, which is also the corner that the side of this index starts from. Indices are
+    /// taken modulo the number of corners; with holes the next corner is not always that of the next index, but
+    /// that of [`Table::after`].
     pub fn corner(&self, index: usize) -> &Vector {
-        &self.corners[index]
+        &self.corners[index % self.corners.len()]
     }
 
     /// The indices of the corners of each ring, the outline first.
