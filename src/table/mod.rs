@@ -3,6 +3,7 @@
 //! - [`validity`]: which polygons are tables; every refusal names the corners or sides at fault.
 //! - [`triangulation`]: cutting a table into triangles by exact predicates.
 //! - [`facts`]: angles, reflection group, area, perimeter, convexity, each proved.
+//! - [`frame`]: coordinates that need the smallest field.
 //! - [`summary`]: a table and its facts, ready to be written.
 //! - [`expression`]: the exact expressions of a table file.
 //! - [`file`](mod@file): the TOML table file.
@@ -13,6 +14,7 @@ pub mod diagnostic;
 pub mod expression;
 pub mod facts;
 pub mod file;
+pub mod frame;
 pub mod shape;
 pub mod summary;
 pub mod triangulation;

@@ -5,6 +5,7 @@
 //! - [`engine`]: what a walk needs of arithmetic: placing corner images and deciding orientations.
 //! - [`lattice`]: the engine for finite groups over the rationals: machine integers only.
 //! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
+//! - [`framed`]: an engine that works in the frame with the smallest field.
 //! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
 //! - [`wide_path`]: enclosed positions along a path, for distances.
 //! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
@@ -15,6 +16,7 @@ pub mod engine;
 pub mod exact_path;
 pub mod fan;
 pub mod filtered;
+pub mod framed;
 pub mod group;
 pub mod isometry;
 pub mod lattice;
