@@ -12,13 +12,16 @@ use crate::table::{CornerId, SideId, Vector};
 #[derive(Debug)]
 pub struct Framed<E> {
     inner: E,
-    frame: Option<Frame>,
+    frame: Option<Box<Frame>>,
 }
 
 impl<E> Framed<E> {
     /// An engine that was made for `frame.table`, or for the table itself.
     pub fn new(inner: E, frame: Option<Frame>) -> Framed<E> {
-        Framed { inner, frame }
+        Framed {
+            inner,
+            frame: frame.map(Box::new),
+        }
     }
 
     /// The engine inside.
@@ -28,7 +31,7 @@ impl<E> Framed<E> {
 
     /// The frame.
     pub fn frame(&self) -> Option<&Frame> {
-        self.frame.as_ref()
+        self.frame.as_deref()
     }
 }
 
