@@ -31,7 +31,7 @@ fn shelf() -> Vec<(String, Table)> {
 fn both_routes_agree_on_the_whole_shelf() {
     let control = Control::new();
     for (name, table) in shelf() {
-        let length = if table.sides() <= 6 { 16 } else { 9 };
+        let length = if table.sides() <= 6 { 16 } else { 12 };
         let engine = AnyEngine::new(&table, length, Arithmetic::Tiered);
         let mesh = Mesh::new(&table);
         let (language, _) = walk::grow(&engine, &mesh, length, &control).expect("nobody stops it");
