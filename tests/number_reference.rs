@@ -1,6 +1,6 @@
 //! Field arithmetic against general-purpose libraries: FLINT decides zeros, mpmath gives the decimals.
 //!
-//! `data/field_arithmetic.json` was written by `data/make_field_arithmetic.py` with python-flint 0.9 and mpmath 1.3: random
+//! `data/field_arithmetic.json` was written by `data/make_field_arithmetic.py` with python-flint 0.9 and mpmath 1.4: random
 //! expressions, zeros in disguise, and differences from rational numbers nearby.
 
 use reboundary::number::Sign;
