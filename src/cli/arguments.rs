@@ -3,7 +3,6 @@
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
-use std::num::NonZeroU32;
 use std::path::PathBuf;
 
 /// Complete, certified coding languages of polygonal billiards.
@@ -45,8 +44,8 @@ pub enum Command {
 #[derive(Clone, Debug, Args)]
 pub struct Common {
     /// Threads to use [default: all cores]
-    #[arg(long, value_name = "N")]
-    pub threads: Option<NonZeroU32>,
+    #[arg(long, value_name = "N", value_parser = parse_threads)]
+    pub threads: Option<usize>,
     /// No progress and no notices
     #[arg(long)]
     pub quiet: bool,
@@ -95,6 +94,24 @@ pub enum Route {
     Both,
 }
 
+/// The most threads that can be asked for: starting more only costs memory.
+const MOST_THREADS: usize = 1024;
+
+fn parse_threads(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(threads) if (1..=MOST_THREADS).contains(&threads) => Ok(threads),
+        _ => Err(format!("write a whole number from 1 to {MOST_THREADS}")),
+    }
+}
+
+/// The graph of order n needs words of length n + 1.
+fn parse_graph_order(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(order) if order < LONGEST => Ok(order),
+        _ => Err(format!("write a whole number from 0 to {}", LONGEST - 1)),
+    }
+}
+
 fn parse_length(text: &str) -> Result<usize, String> {
     match text.parse::<usize>() {
         Ok(length) if length <= LONGEST => Ok(length),
@@ -112,10 +129,13 @@ fn parse_positive_length(text: &str) -> Result<usize, String> {
     }
 }
 
+/// The shortest study.
+pub const SHORTEST_STUDY: usize = 3;
+
 fn parse_study_length(text: &str) -> Result<usize, String> {
     match parse_length(text)? {
-        length @ 0..=2 => Err(format!(
-            "a study needs words of length at least 3, not {length}"
+        length if length < SHORTEST_STUDY => Err(format!(
+            "a study needs words of length at least {SHORTEST_STUDY}, not {length}"
         )),
         length => Ok(length),
     }
@@ -150,7 +170,7 @@ pub struct StudyOptions {
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
-    #[arg(long, value_name = "N")]
+    #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]

@@ -1,6 +1,6 @@
 //! `reboundary study`.
 
-use super::arguments::StudyOptions;
+use super::arguments::{SHORTEST_STUDY, StudyOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
 use super::progress::{Progress, interruptible_control};
@@ -27,9 +27,9 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         )));
     }
     let request = Request {
-        length: options
-            .length
-            .or(options.graph_order.map(|order| order + 1)),
+        length: options.length.or(options
+            .graph_order
+            .map(|order| (order + 1).max(SHORTEST_STUDY))),
         radii: options.radii,
         arithmetic: options.exactness.arithmetic(),
         memory: options.budget_memory,
