@@ -30,17 +30,24 @@ fn shelf() -> Vec<(String, Table)> {
 #[test]
 fn both_routes_agree_on_the_whole_shelf() {
     let control = Control::new();
+    let mut compared = 0;
     for (name, table) in shelf() {
         let length = if table.sides() <= 6 { 16 } else { 12 };
         let engine = AnyEngine::new(&table, length, Arithmetic::Tiered);
         let mesh = Mesh::new(&table);
         let (language, _) = walk::grow(&engine, &mesh, length, &control).expect("nobody stops it");
         let by_beams: Vec<u64> = (0..=length).map(|n| language.count(n) as u64).collect();
+        // With holes or shared letters p does not follow from the diagonals; those tables have tests of their own.
+        if !table.has_one_beam_a_word() {
+            continue;
+        }
+        compared += 1;
         let found = diagonals::count(&engine, &mesh, length - 2, &control);
         let (found, _) = found.expect("nobody stops it");
         let by_fans = p_from_diagonals(table.sides() as u64, &found, length);
         assert_eq!(by_beams, by_fans, "{name}");
     }
+    assert!(compared >= 40);
 }
 
 #[test]

@@ -6,7 +6,7 @@ use reboundary::factor_graph::census::count_graphs;
 use reboundary::factor_graph::criterion::{LineFigures, line_figures};
 use reboundary::run::Control;
 use reboundary::study::results::{Request, Results, compute};
-use reboundary::study::verdict::{Evidence, Standing, Statement, verdict};
+use reboundary::study::verdict::{Coding, Evidence, Standing, Statement, verdict};
 use reboundary::table::Table;
 use reboundary::table::facts::{Facts, facts};
 use reboundary::unfold::engine::Arithmetic;
@@ -155,6 +155,10 @@ impl Honest {
     fn evidence(&self) -> Evidence<'_> {
         Evidence {
             facts: &self.facts,
+            coding: Coding {
+                distinct_letters: true,
+                holes: false,
+            },
             p: &self.p,
             disagreement: None,
             measure_fault: None,

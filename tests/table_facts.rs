@@ -49,7 +49,8 @@ fn glue(table: &Table) -> (i64, Vec<(u64, u64)>) {
     let group = FiniteGroup::generate(table);
     let copies = group.order();
     let beyond = |g: usize, side: usize| group.next[g * k + side % k] as usize;
-    let pairs = (0..copies).flat_map(|g| (0..k).flat_map(move |i| [(g, i, i), (g, i, i + k - 1)]));
+    let pairs =
+        (0..copies).flat_map(|g| (0..k).flat_map(move |i| [(g, i, i), (g, i, table.before(i))]));
     let class = classes(
         copies * k,
         pairs.map(|(g, corner, side)| (g * k + corner, beyond(g, side) * k + corner)),
@@ -67,7 +68,9 @@ fn glue(table: &Table) -> (i64, Vec<(u64, u64)>) {
     .into_iter()
     .collect();
     assert_eq!(connected.len(), 1, "{}", table.title());
-    let euler = size.len() as i64 - (copies * k / 2) as i64 + copies as i64;
+    // Each copy is a disc with holes: its interior counts 1 less the number of holes.
+    let interiors = copies as i64 * (1 - table.holes() as i64);
+    let euler = size.len() as i64 - (copies * k / 2) as i64 + interiors;
     assert_eq!(euler % 2, 0, "{}", table.title());
     let angles = facts(table).angles;
     let cones = (0..k)
@@ -105,9 +108,17 @@ fn the_surface_is_what_gluing_all_copies_gives() {
         let text = format!("triangle = [{a}, {b}, {c}]");
         tables.push(parse("test.toml", &text).unwrap().table);
     }
+    for hole in [
+        r#"["-1","-1"],["1","-1"],["1","1"],["-1","1"]"#,
+        r#"["-1","0"],["0","-1"],["1","0"],["0","1"]"#,
+    ] {
+        let outline = r#"["-5","-5"],["5","-5"],["5","5"],["-5","5"]"#;
+        let text = format!("corners = [{outline}]\n[[holes]]\ncorners = [{hole}]");
+        tables.push(parse("test.toml", &text).unwrap().table);
+    }
     let mut finite = 0;
     for table in &tables {
-        let Some(found) = surface(&facts(table)) else {
+        let Some(found) = surface(table.holes() as u64, &facts(table)) else {
             continue;
         };
         finite += 1;
@@ -131,9 +142,10 @@ fn the_language_is_invariant_under_every_symmetry_of_the_table() {
         let language = language(&table, length);
         let found = words(&language, length);
         for symmetry in symmetries(&table) {
+            let moved = symmetry.letters.as_ref().expect("letters of their own");
             let mut image: Vec<Vec<u8>> = found
                 .iter()
-                .map(|word| word.iter().map(|s| symmetry.sides[*s as usize].0).collect())
+                .map(|word| word.iter().map(|s| moved[*s as usize].0).collect())
                 .collect();
             image.sort();
             assert_eq!(image, found, "{} {symmetry:?}", table.title());

@@ -3,6 +3,7 @@
 
 use reboundary::number::Real;
 use reboundary::table::file::{LARGEST_FILE, LoadedTable, TableFileError, load, parse};
+use reboundary::table::{SideId, Vector};
 use std::path::{Path, PathBuf};
 use std::time::{Duration, Instant};
 
@@ -46,7 +47,7 @@ const BAD: &[(&str, usize, &[&str])] = &[
         &["`parameters` is reserved", "write the values out"],
     ),
     ("outline", 1, &["`outline` is reserved", "corners"]),
-    ("holes", 2, &["`holes` is reserved", "without holes"]),
+    ("holes", 3, &["hole 0 (counting from 0)", "this one has 0"]),
     (
         "title-number",
         1,
@@ -250,14 +251,6 @@ const BAD: &[(&str, usize, &[&str])] = &[
         "letters-empty",
         2,
         &["letter of side 1 must be one character, this is 0"],
-    ),
-    (
-        "letters-repeated",
-        5,
-        &[
-            "sides 0 and 2 have the same letter `a`",
-            "not supported in this version",
-        ],
     ),
     (
         "letters-space",
@@ -520,8 +513,48 @@ fn a_clockwise_table_is_turned_round_with_a_notice() {
     let loaded = parsed("corners = [[0, 0], [0, 1], [1, 1], [1, 0]]\nsides = ['p', 'q', 'r', 's']");
     assert_eq!(loaded.notices.len(), 1);
     assert!(loaded.notices[0].contains("quay.toml") && loaded.notices[0].contains("clockwise"));
-    assert_eq!(loaded.table.letters(), ['s', 'r', 'q', 'p']);
+    // The letters keep the order of the file, and stay on their sides.
+    assert_eq!(loaded.table.letters(), ['p', 'q', 'r', 's']);
+    assert_eq!(side_letters(&loaded), "srqp");
     assert!(double_area(&loaded) > Real::from(0));
+}
+
+fn side_letters(loaded: &LoadedTable) -> String {
+    let sides = (0..loaded.table.sides() as u8).map(SideId);
+    sides.map(|side| loaded.table.letter(side)).collect()
+}
+
+#[test]
+fn letters_may_repeat_and_are_numbered_by_their_first_appearance() {
+    let loaded = parsed("regular = 4\nsides = [\"b\", \"a\", \"b\", \"a\"]");
+    assert_eq!(loaded.table.letters(), ['b', 'a']);
+    assert_eq!(side_letters(&loaded), "baba");
+    assert!(!loaded.table.has_one_beam_a_word());
+    assert_eq!(loaded.table.sides_of_letter('a'), [SideId(1), SideId(3)]);
+}
+
+#[test]
+fn holes_are_read_in_the_coordinates_of_the_outline() {
+    let loaded = parsed(
+        "corners = [[0, 0], [9, 0], [9, 9], [0, 9]]\nsides = ['b', 'c', 'a', 'c']\n\
+         [[holes]]\ncorners = [[1, 1], [\"1 + sqrt(2)\", 1], [1, 2]]\n\
+         [[holes]]\ncorners = [[5, 5], [5, 6], [6, 5]]\nsides = ['x', 'c', 'y']\n",
+    );
+    let table = &loaded.table;
+    assert_eq!(
+        (table.sides(), table.holes(), table.field().degree()),
+        (10, 2, 2)
+    );
+    // The first hole was given counterclockwise: reversed, its first corner stays.
+    assert_eq!(side_letters(&loaded), "bcacfedxcy");
+    assert_eq!(table.corner(4), &Vector::new(1.into(), 1.into()));
+    assert_eq!(table.corner(5), &Vector::new(1.into(), 2.into()));
+    assert_eq!(table.letters(), ['b', 'c', 'a', 'd', 'e', 'f', 'x', 'y']);
+    // A hole in a shape that the program draws.
+    let hexagon =
+        parsed("regular = 6\n[[holes]]\ncorners = [[0, 0], [\"1/3\", 0], [0, \"sqrt(2)/9\"]]\n");
+    assert_eq!(hexagon.table.field().degree(), 2);
+    assert_eq!(*hexagon.table.form(), Real::from(3));
 }
 
 #[test]

@@ -83,14 +83,13 @@ pub enum Format {
 }
 
 /// The ways to p(n).
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
 pub enum Route {
     /// Count words: walk all beams of lines
     Beams,
     /// Count generalized diagonals: walk all fans of rays
     Diagonals,
     /// Both, compared value by value
-    #[default]
     Both,
 }
 
@@ -239,9 +238,9 @@ pub struct ComplexityOptions {
     /// Longest words
     #[arg(long, value_name = "N", default_value_t = DEFAULT_LENGTH, value_parser = parse_length)]
     pub length: usize,
-    /// How to count
-    #[arg(long, value_enum, default_value_t)]
-    pub route: Route,
+    /// How to count [default: both; beams when sides share letters or the table has holes]
+    #[arg(long, value_enum)]
+    pub route: Option<Route>,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -350,7 +349,8 @@ pub struct SweepOptions {
 pub struct TraceOptions {
     /// The table file
     pub table: PathBuf,
-    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a
+    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a; a2@1/3 for the second of
+    /// several sides with the letter a
     #[arg(long, value_name = "START")]
     pub start: String,
     /// Direction as a vector X,Y in the table's coordinates

@@ -73,7 +73,7 @@ fn write_all(
 
 fn row(table: &Table, index: u64, sample: &Sample, format: Format) -> String {
     let word = spell_code(table, &sample.word);
-    let side = table.letters()[sample.start.side.0 as usize];
+    let side = table.letter(sample.start.side);
     let (fraction, aim) = (&sample.start.fraction, &sample.start.aim);
     match format {
         Format::Text => word,

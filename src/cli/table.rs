@@ -118,7 +118,11 @@ fn write_symmetries(table: &TableSummary, out: &mut dyn Write) -> io::Result<()>
     }
     for (i, symmetry) in table.symmetries.iter().enumerate() {
         let label = if i == 0 { "symmetries" } else { "" };
-        writeln!(out, "  {label:<16} {} {}", symmetry.kind, symmetry.cycles)?;
+        let cycles = symmetry
+            .cycles
+            .as_deref()
+            .unwrap_or("(permutes no letters)");
+        writeln!(out, "  {label:<16} {} {cycles}", symmetry.kind)?;
     }
     Ok(())
 }

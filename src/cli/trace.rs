@@ -61,13 +61,12 @@ pub fn run(options: &TraceOptions) -> Result<(), Fault> {
 fn describe(table: &Table, step: Step, letters: usize) -> String {
     match step {
         Step::Corner(corner) => {
-            let k = table.sides();
-            let (before, after) = ((corner.0 as usize + k - 1) % k, corner.0 as usize);
+            let before = SideId(table.before(corner.0 as usize) as u8);
             format!(
                 "the orbit runs into corner {} (between sides {} and {}) after {letters} {}, the start included, and ends there",
                 corner.0,
-                table.letters()[before],
-                table.letters()[after],
+                table.letter(before),
+                table.letter(SideId(corner.0)),
                 if letters == 1 { "hit" } else { "hits" },
             )
         }
@@ -117,17 +116,7 @@ fn parse_start(
         let message = "the start has no `@` between its side and its fraction".into();
         return Err(fault("--start", text, 0..text.len(), message, help));
     };
-    let mut letters = text[..at].chars();
-    let side = match (letters.next(), letters.next()) {
-        (Some(letter), None) => table.side_of_letter(letter),
-        _ => None,
-    };
-    let Some(side) = side else {
-        let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
-        let message = format!("`{}` is not a side of this table", &text[..at]);
-        let help = format!("its sides are {}", known.join(", "));
-        return Err(fault("--start", text, 0..at, message, &help));
-    };
+    let side = parse_side(table, text, at)?;
     let fraction = evaluate(evaluator, "--start", text, at + 1..text.len())?;
     if fraction <= Real::from(0) || fraction >= Real::from(1) {
         let message = format!(
@@ -137,6 +126,39 @@ fn parse_start(
         return Err(fault("--start", text, at + 1..text.len(), message, help));
     }
     Ok((side, fraction))
+}
+
+/// The side named before the `@`: its letter, and when sides share it which of them, counted from 1.
+fn parse_side(table: &Table, text: &str, at: usize) -> Result<SideId, Fault> {
+    let named = &text[..at];
+    let sides = match named.chars().next() {
+        Some(letter) => table.sides_of_letter(letter),
+        None => Vec::new(),
+    };
+    let rest = named.get(named.chars().next().map_or(0, char::len_utf8)..);
+    let which = rest.filter(|rest| !rest.is_empty());
+    let count = sides.len();
+    match (which, &sides[..]) {
+        (None, [side]) => return Ok(*side),
+        (None, [_, _, ..]) => {
+            let message = format!("{count} sides have the letter `{named}`");
+            let help = format!(
+                "write which: `{named}1@...` to `{named}{count}@...`, in the order of the sides in `reboundary table`"
+            );
+            return Err(fault("--start", text, 0..at, message, &help));
+        }
+        (Some(which), [_, ..]) => {
+            let index = which.parse::<usize>().ok().and_then(|w| w.checked_sub(1));
+            if let Some(side) = index.and_then(|index| sides.get(index)) {
+                return Ok(*side);
+            }
+        }
+        (_, []) => {}
+    }
+    let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
+    let message = format!("`{named}` is not a side of this table");
+    let help = format!("its sides are {}", known.join(", "));
+    Err(fault("--start", text, 0..at, message, &help))
 }
 
 fn parse_aim(evaluator: &mut Evaluator, text: &str) -> Result<Vector, Fault> {
@@ -235,7 +257,7 @@ fn record(table: &Table, word: &[SideId], states: &[State], end: Option<Step>) -
             .enumerate()
             .map(|(i, state)| Hit {
                 hit: i + 1,
-                side: table.letters()[state.side.0 as usize].to_string(),
+                side: table.letter(state.side).to_string(),
                 fraction: Exact::new(&state.fraction),
                 point: ExactVector::new(&state.point),
                 direction: ExactVector::new(&state.direction),
@@ -262,7 +284,7 @@ fn write_csv(table: &Table, states: &[State], out: &mut dyn Write) -> io::Result
         let (fraction, point) = (Exact::new(&state.fraction), ExactVector::new(&state.point));
         csv.write_record([
             (i + 1).to_string(),
-            table.letters()[state.side.0 as usize].to_string(),
+            table.letter(state.side).to_string(),
             fraction.exact,
             point.x.exact,
             point.y.exact,

@@ -160,7 +160,10 @@ fn write_complexity(results: &Results, out: &mut dyn Write) -> io::Result<()> {
                 .diagonals
                 .get(n)
                 .map_or(String::new(), u64::to_string),
-            results.p_by_diagonals[n].to_string(),
+            results
+                .p_by_diagonals
+                .as_ref()
+                .map_or(String::new(), |p| p[n].to_string()),
         ])?;
     }
     csv.flush()
@@ -245,7 +248,7 @@ pub fn write_diagonals(table: &Table, listed: &[Diagonal], out: &mut dyn Write) 
 
 /// A sequence of sides in the letters of the table.
 pub fn spell_code(table: &Table, code: &[SideId]) -> String {
-    code.iter().map(|s| table.letters()[s.0 as usize]).collect()
+    code.iter().map(|s| table.letter(*s)).collect()
 }
 
 /// L_N, one word a line, in the order of the letters.

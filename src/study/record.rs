@@ -90,10 +90,10 @@ pub struct Complexity<'a> {
     pub second_difference: &'a [i64],
     /// N(0), N(1), …
     pub diagonals: &'a [u64],
-    /// p by generalized diagonals.
-    pub p_by_diagonals: &'a [u64],
-    /// True when both routes give the same p.
-    pub routes_agree: bool,
+    /// p by generalized diagonals; null when they do not lead to it.
+    pub p_by_diagonals: Option<&'a [u64]>,
+    /// True when both routes give the same p; null when only one leads to it.
+    pub routes_agree: Option<bool>,
     /// Extremes of p(n)/n³.
     pub cubic_range: Option<CubicRange>,
 }
@@ -179,8 +179,11 @@ pub fn record<'a>(results: &'a Results, table_file: &'a str, options: Options) -
             first_difference: &results.counts.first_difference,
             second_difference: &results.counts.second_difference,
             diagonals: &results.diagonals,
-            p_by_diagonals: &results.p_by_diagonals,
-            routes_agree: results.disagreement.is_none(),
+            p_by_diagonals: results.p_by_diagonals.as_deref(),
+            routes_agree: results
+                .p_by_diagonals
+                .as_ref()
+                .map(|_| results.disagreement.is_none()),
             cubic_range: crate::complexity::growth::cubic_range(
                 &results.counts.p,
                 super::verdict::CUBIC_FROM,

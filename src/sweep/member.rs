@@ -52,7 +52,7 @@ pub struct Row {
     pub convex: Option<bool>,
     /// Order of the reflection group; null when infinite.
     pub reflection_group_order: Option<u64>,
-    /// p(0), p(1), …; empty without a table.
+    /// p(0), p(1), …; empty without a table. By beams where holes or shared letters make words bundles of beams.
     pub p: Vec<u64>,
     /// N(0), N(1), … where the route ran.
     pub diagonals: Option<Vec<u64>>,
@@ -120,11 +120,14 @@ pub fn row_of(
     if request.by_diagonals {
         found = Some(diagonals::count(&engine, &mesh, length.saturating_sub(2), control)?.0);
     }
+    // Where a word is a bundle of beams p does not follow from the diagonals.
+    let follows = table.has_one_beam_a_word();
     let by_diagonals = found
         .as_ref()
+        .filter(|_| follows)
         .map(|n| p_from_diagonals(table.sides() as u64, n, length));
     let mut by_beams = None;
-    if request.by_beams {
+    if request.by_beams || !follows {
         by_beams = Some(walk::count(&engine, &mesh, length, control)?.0);
     }
     let facts = facts(table);

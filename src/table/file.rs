@@ -9,17 +9,26 @@
 //! | `triangle` | three positive rational numbers: angles in proportion to them |
 //! | `regular`  | an integer from 3 to 255: a regular polygon on the unit circle |
 //! | `form`     | with `corners`: the g of the plane form x² + g·y²; second coordinates are in units of √g |
-//! | `sides`    | optional letters, one character for each side; side i joins corner i to the next |
+//! | `sides`    | optional letters, one character for each side; side i joins corner i to the next; letters may repeat |
+//! | `holes`    | array of tables, each with `corners` and optional `sides` |
 //! | `about`    | free text, ignored |
 //!
 //! Exactly one of `corners`, `triangle` and `regular` is there. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
 //!
+//! Corners run either way round. Holes lie inside the table and touch neither its outline nor each other. Their
+//! coordinates are those of the outline, for `triangle` and `regular` too (`reboundary table` shows them). Where
+//! the program counts through, it counts the corners of the outline counterclockwise, then those of each hole
+//! clockwise; the first corner of each ring stays the first. Sides without a letter get the first letters of the
+//! alphabet that the file does not name.
+//!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
 mod faults;
 mod read;
+mod rings;
+mod source;
 
 use super::Table;
 use super::diagnostic::Diagnostic;

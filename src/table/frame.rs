@@ -61,7 +61,7 @@ impl Frame {
             .map(|v| Vector::new(v.x.clone(), &v.y * &inverse))
             .collect();
         let own_form = form * &(&unit * &unit);
-        let keeps_proportions = !parallel_to_axes(&stretched);
+        let keeps_proportions = !parallel_to_axes(table, &stretched);
         let needed: Vec<Real> = stretched
             .iter()
             .flat_map(|v| [v.x.clone(), v.y.clone()])
@@ -111,10 +111,9 @@ impl Frame {
     }
 }
 
-fn parallel_to_axes(corners: &[Vector]) -> bool {
-    let k = corners.len();
-    (0..k).all(|i| {
-        let side = corners[(i + 1) % k].minus(&corners[i]);
+fn parallel_to_axes(table: &Table, corners: &[Vector]) -> bool {
+    (0..corners.len()).all(|i| {
+        let side = corners[table.after(i)].minus(&corners[i]);
         side.x.sign() == Sign::Zero || side.y.sign() == Sign::Zero
     })
 }

@@ -4,7 +4,7 @@ use super::facts::{Angle, Facts, ReflectionGroup, angle_kind, squared_area};
 use super::frame::Frame;
 use super::surface::surface;
 use super::symmetry::{Symmetry, symmetries};
-use super::{Table, Vector};
+use super::{SideId, Table, Vector};
 use crate::number::discriminant::polynomial_discriminant;
 use crate::number::poly;
 use crate::number::{Field, Real};
@@ -126,10 +126,10 @@ pub struct SurfaceSummary {
 pub struct SymmetrySummary {
     /// `rotation` or `reflection`.
     pub kind: &'static str,
-    /// The permutation of the letters in cycles.
-    pub cycles: String,
-    /// Each letter and where it goes.
-    pub letters: BTreeMap<String, String>,
+    /// The permutation of the letters in cycles; null when sides that share a letter go to different letters.
+    pub cycles: Option<String>,
+    /// Each letter and where it goes; null with `cycles`.
+    pub letters: Option<BTreeMap<String, String>>,
 }
 
 /// A table with its facts.
@@ -143,10 +143,12 @@ pub struct TableSummary {
     pub walk_field: FieldSummary,
     /// g of the plane form x² + g·y².
     pub form: Exact,
-    /// Corners, counterclockwise.
+    /// Corners: the outline's counterclockwise, then each hole's clockwise.
     pub corners: Vec<ExactVector>,
     /// Sides.
     pub sides: Vec<SideSummary>,
+    /// The corners of each hole, clockwise.
+    pub holes: Vec<Vec<usize>>,
     /// Interior angles by corner: a rational multiple of π such as `2π/7`, or that it is none.
     pub angles: Vec<String>,
     /// What is proved about each interior angle.
@@ -161,7 +163,8 @@ pub struct TableSummary {
     pub reflection_group_order: Option<u64>,
     /// The surface that unfolding closes up to; null when the group is infinite.
     pub surface: Option<SurfaceSummary>,
-    /// The isometries that keep the table, without the identity; each keeps the language.
+    /// The isometries that keep the table, without the identity; each that permutes the letters keeps the
+    /// language.
     pub symmetries: Vec<SymmetrySummary>,
     /// The square of the area.
     pub squared_area: Exact,
@@ -189,13 +192,14 @@ pub fn summary(table: &Table, facts: &Facts) -> TableSummary {
             .map(|i| {
                 let squared = table.side_vector(i).squared_length(table.form());
                 SideSummary {
-                    letter: table.letters()[i].to_string(),
-                    corners: [i, (i + 1) % k],
+                    letter: table.letter(SideId(i as u8)).to_string(),
+                    corners: [i, table.after(i)],
                     length: root_decimal(&squared),
                     squared_length: Exact::new(&squared),
                 }
             })
             .collect(),
+        holes: table.rings().skip(1).map(Iterator::collect).collect(),
         angles: facts.angles.iter().map(|a| a.describe()).collect(),
         angle_standing: (facts.angles.iter().enumerate())
             .map(|(i, angle)| AngleStanding {
@@ -203,7 +207,7 @@ pub fn summary(table: &Table, facts: &Facts) -> TableSummary {
                 rational: *angle != Angle::Irrational,
             })
             .collect(),
-        surface: surface_summary(facts),
+        surface: surface_summary(table, facts),
         symmetries: symmetries(table)
             .iter()
             .map(|symmetry| symmetry_summary(symmetry, table.letters()))
@@ -228,8 +232,8 @@ pub fn summary(table: &Table, facts: &Facts) -> TableSummary {
     }
 }
 
-fn surface_summary(facts: &Facts) -> Option<SurfaceSummary> {
-    let surface = surface(facts)?;
+fn surface_summary(table: &Table, facts: &Facts) -> Option<SurfaceSummary> {
+    let surface = surface(table.holes() as u64, facts)?;
     Some(SurfaceSummary {
         copies: surface.copies,
         genus: surface.genus,
@@ -245,16 +249,18 @@ fn surface_summary(facts: &Facts) -> Option<SurfaceSummary> {
 }
 
 fn symmetry_summary(symmetry: &Symmetry, letters: &[char]) -> SymmetrySummary {
-    let moved = letters.iter().zip(&symmetry.sides);
+    let moved = symmetry.letters.as_ref();
     SymmetrySummary {
         kind: match symmetry.mirrored {
             true => "reflection",
             false => "rotation",
         },
         cycles: symmetry.cycles(letters),
-        letters: moved
-            .map(|(from, to)| (from.to_string(), letters[to.0 as usize].to_string()))
-            .collect(),
+        letters: moved.map(|moved| {
+            (letters.iter().zip(moved))
+                .map(|(from, to)| (from.to_string(), letters[to.0 as usize].to_string()))
+                .collect()
+        }),
     }
 }
 

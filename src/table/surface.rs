@@ -5,10 +5,11 @@
 //! after 2n_i of them, so corner i gives N/n_i points, each with the angle 2n_i·π·m_i/n_i = 2π·m_i. With N·k edges and
 //! 2N faces the Euler characteristic is Σ N/n_i − N·k + 2N, hence
 //! genus = 1 + (N/2)·(k − 2 − Σ 1/n_i)
+//! With h holes the interior of each copy counts 1 − h instead of 1, so 2h − 2 stands for −2, and N is half the order of
+//! the whole reflection group, since the angles between the rings count in it.
 //! (Katok and Zemlyakov, 1975; Masur and Tabachnikov, handbook survey on rational billiards; both from memory).
 
-use super::facts::{Angle, Facts};
-use rug::Integer;
+use super::facts::{Angle, Facts, ReflectionGroup};
 
 /// Points of the surface that one corner gives.
 #[derive(Clone, Debug, PartialEq, Eq)]
@@ -30,22 +31,20 @@ pub struct Surface {
     pub cone_points: Vec<ConePoints>,
 }
 
-/// The surface of a table; `None` when some angle is no rational multiple of π. Cost: O(k).
-pub fn surface(facts: &Facts) -> Option<Surface> {
+/// The surface of a table with so many holes; `None` when the reflection group is infinite. Cost: O(k).
+pub fn surface(holes: u64, facts: &Facts) -> Option<Surface> {
+    let ReflectionGroup::Finite { r: n } = facts.group else {
+        return None;
+    };
     let multiples = facts.angles.iter().map(|angle| match angle {
         Angle::RationalMultipleOfPi(q) => Some((q.numer().to_u64()?, q.denom().to_u64()?)),
         Angle::Irrational => None,
     });
     let multiples: Vec<(u64, u64)> = multiples.collect::<Option<_>>()?;
-    let n = multiples.iter().fold(Integer::from(1), |mut n, (_, den)| {
-        n.lcm_mut(&Integer::from(*den));
-        n
-    });
-    let n = n.to_u64()?;
     let corners = multiples.len() as u64;
     let points: u64 = multiples.iter().map(|(_, den)| n / den).sum();
-    // 2·genus − 2 = N·k − 2N − points; never below −2, and even, because the surface is closed and oriented.
-    let doubled = n * corners + 2 - 2 * n - points;
+    // 2·genus − 2 = N·k − 2N(1 − h) − points; never below −2, and even, because the surface is closed and oriented.
+    let doubled = n * corners + 2 + 2 * n * holes - 2 * n - points;
     Some(Surface {
         copies: 2 * n,
         genus: doubled / 2,
@@ -66,7 +65,8 @@ mod tests {
     use crate::table::file::parse;
 
     fn of(text: &str) -> Option<Surface> {
-        surface(&facts(&parse("test.toml", text).unwrap().table))
+        let table = parse("test.toml", text).unwrap().table;
+        surface(table.holes() as u64, &facts(&table))
     }
 
     #[test]

@@ -22,10 +22,10 @@ pub mod filtered;
 pub mod framed;
 pub mod group;
 pub mod half_turn;
-pub mod symmetry;
 pub mod isometry;
 pub mod lattice;
 pub mod mesh;
+pub mod symmetry;
 pub mod wide_path;
 
 pub use engine::{Engine, Trail, with_engine};
