@@ -51,6 +51,14 @@ pub struct Common {
     pub quiet: bool,
 }
 
+/// Settings of the table file's parameters.
+#[derive(Clone, Debug, Args)]
+pub struct Settings {
+    /// Value of a parameter of the table file, an exact expression, such as t=2/5; may be repeated
+    #[arg(long = "set", value_name = "NAME=VALUE", allow_hyphen_values = true)]
+    pub set: Vec<String>,
+}
+
 /// Options about arithmetic.
 #[derive(Clone, Copy, Debug, Args)]
 pub struct Exactness {
@@ -159,6 +167,9 @@ fn parse_bytes(text: &str) -> Result<u64, String> {
 pub struct StudyOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     #[doc = "Longest words [default: as far as a million words in all, at most 60]"]
     #[arg(long, value_name = "N", value_parser = parse_study_length)]
     pub length: Option<usize>,
@@ -194,6 +205,9 @@ fn parse_radii(text: &str) -> Result<usize, String> {
 pub struct TableOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -210,6 +224,9 @@ pub struct TableOptions {
 pub struct WordsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Length of the words
     #[arg(long, value_name = "N", value_parser = parse_length)]
     pub length: usize,
@@ -235,6 +252,9 @@ pub struct WordsOptions {
 pub struct ComplexityOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Longest words
     #[arg(long, value_name = "N", default_value_t = DEFAULT_LENGTH, value_parser = parse_length)]
     pub length: usize,
@@ -260,6 +280,9 @@ pub struct ComplexityOptions {
 pub struct DiagonalsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// The most sides that a listed diagonal crosses
     #[arg(long, value_name = "N", default_value_t = 8, value_parser = parse_length)]
     pub length: usize,
@@ -282,6 +305,9 @@ pub struct DiagonalsOptions {
 pub struct GraphOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Largest order n of the factor graphs
     #[arg(long, value_name = "N", default_value_t = 30, value_parser = parse_positive_length)]
     pub length: usize,
@@ -349,6 +375,9 @@ pub struct SweepOptions {
 pub struct TraceOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a; a2@1/3 for the second of
     /// several sides with the letter a
     #[arg(long, value_name = "START")]
@@ -375,6 +404,9 @@ pub struct TraceOptions {
 pub struct OrbitsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Number of orbits
     #[arg(long, value_name = "M", default_value_t = 1000)]
     pub count: u64,

@@ -32,7 +32,7 @@ struct ComplexityRecord {
 }
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let route = route(table, options.route)?;
     let (mesh, length) = (Mesh::new(table), options.length);

@@ -56,7 +56,7 @@ struct GraphRecord<'a> {
 }
 
 pub fn run(options: &GraphOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let (mesh, length) = (Mesh::new(table), options.length);
     let engine = AnyEngine::new(table, length + 1, options.exactness.arithmetic());

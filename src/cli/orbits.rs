@@ -16,7 +16,7 @@ use std::io::{self, Write};
 const BATCH: u64 = 4096;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let tables = TraceTables::new(table);
     let law = StartLaw::new(table);

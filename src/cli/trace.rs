@@ -16,7 +16,7 @@ use std::io::{self, Write};
 use std::ops::Range;
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.quiet)?;
     let (table, start) = parse_launch(&loaded.table, &options.start, &options.aim)?;
     let table = &table;
     let tables = TraceTables::new(table);

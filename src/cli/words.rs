@@ -16,7 +16,7 @@ use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 
 pub fn run(options: &WordsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let (mesh, length) = (Mesh::new(table), options.length);
     let engine = AnyEngine::new(table, length, options.exactness.arithmetic());

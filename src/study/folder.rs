@@ -14,6 +14,7 @@ use crate::language::WordId;
 use crate::language::beams::beams_of_length;
 use crate::run::files::{OutputFault, ResultFolder};
 use crate::run::{Control, Stopped};
+use crate::table::file::Parameter;
 use crate::table::summary::{ExactVector, root_decimal};
 use crate::table::{SideId, Table};
 use crate::unfold::Mesh;
@@ -39,6 +40,8 @@ pub struct Extras<'a> {
     pub table_file: &'a str,
     /// Notices about the input.
     pub notices: &'a [String],
+    /// The parameters of the table file, as set.
+    pub parameters: &'a [Parameter],
     /// The command that reproduces the study.
     pub command: &'a str,
     /// Order of the exported factor graph; `None` for the largest with at most 2000 vertices.
@@ -107,6 +110,7 @@ pub fn write(
         radii: results.graphs.first().map_or(0, |g| g.path_balls.len()),
         graph_order: order,
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
+        parameters: extras.parameters.to_vec(),
     };
     let record = record(results, extras.table_file, options);
     folder.write("report.html", |out| {

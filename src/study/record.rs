@@ -10,6 +10,7 @@ use crate::factor_graph::criterion::LineFigures;
 use crate::factor_graph::export::spell;
 use crate::language::WordId;
 use crate::number::Enclosure;
+use crate::table::file::Parameter;
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
 
@@ -77,6 +78,8 @@ pub struct Options {
     pub graph_order: usize,
     /// True when only big integers may decide.
     pub exact_only: bool,
+    /// The parameters of the table file, as set.
+    pub parameters: Vec<Parameter>,
 }
 
 /// Counts.

@@ -58,6 +58,18 @@ pub fn report(
          <a href=\"#growth\">Growth</a><a href=\"#graphs\">Factor graphs</a><a href=\"#cells\">Beams and measures</a>\
          <a href=\"#diagonals\">Generalized diagonals</a><a href=\"#method\">Method</a><a href=\"#again\">Reproduce</a></nav>\n",
     );
+    for parameter in extras.parameters {
+        let from = if parameter.set {
+            "set on the command line"
+        } else {
+            "as in the table file"
+        };
+        page.push_str(&format!(
+            "<p class=\"notice\">Parameter {} = {}, {from}.</p>\n",
+            escape(&parameter.name),
+            escape(&parameter.expression)
+        ));
+    }
     for notice in extras.notices {
         page.push_str(&format!("<p class=\"notice\">{}</p>\n", escape(notice)));
     }

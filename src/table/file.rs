@@ -11,11 +11,16 @@
 //! | `form`     | with `corners`: the g of the plane form x² + g·y²; second coordinates are in units of √g |
 //! | `sides`    | optional letters, one character for each side; side i joins corner i to the next; letters may repeat |
 //! | `holes`    | array of tables, each with `corners` and optional `sides` |
+//! | `define`   | table of names and their expressions |
+//! | `parameters` | the same; a setting `name=expression` overrides the file's |
 //! | `about`    | free text, ignored |
 //!
 //! Exactly one of `corners`, `triangle` and `regular` is there. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
+//!
+//! Names can be used in all expressions of the file, those of other names included, in any order. A name may
+//! stand for a rational multiple of `pi`. Functions, `pi` and `x` cannot be names.
 //!
 //! Corners run either way round. Holes lie inside the table and touch neither its outline nor each other. Their
 //! coordinates are those of the outline, for `triangle` and `regular` too (`reboundary table` shows them). Where
@@ -26,12 +31,14 @@
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
 mod faults;
+mod names;
 mod read;
 mod rings;
 mod source;
 
 use super::Table;
 use super::diagnostic::Diagnostic;
+pub use names::{MOST_NAMES, Parameter};
 use std::io::Read;
 use std::path::Path;
 use thiserror::Error;
@@ -50,6 +57,8 @@ pub struct LoadedTable {
     pub text: String,
     /// The name of the file without folder and extension.
     pub stem: String,
+    /// Its parameters, as set.
+    pub parameters: Vec<Parameter>,
 }
 
 /// Why a file gave no table.
@@ -91,6 +100,14 @@ pub enum TableFileError {
 /// # Errors
 /// As [`TableFileError`] says.
 pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
+    load_with(path, &[])
+}
+
+/// Reads a table from a file, with settings `name=expression` for its parameters.
+///
+/// # Errors
+/// As [`TableFileError`] says; a fault in a setting points into its text.
+pub fn load_with(path: &Path, settings: &[String]) -> Result<LoadedTable, TableFileError> {
     let file = path.display().to_string();
     let unreadable = |reason| TableFileError::Unreadable {
         file: file.clone(),
@@ -109,7 +126,7 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
         file: file.clone(),
         offset: e.utf8_error().valid_up_to(),
     })?;
-    parse(&file, &text)
+    parse_with(&file, &text, settings)
 }
 
 /// Reads a table from a text; `file_name` is used in messages and for the stem.
@@ -117,6 +134,18 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
 /// # Errors
 /// As [`TableFileError`] says, except for reading.
 pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError> {
+    parse_with(file_name, text, &[])
+}
+
+/// Reads a table from a text, with settings `name=expression` for its parameters.
+///
+/// # Errors
+/// As [`TableFileError`] says, except for reading.
+pub fn parse_with(
+    file_name: &str,
+    text: &str,
+    settings: &[String],
+) -> Result<LoadedTable, TableFileError> {
     if text.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge {
             file: file_name.into(),
@@ -133,7 +162,8 @@ pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError>
         || file_name.to_string(),
         |s| s.to_string_lossy().into_owned(),
     );
-    let table = read::table(file_name, text, &stem).map_err(TableFileError::Fault)?;
+    let (table, parameters) =
+        read::table(file_name, text, &stem, settings).map_err(TableFileError::Fault)?;
     let mut notices = Vec::new();
     if table.turned_round() {
         notices.push(format!(
@@ -146,5 +176,6 @@ pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError>
         notices,
         text: text.to_string(),
         stem,
+        parameters,
     })
 }

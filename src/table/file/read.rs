@@ -1,10 +1,11 @@
 //! From the text of a table file to a table.
 
 use super::faults::{self, Layout};
+use super::names::{Names, Parameter};
 use super::rings::{self, WrittenRing};
 use super::source::{Outcome, Source, Value, array, kind, number};
-use crate::number::Real;
 use crate::number::adjoin::AdjoinFault;
+use crate::number::{Field, Real};
 use crate::table::expression::Evaluator;
 use crate::table::{MOST_SIDES, Ring, Table, shape};
 use rug::Rational;
@@ -12,21 +13,50 @@ use std::ops::Range;
 use toml::de::DeTable;
 
 const SHAPES: [&str; 3] = ["corners", "triangle", "regular"];
-const KEYS: [&str; 8] = [
-    "title", "about", "corners", "triangle", "regular", "sides", "form", "holes",
+const KEYS: [&str; 10] = [
+    "title",
+    "about",
+    "corners",
+    "triangle",
+    "regular",
+    "sides",
+    "form",
+    "holes",
+    "define",
+    "parameters",
 ];
-const RESERVED: [&str; 3] = ["define", "parameters", "outline"];
+const RESERVED: [&str; 1] = ["outline"];
 
-/// An outline that has been read, with the evaluator whose field holds it.
-struct Drawn {
-    evaluator: Evaluator,
-    ring: WrittenRing,
-    form: Real,
-    form_span: Option<Range<usize>>,
+/// A parsed file with its names.
+#[derive(Clone, Copy)]
+pub(super) struct Sheet<'a> {
+    pub(super) source: Source<'a>,
+    pub(super) document: &'a DeTable<'a>,
+    pub(super) names: &'a Names,
+}
+
+impl Sheet<'_> {
+    /// An evaluator that starts in a field and knows the names of the file.
+    pub(super) fn evaluator(&self, field: Field) -> Outcome<Evaluator> {
+        self.names.evaluator(self.source, self.document, field)
+    }
+}
+
+/// An outline, perhaps with holes, that has been read, with the evaluator whose field holds it.
+pub(super) struct Drawn {
+    pub(super) evaluator: Evaluator,
+    pub(super) rings: Vec<WrittenRing>,
+    pub(super) form: Real,
+    pub(super) form_span: Option<Range<usize>>,
 }
 
 /// Reads and checks a table.
-pub(super) fn table(file: &str, text: &str, stem: &str) -> Outcome<Table> {
+pub(super) fn table(
+    file: &str,
+    text: &str,
+    stem: &str,
+    settings: &[String],
+) -> Outcome<(Table, Vec<Parameter>)> {
     let source = Source { file, text };
     let document = DeTable::parse(text).map_err(|e| {
         let message = format!("this is not valid TOML: {}", e.message());
@@ -36,57 +66,70 @@ pub(super) fn table(file: &str, text: &str, stem: &str) -> Outcome<Table> {
     let document = document.into_inner();
     check_keys(source, &document)?;
     let title = title(source, &document, stem)?;
-    let chosen: Vec<&str> = SHAPES
+    let names = Names::read(source, &document, settings)?;
+    let sheet = Sheet {
+        source,
+        document: &document,
+        names: &names,
+    };
+    let drawn = draw(sheet)?;
+    Ok((complete(sheet, &title, drawn)?, names.parameters()))
+}
+
+/// Reads the one shape of the file.
+fn draw(sheet: Sheet<'_>) -> Outcome<Drawn> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
+    let mut chosen: Vec<_> = SHAPES
         .into_iter()
-        .filter(|key| document.contains_key(*key))
+        .filter_map(|shape| document.get_key_value(shape))
         .collect();
-    if let Some((key, _)) = document.get_key_value("form")
-        && let [only] = chosen[..]
-        && only != "corners"
-    {
-        let message = format!("`form` goes with `corners`, not with `{}`", chosen[0]);
-        let help = format!(
-            "remove this line: `{}` chooses the plane form itself",
-            chosen[0]
-        );
-        return source.fault(&key.span(), message, help);
-    }
-    let get = |key: &str| document.get(key).expect("a key that is there");
-    let drawn = match chosen[..] {
-        ["corners"] => corners(source, &document),
-        ["triangle"] => triangle(source, get("triangle")),
-        ["regular"] => regular(source, get("regular")),
-        [] => source.fault(
-            &(0..0),
-            "the file describes no table",
-            "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]` or `regular = 7`",
-        ),
-        _ => {
-            let mut keys: Vec<_> =
-                chosen.iter().filter_map(|key| document.get_key_value(*key)).map(|(k, _)| k).collect();
-            keys.sort_by_key(|key| key.span().start);
-            let names: Vec<String> = keys.iter().map(|key| format!("`{}`", key.get_ref())).collect();
-            source.fault(
-                &keys[1].span(),
-                format!("{} describe the table more than once", names.join(" and ")),
-                "keep exactly one of `corners`, `triangle` and `regular`",
-            )
+    chosen.sort_by_key(|(key, _)| key.span().start);
+    let [(key, value)] = chosen[..] else {
+        if chosen.is_empty() {
+            let help = "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]` or `regular = 7`";
+            return source.fault(&(0..0), "the file describes no table", help);
         }
-    }?;
-    complete(source, &document, &title, drawn)
+        let names: Vec<String> = chosen
+            .iter()
+            .map(|(key, _)| format!("`{}`", key.get_ref()))
+            .collect();
+        let message = format!("{} describe the table more than once", names.join(" and "));
+        let known: Vec<String> = SHAPES.iter().map(|shape| format!("`{shape}`")).collect();
+        let help = format!("keep exactly one of {}", known.join(", "));
+        return source.fault(&chosen[1].0.span(), message, help);
+    };
+    let shape = key.get_ref().as_ref();
+    if let Some((form, _)) = document.get_key_value("form")
+        && shape != "corners"
+    {
+        let message = format!("`form` goes with `corners`, not with `{shape}`");
+        let help = format!("remove this line: `{shape}` chooses the plane form itself");
+        return source.fault(&form.span(), message, help);
+    }
+    match shape {
+        "corners" => corners(sheet, key.span(), value),
+        "triangle" => triangle(sheet, value),
+        "regular" => regular(sheet, value),
+        _ => unreachable!("one of the shapes"),
+    }
 }
 
 /// Adds letters and holes to an outline, brings all numbers into one field, and checks the table.
-fn complete(source: Source, document: &DeTable, title: &str, drawn: Drawn) -> Outcome<Table> {
+fn complete(sheet: Sheet<'_>, title: &str, drawn: Drawn) -> Outcome<Table> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
     let Drawn {
         mut evaluator,
-        mut ring,
+        mut rings,
         form,
         form_span,
     } = drawn;
-    rings::read_letters(source, document, &mut ring, 0)?;
-    let mut rings = vec![ring];
-    rings.extend(rings::holes(source, &mut evaluator, document)?);
+    rings::read_letters(source, document, &mut rings[0], 0)?;
+    let first = rings.len();
+    rings.extend(rings::holes(source, &mut evaluator, document, first)?);
     rings::check_total(source, &rings)?;
     rings::complete_letters(&mut rings);
     rings::lift(&evaluator, &mut rings);
@@ -184,17 +227,19 @@ fn title(source: Source, document: &DeTable, stem: &str) -> Outcome<String> {
     Ok(text.to_string())
 }
 
-fn corners(source: Source, document: &DeTable) -> Outcome<Drawn> {
-    let (key, value) = document.get_key_value("corners").expect("checked before");
-    let mut evaluator = Evaluator::default();
-    let ring = rings::corners(source, &mut evaluator, &key.span(), value, 0)?;
+fn corners(sheet: Sheet<'_>, key: Range<usize>, value: &Value) -> Outcome<Drawn> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
+    let mut evaluator = sheet.evaluator(Field::rationals())?;
+    let ring = rings::corners(source, &mut evaluator, &key, value, 0)?;
     let form = match document.get("form") {
         Some(form) => number(source, &mut evaluator, form, "the plane form")?,
         None => Real::from(1),
     };
     Ok(Drawn {
         evaluator,
-        ring,
+        rings: vec![ring],
         form,
         form_span: document.get("form").map(Value::span),
     })
@@ -202,13 +247,13 @@ fn corners(source: Source, document: &DeTable) -> Outcome<Drawn> {
 
 /// A shape that the program draws, in a field of its own.
 fn shaped(
-    source: Source,
+    sheet: Sheet<'_>,
     value: &Value,
     shape: Result<shape::Shape, AdjoinFault>,
 ) -> Outcome<Drawn> {
     let shape = shape.map_err(|fault| {
         let help = "the field of its cosines is too large; choose angles with a smaller common denominator";
-        source.diagnostic(&value.span(), format!("this shape cannot be used: {fault}"), help)
+        sheet.source.diagnostic(&value.span(), format!("this shape cannot be used: {fault}"), help)
     })?;
     let numbers = shape.corners.iter().flat_map(|c| [&c.x, &c.y]);
     let field = numbers
@@ -217,20 +262,21 @@ fn shaped(
         .find(|field| !field.is_rational())
         .cloned();
     Ok(Drawn {
-        evaluator: field.map_or_else(Evaluator::default, Evaluator::new),
-        ring: WrittenRing {
+        evaluator: sheet.evaluator(field.unwrap_or_else(Field::rationals))?,
+        rings: vec![WrittenRing {
             spans: vec![value.span(); shape.corners.len()],
             corners: shape.corners,
             all: value.span(),
             letters: None,
             letter_spans: Vec::new(),
-        },
+        }],
         form: shape.form,
         form_span: None,
     })
 }
 
-fn triangle(source: Source, value: &Value) -> Outcome<Drawn> {
+fn triangle(sheet: Sheet<'_>, value: &Value) -> Outcome<Drawn> {
+    let source = sheet.source;
     let help = "write three numbers, such as `triangle = [\"1\", \"2\", \"4\"]`: the angles are in proportion \
                 to them";
     let items = array(source, value, "`triangle`", help)?;
@@ -239,7 +285,7 @@ fn triangle(source: Source, value: &Value) -> Outcome<Drawn> {
         return source.fault(&value.span(), message, help);
     }
     let mut proportions: [Rational; 3] = Default::default();
-    let mut evaluator = Evaluator::default();
+    let mut evaluator = sheet.evaluator(Field::rationals())?;
     for (i, item) in items.iter().enumerate() {
         let what = format!("the angle at corner {i} (counting from 0)");
         let angle = number(source, &mut evaluator, item, &what)?;
@@ -256,13 +302,14 @@ fn triangle(source: Source, value: &Value) -> Outcome<Drawn> {
             }
         };
     }
-    shaped(source, value, shape::triangle(&proportions))
+    shaped(sheet, value, shape::triangle(&proportions))
 }
 
-fn regular(source: Source, value: &Value) -> Outcome<Drawn> {
+fn regular(sheet: Sheet<'_>, value: &Value) -> Outcome<Drawn> {
+    let source = sheet.source;
     let count = number(
         source,
-        &mut Evaluator::default(),
+        &mut sheet.evaluator(Field::rationals())?,
         value,
         "the number of corners",
     )?;
@@ -271,7 +318,7 @@ fn regular(source: Source, value: &Value) -> Outcome<Drawn> {
         .filter(|c| c.is_integer())
         .and_then(|c| c.numer().to_u32());
     match whole.filter(|k| (3..=MOST_SIDES as u32).contains(k)) {
-        Some(k) => shaped(source, value, shape::regular(k)),
+        Some(k) => shaped(sheet, value, shape::regular(k)),
         None => source.fault(
             &value.span(),
             "the number of corners of a regular polygon is out of range",

@@ -90,11 +90,12 @@ pub(super) fn corners(
     })
 }
 
-/// Reads `[[holes]]`.
+/// Reads `[[holes]]`; the first of them has this number among the rings.
 pub(super) fn holes(
     source: Source,
     evaluator: &mut Evaluator,
     document: &DeTable,
+    first: usize,
 ) -> Outcome<Vec<WrittenRing>> {
     let Some((key, value)) = document.get_key_value("holes") else {
         return Ok(Vec::new());
@@ -102,7 +103,7 @@ pub(super) fn holes(
     let example = "write each hole as `[[holes]]` with a line `corners = [...]` below it";
     let items = array(source, value, "`holes`", example)?;
     let mut holes: Vec<WrittenRing> = Vec::new();
-    for (hole, item) in items.iter().enumerate() {
+    for (hole, item) in (first - 1..).zip(items) {
         let DeValue::Table(table) = item.get_ref() else {
             let message = format!(
                 "hole {hole} (counting from 0) must be a table of keys, this is {}",
