@@ -6,26 +6,18 @@ use reboundary::run::Control;
 use reboundary::sweep::folder::{Family, Outcome, SweepFault, sweep};
 use reboundary::sweep::member::{Request, Row};
 use reboundary::sweep::range::{members, parse};
-use reboundary::table::file::{self, LoadedTable, TableFileError};
+use reboundary::table::file::parse_with;
 use serde_json::Value;
 use std::fs;
 use std::path::Path;
-use std::sync::atomic::{AtomicUsize, Ordering};
 use support::p_by_beams;
 
 /// A kite whose tail is at t: no table where t is the crossing point of the wings, nonconvex below it.
 const KITE: &str = r#"title = "Kite"
-corners = [["0", "0"], ["2", "-1"], ["<t>", "0"], ["2", "1"]]
+corners = [["0", "0"], ["2", "-1"], ["t", "0"], ["2", "1"]]
 [parameters]
 t = "3"
 "#;
-
-/// Puts the parameter into the corners by hand.
-fn read(name: &str, text: &str) -> Result<LoadedTable, TableFileError> {
-    let (corners, parameters) = text.split_once("[parameters]").expect("parameters");
-    let value = parameters.split('"').nth(1).expect("a value");
-    file::parse(name, &corners.replace("<t>", value))
-}
 
 fn request(length: usize) -> Request {
     Request {
@@ -49,7 +41,6 @@ fn run_with(
 ) -> Result<Outcome, SweepFault> {
     let range = parse(values).unwrap();
     let family = Family {
-        read: &read,
         file: "kite.toml",
         text,
         names: vec![&range.name],
@@ -84,8 +75,8 @@ fn every_row_is_what_its_table_gives() {
             assert!(row.fault.as_ref().is_some_and(|fault| !fault.is_empty()));
             continue;
         }
-        let text = KITE.replace("\"3\"", &format!("\"{value}\""));
-        let table = read("kite.toml", &text).unwrap().table;
+        let loaded = parse_with("kite.toml", KITE, &[row.settings[0].as_option()]);
+        let table = loaded.unwrap().table;
         assert_eq!(row.p, p_by_beams(&table, 8), "t = {value}");
         assert_eq!(row.routes_agree, Some(true));
         assert_eq!(row.convex, Some(row.settings[0].approximate > 2.0));
@@ -130,30 +121,15 @@ fn a_stopped_sweep_says_so_and_continues_to_the_same_bytes() {
     let folder = tempfile::tempdir().unwrap();
     let (whole, stopped) = (folder.path().join("whole"), folder.path().join("stopped"));
     run(&whole, KITE, "t=3..5/9", 6).unwrap();
-    // Stops when the fourth member is read.
+    // Three members are finished when the stop comes.
+    run(&stopped, KITE, "t=3..5/3", 6).unwrap();
     let control = Control::new();
-    let count = AtomicUsize::new(0);
-    let stopping = |name: &str, text: &str| {
-        if count.fetch_add(1, Ordering::Relaxed) == 3 {
-            control.stop();
-        }
-        read(name, text)
-    };
-    let range = parse("t=3..5/9").unwrap();
-    let family = Family {
-        read: &stopping,
-        file: "kite.toml",
-        text: KITE,
-        names: vec![&range.name],
-        members: members(std::slice::from_ref(&range)).unwrap(),
-        request: request(6),
-        shown_diagonals: vec![2],
-    };
-    let outcome = sweep(&stopped, &family, &control).unwrap();
-    assert!(outcome.finished < outcome.members, "{outcome:?}");
+    control.stop();
+    let outcome = run_with(&stopped, KITE, "t=3..5/9", 6, &control).unwrap();
+    assert_eq!((outcome.members, outcome.finished, outcome.kept), (9, 3, 3));
     assert!(!rows(&stopped).0);
     let outcome = run(&stopped, KITE, "t=3..5/9", 6).unwrap();
-    assert!(outcome.kept < 9);
+    assert_eq!((outcome.finished, outcome.kept), (9, 3));
     for name in ["sweep.json", "sweep.csv", "words.svg", "diagonals.svg"] {
         let same = fs::read(whole.join(name)).unwrap() == fs::read(stopped.join(name)).unwrap();
         assert!(same, "{name}");
@@ -172,6 +148,6 @@ fn a_folder_of_something_else_is_left_alone() {
     let nowhere = run(&folder.path().join("no/such"), KITE, "t=3..5/3", 6);
     assert!(matches!(nowhere, Err(SweepFault::System { .. })));
     let unknown = run(&folder.path().join("new"), KITE, "u=3..5/3", 6);
-    assert!(matches!(unknown, Err(SweepFault::Setting(_))));
+    assert!(matches!(unknown, Err(SweepFault::UnknownParameter { .. })));
     assert!(!folder.path().join("new").exists());
 }

@@ -7,8 +7,10 @@ use super::progress::{Progress, interruptible_control};
 use crate::sweep::folder::{Family, Outcome, SweepFault, sweep};
 use crate::sweep::member::Request;
 use crate::sweep::range::{RangeFault, Sweep, members, parse};
-use std::fs;
-use std::io::{self, Write};
+use crate::table::file::LARGEST_FILE;
+use std::fs::File;
+use std::io::{self, Read, Write};
+use std::path::Path;
 
 pub fn run(options: &SweepOptions) -> Result<(), Fault> {
     let bad = |fault: RangeFault| Fault::BadInput(fault.to_string());
@@ -18,7 +20,7 @@ pub fn run(options: &SweepOptions) -> Result<(), Fault> {
         .map(|text| parse(text).map_err(bad))
         .collect::<Result<_, _>>()?;
     let file = options.table.display().to_string();
-    let text = fs::read_to_string(&options.table)
+    let text = read_text(&options.table)
         .map_err(|e| Fault::BadInput(format!("{file}: cannot read this file: {e}")))?;
     let request = Request {
         length: options.length,
@@ -38,7 +40,6 @@ pub fn run(options: &SweepOptions) -> Result<(), Fault> {
         false => options.diagonals.clone(),
     };
     let family = Family {
-        read: &crate::table::file::parse,
         file: &file,
         text: &text,
         names: sweeps.iter().map(|s| s.name.as_str()).collect(),
@@ -52,6 +53,15 @@ pub fn run(options: &SweepOptions) -> Result<(), Fault> {
     let outcome = sweep(&options.out, &family, &control)?;
     drop(progress);
     report(options, outcome)
+}
+
+/// The text of the file, cut a byte past the most that a table file can have: loading it then refuses it.
+fn read_text(path: &Path) -> io::Result<String> {
+    let mut text = String::new();
+    let file = File::open(path)?;
+    file.take(LARGEST_FILE as u64 + 1)
+        .read_to_string(&mut text)?;
+    Ok(text)
 }
 
 fn report(options: &SweepOptions, outcome: Outcome) -> Result<(), Fault> {
@@ -94,7 +104,7 @@ fn report(options: &SweepOptions, outcome: Outcome) -> Result<(), Fault> {
 impl From<SweepFault> for Fault {
     fn from(fault: SweepFault) -> Fault {
         match fault {
-            SweepFault::Setting(_) | SweepFault::Occupied { .. } => {
+            SweepFault::UnknownParameter { .. } | SweepFault::Occupied { .. } => {
                 Fault::BadInput(fault.to_string())
             }
             SweepFault::System { .. } => Fault::BadInput(fault.to_string()),

@@ -5,14 +5,14 @@
 //! so an interrupted sweep continues, and a refined one keeps what it shares. `sweep.json`, `sweep.csv` and the
 //! pictures are written from the members at the end, also after a stop (`complete` then says false).
 
-use super::member::{Reader, Request, Row, Setting, compute};
+use super::member::{Request, Row, Setting, compute};
 use super::picture::{Quantity, draw};
 use super::range::Value;
-use super::settings::{SettingFault, with_settings};
 use crate::figure::FigureError;
 use crate::language::walk::GrowthFault;
 use crate::run::Control;
 use crate::run::files::{OutputFault, write_whole};
+use crate::table::file::parse;
 use rayon::prelude::*;
 use serde::{Deserialize, Serialize};
 use std::fs;
@@ -24,9 +24,14 @@ use thiserror::Error;
 /// Why a sweep did not end well.
 #[derive(Debug, Error)]
 pub enum SweepFault {
-    /// A parameter cannot be set.
-    #[error(transparent)]
-    Setting(#[from] SettingFault),
+    /// There is no such parameter.
+    #[error("the table file has no parameter `{name}`; {known}")]
+    UnknownParameter {
+        /// The name.
+        name: String,
+        /// Which parameters there are, as a sentence.
+        known: String,
+    },
     /// The folder holds something else.
     #[error("{} is not empty and holds no earlier sweep: choose another folder", path.display())]
     Occupied {
@@ -53,10 +58,8 @@ pub enum SweepFault {
 }
 
 /// A family to compute.
-#[derive(Clone)]
+#[derive(Clone, Debug)]
 pub struct Family<'a> {
-    /// How a member's text becomes a table.
-    pub read: Reader<'a>,
     /// The name of the table file, for messages.
     pub file: &'a str,
     /// The text of the table file.
@@ -117,25 +120,15 @@ const VERSION: &str = env!("CARGO_PKG_VERSION");
 /// As [`SweepFault`] says; after [`GrowthFault::Stopped`] the finished members are not an error: the outcome
 /// tells how many there are.
 pub fn sweep(folder: &Path, family: &Family<'_>, control: &Control) -> Result<Outcome, SweepFault> {
-    let members: Vec<(String, Vec<Setting>)> = family
-        .members
-        .iter()
-        .map(|values| {
-            let pairs: Vec<(&str, &str)> = (family.names.iter())
-                .zip(values)
-                .map(|(name, value)| (*name, value.text.as_str()))
-                .collect();
-            Ok((
-                with_settings(family.text, &pairs)?,
-                settings_of(family, values),
-            ))
-        })
-        .collect::<Result<_, SettingFault>>()?;
+    check_names(family)?;
+    let members: Vec<Vec<Setting>> = (family.members.iter())
+        .map(|values| settings_of(family, values))
+        .collect();
     prepare(folder)?;
     let kept = AtomicUsize::new(0);
-    let finish = |(text, settings): &(String, Vec<Setting>)| -> Result<Option<Row>, SweepFault> {
+    let finish = |settings: &Vec<Setting>| -> Result<Option<Row>, SweepFault> {
         let path = folder.join("members").join(file_name(settings));
-        if let Some(row) = earlier(&path, text, family.request, settings) {
+        if let Some(row) = earlier(&path, family, settings) {
             kept.fetch_add(1, Ordering::Relaxed);
             return Ok(Some(row));
         }
@@ -143,8 +136,7 @@ pub fn sweep(folder: &Path, family: &Family<'_>, control: &Control) -> Result<Ou
             return Ok(None);
         }
         let computed = compute(
-            family.read,
-            (family.file, text),
+            (family.file, family.text),
             settings.clone(),
             family.request,
             control,
@@ -157,7 +149,7 @@ pub fn sweep(folder: &Path, family: &Family<'_>, control: &Control) -> Result<Ou
         let finished = Finished {
             version: VERSION.into(),
             request: family.request,
-            table_text: text.clone(),
+            table_text: family.text.into(),
             row,
         };
         write_whole(&path, |out| write_json(out, &finished))?;
@@ -216,13 +208,32 @@ fn prepare(folder: &Path) -> Result<(), SweepFault> {
 }
 
 /// The row of an earlier sweep, when it was made from the same.
-fn earlier(path: &Path, text: &str, request: Request, settings: &[Setting]) -> Option<Row> {
+fn earlier(path: &Path, family: &Family<'_>, settings: &[Setting]) -> Option<Row> {
     let finished: Finished = serde_json::from_str(&fs::read_to_string(path).ok()?).ok()?;
     let same = finished.version == VERSION
-        && finished.request == request
-        && finished.table_text == text
+        && finished.request == family.request
+        && finished.table_text == family.text
         && finished.row.settings == settings;
     same.then_some(finished.row)
+}
+
+/// Refuses names that the file does not have. A file whose own values give no table is not looked at: its members
+/// may be tables, and their rows say what is wrong otherwise.
+fn check_names(family: &Family<'_>) -> Result<(), SweepFault> {
+    let Ok(loaded) = parse(family.file, family.text) else {
+        return Ok(());
+    };
+    let known: Vec<&str> = loaded.parameters.iter().map(|p| p.name.as_str()).collect();
+    match family.names.iter().find(|name| !known.contains(name)) {
+        None => Ok(()),
+        Some(name) => Err(SweepFault::UnknownParameter {
+            name: (*name).into(),
+            known: match known.len() {
+                0 => "it has none: add a line `t = \"1/3\"` under `[parameters]`".into(),
+                _ => format!("it has {}", known.join(", ")),
+            },
+        }),
+    }
 }
 
 /// A file name that tells the values apart: letters, digits and `=-.` stay, everything else becomes its code.

@@ -6,7 +6,7 @@ use crate::language::walk::{self, GrowthFault};
 use crate::run::Control;
 use crate::table::Table;
 use crate::table::facts::{ReflectionGroup, facts};
-use crate::table::file::{LoadedTable, TableFileError};
+use crate::table::file::{TableFileError, parse_with};
 use crate::unfold::Mesh;
 use crate::unfold::engine::{AnyEngine, Arithmetic};
 use serde::{Deserialize, Serialize};
@@ -35,6 +35,13 @@ pub struct Setting {
     pub approximate: f64,
 }
 
+impl Setting {
+    /// `name=value`, as tables are loaded with it.
+    pub fn as_option(&self) -> String {
+        format!("{}={}", self.name, self.value)
+    }
+}
+
 /// The row of one member.
 #[derive(Clone, Debug, PartialEq, Serialize, Deserialize)]
 pub struct Row {
@@ -60,22 +67,19 @@ pub struct Row {
     pub routes_agree: Option<bool>,
 }
 
-/// How the name and the text of a table file become a table: [`parse`](crate::table::file::parse).
-pub type Reader<'a> = &'a (dyn Fn(&str, &str) -> Result<LoadedTable, TableFileError> + Sync);
-
 /// Reads a member's table file and computes its row.
 ///
 /// # Errors
 /// When the control asks to stop, or a language outgrows what can be indexed. A file that gives no table is no
 /// error but a row that says so.
 pub fn compute(
-    read: Reader<'_>,
     (file, text): (&str, &str),
     settings: Vec<Setting>,
     request: Request,
     control: &Control,
 ) -> Result<Row, GrowthFault> {
-    match read(file, text) {
+    let set: Vec<String> = settings.iter().map(Setting::as_option).collect();
+    match parse_with(file, text, &set) {
         Ok(loaded) => row_of(&loaded.table, settings, request, control),
         Err(fault) => Ok(Row {
             settings,
