@@ -1,14 +1,8 @@
-//! Every table of the shelf: both routes agree, and the measures of each level sum to twice the perimeter.
+//! The shelf as a whole: tables of every kind.
 
-use reboundary::complexity::counts::p_from_diagonals;
-use reboundary::complexity::diagonals;
-use reboundary::language::{measure::measure, walk};
-use reboundary::run::Control;
 use reboundary::table::Table;
 use reboundary::table::facts::facts;
 use reboundary::table::file::load;
-use reboundary::unfold::Mesh;
-use reboundary::unfold::engine::{AnyEngine, Arithmetic};
 use std::collections::BTreeSet;
 use std::path::Path;
 
@@ -25,44 +19,6 @@ fn shelf() -> Vec<(String, Table)> {
         .map(|path| load(path).unwrap_or_else(|e| panic!("{e}")))
         .map(|loaded| (loaded.stem, loaded.table))
         .collect()
-}
-
-#[test]
-fn both_routes_agree_on_the_whole_shelf() {
-    let control = Control::new();
-    let mut compared = 0;
-    for (name, table) in shelf() {
-        let length = if table.sides() <= 6 { 16 } else { 12 };
-        let engine = AnyEngine::new(&table, length, Arithmetic::Tiered);
-        let mesh = Mesh::new(&table);
-        let (language, _) = walk::grow(&engine, &mesh, length, &control).expect("nobody stops it");
-        let by_beams: Vec<u64> = (0..=length).map(|n| language.count(n) as u64).collect();
-        // With holes or shared letters p does not follow from the diagonals; those tables have tests of their own.
-        if !table.has_one_beam_a_word() {
-            continue;
-        }
-        compared += 1;
-        let found = diagonals::count(&engine, &mesh, length - 2, &control);
-        let (found, _) = found.expect("nobody stops it");
-        let by_fans = p_from_diagonals(table.sides() as u64, &found, length);
-        assert_eq!(by_beams, by_fans, "{name}");
-    }
-    assert!(compared >= 40);
-}
-
-#[test]
-fn measures_sum_to_twice_the_perimeter_on_the_whole_shelf() {
-    let control = Control::new();
-    for (name, table) in shelf() {
-        let length = if table.sides() <= 6 { 8 } else { 5 };
-        let engine = AnyEngine::new(&table, length, Arithmetic::Tiered);
-        let measures = measure(&table, &engine, &Mesh::new(&table), length, 2, &control);
-        let measures = measures.expect("nobody stops it");
-        assert_eq!(measures.levels.len(), length, "{name}");
-        for level in &measures.levels {
-            assert!(level.holds, "{name} at length {}", level.length);
-        }
-    }
 }
 
 #[test]
