@@ -115,7 +115,13 @@ impl Engine for Uncertified {
     fn displacement(&self, _: &mut Trail<()>, _: &[f64; 2], _: &[f64; 2]) -> Vector {
         unreachable!("counting needs no displacements")
     }
-    fn squared_distance(&self, _: &mut Trail<()>, _: &[f64; 2], _: &[f64; 2], _: u32) -> Enclosure {
+    fn squared_distance(
+        &self,
+        _: &mut Trail<()>,
+        _: &[f64; 2],
+        _: &[f64; 2],
+        _: u32,
+    ) -> Enclosure {
         unreachable!("counting needs no distances")
     }
     fn deepest(&self) -> usize {
@@ -178,48 +184,13 @@ struct Case {
 }
 
 const CASES: &[Case] = &[
-    Case {
-        file: "right-isosceles",
-        fans_to: 500,
-        beams_to: 120,
-        targets: (1.2, 1.5),
-    },
-    Case {
-        file: "regular-pentagon",
-        fans_to: 150,
-        beams_to: 50,
-        targets: (2.0, 2.5),
-    },
-    Case {
-        file: "heptagonal-triangle",
-        fans_to: 300,
-        beams_to: 100,
-        targets: (2.0, 2.5),
-    },
-    Case {
-        file: "regular-15-gon",
-        fans_to: 40,
-        beams_to: 18,
-        targets: (2.0, 2.5),
-    },
-    Case {
-        file: "legs-3-4",
-        fans_to: 300,
-        beams_to: 100,
-        targets: (3.0, 4.0),
-    },
-    Case {
-        file: "irrational-quadrilateral",
-        fans_to: 200,
-        beams_to: 60,
-        targets: (3.0, 4.0),
-    },
-    Case {
-        file: "cube-root-triangle",
-        fans_to: 300,
-        beams_to: 100,
-        targets: (3.0, 4.0),
-    },
+    Case { file: "right-isosceles", fans_to: 500, beams_to: 120, targets: (1.2, 1.5) },
+    Case { file: "regular-pentagon", fans_to: 150, beams_to: 50, targets: (2.0, 2.5) },
+    Case { file: "heptagonal-triangle", fans_to: 300, beams_to: 100, targets: (2.0, 2.5) },
+    Case { file: "regular-15-gon", fans_to: 40, beams_to: 18, targets: (2.0, 2.5) },
+    Case { file: "legs-3-4", fans_to: 300, beams_to: 100, targets: (3.0, 4.0) },
+    Case { file: "irrational-quadrilateral", fans_to: 200, beams_to: 60, targets: (3.0, 4.0) },
+    Case { file: "cube-root-triangle", fans_to: 300, beams_to: 100, targets: (3.0, 4.0) },
 ];
 
 fn table(file: &str) -> Table {
@@ -232,10 +203,7 @@ fn ratio_rows(case: &Case, control: &Control) {
     let mesh = Mesh::new(&table);
     let twin = Uncertified::new(&table);
     let exact = AnyEngine::new(&table, case.fans_to.max(case.beams_to), Arithmetic::Tiered);
-    let one = rayon::ThreadPoolBuilder::new()
-        .num_threads(1)
-        .build()
-        .expect("a thread");
+    let one = rayon::ThreadPoolBuilder::new().num_threads(1).build().expect("a thread");
     one.install(|| {
         let row = |route: &str, n: usize, target: f64, exact: (Duration, (Vec<u64>, Tiers)), twin: (Duration, (Vec<u64>, Tiers)), steps: u64| {
             let ratio = exact.0.as_secs_f64() / twin.0.as_secs_f64();
@@ -273,12 +241,7 @@ fn scaling(case: &Case, control: &Control) {
     };
     let n = case.fans_to;
     let exponent = (time(n).as_secs_f64() / time(n / 2).as_secs_f64()).log2();
-    let pool = |threads| {
-        rayon::ThreadPoolBuilder::new()
-            .num_threads(threads)
-            .build()
-            .expect("threads")
-    };
+    let pool = |threads| rayon::ThreadPoolBuilder::new().num_threads(threads).build().expect("threads");
     let (one, two) = (pool(1).install(|| time(n)), pool(2).install(|| time(n)));
     println!(
         "{:<26} fans  time ~ n^{exponent:.2} between n={} and n={n}; two threads {:.2} times one",
@@ -376,11 +339,7 @@ fn main() {
     let control = Control::new();
     let chosen: Vec<&Case> = CASES
         .iter()
-        .filter(|case| {
-            wanted
-                .as_ref()
-                .is_none_or(|w| case.file.contains(w.as_str()))
-        })
+        .filter(|case| wanted.as_ref().is_none_or(|w| case.file.contains(w.as_str())))
         .collect();
     for case in &chosen {
         ratio_rows(case, &control);

@@ -51,6 +51,7 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         table_file: &loaded.text,
         notices: &loaded.notices,
         parameters: &loaded.parameters,
+        bases: &loaded.bases,
         command: &command,
         graph_order: options.graph_order,
         arithmetic: request.arithmetic,

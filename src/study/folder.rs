@@ -14,7 +14,7 @@ use crate::language::WordId;
 use crate::language::beams::beams_of_length;
 use crate::run::files::{OutputFault, ResultFolder};
 use crate::run::{Control, Stopped};
-use crate::table::file::Parameter;
+use crate::table::file::{BaseFile, Parameter};
 use crate::table::summary::{ExactVector, root_decimal};
 use crate::table::{SideId, Table};
 use crate::unfold::Mesh;
@@ -42,6 +42,8 @@ pub struct Extras<'a> {
     pub notices: &'a [String],
     /// The parameters of the table file, as set.
     pub parameters: &'a [Parameter],
+    /// The table files that it stands on.
+    pub bases: &'a [BaseFile],
     /// The command that reproduces the study.
     pub command: &'a str,
     /// Order of the exported factor graph; `None` for the largest with at most 2000 vertices.
@@ -112,7 +114,7 @@ pub fn write(
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
         parameters: extras.parameters.to_vec(),
     };
-    let record = record(results, extras.table_file, options);
+    let record = record(results, extras.table_file, options, extras.bases);
     folder.write("report.html", |out| {
         let page = report(results, &record, &drawn, &listed, extras);
         out.write_all(page.as_bytes())

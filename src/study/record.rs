@@ -10,7 +10,7 @@ use crate::factor_graph::criterion::LineFigures;
 use crate::factor_graph::export::spell;
 use crate::language::WordId;
 use crate::number::Enclosure;
-use crate::table::file::Parameter;
+use crate::table::file::{BaseFile, Parameter};
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
 
@@ -28,6 +28,8 @@ pub struct Record<'a> {
     pub options: Options,
     /// The text of the table file.
     pub table_file: &'a str,
+    /// The texts of the files that it stands on, the nearest first.
+    pub base_files: Vec<&'a str>,
     /// The table and its facts.
     pub table: TableSummary,
     /// Why the study ended: always `complete` in a finished folder.
@@ -168,13 +170,19 @@ pub fn width(value: &Enclosure) -> String {
 }
 
 /// Gathers the record of a study.
-pub fn record<'a>(results: &'a Results, table_file: &'a str, options: Options) -> Record<'a> {
+pub fn record<'a>(
+    results: &'a Results,
+    table_file: &'a str,
+    options: Options,
+    bases: &'a [BaseFile],
+) -> Record<'a> {
     let n = results.shown_length;
     Record {
         schema: SCHEMA,
         program: Program::this(),
         options,
         table_file,
+        base_files: bases.iter().map(|base| base.text.as_str()).collect(),
         table: summary(&results.table, &results.facts),
         stop: "complete",
         complexity: Complexity {

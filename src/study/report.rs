@@ -411,4 +411,10 @@ fn again_section(page: &mut String, record: &Record<'_>, extras: &Extras<'_>) {
         escape(extras.command),
         escape(extras.table_file)
     ));
+    for base in extras.bases {
+        page.push_str(&format!(
+            "<p>It stands on this file:</p>\n<pre>{}</pre>\n",
+            escape(&base.text)
+        ));
+    }
 }

@@ -8,6 +8,11 @@
 //! | `corners`  | array of pairs of numbers, at most 255 |
 //! | `triangle` | three positive rational numbers: angles in proportion to them |
 //! | `regular`  | an integer from 3 to 255: a regular polygon on the unit circle |
+//! | `outline`  | array of pairs, one for each side: its length, and its heading in units of π, rational |
+//! | `base`     | the path, relative to this file, of a table file of which this is an affine image |
+//! | `mirror`   | with `base`: true to change the sign of second coordinates |
+//! | `stretch`  | with `base`: two positive numbers, by which coordinates are multiplied after mirroring |
+//! | `turn`     | with `base`: a rational angle in units of π, by which the rest is turned about the origin |
 //! | `form`     | with `corners`: the g of the plane form x² + g·y²; second coordinates are in units of √g |
 //! | `sides`    | optional letters, one character for each side; side i joins corner i to the next; letters may repeat |
 //! | `holes`    | array of tables, each with `corners` and optional `sides` |
@@ -15,7 +20,9 @@
 //! | `parameters` | the same; a setting `name=expression` overrides the file's |
 //! | `about`    | free text, ignored |
 //!
-//! Exactly one of `corners`, `triangle` and `regular` is there. A number is a string that holds an exact
+//! Exactly one of `corners`, `triangle`, `regular`, `outline` and `base` is there. An outline starts at the origin and must
+//! lead back there exactly. A base keeps its letters and its holes, unless the file names other `sides` for the
+//! outline; its parameters have the values that its own file gives them. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
 //!
@@ -30,8 +37,10 @@
 //!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
+mod affine;
 mod faults;
 mod names;
+mod outline;
 mod read;
 mod rings;
 mod source;
@@ -39,6 +48,7 @@ mod source;
 use super::Table;
 use super::diagnostic::Diagnostic;
 pub use names::{MOST_NAMES, Parameter};
+use read::Chain;
 use std::io::Read;
 use std::path::Path;
 use thiserror::Error;
@@ -57,8 +67,21 @@ pub struct LoadedTable {
     pub text: String,
     /// The name of the file without folder and extension.
     pub stem: String,
+    /// The name of the file as given.
+    pub file_name: String,
     /// Its parameters, as set.
     pub parameters: Vec<Parameter>,
+    /// The files that it stands on, the nearest first.
+    pub bases: Vec<BaseFile>,
+}
+
+/// A table file that another one names as its base.
+#[derive(Clone, Debug, PartialEq, Eq, serde::Serialize)]
+pub struct BaseFile {
+    /// Its path, from the place where the first file was named.
+    pub name: String,
+    /// Its text.
+    pub text: String,
 }
 
 /// Why a file gave no table.
@@ -108,6 +131,11 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
 /// # Errors
 /// As [`TableFileError`] says; a fault in a setting points into its text.
 pub fn load_with(path: &Path, settings: &[String]) -> Result<LoadedTable, TableFileError> {
+    load_in(path, settings, &Vec::new())
+}
+
+/// Reads a table that other files, which are being read, stand on.
+fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
     let file = path.display().to_string();
     let unreadable = |reason| TableFileError::Unreadable {
         file: file.clone(),
@@ -126,7 +154,7 @@ pub fn load_with(path: &Path, settings: &[String]) -> Result<LoadedTable, TableF
         file: file.clone(),
         offset: e.utf8_error().valid_up_to(),
     })?;
-    parse_with(&file, &text, settings)
+    parse_in(&file, &text, settings, chain)
 }
 
 /// Reads a table from a text; `file_name` is used in messages and for the stem.
@@ -146,6 +174,15 @@ pub fn parse_with(
     text: &str,
     settings: &[String],
 ) -> Result<LoadedTable, TableFileError> {
+    parse_in(file_name, text, settings, &Vec::new())
+}
+
+fn parse_in(
+    file_name: &str,
+    text: &str,
+    settings: &[String],
+    chain: &Chain,
+) -> Result<LoadedTable, TableFileError> {
     if text.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge {
             file: file_name.into(),
@@ -162,8 +199,14 @@ pub fn parse_with(
         || file_name.to_string(),
         |s| s.to_string_lossy().into_owned(),
     );
-    let (table, parameters) =
-        read::table(file_name, text, &stem, settings).map_err(TableFileError::Fault)?;
+    let mut chain = chain.clone();
+    let place = Path::new(file_name).canonicalize();
+    chain.push((place.unwrap_or_default(), file_name.to_string()));
+    let read::Reading {
+        table,
+        parameters,
+        bases,
+    } = read::table(file_name, text, &stem, settings, &chain).map_err(TableFileError::Fault)?;
     let mut notices = Vec::new();
     if table.turned_round() {
         notices.push(format!(
@@ -177,5 +220,7 @@ pub fn parse_with(
         text: text.to_string(),
         stem,
         parameters,
+        bases,
+        file_name: file_name.to_string(),
     })
 }

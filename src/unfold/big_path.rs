@@ -80,11 +80,7 @@ fn common_denominator<'a>(values: impl IntoIterator<Item = &'a Real>) -> Integer
 fn scaled(field: &Field, value: &Real, scale: &Integer) -> Row {
     let value = value.lifted_to(field);
     let factor = Integer::from(scale / value.denominator());
-    value
-        .coordinates()
-        .iter()
-        .map(|c| Integer::from(c * &factor))
-        .collect()
+    value.coordinates().iter().map(|c| Integer::from(c * &factor)).collect()
 }
 
 fn multiplier(field: &Field, value: &Real, scale: &Integer) -> Multiplier {
@@ -146,12 +142,7 @@ fn times(rows: &[Row; 2], factor: &Integer) -> [Row; 2] {
 
 impl BigTables {
     /// Prepares the side reflections and corners of a table.
-    pub fn new(
-        field: &Field,
-        form: &Real,
-        corners: &[Vector],
-        reflections: &[Isometry],
-    ) -> BigTables {
+    pub fn new(field: &Field, form: &Real, corners: &[Vector], reflections: &[Isometry]) -> BigTables {
         let with_form = |v: &Vector| [v.x.clone(), v.y.clone(), form * &v.y];
         let corner_values: Vec<Real> = corners.iter().flat_map(with_form).collect();
         let corner_denominator = common_denominator(&corner_values);
@@ -160,8 +151,7 @@ impl BigTables {
             reflections: reflections
                 .iter()
                 .map(|r| {
-                    let values: Vec<Real> =
-                        with_form(&r.w).into_iter().chain(with_form(&r.t)).collect();
+                    let values: Vec<Real> = with_form(&r.w).into_iter().chain(with_form(&r.t)).collect();
                     let denominator = common_denominator(&values);
                     FixedReflection {
                         w: FixedVector::new(field, &r.w, form, &denominator),
@@ -179,7 +169,12 @@ impl BigTables {
     }
 
     /// The sign of (b − a) × (v − a).
-    pub fn turn(&self, path: &mut BigPath, sides: &[SideId], [a, b, v]: [ImageName; 3]) -> Sign {
+    pub fn turn(
+        &self,
+        path: &mut BigPath,
+        sides: &[SideId],
+        [a, b, v]: [ImageName; 3],
+    ) -> Sign {
         let a = self.point(path, sides, a);
         let b = difference(&self.point(path, sides, b), &a);
         let v = difference(&self.point(path, sides, v), &a);
@@ -199,10 +194,7 @@ impl BigTables {
 
     /// The exact position of a corner image, relative to the unmoved table.
     pub fn position(&self, path: &mut BigPath, sides: &[SideId], name: ImageName) -> Vector {
-        let BigPoint {
-            at: [x, y],
-            denominator,
-        } = self.point(path, sides, name);
+        let BigPoint { at: [x, y], denominator } = self.point(path, sides, name);
         Vector::new(
             Real::from_coordinates(&self.field, x, denominator.clone()),
             Real::from_coordinates(&self.field, y, denominator),
@@ -216,12 +208,7 @@ impl BigTables {
         let CornerId(corner) = name.corner;
         let start = times(&pose.t, &self.corner_denominator);
         BigPoint {
-            at: turned(
-                &pose.w,
-                &self.corners[corner as usize],
-                crossings % 2 == 1,
-                start,
-            ),
+            at: turned(&pose.w, &self.corners[corner as usize], crossings % 2 == 1, start),
             denominator: Integer::from(&pose.denominator * &self.corner_denominator),
         }
     }
@@ -243,12 +230,7 @@ impl BigTables {
             let mirrored = here % 2 == 1;
             let next = BigPose {
                 w: turned(&pose.w, &reflection.w, mirrored, zero(&self.field)),
-                t: turned(
-                    &pose.w,
-                    &reflection.c,
-                    mirrored,
-                    times(&pose.t, &reflection.denominator),
-                ),
+                t: turned(&pose.w, &reflection.c, mirrored, times(&pose.t, &reflection.denominator)),
                 denominator: Integer::from(&pose.denominator * &reflection.denominator),
             };
             path.poses.push(next);

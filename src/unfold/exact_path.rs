@@ -17,8 +17,8 @@
 use super::big_path::{BigPath, BigTables};
 use super::engine::ExactTrail;
 use super::group::{FiniteGroup, scaled_coordinates};
-use super::isometry::{Isometry, side_reflections};
 use super::symmetry::Symmetries;
+use super::isometry::{Isometry, side_reflections};
 use super::wide_path::{WidePath, WideTables};
 use crate::number::{Enclosure, Field, Real, Sign, Tiers};
 use crate::table::{CornerId, SideId, Table, Vector};

@@ -74,16 +74,8 @@ impl Path<'_> {
             // Equal blocks at mirrored places, both whole inside the ranges: every crossing of them passes here.
             match (self.symbols[l], self.symbols[r]) {
                 (
-                    Symbol::Block {
-                        corner,
-                        offset,
-                        length,
-                    },
-                    Symbol::Block {
-                        corner: other,
-                        offset: place,
-                        ..
-                    },
+                    Symbol::Block { corner, offset, length },
+                    Symbol::Block { corner: other, offset: place, .. },
                 ) => {
                     corner == other
                         && offset + place + 1 == length
@@ -133,11 +125,7 @@ impl HalfTurns {
                 Some((corner, end)) => {
                     let length = end - at;
                     for (offset, symbol) in symbols[at..end].iter_mut().enumerate() {
-                        *symbol = Symbol::Block {
-                            corner,
-                            offset,
-                            length,
-                        };
+                        *symbol = Symbol::Block { corner, offset, length };
                     }
                     at = end;
                 }
@@ -149,21 +137,18 @@ impl HalfTurns {
 
     fn chain(&self, path: Path<'_>, line: [ImageName; 2], v: ImageName, links: usize) -> bool {
         let ends = self.run(path.sides, v);
-        line.iter()
-            .filter(|target| target.corner == v.corner)
-            .any(|target| {
-                let starts = self.run(path.sides, *target);
-                // Twice the centre is the sum of two indices at which the images are T and V.
-                let sums = starts.0 + ends.0..=starts.1 + ends.1;
-                sums.filter(|sum| sum.is_multiple_of(2)).any(|sum| {
-                    let Some(centre) = self.centre(path, sum / 2, starts, ends) else {
-                        return false;
-                    };
-                    line.iter()
-                        .any(|on_line| self.same_point(path.sides, *on_line, centre))
-                        || (links > 0 && self.chain(path, line, centre, links - 1))
-                })
+        line.iter().filter(|target| target.corner == v.corner).any(|target| {
+            let starts = self.run(path.sides, *target);
+            // Twice the centre is the sum of two indices at which the images are T and V.
+            let sums = starts.0 + ends.0..=starts.1 + ends.1;
+            sums.filter(|sum| sum.is_multiple_of(2)).any(|sum| {
+                let Some(centre) = self.centre(path, sum / 2, starts, ends) else {
+                    return false;
+                };
+                line.iter().any(|on_line| self.same_point(path.sides, *on_line, centre))
+                    || (links > 0 && self.chain(path, line, centre, links - 1))
             })
+        })
     }
 
     /// The image about which the path is a palindrome round index c, far enough to take an index in `starts` to one
@@ -191,8 +176,7 @@ impl HalfTurns {
         // The index nearest to the centre that serves both T and V.
         let i = starts.1.min((2 * c).saturating_sub(ends.0));
         let mirror = 2 * c - i;
-        let fits =
-            starts.0 <= i && i <= c - m && mirror <= length && ends.0 <= mirror && mirror <= ends.1;
+        let fits = starts.0 <= i && i <= c - m && mirror <= length && ends.0 <= mirror && mirror <= ends.1;
         (fits && path.mirrors(i, c - m, c + m)).then_some(image)
     }
 

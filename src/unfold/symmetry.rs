@@ -58,16 +58,9 @@ impl Symmetries {
         b: ImageName,
         v: ImageName,
     ) -> bool {
-        let (p, q) = if a.crossings <= b.crossings {
-            (a, b)
-        } else {
-            (b, a)
-        };
+        let (p, q) = if a.crossings <= b.crossings { (a, b) } else { (b, a) };
         let symbols = self.half_turns.symbols(sides);
-        let path = Path {
-            sides,
-            symbols: &symbols,
-        };
+        let path = Path { sides, symbols: &symbols };
         self.half_turns.prove(path, [p, q], v)
             || self.prove_by_mirrors(path, p, q, v)
             || self.prove_by_translation(sides, p, q, v)
@@ -90,18 +83,16 @@ impl Symmetries {
         let starts = self.half_turns.run(path.sides, x);
         let ends = self.half_turns.run(path.sides, y);
         let sums = starts.0 + ends.0..=starts.1 + ends.1;
-        sums.filter(|sum| sum % 2 == 1)
-            .map(|sum| sum / 2)
-            .find(|&e| {
-                // The index nearest to the mirror that serves both images.
-                let i = starts.1.min((2 * e + 1).saturating_sub(ends.0));
-                let end = 2 * e + 1 - i;
-                starts.0 <= i
-                    && i <= e
-                    && (ends.0..=ends.1).contains(&end)
-                    && end <= path.sides.len()
-                    && path.mirrors(i, e, e + 1)
-            })
+        sums.filter(|sum| sum % 2 == 1).map(|sum| sum / 2).find(|&e| {
+            // The index nearest to the mirror that serves both images.
+            let i = starts.1.min((2 * e + 1).saturating_sub(ends.0));
+            let end = 2 * e + 1 - i;
+            starts.0 <= i
+                && i <= e
+                && (ends.0..=ends.1).contains(&end)
+                && end <= path.sides.len()
+                && path.mirrors(i, e, e + 1)
+        })
     }
 
     /// True when the sides crossed at two indices, e ≤ f, are proved parallel.

@@ -198,7 +198,9 @@ impl Names {
     }
 
     fn check_cycles(&self, source: Source) -> Outcome<()> {
-        for start in 0..self.0.len() {
+        let is_set = |d: &usize| matches!(self.0[*d].origin, Origin::Setting(..));
+        let (set, others): (Vec<usize>, Vec<usize>) = (0..self.0.len()).partition(is_set);
+        for start in set.into_iter().chain(others) {
             let mut way = vec![start];
             if self.leads_back(&mut way, &mut BTreeSet::new()) {
                 let names: Vec<&str> = way.iter().map(|&d| self.0[d].name.as_str()).collect();

@@ -1,7 +1,10 @@
 //! From the text of a table file to a table.
 
+use super::BaseFile;
+use super::affine;
 use super::faults::{self, Layout};
 use super::names::{Names, Parameter};
+use super::outline;
 use super::rings::{self, WrittenRing};
 use super::source::{Outcome, Source, Value, array, kind, number};
 use crate::number::adjoin::AdjoinFault;
@@ -10,22 +13,30 @@ use crate::table::expression::Evaluator;
 use crate::table::{MOST_SIDES, Ring, Table, shape};
 use rug::Rational;
 use std::ops::Range;
+use std::path::PathBuf;
 use toml::de::DeTable;
 
-const SHAPES: [&str; 3] = ["corners", "triangle", "regular"];
-const KEYS: [&str; 10] = [
+const SHAPES: [&str; 5] = ["corners", "triangle", "regular", "outline", "base"];
+const KEYS: [&str; 15] = [
     "title",
     "about",
     "corners",
     "triangle",
     "regular",
+    "outline",
+    "base",
+    "mirror",
+    "stretch",
+    "turn",
     "sides",
     "form",
     "holes",
     "define",
     "parameters",
 ];
-const RESERVED: [&str; 1] = ["outline"];
+
+/// The files that are being read, the outermost first: where they are, and their names as given.
+pub(super) type Chain = Vec<(PathBuf, String)>;
 
 /// A parsed file with its names.
 #[derive(Clone, Copy)]
@@ -48,6 +59,15 @@ pub(super) struct Drawn {
     pub(super) rings: Vec<WrittenRing>,
     pub(super) form: Real,
     pub(super) form_span: Option<Range<usize>>,
+    /// The files that it stands on, the nearest first.
+    pub(super) bases: Vec<BaseFile>,
+}
+
+/// What a file gives.
+pub(super) struct Reading {
+    pub(super) table: Table,
+    pub(super) parameters: Vec<Parameter>,
+    pub(super) bases: Vec<BaseFile>,
 }
 
 /// Reads and checks a table.
@@ -56,7 +76,8 @@ pub(super) fn table(
     text: &str,
     stem: &str,
     settings: &[String],
-) -> Outcome<(Table, Vec<Parameter>)> {
+    chain: &Chain,
+) -> Outcome<Reading> {
     let source = Source { file, text };
     let document = DeTable::parse(text).map_err(|e| {
         let message = format!("this is not valid TOML: {}", e.message());
@@ -72,12 +93,17 @@ pub(super) fn table(
         document: &document,
         names: &names,
     };
-    let drawn = draw(sheet)?;
-    Ok((complete(sheet, &title, drawn)?, names.parameters()))
+    let mut drawn = draw(sheet, chain)?;
+    let bases = std::mem::take(&mut drawn.bases);
+    Ok(Reading {
+        table: complete(sheet, &title, drawn)?,
+        parameters: names.parameters(),
+        bases,
+    })
 }
 
 /// Reads the one shape of the file.
-fn draw(sheet: Sheet<'_>) -> Outcome<Drawn> {
+fn draw(sheet: Sheet<'_>, chain: &Chain) -> Outcome<Drawn> {
     let Sheet {
         source, document, ..
     } = sheet;
@@ -88,7 +114,7 @@ fn draw(sheet: Sheet<'_>) -> Outcome<Drawn> {
     chosen.sort_by_key(|(key, _)| key.span().start);
     let [(key, value)] = chosen[..] else {
         if chosen.is_empty() {
-            let help = "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]` or `regular = 7`";
+            let help = "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]`, `regular = 7`, `outline = ...` or `base = ...`";
             return source.fault(&(0..0), "the file describes no table", help);
         }
         let names: Vec<String> = chosen
@@ -108,10 +134,20 @@ fn draw(sheet: Sheet<'_>) -> Outcome<Drawn> {
         let help = format!("remove this line: `{shape}` chooses the plane form itself");
         return source.fault(&form.span(), message, help);
     }
+    let keys = document
+        .keys()
+        .find(|k| affine::MAPS.contains(&k.get_ref().as_ref()));
+    if let Some(map) = keys.filter(|_| shape != "base") {
+        let message = format!("`{}` goes with `base`, not with `{shape}`", map.get_ref());
+        let help = "write the shape into a file of its own and name that as `base`";
+        return source.fault(&map.span(), message, help);
+    }
     match shape {
         "corners" => corners(sheet, key.span(), value),
         "triangle" => triangle(sheet, value),
         "regular" => regular(sheet, value),
+        "outline" => outline::outline(sheet, key.span(), value),
+        "base" => affine::base(sheet, value, chain),
         _ => unreachable!("one of the shapes"),
     }
 }
@@ -126,6 +162,7 @@ fn complete(sheet: Sheet<'_>, title: &str, drawn: Drawn) -> Outcome<Table> {
         mut rings,
         form,
         form_span,
+        ..
     } = drawn;
     rings::read_letters(source, document, &mut rings[0], 0)?;
     let first = rings.len();
@@ -153,14 +190,6 @@ fn check_keys(source: Source, document: &DeTable) -> Outcome<()> {
     keys.sort_by_key(|key| key.span().start);
     for key in keys {
         let name = key.get_ref().as_ref();
-        if RESERVED.contains(&name) {
-            let message = format!("`{name}` is reserved and not supported in this version");
-            let help = match name {
-                "outline" => "write the corners themselves: `corners = [[\"0\", \"0\"], ...]`",
-                _ => "write the values out in `corners`",
-            };
-            return source.fault(&key.span(), message, help);
-        }
         if !KEYS.contains(&name) {
             let help = match nearest_key(name) {
                 Some(known) => format!("did you mean `{known}`?"),
@@ -242,6 +271,7 @@ fn corners(sheet: Sheet<'_>, key: Range<usize>, value: &Value) -> Outcome<Drawn>
         rings: vec![ring],
         form,
         form_span: document.get("form").map(Value::span),
+        bases: Vec::new(),
     })
 }
 
@@ -272,6 +302,7 @@ fn shaped(
         }],
         form: shape.form,
         form_span: None,
+        bases: Vec::new(),
     })
 }
 

@@ -2,7 +2,7 @@
 
 use crate::number::Real;
 use crate::table::diagnostic::Diagnostic;
-use crate::table::expression::Evaluator;
+use crate::table::expression::{Evaluator, MOST_DIGITS};
 use rug::Integer;
 use std::ops::Range;
 use toml::Spanned;
@@ -70,6 +70,14 @@ pub(super) fn number(
     match value.get_ref() {
         DeValue::Integer(integer) => {
             let digits = integer.as_str().replace('_', "");
+            if digits.len() > MOST_DIGITS {
+                let message = format!("{what}: a number of {} digits is too long", digits.len());
+                return source.fault(
+                    &span,
+                    message,
+                    format!("write at most {MOST_DIGITS} digits"),
+                );
+            }
             match Integer::from_str_radix(&digits, integer.radix() as i32) {
                 Ok(value) => Ok(Real::from(value)),
                 Err(_) => source.fault(&span, "this integer cannot be read", "write it in quotes"),
