@@ -32,6 +32,8 @@ pub enum Command {
     Diagonals(DiagonalsOptions),
     /// Special words and path balls of the factor graphs, or one graph as GraphML
     Graph(GraphOptions),
+    /// The complexity of every member of a family of tables, into a folder; continues where it was stopped
+    Sweep(SweepOptions),
     /// One orbit from an exact start
     Trace(TraceOptions),
     /// Many orbits from random exact starts, one word a line
@@ -338,6 +340,34 @@ pub enum GraphFormat {
     Csv,
     /// The factor graph of order N itself
     Graphml,
+}
+
+/// `sweep`.
+#[derive(Debug, Args)]
+pub struct SweepOptions {
+    /// The table file, with [parameters]
+    pub table: PathBuf,
+    /// Values of a parameter: t=1/10..9/10/17 (start, end, count), t={1/3,2/5} or t=2/5; repeat for more parameters
+    #[arg(long, value_name = "NAME=VALUES", required = true)]
+    pub set: Vec<String>,
+    /// Longest words
+    #[arg(long, value_name = "N", default_value_t = 20, value_parser = parse_positive_length)]
+    pub length: usize,
+    /// How to count
+    #[arg(long, value_enum, default_value = "diagonals")]
+    pub route: Route,
+    /// The N(n) in the picture; repeat for more [default: the largest n]
+    #[arg(long, value_name = "N")]
+    pub diagonals: Vec<usize>,
+    /// Folder for the results; finished members in it are kept
+    #[arg(long, value_name = "DIR")]
+    pub out: PathBuf,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
 }
 
 /// `trace`.

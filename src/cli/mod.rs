@@ -15,6 +15,7 @@ mod orbits;
 mod output;
 mod progress;
 mod study;
+mod sweep;
 mod table;
 mod trace;
 mod words;
@@ -60,6 +61,7 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Sweep(options) => with_threads(&options.common, || sweep::run(options)),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),
     }
