@@ -111,7 +111,9 @@ impl HalfTurns {
         };
         HalfTurns {
             half_orders: (0..table.sides()).map(half_order).collect(),
-            before: (0..table.sides()).map(|corner| table.before(corner)).collect(),
+            before: (0..table.sides())
+                .map(|corner| table.before(corner))
+                .collect(),
         }
     }
 

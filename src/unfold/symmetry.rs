@@ -58,7 +58,9 @@ impl Symmetries {
         Symmetries {
             half_turns: HalfTurns::new(table),
             angles: (0..table.sides()).map(rational).collect(),
-            before: (0..table.sides()).map(|corner| table.before(corner)).collect(),
+            before: (0..table.sides())
+                .map(|corner| table.before(corner))
+                .collect(),
             rings: table.rings().collect(),
         }
     }
