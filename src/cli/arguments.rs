@@ -3,7 +3,7 @@
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 /// Complete, certified coding languages of polygonal billiards.
 ///
@@ -38,6 +38,22 @@ pub enum Command {
     Trace(TraceOptions),
     /// Many orbits from random exact starts, one word a line
     Orbits(OrbitsOptions),
+}
+
+impl Command {
+    /// The file that the command is to write; folders are checked by the commands that fill them.
+    pub fn output_file(&self) -> Option<&Path> {
+        match self {
+            Command::Study(_) | Command::Sweep(_) => None,
+            Command::Table(options) => options.out.as_deref(),
+            Command::Words(options) => options.out.as_deref(),
+            Command::Complexity(options) => options.out.as_deref(),
+            Command::Diagonals(options) => options.out.as_deref(),
+            Command::Graph(options) => options.out.as_deref(),
+            Command::Trace(options) => options.out.as_deref(),
+            Command::Orbits(options) => options.out.as_deref(),
+        }
+    }
 }
 
 /// Options of every command that computes.

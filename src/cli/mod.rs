@@ -54,6 +54,10 @@ pub fn main() -> ExitCode {
 }
 
 fn run(arguments: Arguments) -> Result<(), Fault> {
+    if let Some(path) = arguments.command.output_file() {
+        // Before the work, not after it.
+        crate::run::files::check_place(path)?;
+    }
     match &arguments.command {
         Command::Study(options) => with_threads(&options.common, || study::run(options)),
         Command::Table(options) => table::run(options),

@@ -25,6 +25,7 @@ pub mod factor;
 pub mod field;
 mod hensel;
 mod modular;
+mod operators;
 mod over_field;
 pub mod poly;
 pub mod real;
