@@ -361,7 +361,7 @@ pub enum GraphFormat {
 /// `sweep`.
 #[derive(Debug, Args)]
 pub struct SweepOptions {
-    /// The table file, with [parameters]
+    /// The table file; its `[parameters]` are what --set varies
     pub table: PathBuf,
     /// Values of a parameter: t=1/10..9/10/17 (start, end, count), t={1/3,2/5} or t=2/5; repeat for more parameters
     #[arg(long, value_name = "NAME=VALUES", required = true)]
