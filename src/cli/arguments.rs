@@ -1,5 +1,6 @@
 //! Commands and options.
 
+use super::orbit_arguments::PeriodicOptions;
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
@@ -33,6 +34,8 @@ pub enum Command {
     Diagonals(DiagonalsOptions),
     /// Special words and path balls of the factor graphs, or one graph as GraphML
     Graph(GraphOptions),
+    /// All periodic words up to a length, one for each class under cyclic shift and reversal
+    Periodic(PeriodicOptions),
     /// One orbit from an exact start
     Trace(TraceOptions),
     /// Many orbits from random exact starts, one word a line
@@ -103,7 +106,7 @@ fn parse_length(text: &str) -> Result<usize, String> {
     }
 }
 
-fn parse_positive_length(text: &str) -> Result<usize, String> {
+pub(super) fn parse_positive_length(text: &str) -> Result<usize, String> {
     match parse_length(text)? {
         0 => Err("write a length of at least 1".into()),
         length => Ok(length),

@@ -2,6 +2,7 @@
 //!
 //! - [`arguments`]: commands and options.
 //! - [`fault`]: what can go wrong, and the exit code of each.
+//! - [`orbit_arguments`]: options of `periodic`.
 //! - [`output`]: where results are printed.
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
 //! - one module for each command.
@@ -11,8 +12,11 @@ mod complexity;
 mod diagonals;
 pub mod fault;
 mod graph;
+pub mod orbit_arguments;
+mod orbit_picture;
 mod orbits;
 mod output;
+mod periodic;
 mod progress;
 mod study;
 mod table;
@@ -60,6 +64,7 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),
     }
