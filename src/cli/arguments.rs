@@ -1,6 +1,6 @@
 //! Commands and options.
 
-use super::orbit_arguments::PeriodicOptions;
+use super::orbit_arguments::{DirectionOptions, PeriodicOptions};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
@@ -34,6 +34,8 @@ pub enum Command {
     Diagonals(DiagonalsOptions),
     /// Special words and path balls of the factor graphs, or one graph as GraphML
     Graph(GraphOptions),
+    /// All orbits in one direction: words, corner-to-corner segments, strips, interval exchange
+    Direction(DirectionOptions),
     /// All periodic words up to a length, one for each class under cyclic shift and reversal
     Periodic(PeriodicOptions),
     /// One orbit from an exact start

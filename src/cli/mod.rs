@@ -2,7 +2,8 @@
 //!
 //! - [`arguments`]: commands and options.
 //! - [`fault`]: what can go wrong, and the exit code of each.
-//! - [`orbit_arguments`]: options of `periodic`.
+//! - [`launch`]: starts and aims.
+//! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
 //! - one module for each command.
@@ -10,8 +11,10 @@
 pub mod arguments;
 mod complexity;
 mod diagonals;
+mod direction;
 pub mod fault;
 mod graph;
+mod launch;
 pub mod orbit_arguments;
 mod orbit_picture;
 mod orbits;
@@ -64,6 +67,7 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Direction(options) => with_threads(&options.common, || direction::run(options)),
         Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),

@@ -2,23 +2,28 @@
 
 use super::arguments::{Format, TraceOptions};
 use super::fault::Fault;
+use super::launch::Launcher;
 use super::output::{emit, note, read_table, write_json};
-use crate::number::Real;
 use crate::orbit::trace::{State, Step};
 use crate::orbit::{Start, TraceTables, Tracer};
 use crate::study::folder::spell_code;
-use crate::table::diagnostic::Diagnostic;
-use crate::table::expression::Evaluator;
 use crate::table::summary::{Exact, ExactVector};
-use crate::table::{SideId, Table, Vector};
+use crate::table::{SideId, Table};
 use serde::Serialize;
 use std::io::{self, Write};
-use std::ops::Range;
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, options.quiet)?;
-    let (table, start) = parse_launch(&loaded.table, &options.start, &options.aim)?;
+    let mut launcher = Launcher::new(&loaded.table);
+    let (side, fraction) = launcher.side_start(&options.start)?;
+    let aim = launcher.aim(&options.aim)?;
+    let (table, lifter) = launcher.finish();
     let table = &table;
+    let start = Start {
+        side,
+        fraction: lifter.number(&fraction),
+        aim: lifter.vector(&aim),
+    };
     let tables = TraceTables::new(table);
     let mut tracer = Tracer::new(&tables, start).map_err(|f| Fault::BadInput(f.to_string()))?;
     let wants_states = options.format != Format::Text;
@@ -76,116 +81,6 @@ fn describe(table: &Table, step: Step, letters: usize) -> String {
         ),
         Step::Hit(_) => String::new(),
     }
-}
-
-/// A fault at a place of an option's text.
-fn fault(option: &str, text: &str, span: Range<usize>, message: String, help: &str) -> Fault {
-    Fault::BadText(Box::new(Diagnostic {
-        file: option.into(),
-        source: text.into(),
-        span,
-        label: String::new(),
-        context: Vec::new(),
-        message,
-        help: help.into(),
-    }))
-}
-
-/// Reads the start and the aim. Their numbers may need a larger field than the table's; the table comes back
-/// written in that field.
-fn parse_launch(table: &Table, start: &str, aim: &str) -> Result<(Table, Start), Fault> {
-    let mut evaluator = Evaluator::new(table.field().clone());
-    let (side, fraction) = parse_start(table, &mut evaluator, start)?;
-    let aim = parse_aim(&mut evaluator, aim)?;
-    let field = evaluator.field().clone();
-    let lifted = |number: &Real| evaluator.lift(number).lifted_to(&field);
-    let start = Start {
-        side,
-        fraction: lifted(&fraction),
-        aim: Vector::new(lifted(&aim.x), lifted(&aim.y)),
-    };
-    Ok((table.in_field(&field, lifted), start))
-}
-
-fn parse_start(
-    table: &Table,
-    evaluator: &mut Evaluator,
-    text: &str,
-) -> Result<(SideId, Real), Fault> {
-    let help = "write LETTER@FRACTION, such as a@1/3: a third of the way along side a";
-    let Some(at) = text.find('@') else {
-        let message = "the start has no `@` between its side and its fraction".into();
-        return Err(fault("--start", text, 0..text.len(), message, help));
-    };
-    let mut letters = text[..at].chars();
-    let side = match (letters.next(), letters.next()) {
-        (Some(letter), None) => table.side_of_letter(letter),
-        _ => None,
-    };
-    let Some(side) = side else {
-        let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
-        let message = format!("`{}` is not a side of this table", &text[..at]);
-        let help = format!("its sides are {}", known.join(", "));
-        return Err(fault("--start", text, 0..at, message, &help));
-    };
-    let fraction = evaluate(evaluator, "--start", text, at + 1..text.len())?;
-    if fraction <= Real::from(0) || fraction >= Real::from(1) {
-        let message = format!(
-            "the start must lie inside its side: {} is not strictly between 0 and 1",
-            text[at + 1..].trim()
-        );
-        return Err(fault("--start", text, at + 1..text.len(), message, help));
-    }
-    Ok((side, fraction))
-}
-
-fn parse_aim(evaluator: &mut Evaluator, text: &str) -> Result<Vector, Fault> {
-    let help = "write a vector X,Y in the table's coordinates, such as 2,5 or sqrt(2),1";
-    let commas = top_level_commas(text);
-    let [comma] = commas[..] else {
-        let message = format!(
-            "the aim needs two coordinates, this has {}",
-            commas.len() + 1
-        );
-        return Err(fault("--aim", text, 0..text.len(), message, help));
-    };
-    let x = evaluate(evaluator, "--aim", text, 0..comma)?;
-    let y = evaluate(evaluator, "--aim", text, comma + 1..text.len())?;
-    // The second number may have made the field larger.
-    let aim = Vector::new(evaluator.lift(&x), y);
-    if aim.is_zero() {
-        let message = "the aim is the zero vector, which has no direction".into();
-        return Err(fault("--aim", text, 0..text.len(), message, help));
-    }
-    Ok(aim)
-}
-
-/// Commas outside parentheses.
-fn top_level_commas(text: &str) -> Vec<usize> {
-    let mut depth = 0i32;
-    let mut found = Vec::new();
-    for (at, c) in text.char_indices() {
-        match c {
-            '(' => depth += 1,
-            ')' => depth -= 1,
-            ',' if depth == 0 => found.push(at),
-            _ => {}
-        }
-    }
-    found
-}
-
-/// Evaluates a part of an option's text.
-fn evaluate(
-    evaluator: &mut Evaluator,
-    option: &str,
-    text: &str,
-    part: Range<usize>,
-) -> Result<Real, Fault> {
-    evaluator.evaluate(&text[part.clone()]).map_err(|e| {
-        let span = part.start + e.span.start..part.start + e.span.end;
-        fault(option, text, span, e.message, &e.help)
-    })
 }
 
 #[derive(Serialize)]

@@ -116,6 +116,14 @@ impl Evaluator {
         evaluate::number(self, &tree)
     }
 
+    /// The square root of a number of the current field; the field grows by it when needed.
+    ///
+    /// # Errors
+    /// When the number is negative or the field would become too large. The place in the text is empty.
+    pub fn square_root(&mut self, number: &Real) -> Result<Real, ExpressionFault> {
+        evaluate::square_root(self, number, &(0..0))
+    }
+
     /// A number that this evaluator returned earlier, in the current field. Rationals stay rationals.
     ///
     /// # Panics

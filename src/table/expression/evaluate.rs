@@ -413,7 +413,11 @@ fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, A
     Ok(vec![product, -(u * v), Real::from(1)])
 }
 
-fn square_root(evaluator: &mut Evaluator, argument: &Real, span: &Range<usize>) -> Outcome<Real> {
+pub(super) fn square_root(
+    evaluator: &mut Evaluator,
+    argument: &Real,
+    span: &Range<usize>,
+) -> Outcome<Real> {
     match argument.sign() {
         Sign::Zero => return Ok(Real::from(0)),
         Sign::Negative => {
