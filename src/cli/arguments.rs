@@ -1,6 +1,6 @@
 //! Commands and options.
 
-use super::orbit_arguments::{DirectionOptions, PeriodicOptions};
+use super::orbit_arguments::{DirectionOptions, PeriodicOptions, TraceOptions};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
@@ -300,31 +300,6 @@ pub enum GraphFormat {
     Graphml,
 }
 
-/// `trace`.
-#[derive(Debug, Args)]
-pub struct TraceOptions {
-    /// The table file
-    pub table: PathBuf,
-    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a
-    #[arg(long, value_name = "START")]
-    pub start: String,
-    /// Direction as a vector X,Y in the table's coordinates
-    #[arg(long, value_name = "X,Y", allow_hyphen_values = true)]
-    pub aim: String,
-    /// Letters of the word; the starting side is the first
-    #[arg(long, value_name = "N", default_value_t = 100, value_parser = parse_hits)]
-    pub hits: usize,
-    /// Text: the word; CSV and JSON give each hit exactly and as decimals
-    #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
-    /// File for the output [default: standard output]
-    #[arg(long, value_name = "PATH")]
-    pub out: Option<PathBuf>,
-    /// No notices
-    #[arg(long)]
-    pub quiet: bool,
-}
-
 /// `orbits`.
 #[derive(Debug, Args)]
 pub struct OrbitsOptions {
@@ -350,7 +325,7 @@ pub struct OrbitsOptions {
     pub common: Common,
 }
 
-fn parse_hits(text: &str) -> Result<usize, String> {
+pub(super) fn parse_hits(text: &str) -> Result<usize, String> {
     match text.parse::<usize>() {
         Ok(hits) if hits >= 1 => Ok(hits),
         _ => Err("write a whole number of at least 1".into()),

@@ -97,6 +97,12 @@ impl<'a> Launcher<'a> {
         Ok(aim)
     }
 
+    /// `X,Y`: a point of the plane.
+    pub fn point(&mut self, text: &str) -> Result<Vector, Fault> {
+        let help = "write a point X,Y in the table's coordinates, such as 1/3,1/4";
+        self.pair("--from", "starting point", text, help)
+    }
+
     /// A rational multiple of π, the angle from the first axis, as a direction.
     pub fn heading(&mut self, text: &str) -> Result<Vector, Fault> {
         let help =
@@ -119,6 +125,22 @@ impl<'a> Launcher<'a> {
         let y = self.evaluator.lift(&y);
         let y = y.checked_div(&root).expect("the form is positive");
         Ok(Vector::new(self.evaluator.lift(&x), y))
+    }
+
+    /// A positive number.
+    pub fn positive(&mut self, option: &str, text: &str) -> Result<Real, Fault> {
+        let value = self.evaluate(option, text, 0..text.len())?;
+        if value <= Real::from(0) {
+            let message = "a length must be positive".into();
+            return Err(fault(
+                option,
+                text,
+                0..text.len(),
+                message,
+                "write a positive number",
+            ));
+        }
+        Ok(value)
     }
 
     fn pair(&mut self, option: &str, what: &str, text: &str, help: &str) -> Result<Vector, Fault> {

@@ -24,6 +24,7 @@ mod progress;
 mod study;
 mod table;
 mod trace;
+mod trace_record;
 mod words;
 
 use arguments::{Arguments, Command, Common};

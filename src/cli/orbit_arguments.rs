@@ -1,6 +1,6 @@
 //! Options of the commands about single directions and periodic orbits.
 
-use super::arguments::{Common, Exactness, Format, parse_positive_length};
+use super::arguments::{Common, Exactness, Format, parse_hits, parse_positive_length};
 use clap::{Args, ValueEnum};
 use std::path::PathBuf;
 
@@ -92,4 +92,85 @@ pub enum DirectionRows {
     Strips,
     /// The interval exchange on the transversal
     Exchange,
+}
+
+/// `trace`.
+#[derive(Debug, Args)]
+pub struct TraceOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a
+    #[arg(
+        long,
+        value_name = "START",
+        required_unless_present_any = ["from", "seed"],
+        conflicts_with_all = ["from", "seed"]
+    )]
+    pub start: Option<String>,
+    /// Start inside the table, at X,Y in its coordinates; the first letter is the first side hit
+    #[arg(
+        long,
+        value_name = "X,Y",
+        allow_hyphen_values = true,
+        conflicts_with = "seed"
+    )]
+    pub from: Option<String>,
+    /// Direction as a vector X,Y in the table's coordinates
+    #[arg(
+        long,
+        value_name = "X,Y",
+        allow_hyphen_values = true,
+        required_unless_present_any = ["heading", "seed"],
+        conflicts_with_all = ["heading", "seed"]
+    )]
+    pub aim: Option<String>,
+    /// Direction as its angle from the x axis in units of pi, such as 1/5
+    #[arg(
+        long,
+        value_name = "Q",
+        allow_hyphen_values = true,
+        conflicts_with = "seed"
+    )]
+    pub heading: Option<String>,
+    /// A random start, which is told; the same as orbit 0 of `orbits` with this seed
+    #[arg(long, value_name = "K")]
+    pub seed: Option<u64>,
+    /// Follow the orbit back in time; the word lists the sides in the order met on the way back
+    #[arg(long)]
+    pub backward: bool,
+    /// Letters of the word; the starting side is the first [default: 100, or no limit with --distance]
+    #[arg(long, value_name = "N", value_parser = parse_hits)]
+    pub hits: Option<usize>,
+    /// Stop before the path is longer than L, an exact number
+    #[arg(long, value_name = "L", allow_hyphen_values = true)]
+    pub distance: Option<String>,
+    /// Text: the word; CSV, JSON and JSON Lines give each hit exactly and as decimals
+    #[arg(long, value_enum, default_value_t)]
+    pub format: TraceFormat,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// File for a picture (SVG) of the orbit in the table
+    #[arg(long, value_name = "PATH")]
+    pub picture: Option<PathBuf>,
+    /// File for a picture (SVG) of the orbit as a straight line through at most 30 unfolded copies
+    #[arg(long, value_name = "PATH")]
+    pub unfolding: Option<PathBuf>,
+    /// No notices
+    #[arg(long)]
+    pub quiet: bool,
+}
+
+/// Formats of `trace`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum TraceFormat {
+    /// The word alone
+    #[default]
+    Text,
+    /// One JSON object
+    Json,
+    /// JSON Lines: one object a hit
+    Jsonl,
+    /// Comma-separated values with a header
+    Csv,
 }

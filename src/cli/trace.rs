@@ -1,172 +1,240 @@
 //! `reboundary trace`.
 
-use super::arguments::{Format, TraceOptions};
 use super::fault::Fault;
-use super::launch::Launcher;
+use super::launch::{Launcher, fault};
+use super::orbit_arguments::{TraceFormat, TraceOptions};
+use super::orbit_picture::{draw_orbit, draw_unfolding};
 use super::output::{emit, note, read_table, write_json};
-use crate::orbit::trace::{State, Step};
-use crate::orbit::{Start, TraceTables, Tracer};
+use super::trace_record::{record, write_csv, write_lines};
+use crate::number::Real;
+use crate::orbit::ensemble::{StartLaw, random_start};
+use crate::orbit::launch::{FirstHit, PointFault, backward, first_hit};
+use crate::orbit::path::{Limits, Path, PathEnd, follow};
+use crate::orbit::{Start, TraceTables};
+use crate::run::files::write_whole;
 use crate::study::folder::spell_code;
-use crate::table::summary::{Exact, ExactVector};
-use crate::table::{SideId, Table};
-use serde::Serialize;
-use std::io::{self, Write};
+use crate::table::{Table, Vector};
+
+/// What a trace found, with what is needed to write and draw it.
+pub struct Traced {
+    /// The table, in the field of start and aim.
+    pub table: Table,
+    /// The point inside the table that the orbit started from, when it did.
+    pub from: Option<Vector>,
+    /// Followed back in time.
+    pub backward: bool,
+    /// The orbit; `None` when it ran into a corner before any side.
+    pub path: Option<Path>,
+    /// Why it ended.
+    pub end: PathEnd,
+}
+
+impl Traced {
+    /// The word, as text.
+    pub fn word(&self) -> String {
+        let word = self.path.as_ref().map_or(&[][..], |p| &p.word);
+        spell_code(&self.table, word)
+    }
+}
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.quiet)?;
-    let mut launcher = Launcher::new(&loaded.table);
-    let (side, fraction) = launcher.side_start(&options.start)?;
-    let aim = launcher.aim(&options.aim)?;
-    let (table, lifter) = launcher.finish();
-    let table = &table;
-    let start = Start {
-        side,
-        fraction: lifter.number(&fraction),
-        aim: lifter.vector(&aim),
-    };
-    let tables = TraceTables::new(table);
-    let mut tracer = Tracer::new(&tables, start).map_err(|f| Fault::BadInput(f.to_string()))?;
-    let wants_states = options.format != Format::Text;
-    let mut states = Vec::new();
-    let mut end = None;
-    loop {
-        if wants_states {
-            states.push(tracer.state());
-        }
-        if tracer.word().len() >= options.hits {
-            break;
-        }
-        let step = tracer.advance();
-        if !matches!(step, Step::Hit(_)) {
-            end = Some(step);
-            break;
-        }
-    }
-    let mut word = tracer.word().to_vec();
-    if let Some(Step::Period(period)) = end {
-        while word.len() < options.hits {
-            word.push(word[word.len() - period]);
-            if wants_states {
-                states.push(states[states.len() - period].clone());
-            }
-        }
-    }
-    let statement = end.map(|step| describe(table, step, tracer.word().len()));
+    let traced = trace(options)?;
     emit(options.out.as_deref(), |out| match options.format {
-        Format::Text => writeln!(out, "{}", spell_code(table, &word)),
-        Format::Csv => write_csv(table, &states, out),
-        Format::Json => write_json(out, &record(table, &word, &states, end)),
+        TraceFormat::Text => writeln!(out, "{}", traced.word()),
+        TraceFormat::Csv => write_csv(&traced, out),
+        TraceFormat::Json => write_json(out, &record(&traced)),
+        TraceFormat::Jsonl => write_lines(&traced, out),
     })?;
-    if let Some(statement) = statement.filter(|_| !options.quiet) {
-        note(&statement);
+    draw(options, &traced)?;
+    if !options.quiet {
+        describe(&traced).iter().for_each(|text| note(text));
     }
     Ok(())
 }
 
-fn describe(table: &Table, step: Step, letters: usize) -> String {
-    match step {
-        Step::Corner(corner) => {
+/// Where an orbit starts.
+enum Launch {
+    Side(Start),
+    Inside(Vector, Vector),
+}
+
+fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
+    let loaded = read_table(&options.table, options.quiet)?;
+    let (table, launch, distance) = launch(options, &loaded.table)?;
+    let tables = TraceTables::new(&table);
+    let refused = |text: String| Fault::BadInput(text);
+    let (start, from, gone) = match launch {
+        Launch::Side(start) => {
+            // Refuses a bad start before it is turned round.
+            crate::orbit::Tracer::new(&tables, start.clone())
+                .map_err(|f| refused(f.to_string()))?;
+            let start = if options.backward {
+                backward(&table, &start)
+            } else {
+                start
+            };
+            (start, None, Real::from(0))
+        }
+        Launch::Inside(point, aim) => {
+            let aim = match options.backward {
+                true => aim.times(&Real::from(-1)),
+                false => aim,
+            };
+            let text = options.from.as_deref().unwrap_or_default();
+            let hit = first_hit(&table, &point, &aim).map_err(|f| point_fault(&table, text, f))?;
+            match hit {
+                FirstHit::Side(start, way) => (start, Some(point), way),
+                FirstHit::Corner(corner, _) => {
+                    let end = PathEnd::Corner(corner);
+                    return Ok(Traced {
+                        table,
+                        from: Some(point),
+                        backward: options.backward,
+                        path: None,
+                        end,
+                    });
+                }
+            }
+        }
+    };
+    // The field may hold no root of |aim|², so distances are compared as squares.
+    let squared = start.aim.squared_length(table.form());
+    let limits = Limits {
+        letters: options
+            .hits
+            .unwrap_or(if distance.is_some() { usize::MAX } else { 100 }),
+        squared_distance: distance.map(|d| &(&d * &d) / &squared),
+        gone,
+    };
+    let too_far = |most: &Real| &limits.gone * &limits.gone > *most;
+    if limits.squared_distance.as_ref().is_some_and(too_far) {
+        return Ok(Traced {
+            table,
+            from,
+            backward: options.backward,
+            path: None,
+            end: PathEnd::Distance,
+        });
+    }
+    let wants_states = options.format != TraceFormat::Text
+        || options.picture.is_some()
+        || options.unfolding.is_some();
+    let path = follow(&tables, start, &limits, wants_states).map_err(|f| refused(f.to_string()))?;
+    Ok(Traced {
+        from,
+        backward: options.backward,
+        end: path.end,
+        path: Some(path),
+        table,
+    })
+}
+
+/// Reads where to start, and the greatest distance; the table comes back in the field that they need.
+fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Option<Real>), Fault> {
+    let mut launcher = Launcher::new(table);
+    let distance = match &options.distance {
+        Some(text) => Some(launcher.positive("--distance", text)?),
+        None => None,
+    };
+    if let Some(seed) = options.seed {
+        let start = random_start(&StartLaw::new(table), seed, 0);
+        if !options.quiet {
+            note(&format!(
+                "the random start is --start {}@{} --aim {},{}",
+                table.letters()[start.side.0 as usize],
+                start.fraction,
+                start.aim.x,
+                start.aim.y
+            ));
+        }
+        let (table, lifter) = launcher.finish();
+        let distance = distance.map(|d| lifter.number(&d));
+        return Ok((table, Launch::Side(start), distance));
+    }
+    let start = match &options.start {
+        Some(text) => Some(launcher.side_start(text)?),
+        None => None,
+    };
+    let from = match &options.from {
+        Some(text) => Some(launcher.point(text)?),
+        None => None,
+    };
+    let aim = match (&options.aim, &options.heading) {
+        (Some(aim), _) => launcher.aim(aim)?,
+        (None, Some(heading)) => launcher.heading(heading)?,
+        (None, None) => unreachable!("the parser asks for an aim, a heading or a seed"),
+    };
+    let (table, lifter) = launcher.finish();
+    let aim = lifter.vector(&aim);
+    let launch = match (start, from) {
+        (Some((side, fraction)), _) => Launch::Side(Start {
+            side,
+            fraction: lifter.number(&fraction),
+            aim,
+        }),
+        (None, Some(point)) => Launch::Inside(lifter.vector(&point), aim),
+        (None, None) => unreachable!("the parser asks for a start, a point or a seed"),
+    };
+    Ok((table, launch, distance.map(|d| lifter.number(&d))))
+}
+
+fn point_fault(table: &Table, text: &str, refused: PointFault) -> Fault {
+    let help = match refused {
+        PointFault::OnSide(side) => format!(
+            "start on the side with --start {}@FRACTION",
+            table.letters()[side.0 as usize]
+        ),
+        _ => "write a point strictly inside the table; `reboundary table` lists its corners".into(),
+    };
+    fault("--from", text, 0..text.len(), refused.to_string(), &help)
+}
+
+/// What is told beside the result.
+fn describe(traced: &Traced) -> Vec<String> {
+    let table = &traced.table;
+    let letters = traced.path.as_ref().map_or(0, |p| p.word.len());
+    let mut notes = Vec::new();
+    if let Some(period) = traced.path.as_ref().and_then(|p| p.period) {
+        notes.push(format!(
+            "the orbit is periodic: after {period} hits it is exactly at its start again, in the same direction"
+        ));
+    }
+    match traced.end {
+        PathEnd::Corner(corner) => {
             let k = table.sides();
             let (before, after) = ((corner.0 as usize + k - 1) % k, corner.0 as usize);
-            format!(
-                "the orbit runs into corner {} (between sides {} and {}) after {letters} {}, the start included, and ends there",
+            notes.push(format!(
+                "the orbit runs into corner {} (between sides {} and {}) after {letters} {}{}, and ends there",
                 corner.0,
                 table.letters()[before],
                 table.letters()[after],
                 if letters == 1 { "hit" } else { "hits" },
-            )
+                if traced.from.is_some() { "" } else { ", the start included" },
+            ))
         }
-        Step::Period(period) => format!(
-            "the orbit is periodic: after {period} hits it is exactly at its start again, in the same direction"
-        ),
-        Step::Hit(_) => String::new(),
+        PathEnd::Distance => notes.push(format!(
+            "the next hit is farther than the distance allows; the word has {letters} letters"
+        )),
+        PathEnd::Letters => {}
     }
+    notes
 }
 
-#[derive(Serialize)]
-#[serde(tag = "kind", rename_all = "snake_case")]
-enum End {
-    Hits,
-    Corner { corner: u8, after_hits: usize },
-    Period { hits: usize },
-}
-
-#[derive(Serialize)]
-struct Hit {
-    hit: usize,
-    side: String,
-    fraction: Exact,
-    point: ExactVector,
-    direction: ExactVector,
-}
-
-#[derive(Serialize)]
-struct TraceRecord {
-    schema: &'static str,
-    title: String,
-    word: String,
-    end: End,
-    /// g of the plane form: second coordinates are in units of √g.
-    form: Exact,
-    hits: Vec<Hit>,
-}
-
-fn record(table: &Table, word: &[SideId], states: &[State], end: Option<Step>) -> TraceRecord {
-    TraceRecord {
-        schema: "reboundary-trace/1",
-        title: table.title().into(),
-        word: spell_code(table, word),
-        end: match end {
-            Some(Step::Corner(corner)) => End::Corner {
-                corner: corner.0,
-                after_hits: word.len(),
-            },
-            Some(Step::Period(hits)) => End::Period { hits },
-            _ => End::Hits,
-        },
-        form: Exact::new(table.form()),
-        hits: states
-            .iter()
-            .enumerate()
-            .map(|(i, state)| Hit {
-                hit: i + 1,
-                side: table.letters()[state.side.0 as usize].to_string(),
-                fraction: Exact::new(&state.fraction),
-                point: ExactVector::new(&state.point),
-                direction: ExactVector::new(&state.direction),
-            })
-            .collect(),
+fn draw(options: &TraceOptions, traced: &Traced) -> Result<(), Fault> {
+    let Some(path) = &traced.path else {
+        return Ok(());
+    };
+    let title = format!("Orbit in {}", traced.table.title());
+    let mut points: Vec<Vector> = traced.from.iter().cloned().collect();
+    points.extend(path.states.iter().map(|s| s.point.clone()));
+    if let Some(file) = &options.picture {
+        let description = format!("An orbit with {} hits.", path.word.len());
+        let svg = draw_orbit(&traced.table, &points, &title, &description)?;
+        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
     }
-}
-
-fn write_csv(table: &Table, states: &[State], out: &mut dyn Write) -> io::Result<()> {
-    let mut csv = csv::Writer::from_writer(out);
-    csv.write_record([
-        "hit",
-        "side",
-        "fraction",
-        "x",
-        "y",
-        "fraction_decimal",
-        "x_decimal",
-        "y_decimal",
-        "direction_x",
-        "direction_y",
-    ])?;
-    for (i, state) in states.iter().enumerate() {
-        let (fraction, point) = (Exact::new(&state.fraction), ExactVector::new(&state.point));
-        csv.write_record([
-            (i + 1).to_string(),
-            table.letters()[state.side.0 as usize].to_string(),
-            fraction.exact,
-            point.x.exact,
-            point.y.exact,
-            fraction.decimal,
-            point.x.decimal,
-            point.y.decimal,
-            state.direction.x.to_string(),
-            state.direction.y.to_string(),
-        ])?;
+    if let Some(file) = &options.unfolding {
+        let svg = draw_unfolding(&traced.table, &path.word, &path.states)?;
+        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
     }
-    csv.flush()
+    Ok(())
 }

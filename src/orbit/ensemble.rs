@@ -96,6 +96,17 @@ pub struct Sample {
     pub word: Vec<SideId>,
 }
 
+/// The first start that orbit `index` of a seed draws.
+pub fn random_start(law: &StartLaw, seed: u64, index: u64) -> Start {
+    law.draw(&mut generator(seed, index))
+}
+
+fn generator(seed: u64, index: u64) -> ChaCha8Rng {
+    let mut random = ChaCha8Rng::seed_from_u64(seed);
+    random.set_stream(index);
+    random
+}
+
 /// Orbit `index` of a seed: a word of `letters` letters from a random exact start. A periodic orbit is
 /// continued round its period.
 pub fn sample(
@@ -105,8 +116,7 @@ pub fn sample(
     index: u64,
     letters: usize,
 ) -> Sample {
-    let mut random = ChaCha8Rng::seed_from_u64(seed);
-    random.set_stream(index);
+    let mut random = generator(seed, index);
     loop {
         let start = law.draw(&mut random);
         let Ok(orbit) = trace(tables, start.clone(), letters) else {

@@ -4,11 +4,15 @@
 //! - [`trace`]: following one orbit from an exact start.
 //! - [`ensemble`]: many orbits from random exact starts.
 //! - [`direction`]: all orbits in one direction.
+//! - [`launch`]: starts inside the table and backward in time.
+//! - [`path`]: following one orbit until a limit.
 //! - [`periodic`]: all periodic words up to a length.
 
 pub mod direction;
 pub mod ensemble;
+pub mod launch;
 pub mod line;
+pub mod path;
 pub mod periodic;
 pub mod trace;
 
