@@ -1,6 +1,6 @@
 //! Commands and options.
 
-use super::orbit_arguments::{DirectionOptions, PeriodicOptions, TraceOptions};
+use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
@@ -298,31 +298,6 @@ pub enum GraphFormat {
     Csv,
     /// The factor graph of order N itself
     Graphml,
-}
-
-/// `orbits`.
-#[derive(Debug, Args)]
-pub struct OrbitsOptions {
-    /// The table file
-    pub table: PathBuf,
-    /// Number of orbits
-    #[arg(long, value_name = "M", default_value_t = 1000)]
-    pub count: u64,
-    /// Letters of each word; the starting side is the first
-    #[arg(long, value_name = "N", default_value_t = 200, value_parser = parse_hits)]
-    pub hits: usize,
-    /// Seed of the random starts
-    #[arg(long, value_name = "K", default_value_t = 0)]
-    pub seed: u64,
-    /// Text: one word a line; CSV and JSON Lines add the exact start
-    #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
-    /// File for the output [default: standard output]
-    #[arg(long, value_name = "PATH")]
-    pub out: Option<PathBuf>,
-    /// Common options.
-    #[command(flatten)]
-    pub common: Common,
 }
 
 pub(super) fn parse_hits(text: &str) -> Result<usize, String> {

@@ -174,3 +174,63 @@ pub enum TraceFormat {
     /// Comma-separated values with a header
     Csv,
 }
+
+/// `orbits`.
+#[derive(Debug, Args)]
+pub struct OrbitsOptions {
+    /// The table file
+    pub table: PathBuf,
+    /// Number of orbits [default: 1000, or all of --grid and --starts]
+    #[arg(long, value_name = "M")]
+    pub count: Option<u64>,
+    /// Letters of each word; the starting side is the first
+    #[arg(long, value_name = "N", default_value_t = 200, value_parser = parse_hits)]
+    pub hits: usize,
+    /// Seed of the random starts
+    #[arg(long, value_name = "K", default_value_t = 0)]
+    pub seed: u64,
+    /// Law: one direction X,Y, uniform across the table [default law: the invariant measure]
+    #[arg(long, value_name = "X,Y", allow_hyphen_values = true, group = "law")]
+    pub aim: Option<String>,
+    /// Law: one direction, by its angle from the x axis in units of pi
+    #[arg(long, value_name = "Q", allow_hyphen_values = true, group = "law")]
+    pub heading: Option<String>,
+    /// Law: one point LETTER@FRACTION, directions as under the invariant measure
+    #[arg(long, value_name = "START", group = "law")]
+    pub start: Option<String>,
+    /// Law: P points on each side and Q directions from each, evenly spaced in the invariant measure
+    #[arg(long, value_name = "PxQ", value_parser = parse_grid, group = "law")]
+    pub grid: Option<(u64, u64)>,
+    /// Law: the starts of a CSV file with columns side, fraction, aim_x, aim_y, as --format csv writes them
+    #[arg(long, value_name = "FILE", group = "law")]
+    pub starts: Option<PathBuf>,
+    /// File (CSV) for block frequencies and the mean chord beside their exact values, with z-scores
+    #[arg(long, value_name = "PATH", conflicts_with = "law")]
+    pub statistics: Option<PathBuf>,
+    /// Longest blocks of --statistics
+    #[arg(long, value_name = "B", default_value_t = 3, value_parser = parse_blocks)]
+    pub blocks: usize,
+    /// Text: one word a line; CSV and JSON Lines add the exact start
+    #[arg(long, value_enum, default_value_t)]
+    pub format: Format,
+    /// File for the output [default: standard output]
+    #[arg(long, value_name = "PATH")]
+    pub out: Option<PathBuf>,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+}
+
+fn parse_grid(text: &str) -> Result<(u64, u64), String> {
+    let number = |part: &str| part.parse().ok().filter(|n| (1..=1u64 << 24).contains(n));
+    text.split_once('x')
+        .and_then(|(p, q)| Some((number(p)?, number(q)?)))
+        .ok_or_else(|| "write two whole numbers from 1 to 16777216 as PxQ, such as 10x20".into())
+}
+
+fn parse_blocks(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(blocks @ 1..=12) => Ok(blocks),
+        _ => Err("write a whole number from 1 to 12".into()),
+    }
+}
