@@ -1,7 +1,7 @@
 //! Complete, certified coding languages of polygonal billiards.
 //!
-//! A table is a simple polygon whose corners lie in a real number field. An orbit that meets no corner is
-//! coded by the sides that it hits; the language of the table is the set of all words so obtained. This
+//! A table is a simple polygon, perhaps with holes, whose corners lie in a real number field. An orbit that
+//! meets no corner is coded by the letters of the sides that it hits; the language of the table is the set of all words so obtained. This
 //! library computes it completely up to a length, with exact arithmetic, and analyses it.
 //!
 //! The rooms, lowest first; each knows only those above it in this list:

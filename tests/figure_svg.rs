@@ -171,6 +171,7 @@ fn table() -> TableShape {
 fn corridor() -> Corridor {
     let square = |i: f64| vec![[i, 0.0], [i + 1.0, 0.0], [i + 1.0, 1.0], [i, 1.0]];
     Corridor {
+        holes: Vec::new(),
         copies: vec![square(0.0), square(1.0)],
         gates: vec![([1.0, 0.0], [1.0, 1.0], NASTY.to_owned())],
         beam: vec![vec![[0.5, 0.2], [1.5, 0.1], [1.5, 0.9], [0.5, 0.8]]],
@@ -304,6 +305,7 @@ fn flat_and_tiny_and_huge_shapes_are_drawn() {
             let line = Some((corners[0], corners[1]));
             let corridor = Corridor {
                 copies,
+                holes: Vec::new(),
                 gates,
                 beam: vec![corners.clone()],
                 pivots: corners.clone(),

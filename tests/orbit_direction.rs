@@ -16,7 +16,7 @@ use reboundary::orbit::{Step, TraceTables, Tracer};
 use reboundary::run::Control;
 use reboundary::table::expression::Evaluator;
 use reboundary::table::facts::area_over_root_form;
-use reboundary::table::{SideId, Table, Vector};
+use reboundary::table::{LetterId, SideId, Table, Vector};
 use std::collections::BTreeSet;
 use support::*;
 
@@ -94,7 +94,7 @@ fn words_are_those_that_start_in_the_directions_of_the_orbit() {
                 for (n, words) in expected.iter_mut().enumerate().skip(1) {
                     let found =
                         prefixes(flow.table(), &aim, n, &Control::new()).expect("unstopped");
-                    words.extend(found.words.iter().map(|w| w.iter().map(|s| s.0).collect()));
+                    words.extend(found.words.iter().map(|w| w.iter().map(|l| l.0).collect()));
                 }
             }
             for (n, expected) in expected.iter().enumerate().skip(1) {
@@ -126,9 +126,9 @@ fn prefixes_form_a_tree_on_tables_with_infinite_groups() {
         let longest = prefixes(&table, &aim, 7, &Control::new()).expect("unstopped");
         for n in 0..=7 {
             let found = prefixes(&table, &aim, n, &Control::new()).expect("unstopped");
-            let beginnings: BTreeSet<Vec<SideId>> =
+            let beginnings: BTreeSet<Vec<LetterId>> =
                 longest.words.iter().map(|w| w[..n].to_vec()).collect();
-            let words: BTreeSet<Vec<SideId>> = found.words.iter().cloned().collect();
+            let words: BTreeSet<Vec<LetterId>> = found.words.iter().cloned().collect();
             assert_eq!(words, beginnings, "{} n = {n}", table.title());
             assert_eq!(longest.counts[n], words.len() as u64);
             for word in &words {

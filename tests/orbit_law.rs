@@ -13,7 +13,7 @@ use reboundary::orbit::trace::trace;
 use reboundary::orbit::{Start, Step, TraceTables, Tracer};
 use reboundary::run::Control;
 use reboundary::table::facts::{facts, mean_chord};
-use reboundary::table::{SideId, Table, Vector};
+use reboundary::table::{LetterId, SideId, Table, Vector};
 use reboundary::unfold::Mesh;
 use reboundary::unfold::mesh::Exit;
 use rug::Rational;
@@ -137,6 +137,10 @@ fn states_of_long_orbits_are_exact() {
     assert!(home.iter().rev().eq(tracer.word()));
 }
 
+fn letters_of(table: &Table, word: &[SideId]) -> Vec<LetterId> {
+    word.iter().map(|s| table.letter_id(*s)).collect()
+}
+
 fn statistics(table: &Table, seed: u64, orbits: u64, letters: usize, blocks: usize) -> Statistics {
     let tables = TraceTables::new(table);
     let ensemble = Ensemble::new(&tables, Law::Cosine);
@@ -149,7 +153,7 @@ fn statistics(table: &Table, seed: u64, orbits: u64, letters: usize, blocks: usi
                 .expect("random starts are good");
             assert_eq!(sample.word.len(), letters);
             let length = meter.path_length(&sample.start, &sample.word);
-            orbit_shares(&sample.word, blocks, length)
+            orbit_shares(&letters_of(table, &sample.word), blocks, length)
         })
         .collect();
     let mut statistics = Statistics::default();
@@ -166,7 +170,7 @@ fn largest_z(table: &Table, statistics: &Statistics) -> f64 {
     for n in 1..=2 {
         let measures = measure(table, &engine, &mesh, n, n, &Control::new()).expect("measured");
         for (word, exact) in words(&all, n).into_iter().zip(&measures.kept) {
-            let block: Vec<SideId> = word.into_iter().map(SideId).collect();
+            let block: Vec<LetterId> = word.into_iter().map(LetterId).collect();
             let exact = exact.to_f64() / measures.whole.to_f64();
             largest = largest.max(
                 statistics
@@ -206,7 +210,7 @@ fn frequencies_of_another_law_do_not_fit() {
             .sample(1, index, 40)
             .expect("random starts are good");
         let length = meter.path_length(&sample.start, &sample.word);
-        statistics.add(orbit_shares(&sample.word, 2, length));
+        statistics.add(orbit_shares(&letters_of(&table, &sample.word), 2, length));
     }
     assert!(largest_z(&table, &statistics) > 20.0);
 }

@@ -89,10 +89,8 @@ fn an_orbit_from_inside_is_that_from_the_side_behind() {
         let tables = TraceTables::new(&table);
         let mut tried = 0;
         for (a, b) in (0..table.sides()).flat_map(|a| (0..3).map(move |b| (a, b))) {
-            let centre = table
-                .corner(a)
-                .plus(table.corner(a + 1))
-                .plus(table.corner(a + 2));
+            let corner = |i: usize| table.corner(i % table.sides());
+            let centre = corner(a).plus(corner(a + 1)).plus(corner(a + 2));
             let point = centre.times(&number(1, 3));
             if check_inside(&table, &point).is_err() {
                 continue;

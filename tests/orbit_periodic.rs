@@ -143,7 +143,7 @@ fn strips_end_where_the_word_ends() {
                 let offset = |corner: usize| {
                     direction.cross(&table.corner(corner).minus(table.corner(0))) - &moment
                 };
-                let (first, second) = (offset(side), offset(side + 1));
+                let (first, second) = (offset(side), offset(table.after(side)));
                 let start = Start {
                     side: word.word[0],
                     fraction: &first / &(&first - &second),

@@ -4,7 +4,6 @@ use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, T
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
-use std::num::NonZeroU32;
 use std::path::PathBuf;
 
 /// Complete, certified coding languages of polygonal billiards.
@@ -48,11 +47,19 @@ pub enum Command {
 #[derive(Clone, Debug, Args)]
 pub struct Common {
     /// Threads to use [default: all cores]
-    #[arg(long, value_name = "N")]
-    pub threads: Option<NonZeroU32>,
+    #[arg(long, value_name = "N", value_parser = parse_threads)]
+    pub threads: Option<usize>,
     /// No progress and no notices
     #[arg(long)]
     pub quiet: bool,
+}
+
+/// Settings of the table file's parameters.
+#[derive(Clone, Debug, Args)]
+pub struct Settings {
+    /// Value of a parameter of the table file, an exact expression, such as t=2/5; may be repeated
+    #[arg(long = "set", value_name = "NAME=VALUE", allow_hyphen_values = true)]
+    pub set: Vec<String>,
 }
 
 /// Options about arithmetic.
@@ -87,15 +94,32 @@ pub enum Format {
 }
 
 /// The ways to p(n).
-#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
 pub enum Route {
     /// Count words: walk all beams of lines
     Beams,
     /// Count generalized diagonals: walk all fans of rays
     Diagonals,
     /// Both, compared value by value
-    #[default]
     Both,
+}
+
+/// The most threads that can be asked for: starting more only costs memory.
+const MOST_THREADS: usize = 1024;
+
+fn parse_threads(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(threads) if (1..=MOST_THREADS).contains(&threads) => Ok(threads),
+        _ => Err(format!("write a whole number from 1 to {MOST_THREADS}")),
+    }
+}
+
+/// The graph of order n needs words of length n + 1.
+fn parse_graph_order(text: &str) -> Result<usize, String> {
+    match text.parse::<usize>() {
+        Ok(order) if order < LONGEST => Ok(order),
+        _ => Err(format!("write a whole number from 0 to {}", LONGEST - 1)),
+    }
 }
 
 fn parse_length(text: &str) -> Result<usize, String> {
@@ -115,10 +139,13 @@ pub(super) fn parse_positive_length(text: &str) -> Result<usize, String> {
     }
 }
 
+/// The shortest study.
+pub const SHORTEST_STUDY: usize = 3;
+
 fn parse_study_length(text: &str) -> Result<usize, String> {
     match parse_length(text)? {
-        length @ 0..=2 => Err(format!(
-            "a study needs words of length at least 3, not {length}"
+        length if length < SHORTEST_STUDY => Err(format!(
+            "a study needs words of length at least {SHORTEST_STUDY}, not {length}"
         )),
         length => Ok(length),
     }
@@ -143,6 +170,9 @@ fn parse_bytes(text: &str) -> Result<u64, String> {
 pub struct StudyOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     #[doc = "Longest words [default: as far as a million words in all, at most 60]"]
     #[arg(long, value_name = "N", value_parser = parse_study_length)]
     pub length: Option<usize>,
@@ -153,7 +183,7 @@ pub struct StudyOptions {
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
-    #[arg(long, value_name = "N")]
+    #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
@@ -178,6 +208,9 @@ fn parse_radii(text: &str) -> Result<usize, String> {
 pub struct TableOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -194,6 +227,9 @@ pub struct TableOptions {
 pub struct WordsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Length of the words
     #[arg(long, value_name = "N", value_parser = parse_length)]
     pub length: usize,
@@ -219,12 +255,15 @@ pub struct WordsOptions {
 pub struct ComplexityOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Longest words
     #[arg(long, value_name = "N", default_value_t = DEFAULT_LENGTH, value_parser = parse_length)]
     pub length: usize,
-    /// How to count
-    #[arg(long, value_enum, default_value_t)]
-    pub route: Route,
+    /// How to count [default: both; beams when sides share letters or the table has holes]
+    #[arg(long, value_enum)]
+    pub route: Option<Route>,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -244,6 +283,9 @@ pub struct ComplexityOptions {
 pub struct DiagonalsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// The most sides that a listed diagonal crosses
     #[arg(long, value_name = "N", default_value_t = 8, value_parser = parse_length)]
     pub length: usize,
@@ -266,6 +308,9 @@ pub struct DiagonalsOptions {
 pub struct GraphOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Largest order n of the factor graphs
     #[arg(long, value_name = "N", default_value_t = 30, value_parser = parse_positive_length)]
     pub length: usize,

@@ -7,6 +7,7 @@ use super::progress::{Progress, interruptible_control};
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::language::walk;
+use crate::table::Table;
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
@@ -31,21 +32,22 @@ struct ComplexityRecord {
 }
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
+    let route = route(table, options.route)?;
     let (mesh, length) = (Mesh::new(table), options.length);
     let engine = AnyEngine::new(table, length, options.exactness.arithmetic());
     let control = interruptible_control();
     let progress = Progress::new(&control, options.common.quiet);
     let mut found = None;
-    if options.route != Route::Beams {
+    if route != Route::Beams {
         progress.begin("generalized diagonals", None);
         found = Some(diagonals::count(&engine, &mesh, length.saturating_sub(2), &control)?.0);
     }
     let by_diagonals = found
         .as_ref()
         .map(|n| p_from_diagonals(table.sides() as u64, n, length));
-    let by_beams = if options.route == Route::Diagonals {
+    let by_beams = if route == Route::Diagonals {
         None
     } else {
         progress.begin("beams", by_diagonals.as_ref().map(|p| p.iter().sum()));
@@ -62,7 +64,7 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
         schema: "reboundary-complexity/1",
         title: table.title().into(),
         length,
-        route: match options.route {
+        route: match route {
             Route::Beams => "beams",
             Route::Diagonals => "diagonals",
             Route::Both => "both",
@@ -85,6 +87,25 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
             "the two routes to p(n) differ, first at n = {n}; please report this table as a fault of the program"
         ))),
         _ => Ok(()),
+    }
+}
+
+/// The route asked for, when it leads to p(n) for this table.
+fn route(table: &Table, asked: Option<Route>) -> Result<Route, Fault> {
+    match asked {
+        None if table.has_one_beam_a_word() => Ok(Route::Both),
+        None | Some(Route::Beams) => Ok(Route::Beams),
+        Some(route) if table.has_one_beam_a_word() => Ok(route),
+        Some(_) => {
+            let why = if table.holes() > 0 {
+                "the table has holes"
+            } else {
+                "sides share letters"
+            };
+            Err(Fault::BadInput(format!(
+                "p(n) does not follow from generalized diagonals here, because {why}: a word is a bundle of beams; write --route beams"
+            )))
+        }
     }
 }
 

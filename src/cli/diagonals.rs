@@ -35,7 +35,7 @@ struct DiagonalsRecord {
 }
 
 pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let mesh = Mesh::new(table);
     let engine = AnyEngine::new(table, options.length, options.exactness.arithmetic());

@@ -2,7 +2,7 @@
 
 use super::arguments::Format;
 use super::fault::Fault;
-use super::launch::{Launcher, fault, side_of};
+use super::launch::{Launcher, fault, side_name, side_of};
 use super::orbit_arguments::{DirectionOptions, DirectionRows};
 use super::output::{emit, note, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
@@ -17,11 +17,11 @@ use crate::orbit::direction::{Flow, FlowFault};
 use crate::run::Control;
 use crate::study::folder::spell_code;
 use crate::table::summary::{Exact, ExactVector, root_decimal};
-use crate::table::{Table, Vector};
+use crate::table::{LetterId, Table, Vector};
 use serde::Serialize;
 
 pub fn run(options: &DirectionOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let mut launcher = Launcher::new(&loaded.table);
     let aim = match (&options.aim, &options.heading) {
         (Some(aim), _) => launcher.aim(aim)?,
@@ -202,11 +202,7 @@ impl Results {
                 squared_orbit_length: Exact::new(&squared),
                 width: root_decimal(&squared_width),
                 squared_width: Exact::new(&squared_width),
-                start: format!(
-                    "{}@{}",
-                    table.letters()[s.start.side.0 as usize],
-                    s.start.fraction
-                ),
+                start: format!("{}@{}", side_name(table, s.start.side), s.start.fraction),
                 aim: ExactVector::new(&s.start.aim),
                 copies: s.copies,
             }
@@ -480,7 +476,10 @@ fn emit_prefixes(
     aim: &Vector,
     found: &Prefixes,
 ) -> Result<(), Fault> {
-    let words = || found.words.iter().map(|w| spell_code(table, w));
+    let spelled = |word: &Vec<LetterId>| -> String {
+        word.iter().map(|l| table.letters()[l.0 as usize]).collect()
+    };
+    let words = || found.words.iter().map(spelled);
     let counts = || found.counts.iter().enumerate().skip(1);
     match options.rows {
         DirectionRows::Complexity | DirectionRows::Words => {}

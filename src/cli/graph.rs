@@ -17,8 +17,33 @@ use std::io::{self, Write};
 struct Order<'a> {
     #[serde(flatten)]
     counts: &'a GraphCounts,
-    #[serde(flatten)]
-    line: LineFigures,
+    growth: f64,
+    path_share: Vec<f64>,
+    branch_free_share: Vec<f64>,
+    bound: Vec<f64>,
+    within_bound: bool,
+}
+
+impl Order<'_> {
+    fn new(counts: &GraphCounts) -> Order<'_> {
+        // The order stands in the counts already; a JSON object names each field once.
+        let LineFigures {
+            order: _,
+            growth,
+            path_share,
+            branch_free_share,
+            bound,
+            within_bound,
+        } = line_figures(counts);
+        Order {
+            counts,
+            growth,
+            path_share,
+            branch_free_share,
+            bound,
+            within_bound,
+        }
+    }
 }
 
 #[derive(Serialize)]
@@ -31,7 +56,7 @@ struct GraphRecord<'a> {
 }
 
 pub fn run(options: &GraphOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let (mesh, length) = (Mesh::new(table), options.length);
     let engine = AnyEngine::new(table, length + 1, options.exactness.arithmetic());
@@ -52,10 +77,7 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
         GraphFormat::Csv => write_csv(&graphs, options.radii, out),
         GraphFormat::Graphml => write_graphml(&language, length, table.letters(), out),
         GraphFormat::Json => {
-            let orders = graphs.iter().map(|counts| Order {
-                counts,
-                line: line_figures(counts),
-            });
+            let orders = graphs.iter().map(Order::new);
             write_json(
                 out,
                 &GraphRecord {

@@ -167,24 +167,51 @@ impl<'a> Launcher<'a> {
     }
 }
 
-/// The side with the letter that a part of an option's text names.
+/// The side that a part of an option's text names: its letter, and when sides share it which of them, counted from 1.
 pub fn side_of(
     table: &Table,
     option: &str,
     text: &str,
     part: Range<usize>,
 ) -> Result<SideId, Fault> {
-    let mut letters = text[part.clone()].chars();
-    let side = match (letters.next(), letters.next()) {
-        (Some(letter), None) => table.side_of_letter(letter),
-        _ => None,
-    };
-    side.ok_or_else(|| {
-        let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
-        let message = format!("`{}` is not a side of this table", &text[part.clone()]);
-        let help = format!("its sides are {}", known.join(", "));
-        fault(option, text, part, message, &help)
-    })
+    let named = &text[part.clone()];
+    let mut rest = named.chars();
+    let sides = rest
+        .next()
+        .map_or(Vec::new(), |letter| table.sides_of_letter(letter));
+    let which = Some(rest.as_str()).filter(|rest| !rest.is_empty());
+    let count = sides.len();
+    match (which, &sides[..]) {
+        (None, [side]) => return Ok(*side),
+        (None, [_, _, ..]) => {
+            let message = format!("{count} sides have the letter `{named}`");
+            let help = format!(
+                "write which: `{named}1` to `{named}{count}`, in the order of the sides in `reboundary table`"
+            );
+            return Err(fault(option, text, part, message, &help));
+        }
+        (Some(which), [_, ..]) => {
+            let index = which.parse::<usize>().ok().and_then(|w| w.checked_sub(1));
+            if let Some(side) = index.and_then(|index| sides.get(index)) {
+                return Ok(*side);
+            }
+        }
+        (_, []) => {}
+    }
+    let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
+    let message = format!("`{named}` is not a side of this table");
+    let help = format!("its sides are {}", known.join(", "));
+    Err(fault(option, text, part, message, &help))
+}
+
+/// What [`side_of`] reads: the letter, with a number when sides share it.
+pub fn side_name(table: &Table, side: SideId) -> String {
+    let letter = table.letter(side);
+    let sharing = table.sides_of_letter(letter);
+    match sharing.iter().position(|s| *s == side) {
+        Some(index) if sharing.len() > 1 => format!("{letter}{}", index + 1),
+        _ => letter.to_string(),
+    }
 }
 
 /// Commas outside parentheses.

@@ -81,7 +81,7 @@ fn with_threads(
     work: impl FnOnce() -> Result<(), Fault> + Send,
 ) -> Result<(), Fault> {
     let pool = rayon::ThreadPoolBuilder::new()
-        .num_threads(common.threads.map_or(0, |n| n.get() as usize))
+        .num_threads(common.threads.unwrap_or(0))
         .build()
         .map_err(|e| Fault::Failed(format!("cannot start the threads: {e}")))?;
     pool.install(work)

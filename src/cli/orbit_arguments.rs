@@ -1,6 +1,6 @@
 //! Options of the commands about single directions and periodic orbits.
 
-use super::arguments::{Common, Exactness, Format, parse_hits, parse_positive_length};
+use super::arguments::{Common, Exactness, Format, Settings, parse_hits, parse_positive_length};
 use clap::{Args, ValueEnum};
 use std::path::PathBuf;
 
@@ -9,6 +9,9 @@ use std::path::PathBuf;
 pub struct PeriodicOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Longest words
     #[arg(long, value_name = "N", default_value_t = 12, value_parser = parse_positive_length)]
     pub length: usize,
@@ -37,6 +40,9 @@ pub struct PeriodicOptions {
 pub struct DirectionOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// The direction as a vector X,Y in the table's coordinates
     #[arg(
         long,
@@ -99,7 +105,11 @@ pub enum DirectionRows {
 pub struct TraceOptions {
     /// The table file
     pub table: PathBuf,
-    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
+    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a; a2@1/3 for the second of
+    /// several sides with the letter a
     #[arg(
         long,
         value_name = "START",
@@ -180,6 +190,9 @@ pub enum TraceFormat {
 pub struct OrbitsOptions {
     /// The table file
     pub table: PathBuf,
+    /// Parameters.
+    #[command(flatten)]
+    pub settings: Settings,
     /// Number of orbits [default: 1000, or all of --grid and --starts]
     #[arg(long, value_name = "M")]
     pub count: Option<u64>,

@@ -40,7 +40,9 @@ pub fn draw_unfolding(table: &Table, word: &[SideId], states: &[State]) -> Resul
         let s = side.0 as usize;
         let place = |c: usize| flat(&pose.apply(table.corner(c), table.form()));
         let letter = table.letters()[s].to_string();
-        corridor.gates.push((place(s), place(s + 1), letter));
+        corridor
+            .gates
+            .push((place(s), place(table.after(s)), letter));
         end = Some(flat(&pose.apply(&states[i].point, table.form())));
         if i > 0 {
             pose = pose.after(&reflections[s], table.form());

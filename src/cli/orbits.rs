@@ -2,7 +2,7 @@
 
 use super::arguments::Format;
 use super::fault::Fault;
-use super::launch::Launcher;
+use super::launch::{Launcher, side_name};
 use super::orbit_arguments::OrbitsOptions;
 use super::output::{emit, note, read_table};
 use super::progress::{Progress, interruptible_control};
@@ -18,7 +18,7 @@ use crate::run::files::write_whole;
 use crate::study::folder::spell_code;
 use crate::study::record::decimal;
 use crate::table::facts::{facts, squared_area};
-use crate::table::{SideId, Table};
+use crate::table::{LetterId, Table};
 use crate::unfold::Mesh;
 use crate::unfold::engine::{AnyEngine, Arithmetic};
 use rayon::prelude::*;
@@ -29,7 +29,7 @@ use std::path::Path;
 const BATCH_LETTERS: usize = 1 << 22;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let (table, law) = read_law(options, &loaded.table)?;
     let tables = TraceTables::new(&table);
     let ensemble = Ensemble::new(&tables, law);
@@ -201,7 +201,8 @@ impl Job<'_> {
         let sample = self.ensemble.sample(options.seed, index, options.hits)?;
         let shares = options.statistics.is_some().then(|| {
             let length = self.meter.path_length(&sample.start, &sample.word);
-            orbit_shares(&sample.word, options.blocks, length)
+            let word = sample.word.iter().map(|s| self.table.letter_id(*s));
+            orbit_shares(&word.collect::<Vec<_>>(), options.blocks, length)
         });
         Ok(Row {
             text: row(self.table, index, &sample, options.format),
@@ -217,14 +218,14 @@ struct Row {
 
 fn row(table: &Table, index: u64, sample: &Sample, format: Format) -> String {
     let word = spell_code(table, &sample.word);
-    let side = table.letters()[sample.start.side.0 as usize];
+    let side = side_name(table, sample.start.side);
     let (fraction, aim) = (&sample.start.fraction, &sample.start.aim);
     match format {
         Format::Text => word,
         Format::Csv => format!("{index},{side},{fraction},{},{},{word}", aim.x, aim.y),
         Format::Json => serde_json::json!({
             "orbit": index,
-            "side": side.to_string(),
+            "side": side,
             "fraction": fraction.to_string(),
             "aim": [aim.x.to_string(), aim.y.to_string()],
             "word": word,
@@ -296,13 +297,16 @@ fn compare(
     for length in 1..=options.blocks {
         let measures = measure::measure(table, &engine, &mesh, length, length, control)?;
         for (word, measure) in (0..).zip(&measures.kept) {
-            let block: Vec<SideId> = language
+            let block: Vec<LetterId> = language
                 .word(length, word)
                 .into_iter()
-                .map(SideId)
+                .map(LetterId)
                 .collect();
             rows.push(Compared {
-                quantity: spell_code(table, &block),
+                quantity: block
+                    .iter()
+                    .map(|l| table.letters()[l.0 as usize])
+                    .collect(),
                 estimate: statistics.block(&block).expect("at least two orbits"),
                 exact: measure
                     .div(&measures.whole)

@@ -1,14 +1,15 @@
 //! Where results are printed, and how tables are read.
 
+use super::arguments::Settings;
 use super::fault::Fault;
 use crate::run::files::write_whole;
-use crate::table::file::{LoadedTable, load};
+use crate::table::file::{LoadedTable, load_with};
 use std::io::{self, BufWriter, Write};
 use std::path::Path;
 
-/// Reads a table and tells its notices.
-pub fn read_table(path: &Path, quiet: bool) -> Result<LoadedTable, Fault> {
-    let loaded = load(path)?;
+/// Reads a table with its settings and tells its notices.
+pub fn read_table(path: &Path, settings: &Settings, quiet: bool) -> Result<LoadedTable, Fault> {
+    let loaded = load_with(path, &settings.set)?;
     if !quiet {
         for notice in &loaded.notices {
             note(notice);

@@ -2,26 +2,28 @@
 
 use super::arguments::Format;
 use super::fault::Fault;
+use super::launch::side_name;
 use super::orbit_arguments::PeriodicOptions;
 use super::orbit_picture::draw_orbit;
-use super::output::{emit, read_table, write_columns, write_json};
+use super::output::{emit, note, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
-use crate::orbit::periodic::{PeriodicWord, Wanted, periodic_words};
+use crate::orbit::periodic::{PeriodicWord, Wanted, letter_class, periodic_words};
 use crate::orbit::{Step, TraceTables, Tracer};
 use crate::run::files::ResultFolder;
 use crate::study::folder::spell_code;
 use crate::table::summary::{Exact, ExactVector, root_decimal};
-use crate::table::{Table, Vector};
+use crate::table::{LetterId, Table, Vector};
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
+use std::collections::BTreeSet;
 use std::io::{self, Write};
 
 /// The file that tells a folder of these pictures.
 const MARK: &str = "periodic.csv";
 
 pub fn run(options: &PeriodicOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let folder = match &options.pictures {
         Some(path) => Some(ResultFolder::new(path, MARK)?),
@@ -43,6 +45,9 @@ pub fn run(options: &PeriodicOptions) -> Result<(), Fault> {
         draw_all(table, &found, &folder)?;
         folder.write(MARK, |out| write_csv(table, &found, out))?;
         folder.finish()?;
+    }
+    if table.holes() > 0 && !options.common.quiet {
+        note("on a table with holes, orbits whose word of sides is a square may be missing");
     }
     emit(options.out.as_deref(), |out| match options.format {
         Format::Text => write_text(table, &found, out),
@@ -98,6 +103,7 @@ struct PeriodicRecord {
     title: String,
     length: usize,
     stable_only: bool,
+    /// False on tables with holes, where a word of sides that is a square may be missing.
     complete: bool,
     /// g of the plane form: second coordinates are in units of √g.
     form: Exact,
@@ -122,7 +128,7 @@ fn listed(table: &Table, word: &PeriodicWord) -> Listed {
             area_over_root_form: Exact::new(&word.area_over_root_form()),
         },
         start: Launch {
-            side: table.letters()[start.side.0 as usize].to_string(),
+            side: side_name(table, start.side),
             fraction: Exact::new(&start.fraction),
             aim: ExactVector::new(&start.aim),
         },
@@ -130,14 +136,20 @@ fn listed(table: &Table, word: &PeriodicWord) -> Listed {
 }
 
 fn record(table: &Table, found: &[PeriodicWord], options: &PeriodicOptions) -> PeriodicRecord {
+    // One word of sides is one class, unless sides share letters.
+    let classes = |stable_only: bool| -> BTreeSet<Vec<LetterId>> {
+        let wanted = found.iter().filter(|w| w.stable || !stable_only);
+        wanted.map(|w| letter_class(table, &w.word)).collect()
+    };
+    let (all, stable) = (classes(false), classes(true));
+    let count = |set: &BTreeSet<Vec<LetterId>>, length: usize| {
+        set.iter().filter(|class| class.len() == length).count()
+    };
     let by_length = (1..=options.length)
-        .map(|length| {
-            let here = || found.iter().filter(|w| w.word.len() == length);
-            ByLength {
-                length,
-                classes: (!options.stable_only).then(|| here().count()),
-                stable: here().filter(|w| w.stable).count(),
-            }
+        .map(|length| ByLength {
+            length,
+            classes: (!options.stable_only).then(|| count(&all, length)),
+            stable: count(&stable, length),
         })
         .collect();
     PeriodicRecord {
@@ -145,7 +157,7 @@ fn record(table: &Table, found: &[PeriodicWord], options: &PeriodicOptions) -> P
         title: table.title().into(),
         length: options.length,
         stable_only: options.stable_only,
-        complete: true,
+        complete: table.holes() == 0,
         form: Exact::new(table.form()),
         by_length,
         words: found.iter().map(|w| listed(table, w)).collect(),

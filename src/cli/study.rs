@@ -1,6 +1,6 @@
 //! `reboundary study`.
 
-use super::arguments::StudyOptions;
+use super::arguments::{SHORTEST_STUDY, StudyOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
 use super::progress::{Progress, interruptible_control};
@@ -11,7 +11,7 @@ use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 
 pub fn run(options: &StudyOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let out = options
         .out
         .clone()
@@ -27,9 +27,9 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         )));
     }
     let request = Request {
-        length: options
-            .length
-            .or(options.graph_order.map(|order| order + 1)),
+        length: options.length.or(options
+            .graph_order
+            .map(|order| (order + 1).max(SHORTEST_STUDY))),
         radii: options.radii,
         arithmetic: options.exactness.arithmetic(),
         memory: options.budget_memory,
@@ -50,6 +50,8 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
     let extras = Extras {
         table_file: &loaded.text,
         notices: &loaded.notices,
+        parameters: &loaded.parameters,
+        bases: &loaded.bases,
         command: &command,
         graph_order: options.graph_order,
         arithmetic: request.arithmetic,
@@ -72,6 +74,15 @@ fn command(options: &StudyOptions, results: &Results) -> String {
     );
     if let Some(order) = options.graph_order {
         command.push_str(&format!(" --graph-order {order}"));
+    }
+    for setting in &options.settings.set {
+        let plain = |c: char| c.is_ascii_alphanumeric() || "=/.+-_".contains(c);
+        if setting.chars().all(plain) {
+            command.push_str(&format!(" --set {setting}"));
+        } else {
+            // An expression holds no quotes.
+            command.push_str(&format!(" --set '{setting}'"));
+        }
     }
     if options.exactness.exact_only {
         command.push_str(" --exact-only");

@@ -16,7 +16,7 @@ struct TableRecord {
 }
 
 pub fn run(options: &TableOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.quiet)?;
     let summary = summary(&loaded.table, &facts(&loaded.table));
     emit(options.out.as_deref(), |out| match options.format {
         Format::Text => write_text(&summary, out),

@@ -1,7 +1,7 @@
 //! `reboundary trace`.
 
 use super::fault::Fault;
-use super::launch::{Launcher, fault};
+use super::launch::{Launcher, fault, side_name};
 use super::orbit_arguments::{TraceFormat, TraceOptions};
 use super::orbit_picture::{draw_orbit, draw_unfolding};
 use super::output::{emit, note, read_table, write_json};
@@ -13,7 +13,7 @@ use crate::orbit::path::{Limits, Path, PathEnd, follow};
 use crate::orbit::{Start, TraceTables};
 use crate::run::files::write_whole;
 use crate::study::folder::spell_code;
-use crate::table::{Table, Vector};
+use crate::table::{SideId, Table, Vector};
 
 /// What a trace found, with what is needed to write and draw it.
 pub struct Traced {
@@ -59,7 +59,7 @@ enum Launch {
 }
 
 fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
-    let loaded = read_table(&options.table, options.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.quiet)?;
     let (table, launch, distance) = launch(options, &loaded.table)?;
     let tables = TraceTables::new(&table);
     let refused = |text: String| Fault::BadInput(text);
@@ -141,7 +141,7 @@ fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Optio
         if !options.quiet {
             note(&format!(
                 "the random start is --start {}@{} --aim {},{}",
-                table.letters()[start.side.0 as usize],
+                side_name(table, start.side),
                 start.fraction,
                 start.aim.x,
                 start.aim.y
@@ -182,7 +182,7 @@ fn point_fault(table: &Table, text: &str, refused: PointFault) -> Fault {
     let help = match refused {
         PointFault::OnSide(side) => format!(
             "start on the side with --start {}@FRACTION",
-            table.letters()[side.0 as usize]
+            side_name(table, side)
         ),
         _ => "write a point strictly inside the table; `reboundary table` lists its corners".into(),
     };
@@ -201,13 +201,12 @@ fn describe(traced: &Traced) -> Vec<String> {
     }
     match traced.end {
         PathEnd::Corner(corner) => {
-            let k = table.sides();
-            let (before, after) = ((corner.0 as usize + k - 1) % k, corner.0 as usize);
+            let before = SideId(table.before(corner.0 as usize) as u8);
             notes.push(format!(
                 "the orbit runs into corner {} (between sides {} and {}) after {letters} {}{}, and ends there",
                 corner.0,
-                table.letters()[before],
-                table.letters()[after],
+                table.letter(before),
+                table.letter(SideId(corner.0)),
                 if letters == 1 { "hit" } else { "hits" },
                 if traced.from.is_some() { "" } else { ", the start included" },
             ))

@@ -46,7 +46,7 @@ pub struct TraceRecord {
 fn hit(table: &Table, number: usize, state: &State) -> Hit {
     Hit {
         hit: number,
-        side: table.letters()[state.side.0 as usize].to_string(),
+        side: table.letter(state.side).to_string(),
         fraction: Exact::new(&state.fraction),
         point: ExactVector::new(&state.point),
         direction: ExactVector::new(&state.direction),

@@ -16,7 +16,7 @@ use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 
 pub fn run(options: &WordsOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, options.common.quiet)?;
+    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let (mesh, length) = (Mesh::new(table), options.length);
     let engine = AnyEngine::new(table, length, options.exactness.arithmetic());
@@ -42,7 +42,8 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
     })
 }
 
-/// Words of all lengths up to one, counted by fans.
+/// Words of all lengths up to one, counted by fans. When a word is a bundle of beams this is the number of
+/// beams: enough for the memory, and for the progress.
 fn total_words(
     table: &Table,
     engine: &AnyEngine,

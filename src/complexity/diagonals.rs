@@ -59,10 +59,21 @@ pub fn count(
     most: usize,
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
-    let (counters, tiers) = with_engine!(engine, engine => {
-        let (counters, tiers) = walk_fans(engine, mesh, most, control, || Counter(vec![0; most + 1]))?;
-        (counters, tiers)
-    });
+    with_engine!(engine, engine => count_with(engine, mesh, most, control))
+}
+
+/// The same on a given engine.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn count_with<E: Engine>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let new = || Counter(vec![0; most + 1]);
+    let (counters, tiers) = walk_fans(engine, mesh, most, control, new)?;
     let mut n = vec![0; most + 1];
     for counter in counters {
         for (sum, part) in n.iter_mut().zip(&counter.0) {

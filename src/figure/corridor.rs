@@ -19,6 +19,8 @@ use super::{Caption, FigureError, check_points};
 pub struct Corridor {
     /// The copies of the table in the order in which they are crossed. Up to about 30 stay legible.
     pub copies: Vec<Vec<[f64; 2]>>,
+    /// The holes of all copies.
+    pub holes: Vec<Vec<[f64; 2]>>,
     /// The crossed sides: both ends and the letter.
     pub gates: Vec<([f64; 2], [f64; 2], String)>,
     /// The beam as polygons.
@@ -56,6 +58,7 @@ impl Corridor {
         };
         Corridor {
             copies: all(&self.copies),
+            holes: all(&self.holes),
             gates: self
                 .gates
                 .iter()
@@ -125,11 +128,14 @@ pub(crate) fn compose_corridor(corridor: &Corridor) -> Result<(Canvas, Point), F
     for copy in &level.copies {
         canvas.fill(&frame.pixels(copy), PAPER, 1.0);
     }
+    for hole in &level.holes {
+        canvas.fill(&frame.pixels(hole), WHITE, 1.0);
+    }
     let beam: Vec<Vec<Point>> = level.beam.iter().map(|part| frame.pixels(part)).collect();
     for part in &beam {
         canvas.fill(part, INKS[5], 0.4);
     }
-    for copy in &level.copies {
+    for copy in level.copies.iter().chain(&level.holes) {
         canvas.outline(&frame.pixels(copy), PALE, THIN_STROKE);
     }
     for part in &beam {

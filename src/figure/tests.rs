@@ -227,6 +227,7 @@ fn strip(count: usize) -> Corridor {
     let gate = |i: f64| ([i, 0.0], [i, 1.0], "d".to_owned());
     let end = count as f64;
     Corridor {
+        holes: Vec::new(),
         copies: (0..count).map(|i| square(i as f64)).collect(),
         gates: (1..count).map(|i| gate(i as f64)).collect(),
         beam: vec![vec![

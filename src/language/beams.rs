@@ -6,7 +6,7 @@ use crate::table::{CornerId, SideId, Vector};
 use crate::unfold::engine::{AnyEngine, Engine, Trail};
 use crate::unfold::{Mesh, with_engine};
 
-/// A word and the cell of lines that produce it.
+/// The sides of a word and the cell of lines that hit them in this order, one beam of the word.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct WordBeam {
     /// The starting side, then each side crossed.
@@ -43,7 +43,8 @@ impl<E: Engine> Visitor<E> for Collector {
     }
 }
 
-/// The beams of all words of a length, in lexicographic order.
+/// The beams of all words of a length, the words in lexicographic order. When sides share letters or the table
+/// has holes, a word may have several.
 ///
 /// Memory: a word, and two exact numbers for each of about four corner images, for each word.
 ///

@@ -257,7 +257,10 @@ impl<E: Engine> Visitor<E> for Sums {
         let measure = inherited.unwrap_or_else(|| enclosed_measure(visit, trail, precision));
         self.sums[n - 1].add_assign(&measure);
         if n == self.kept {
-            self.kept_measures.push(measure.clone());
+            match self.kept_measures.last_mut() {
+                Some(word) if !visit.first => word.add_assign(&measure),
+                _ => self.kept_measures.push(measure.clone()),
+            }
         }
         self.current[n] = Some(measure);
     }

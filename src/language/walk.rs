@@ -1,6 +1,8 @@
 //! The depth-first walk over all beams of a table.
 //!
-//! A beam after n − 1 crossings is a word of length n. The walk visits the words of a subtree in
+//! In a polygon without holes whose sides have letters of their own, a beam after n − 1 crossings is a word of
+//! length n. In other tables a word is a bundle of beams, which [`bundle`](super::bundle) walks; then the beams
+//! of one word are visited one after another, and the first of them is marked. The walk visits the words of a subtree in
 //! lexicographic order, so a visitor that appends what it sees to a list per length gets every level in
 //! order. Only the beams on the way down and their unvisited siblings are in memory: O(longest · k) cells.
 //!
@@ -8,11 +10,12 @@
 //! their subtrees are then walked by any number of threads, and their results joined in order. So nothing
 //! depends on the number of threads.
 
+use super::bundle;
 use super::tree::{Language, LanguageFault, WordId};
 use crate::number::Tiers;
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
-use crate::table::SideId;
+use crate::table::{LetterId, SideId};
 use crate::unfold::beam::{self, Front, Spread};
 use crate::unfold::engine::AnyEngine;
 use crate::unfold::engine::{Engine, Trail};
@@ -20,31 +23,33 @@ use crate::unfold::{Mesh, with_engine};
 use rayon::prelude::*;
 use thiserror::Error;
 
-/// A word with its beam, as a visitor sees it.
+/// A word with its beam, or with one beam of its bundle, as a visitor sees it.
 #[derive(Debug)]
 pub struct Visit<'a, E: Engine> {
     /// The engine that placed the corner images.
     pub engine: &'a E,
     /// Length of the word, at least 1.
     pub length: usize,
-    /// Its first letter, the side that the lines start on.
+    /// The side that the lines start on.
     pub start: SideId,
-    /// Its last letter.
-    pub letter: SideId,
+    /// The word's last letter.
+    pub letter: LetterId,
+    /// True for the first beam of a word, the only one when a word is one beam. Others follow at once.
+    pub first: bool,
     /// How many of the cell's corner images are left ones.
     pub lefts: usize,
     /// The beam's cell: see [`beam`].
     pub cell: &'a [E::Point],
-    /// False when the cell is the same as that of the word without its last letter.
+    /// False when the word is one beam with the same cell as the word without its last letter.
     pub cut: bool,
     /// The word without its last letter, by its number among the words of that length in this part of
     /// the walk. A subtree's root has number 0.
     pub parent: WordId,
 }
 
-/// Sees every word of a part of the language, in lexicographic order.
+/// Sees every word of a part of the language, in lexicographic order of the letters.
 pub trait Visitor<E: Engine>: Send {
-    /// Called for each word. The trail holds the word's crossings.
+    /// Called for each beam of each word. The trail holds the word's crossings.
     fn visit(&mut self, visit: &Visit<'_, E>, trail: &mut Trail<E::Exact>);
 }
 
@@ -67,7 +72,7 @@ struct Seed<E: Engine> {
 }
 
 /// Subtrees to aim for when the work is divided.
-const SUBTREES: usize = 256;
+pub(super) const SUBTREES: usize = 256;
 
 /// Walks all words of length 1 … `longest`. The first visitor sees the words up to the length where the
 /// work is divided, level by level; each other visitor sees one subtree, its root excluded.
@@ -88,6 +93,9 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
         longest <= engine.deepest() + 1,
         "the engine must reach the longest word"
     );
+    if !mesh.has_one_beam_a_word() {
+        return bundle::walk(engine, mesh, longest, control, new_visitor);
+    }
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
     let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
@@ -111,6 +119,13 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     Ok((visitors, tiers))
 }
 
+/// All sides in the order of their letters.
+pub(super) fn sides_by_letter(mesh: &Mesh) -> Vec<SideId> {
+    let mut sides: Vec<SideId> = (0..mesh.side_count()).map(|s| SideId(s as u8)).collect();
+    sides.sort_by_key(|side| (mesh.letter(*side), *side));
+    sides
+}
+
 /// Follows all beams level by level until there are enough, showing them to the visitor. Returns them with
 /// their word length.
 fn divide<E: Engine, V: Visitor<E>>(
@@ -127,14 +142,15 @@ fn divide<E: Engine, V: Visitor<E>>(
         return Ok((seeds, 0));
     }
     let mut trail = engine.trail(None);
-    for side in (0..mesh.side_count()).map(|s| SideId(s as u8)) {
+    for side in sides_by_letter(mesh) {
         let (front, cell) = beam::start(engine, mesh, side);
         visitor.visit(
             &Visit {
                 engine,
                 length: 1,
                 start: side,
-                letter: side,
+                letter: mesh.letter(side),
+                first: true,
                 lefts: front.lefts,
                 cell: &cell,
                 cut: true,
@@ -167,7 +183,8 @@ fn divide<E: Engine, V: Visitor<E>>(
                         engine,
                         length: length + 1,
                         start: seed.start,
-                        letter: piece.side,
+                        letter: mesh.letter(piece.side),
+                        first: true,
                         lefts: piece.lefts,
                         cell,
                         cut: piece.cut,
@@ -237,7 +254,8 @@ fn walk_subtree<E: Engine, V: Visitor<E>>(
                 engine,
                 length,
                 start: seed.start,
-                letter: waiting.side,
+                letter: mesh.letter(waiting.side),
+                first: true,
                 lefts: waiting.front.lefts,
                 cell,
                 cut: waiting.cut,
@@ -303,6 +321,9 @@ struct Grower {
 impl<E: Engine> Visitor<E> for Grower {
     #[inline]
     fn visit(&mut self, visit: &Visit<'_, E>, _: &mut Trail<E::Exact>) {
+        if !visit.first {
+            return;
+        }
         let n = visit.length;
         if self.levels.len() < n {
             self.levels.resize_with(n, Default::default);
@@ -346,7 +367,7 @@ fn grow_with<E: Engine>(
 ) -> Result<(Language, Tiers), GrowthFault> {
     let (growers, tiers) = walk_beams(engine, mesh, longest, control, |_| Grower::default())?;
     let levels = join(growers.into_iter().map(|g| g.levels).collect())?;
-    Ok((Language::from_levels(mesh.side_count(), levels)?, tiers))
+    Ok((Language::from_levels(mesh.letter_count(), levels)?, tiers))
 }
 
 /// Letters and parents of one level.
@@ -387,7 +408,7 @@ impl<E: Engine> Visitor<E> for Counter {
         if self.0.len() <= visit.length {
             self.0.resize(visit.length + 1, 0);
         }
-        self.0[visit.length] += 1;
+        self.0[visit.length] += u64::from(visit.first);
     }
 }
 

@@ -111,37 +111,13 @@ impl Real {
 
     /// The sign; always decided.
     pub fn sign(&self) -> Sign {
-        if self.coordinates.len() == 1 {
-            return self.coordinates[0].cmp0().into();
-        }
-        if self.is_zero() {
-            return Sign::Zero;
-        }
-        // A nonzero number is at a positive distance from zero, so doubling the precision ends.
-        let mut precision = 64;
-        loop {
-            if let Some(sign) = self.numerator_enclosure(precision).sign() {
-                return sign;
-            }
-            precision *= 2;
-        }
-    }
-
-    fn numerator_enclosure(&self, precision: u32) -> Enclosure {
-        let powers = self.field.powers(precision);
-        let mut sum = Enclosure::zero(precision);
-        for (c, power) in self.coordinates.iter().zip(powers.iter()) {
-            if *c != 0 {
-                sum.add_assign(&power.mul_integer(c));
-            }
-        }
-        sum
+        sign_of_coordinates(&self.field, &self.coordinates)
     }
 
     /// An interval that holds the number, with bounds of `precision` bits. The width is relative to the
     /// largest term c_i·θ^i, so cancellation makes it wider; see [`Real::enclosure_within`].
     pub fn enclosure(&self, precision: u32) -> Enclosure {
-        self.numerator_enclosure(precision).div_integer(&self.den)
+        enclose_coordinates(&self.field, &self.coordinates, precision).div_integer(&self.den)
     }
 
     /// An interval of width at most 2^−bits that holds the number.
@@ -367,6 +343,35 @@ impl Real {
             Integer::from(&self.den * &other.den),
         )
     }
+}
+
+/// The sign of Σ coordinates[i]·θ^i; always decided.
+pub(crate) fn sign_of_coordinates(field: &Field, coordinates: &[Integer]) -> Sign {
+    if coordinates.len() == 1 {
+        return coordinates[0].cmp0().into();
+    }
+    if coordinates.iter().all(|c| *c == 0) {
+        return Sign::Zero;
+    }
+    // A nonzero number is at a positive distance from zero, so doubling the precision ends.
+    let mut precision = 64;
+    loop {
+        if let Some(sign) = enclose_coordinates(field, coordinates, precision).sign() {
+            return sign;
+        }
+        precision *= 2;
+    }
+}
+
+fn enclose_coordinates(field: &Field, coordinates: &[Integer], precision: u32) -> Enclosure {
+    let powers = field.powers(precision);
+    let mut sum = Enclosure::zero(precision);
+    for (c, power) in coordinates.iter().zip(powers.iter()) {
+        if *c != 0 {
+            sum.add_assign(&power.mul_integer(c));
+        }
+    }
+    sum
 }
 
 /// Product of two coordinate vectors as polynomials in θ, not yet reduced.

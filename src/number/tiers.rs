@@ -44,6 +44,10 @@ pub struct Tiers {
     pub float: u64,
     /// Machine integers (finite reflection group).
     pub integer: u64,
+    /// A zero proved by a symmetry of the path.
+    pub symmetry: u64,
+    /// Enclosures of a few hundred bits.
+    pub enclosure: u64,
     /// Integers of any size.
     pub big: u64,
 }
@@ -53,11 +57,13 @@ impl Tiers {
     pub fn absorb(&mut self, other: Tiers) {
         self.float += other.float;
         self.integer += other.integer;
+        self.symmetry += other.symmetry;
+        self.enclosure += other.enclosure;
         self.big += other.big;
     }
 
     /// All decisions.
     pub fn total(&self) -> u64 {
-        self.float + self.integer + self.big
+        self.float + self.integer + self.symmetry + self.enclosure + self.big
     }
 }

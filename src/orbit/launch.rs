@@ -43,7 +43,7 @@ pub enum FirstHit {
 pub fn check_inside(table: &Table, point: &Vector) -> Result<(), PointFault> {
     let mut inside = false;
     for side in 0..table.sides() {
-        let (a, b) = (table.corner(side), table.corner(side + 1));
+        let (a, b) = (table.corner(side), table.corner(table.after(side)));
         if point == a {
             return Err(PointFault::OnCorner(CornerId(side as u8)));
         }
@@ -89,7 +89,7 @@ pub fn first_hit(table: &Table, point: &Vector, aim: &Vector) -> Result<FirstHit
     };
     for side in 0..table.sides() {
         let to_first = table.corner(side).minus(point);
-        let to_second = table.corner(side + 1).minus(point);
+        let to_second = table.corner(table.after(side)).minus(point);
         let (first, second) = (aim.cross(&to_first), aim.cross(&to_second));
         if first.is_zero() {
             let way = to_first.dot(aim, form) / &squared;
@@ -121,7 +121,7 @@ fn way(hit: &FirstHit) -> &Real {
 
 /// A direction after bouncing off a side.
 fn reflected(table: &Table, side: usize, direction: &Vector) -> Vector {
-    let (a, b) = (table.corner(side), table.corner(side + 1));
+    let (a, b) = (table.corner(side), table.corner(table.after(side)));
     Isometry::reflection(a, b, table.form()).turn(direction, table.form())
 }
 

@@ -33,6 +33,8 @@ pub struct LineTables {
     form: Real,
     reflections: Vec<Isometry>,
     corners: Vec<Vector>,
+    /// Where each side ends.
+    ends: Vec<usize>,
     wide_form: Enclosure,
     wide_reflections: Vec<[Enclosure; 4]>,
     wide_corners: Vec<[Enclosure; 2]>,
@@ -78,6 +80,7 @@ impl LineTables {
             form,
             reflections,
             corners,
+            ends: (0..table.sides()).map(|side| table.after(side)).collect(),
         }
     }
 
@@ -237,7 +240,7 @@ impl ExactLine {
     /// # Panics
     /// If the line is parallel to the side.
     pub fn fraction_on(&self, tables: &LineTables, side: usize) -> Real {
-        let next = (side + 1) % tables.corners.len();
+        let next = tables.ends[side];
         let (first, second) = (self.offset(tables, side), self.offset(tables, next));
         &first / &(&first - &second)
     }

@@ -26,6 +26,11 @@
 //! at odd as at even places; an odd word, which doubled has this property, always does (Galperin, Stepin,
 //! Vorobets, Russian Math. Surveys 47 (1992)). For then P is a translation whatever the angles are.
 //!
+//! **Words of sides.** All of this is about words of sides. When sides share a letter, several of them may have one
+//! class of letters: [`letter_class`]. On a table with holes a line and its mirror image in the axis of an odd word may
+//! pass a hole on different sides; then the word doubled can close though the axis runs into the hole. Such orbits,
+//! whose word of sides is a square, are not found, so on tables with holes the list may be incomplete.
+//!
 //! Cost: one beam step for each prenecklace of the language, roughly p(1) + … + p(n) divided by n; an exact
 //! test for the words whose angles may close, linear in n for a finite reflection group and quadratic
 //! otherwise.
@@ -38,7 +43,7 @@ use super::trace::Start;
 use crate::number::Real;
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
-use crate::table::{SideId, Table, Vector};
+use crate::table::{LetterId, SideId, Table, Vector};
 use crate::unfold::beam::{self, Front, Spread};
 use crate::unfold::engine::{AnyEngine, Engine, Trail};
 use crate::unfold::{Mesh, with_engine};
@@ -70,7 +75,7 @@ impl PeriodicWord {
         let offset = |corner: usize| {
             direction.cross(&table.corner(corner).minus(origin)) - &self.closing.strip.middle
         };
-        let (first, second) = (offset(side), offset(side + 1));
+        let (first, second) = (offset(side), offset(table.after(side)));
         Start {
             side: self.word[0],
             fraction: &first / &(&first - &second),
@@ -262,7 +267,6 @@ impl<E: Engine> Search<'_, E> {
                 walker.trail.cross(node.letters - 2, node.side);
             }
             if node.letters <= self.longest {
-                let before = stack.len();
                 self.follow(&mut walker, node.period, &node.front, &cell, |child| {
                     points.extend_from_slice(child.cell);
                     stack.push(Node {
@@ -273,7 +277,6 @@ impl<E: Engine> Search<'_, E> {
                         edges: child.cell.len(),
                     });
                 });
-                debug_assert!(stack.len() - before <= self.mesh.side_count());
             }
             steps += 1;
             if steps.is_multiple_of(STEPS_PER_TICK) {
@@ -375,6 +378,19 @@ struct Child<'a, E: Engine> {
     cell: &'a [E::Point],
 }
 
+/// The class of a word of sides as a word of letters: the shortest word of which its spelling is a power, at its least
+/// cyclic shift, forward or backward.
+pub fn letter_class(table: &Table, word: &[SideId]) -> Vec<LetterId> {
+    let spelled: Vec<LetterId> = word.iter().map(|s| table.letter_id(*s)).collect();
+    let n = spelled.len();
+    let root = (1..=n)
+        .find(|p| n.is_multiple_of(*p) && (*p..n).all(|i| spelled[i] == spelled[i - p]))
+        .unwrap_or(n);
+    let forward = &spelled[..root];
+    let backward: Vec<LetterId> = forward.iter().rev().copied().collect();
+    least_rotation(forward).min(least_rotation(&backward))
+}
+
 /// True when each side occurs as often at odd as at even places.
 pub fn is_balanced(word: &[SideId]) -> bool {
     let mut excess = std::collections::BTreeMap::new();
@@ -386,9 +402,12 @@ pub fn is_balanced(word: &[SideId]) -> bool {
 
 /// The least cyclic shift of the word read backwards.
 fn least_rotation_of_reversed(word: &[SideId]) -> Vec<SideId> {
-    let mut reversed: Vec<SideId> = word.to_vec();
-    reversed.reverse();
-    let twice = [&reversed[..], &reversed[..]].concat();
+    let reversed: Vec<SideId> = word.iter().rev().copied().collect();
+    least_rotation(&reversed)
+}
+
+fn least_rotation<T: Ord + Copy>(word: &[T]) -> Vec<T> {
+    let twice = [word, word].concat();
     (0..word.len())
         .map(|shift| &twice[shift..shift + word.len()])
         .min()

@@ -5,7 +5,7 @@
 //! other, orbits do not. So one number is taken from each orbit (the share of its places that show the block, or its mean
 //! chord), and the standard error of their mean is that of independent numbers.
 
-use crate::table::{SideId, Table};
+use crate::table::{LetterId, SideId, Table};
 use std::collections::BTreeMap;
 
 /// Sums over orbits of a number per orbit.
@@ -57,7 +57,7 @@ impl Estimate {
 #[derive(Clone, Debug, PartialEq)]
 pub struct OrbitShares {
     /// For each block met: the share of places that show it.
-    blocks: Vec<(Vec<SideId>, f64)>,
+    blocks: Vec<(Vec<LetterId>, f64)>,
     mean_chord: f64,
 }
 
@@ -65,15 +65,15 @@ pub struct OrbitShares {
 ///
 /// # Panics
 /// If the word has fewer than two letters or than `longest`.
-pub fn orbit_shares(word: &[SideId], longest: usize, path_length: f64) -> OrbitShares {
+pub fn orbit_shares(word: &[LetterId], longest: usize, path_length: f64) -> OrbitShares {
     assert!(word.len() >= longest.max(2), "a word has each block length");
-    let mut counts: BTreeMap<&[SideId], u64> = BTreeMap::new();
+    let mut counts: BTreeMap<&[LetterId], u64> = BTreeMap::new();
     for length in 1..=longest {
         for block in word.windows(length) {
             *counts.entry(block).or_default() += 1;
         }
     }
-    let share = |(block, count): (&[SideId], u64)| {
+    let share = |(block, count): (&[LetterId], u64)| {
         let places = word.len() - block.len() + 1;
         (block.to_vec(), count as f64 / places as f64)
     };
@@ -87,7 +87,7 @@ pub fn orbit_shares(word: &[SideId], longest: usize, path_length: f64) -> OrbitS
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Statistics {
     orbits: u64,
-    blocks: BTreeMap<Vec<SideId>, Sums>,
+    blocks: BTreeMap<Vec<LetterId>, Sums>,
     chord: Sums,
 }
 
@@ -112,13 +112,13 @@ impl Statistics {
     }
 
     /// The frequency of a block; `None` before two orbits.
-    pub fn block(&self, block: &[SideId]) -> Option<Estimate> {
+    pub fn block(&self, block: &[LetterId]) -> Option<Estimate> {
         let sums = self.blocks.get(block).copied().unwrap_or_default();
         (self.orbits >= 2).then(|| sums.estimate(self.orbits))
     }
 
     /// The blocks met.
-    pub fn blocks(&self) -> impl Iterator<Item = &[SideId]> {
+    pub fn blocks(&self) -> impl Iterator<Item = &[LetterId]> {
         self.blocks.keys().map(Vec::as_slice)
     }
 }
@@ -127,6 +127,8 @@ impl Statistics {
 #[derive(Debug)]
 pub struct PathMeter {
     corners: Vec<[f64; 2]>,
+    /// Where each side ends.
+    ends: Vec<usize>,
     root_form: f64,
 }
 
@@ -140,6 +142,7 @@ impl PathMeter {
                 .iter()
                 .map(|c| [c.x.to_f64(), c.y.to_f64() * root_form])
                 .collect(),
+            ends: (0..table.sides()).map(|side| table.after(side)).collect(),
             root_form,
         }
     }
@@ -149,7 +152,7 @@ impl PathMeter {
     pub fn path_length(&self, start: &super::Start, word: &[SideId]) -> f64 {
         let ends = |side: SideId| {
             let a = self.corners[side.0 as usize];
-            (a, self.corners[(side.0 as usize + 1) % self.corners.len()])
+            (a, self.corners[self.ends[side.0 as usize]])
         };
         let (a, b) = ends(start.side);
         let t = start.fraction.to_f64();

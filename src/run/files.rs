@@ -26,6 +26,12 @@ pub enum OutputFault {
         /// The folder.
         path: PathBuf,
     },
+    /// A file was asked for where a folder is.
+    #[error("{} is a folder; choose the name of a file for --out", path.display())]
+    IsFolder {
+        /// The folder.
+        path: PathBuf,
+    },
     /// The place for the output does not exist.
     #[error("there is no folder {}; make it first or choose another --out", path.display())]
     NoParent {
@@ -55,6 +61,9 @@ pub fn write_whole(
     fill: impl FnOnce(&mut dyn Write) -> io::Result<()>,
 ) -> Result<(), OutputFault> {
     let folder = parent(path)?;
+    if path.is_dir() {
+        return Err(OutputFault::IsFolder { path: path.into() });
+    }
     let fault = |source| OutputFault::System {
         path: path.into(),
         source,

@@ -14,6 +14,7 @@ use crate::language::WordId;
 use crate::language::beams::beams_of_length;
 use crate::run::files::{OutputFault, ResultFolder};
 use crate::run::{Control, Stopped};
+use crate::table::file::{BaseFile, Parameter};
 use crate::table::summary::{ExactVector, root_decimal};
 use crate::table::{SideId, Table};
 use crate::unfold::Mesh;
@@ -39,6 +40,10 @@ pub struct Extras<'a> {
     pub table_file: &'a str,
     /// Notices about the input.
     pub notices: &'a [String],
+    /// The parameters of the table file, as set.
+    pub parameters: &'a [Parameter],
+    /// The table files that it stands on.
+    pub bases: &'a [BaseFile],
     /// The command that reproduces the study.
     pub command: &'a str,
     /// Order of the exported factor graph; `None` for the largest with at most 2000 vertices.
@@ -107,8 +112,9 @@ pub fn write(
         radii: results.graphs.first().map_or(0, |g| g.path_balls.len()),
         graph_order: order,
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
+        parameters: extras.parameters.to_vec(),
     };
-    let record = record(results, extras.table_file, options);
+    let record = record(results, extras.table_file, options, extras.bases);
     folder.write("report.html", |out| {
         let page = report(results, &record, &drawn, &listed, extras);
         out.write_all(page.as_bytes())
@@ -160,7 +166,10 @@ fn write_complexity(results: &Results, out: &mut dyn Write) -> io::Result<()> {
                 .diagonals
                 .get(n)
                 .map_or(String::new(), u64::to_string),
-            results.p_by_diagonals[n].to_string(),
+            results
+                .p_by_diagonals
+                .as_ref()
+                .map_or(String::new(), |p| p[n].to_string()),
         ])?;
     }
     csv.flush()
@@ -245,7 +254,7 @@ pub fn write_diagonals(table: &Table, listed: &[Diagonal], out: &mut dyn Write) 
 
 /// A sequence of sides in the letters of the table.
 pub fn spell_code(table: &Table, code: &[SideId]) -> String {
-    code.iter().map(|s| table.letters()[s.0 as usize]).collect()
+    code.iter().map(|s| table.letter(*s)).collect()
 }
 
 /// L_N, one word a line, in the order of the letters.

@@ -5,11 +5,11 @@
 use super::results::Results;
 use crate::complexity::growth::{cubic_range, over_cube};
 use crate::figure::{
-    Caption, CellShape, Cells, Chart, Corridor, FigureError, Mark, Scale, Series, TableShape,
-    cells_picture, corridor_picture, draw_chart, shade_apart, table_picture,
+    Caption, CellShape, Cells, Chart, Corridor, FigureError, HoleShape, Mark, Scale, Series,
+    TableShape, cells_picture, corridor_picture, draw_chart, shade_apart, table_picture,
 };
 use crate::language::beams::WordBeam;
-use crate::table::{Table, Vector};
+use crate::table::{SideId, Table, Vector};
 use crate::unfold::isometry::{Isometry, side_reflections};
 use nalgebra::Vector2;
 use std::f64::consts::PI;
@@ -247,22 +247,26 @@ fn root_form(table: &Table) -> f64 {
 /// The table as a figure takes it.
 pub fn shape(table: &Table) -> TableShape {
     let root = root_form(table);
-    TableShape {
-        corners: table
-            .corners()
-            .iter()
-            .map(|c| array(flat(c, root)))
+    let ring = |ring: std::ops::Range<usize>| HoleShape {
+        corners: ring
+            .clone()
+            .map(|i| array(flat(table.corner(i), root)))
             .collect(),
-        letters: table.letters().iter().map(char::to_string).collect(),
-        ..TableShape::default()
+        letters: ring
+            .map(|i| table.letter(SideId(i as u8)).to_string())
+            .collect(),
+    };
+    let mut rings = table.rings().map(ring);
+    let HoleShape { corners, letters } = rings.next().expect("the outline");
+    TableShape {
+        corners,
+        letters,
+        holes: rings.collect(),
     }
 }
 
 fn spell(table: &Table, beam: &WordBeam) -> String {
-    beam.word
-        .iter()
-        .map(|s| table.letters()[s.0 as usize])
-        .collect()
+    beam.word.iter().map(|s| table.letter(*s)).collect()
 }
 
 /// The beam that shows most: among the words with the most different letters the one whose cell has the most
@@ -282,19 +286,25 @@ fn corridor_shape(table: &Table, beam: &WordBeam) -> Corridor {
     let reflections = side_reflections(&home);
     let mut pose = Isometry::identity();
     let place = |pose: &Isometry, i: usize| flat(&pose.apply(home.corner(i), home.form()), root);
-    let letter = |side: usize| table.letters()[side].to_string();
+    let letter = |side: SideId| table.letter(side).to_string();
     let mut corridor = Corridor::default();
     let mut gates = Vec::new();
     for (i, side) in beam.word.iter().enumerate() {
         let s = side.0 as usize;
-        gates.push((place(&pose, s), place(&pose, s + 1)));
+        gates.push((place(&pose, s), place(&pose, home.after(s))));
         if i > 0 {
             pose = pose.after(&reflections[s], home.form());
         }
         // The last letter is the side where the word ends: the copy beyond it is not entered.
         if i + 1 < beam.word.len() {
-            let copy = (0..home.sides()).map(|c| array(place(&pose, c)));
-            corridor.copies.push(copy.collect());
+            for (r, ring) in home.rings().enumerate() {
+                let copy = ring.map(|c| array(place(&pose, c))).collect();
+                if r == 0 {
+                    corridor.copies.push(copy);
+                } else {
+                    corridor.holes.push(copy);
+                }
+            }
         }
     }
     let images: Vec<Point> = beam.images.iter().map(|v| flat(v, root)).collect();
@@ -305,7 +315,7 @@ fn corridor_shape(table: &Table, beam: &WordBeam) -> Corridor {
     corridor.gates = gates
         .into_iter()
         .zip(&beam.word)
-        .map(|((from, to), side)| (array(from), array(to), letter(side.0 as usize)))
+        .map(|((from, to), side)| (array(from), array(to), letter(*side)))
         .collect();
     corridor
 }
@@ -367,12 +377,23 @@ fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
     let k = corners.len();
     let mut at = vec![0.0];
     for i in 0..k {
-        at.push(at[i] + (corners[(i + 1) % k] - corners[i]).norm());
+        at.push(at[i] + (corners[home.after(i)] - corners[i]).norm());
     }
+    // Where one ring ends and the next begins, both corners meet on the axis.
+    let mark = |i: usize| match home.rings().find(|ring| ring.end == i) {
+        Some(ring) if i < k => format!("{}|{i}", ring.start),
+        Some(ring) => ring.start.to_string(),
+        None => i.to_string(),
+    };
     let mut cells = Cells {
-        boundary_marks: (0..=k).map(|i| (at[i], (i % k).to_string())).collect(),
+        boundary_marks: (0..=k).map(|i| (at[i], mark(i))).collect(),
         side_labels: (0..k)
-            .map(|i| ((at[i] + at[i + 1]) / 2.0, table.letters()[i].to_string()))
+            .map(|i| {
+                (
+                    (at[i] + at[i + 1]) / 2.0,
+                    table.letter(SideId(i as u8)).to_string(),
+                )
+            })
             .collect(),
         width: at[k],
         cells: beams
@@ -384,7 +405,7 @@ fn cell_shapes(table: &Table, beams: &[WordBeam]) -> Cells {
                     outline: cell_outline(
                         &images,
                         beam.lefts,
-                        (corners[side], corners[(side + 1) % k]),
+                        (corners[side], corners[home.after(side)]),
                         at[side],
                     ),
                     word: spell(table, beam),

@@ -10,6 +10,7 @@ use crate::factor_graph::criterion::LineFigures;
 use crate::factor_graph::export::spell;
 use crate::language::WordId;
 use crate::number::Enclosure;
+use crate::table::file::{BaseFile, Parameter};
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
 
@@ -27,6 +28,8 @@ pub struct Record<'a> {
     pub options: Options,
     /// The text of the table file.
     pub table_file: &'a str,
+    /// The texts of the files that it stands on, the nearest first.
+    pub base_files: Vec<&'a str>,
     /// The table and its facts.
     pub table: TableSummary,
     /// Why the study ended: always `complete` in a finished folder.
@@ -77,6 +80,8 @@ pub struct Options {
     pub graph_order: usize,
     /// True when only big integers may decide.
     pub exact_only: bool,
+    /// The parameters of the table file, as set.
+    pub parameters: Vec<Parameter>,
 }
 
 /// Counts.
@@ -90,10 +95,10 @@ pub struct Complexity<'a> {
     pub second_difference: &'a [i64],
     /// N(0), N(1), …
     pub diagonals: &'a [u64],
-    /// p by generalized diagonals.
-    pub p_by_diagonals: &'a [u64],
-    /// True when both routes give the same p.
-    pub routes_agree: bool,
+    /// p by generalized diagonals; null when they do not lead to it.
+    pub p_by_diagonals: Option<&'a [u64]>,
+    /// True when both routes give the same p; null when only one leads to it.
+    pub routes_agree: Option<bool>,
     /// Extremes of p(n)/n³.
     pub cubic_range: Option<CubicRange>,
 }
@@ -165,13 +170,19 @@ pub fn width(value: &Enclosure) -> String {
 }
 
 /// Gathers the record of a study.
-pub fn record<'a>(results: &'a Results, table_file: &'a str, options: Options) -> Record<'a> {
+pub fn record<'a>(
+    results: &'a Results,
+    table_file: &'a str,
+    options: Options,
+    bases: &'a [BaseFile],
+) -> Record<'a> {
     let n = results.shown_length;
     Record {
         schema: SCHEMA,
         program: Program::this(),
         options,
         table_file,
+        base_files: bases.iter().map(|base| base.text.as_str()).collect(),
         table: summary(&results.table, &results.facts),
         stop: "complete",
         complexity: Complexity {
@@ -179,8 +190,11 @@ pub fn record<'a>(results: &'a Results, table_file: &'a str, options: Options) -
             first_difference: &results.counts.first_difference,
             second_difference: &results.counts.second_difference,
             diagonals: &results.diagonals,
-            p_by_diagonals: &results.p_by_diagonals,
-            routes_agree: results.disagreement.is_none(),
+            p_by_diagonals: results.p_by_diagonals.as_deref(),
+            routes_agree: results
+                .p_by_diagonals
+                .as_ref()
+                .map(|_| results.disagreement.is_none()),
             cubic_range: crate::complexity::growth::cubic_range(
                 &results.counts.p,
                 super::verdict::CUBIC_FROM,

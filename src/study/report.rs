@@ -44,7 +44,12 @@ pub fn report(
          <meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n\
          <title>{title}: coding language to length {n}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n<main>\n\
          <h1>{title}</h1>\n<p class=\"lead\">The complete billiard coding language to length {n}: {words} words of length {n}, \
-         computed with exact arithmetic by two routes.</p>\n",
+         computed with exact arithmetic{routes}.</p>\n",
+        routes = if results.p_by_diagonals.is_some() {
+            " by two routes"
+        } else {
+            ""
+        },
         n = results.length,
         words = results.counts.p[results.length],
     );
@@ -53,6 +58,18 @@ pub fn report(
          <a href=\"#growth\">Growth</a><a href=\"#graphs\">Factor graphs</a><a href=\"#cells\">Beams and measures</a>\
          <a href=\"#diagonals\">Generalized diagonals</a><a href=\"#method\">Method</a><a href=\"#again\">Reproduce</a></nav>\n",
     );
+    for parameter in extras.parameters {
+        let from = if parameter.set {
+            "set on the command line"
+        } else {
+            "as in the table file"
+        };
+        page.push_str(&format!(
+            "<p class=\"notice\">Parameter {} = {}, {from}.</p>\n",
+            escape(&parameter.name),
+            escape(&parameter.expression)
+        ));
+    }
     for notice in extras.notices {
         page.push_str(&format!("<p class=\"notice\">{}</p>\n", escape(notice)));
     }
@@ -216,6 +233,10 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
 fn growth_section(page: &mut String, results: &Results, pictures: &[Picture]) {
     heading(page, "growth", "Growth of the complexity");
     let agree = match results.disagreement {
+        None if results.p_by_diagonals.is_none() => format!(
+            "The words are counted by beams. A word is a bundle of beams here, because {}, so the generalized diagonals do not give p(n).",
+            super::verdict::Coding::of(&results.table).why_bundles()
+        ),
         None => format!(
             "Counting words by beams and by generalized diagonals gives the same p(n) for every n ≤ {}.",
             results.length
@@ -363,7 +384,7 @@ fn method_section(page: &mut String, results: &Results) {
     ));
     page.push_str(
         "<p><em>Beams.</em> The lines with one coding form a convex cell; a new corner cuts it or not. \
-         <em>Generalized diagonals.</em> The second difference of p counts them, so p follows from fans of rays from the corners. \
+         <em>Generalized diagonals.</em> When each word is one such cell, the second difference of p counts them, so p follows from fans of rays from the corners. \
          <em>Measures.</em> The invariant measure of a cell is a signed sum of distances between corner images (crossed-belt formula), \
          and all cells of one length fill the phase space, whose measure is 2·perimeter.</p>\n<ul>\n",
     );
@@ -390,4 +411,10 @@ fn again_section(page: &mut String, record: &Record<'_>, extras: &Extras<'_>) {
         escape(extras.command),
         escape(extras.table_file)
     ));
+    for base in extras.bases {
+        page.push_str(&format!(
+            "<p>It stands on this file:</p>\n<pre>{}</pre>\n",
+            escape(&base.text)
+        ));
+    }
 }

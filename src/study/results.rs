@@ -3,7 +3,7 @@
 //! Stages, each on the room that owns it: facts; generalized diagonals and p by fans (cheap, and it tells how
 //! much memory the rest needs); the language by beams; measures; factor graphs; the verdict.
 
-use super::verdict::{Evidence, Statement, verdict};
+use super::verdict::{Coding, Evidence, Statement, verdict};
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
@@ -59,9 +59,9 @@ pub struct Results {
     pub counts: Counts,
     /// N(0), …, N(length − 2).
     pub diagonals: Vec<u64>,
-    /// p by fans.
-    pub p_by_diagonals: Vec<u64>,
-    /// The first n where the routes differ.
+    /// p by fans, when each word is one beam.
+    pub p_by_diagonals: Option<Vec<u64>>,
+    /// The first n where the routes differ, when both lead to p.
     pub disagreement: Option<usize>,
     /// Cylinder measures; those of [`Results::shown_length`] are kept.
     pub measures: Measures,
@@ -150,13 +150,15 @@ pub fn compute(
     begin(Stage::Fans);
     let (mut diagonals, fan_tiers) =
         diagonals::count(&engine, &mesh, horizon.saturating_sub(2), control)?;
-    let mut p_by_diagonals = p_from_diagonals(table.sides() as u64, &diagonals, horizon);
+    // Generalized diagonals count beams. They count words when each word is one beam, and bound them otherwise.
+    let mut beams = p_from_diagonals(table.sides() as u64, &diagonals, horizon);
     let length = request
         .length
-        .unwrap_or_else(|| affordable(&p_by_diagonals, DEFAULT_WORDS));
-    p_by_diagonals.truncate(length + 1);
+        .unwrap_or_else(|| affordable(&beams, DEFAULT_WORDS));
+    beams.truncate(length + 1);
     diagonals.truncate(length.saturating_sub(2) + 1);
-    let words: u64 = p_by_diagonals.iter().sum();
+    let words: u64 = beams.iter().sum();
+    let p_by_diagonals = table.has_one_beam_a_word().then_some(beams);
     check_memory(words, length, request.memory)?;
 
     begin(Stage::Beams { words });
@@ -171,9 +173,12 @@ pub fn compute(
     let graphs = count_graphs(&language, 1, request.radii);
     control.tick(0)?;
     let line: Vec<LineFigures> = graphs.iter().map(line_figures).collect();
-    let disagreement = first_disagreement(&counts.p, &p_by_diagonals);
+    let disagreement = p_by_diagonals
+        .as_ref()
+        .and_then(|other| first_disagreement(&counts.p, other));
     let statements = verdict(&Evidence {
         facts: &facts,
+        coding: Coding::of(table),
         p: &counts.p,
         disagreement,
         measure_fault: measures.levels.iter().find(|l| !l.holds).map(|l| l.length),

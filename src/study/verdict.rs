@@ -7,6 +7,7 @@
 
 use crate::complexity::growth::{CubicRange, cubic_range, local_exponent};
 use crate::factor_graph::criterion::LineFigures;
+use crate::table::Table;
 use crate::table::facts::{Facts, ReflectionGroup};
 use serde::Serialize;
 
@@ -54,11 +55,47 @@ pub struct Statement {
     pub grounds: String,
 }
 
+/// What about the coding decides which theorems apply.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Coding {
+    /// Every side has a letter of its own.
+    pub distinct_letters: bool,
+    /// The table has holes.
+    pub holes: bool,
+}
+
+impl Coding {
+    /// That of a table.
+    pub fn of(table: &Table) -> Coding {
+        Coding {
+            distinct_letters: table.has_distinct_letters(),
+            holes: table.holes() > 0,
+        }
+    }
+
+    /// True when each word is one beam.
+    pub fn has_one_beam_a_word(self) -> bool {
+        self.distinct_letters && !self.holes
+    }
+
+    /// Why words are bundles of beams.
+    pub fn why_bundles(self) -> &'static str {
+        match (self.distinct_letters, self.holes) {
+            (true, true) => "the table has holes",
+            (false, true) => "sides share letters and the table has holes",
+            (false, false) => "sides share letters",
+            (true, false) => "nothing",
+        }
+    }
+}
+
 /// What the verdict is drawn from.
 #[derive(Clone, Copy, Debug)]
 pub struct Evidence<'a> {
     /// Proved facts about the table.
     pub facts: &'a Facts,
+    /// The coding.
+    pub coding: Coding,
     /// p(0), …, p(N).
     pub p: &'a [u64],
     /// The first n where the two routes differ.
@@ -85,18 +122,26 @@ impl Evidence<'_> {
         matches!(self.facts.group, ReflectionGroup::Finite { .. })
     }
 
+    /// Convex and rational, every side with a letter of its own: what the theorems on cubic growth ask for.
     fn is_convex_rational(&self) -> bool {
-        self.facts.convex && self.is_rational()
+        self.facts.convex && self.is_rational() && self.coding.distinct_letters
     }
 
     /// Why the theorems for convex rational tables do not apply.
     fn missing(&self) -> String {
         let mut reasons = Vec::new();
         if !self.facts.convex {
-            reasons.push("the table is not convex");
+            reasons.push(if self.coding.holes {
+                "the table has holes"
+            } else {
+                "the table is not convex"
+            });
         }
         if !self.is_rational() {
             reasons.push("not every angle is a rational multiple of π");
+        }
+        if !self.coding.distinct_letters {
+            reasons.push("sides share letters");
         }
         reasons.join(", and ")
     }
@@ -110,7 +155,7 @@ impl Evidence<'_> {
 const CUBIC_SOURCE: &str = "Cassaigne, Hubert, Troubetzkoy, Ann. Inst. Fourier 52 (2002) 835–847";
 const CRITERION_SOURCE: &str = "arXiv 2402.15877";
 const CHECKED_CONVEX_RATIONAL: &str =
-    "checked exactly: convex, and every angle a rational multiple of π";
+    "checked exactly: convex, every angle a rational multiple of π, every side a letter of its own";
 const CHECKED_INTEGRABLE: &str =
     "checked exactly: every angle is π divided by an integer, so reflected copies tile the plane";
 
@@ -156,14 +201,29 @@ fn computed_or_violated(
 
 fn checks(evidence: &Evidence<'_>) -> Vec<Statement> {
     let longest = evidence.longest();
-    vec![
+    let routes_claim = "p(n) counted by beams equals p(n) counted by generalized diagonals";
+    let routes = if evidence.coding.has_one_beam_a_word() {
         computed_or_violated(
             "routes_agree",
-            "p(n) counted by beams equals p(n) counted by generalized diagonals",
+            routes_claim,
             evidence.disagreement,
             longest,
             "two routes without common counting code, compared value by value",
-        ),
+        )
+    } else {
+        statement(
+            "routes_agree",
+            routes_claim,
+            Standing::NotDecided,
+            None,
+            format!(
+                "not applicable: {}, so a word is a bundle of beams, and generalized diagonals count beams; p(n) was counted by beams alone",
+                evidence.coding.why_bundles()
+            ),
+        )
+    };
+    vec![
+        routes,
         computed_or_violated(
             "measure_sum",
             "the cylinder measures of the words of length n sum to 2·perimeter",
@@ -224,14 +284,34 @@ fn language_laws(evidence: &Evidence<'_>) -> Vec<Statement> {
             longest,
             "every reversed word was looked up",
         ),
-        statement(
-            "subexponential",
-            "p(n) grows more slowly than every exponential",
-            Standing::Proved,
-            None,
-            "Katok, Comm. Math. Phys. 111 (1987), for every polygon; checked exactly: the table is a simple polygon",
-        ),
+        subexponential(evidence),
     ]
+}
+
+fn subexponential(evidence: &Evidence<'_>) -> Statement {
+    let (standing, grounds) = if evidence.coding.holes {
+        (
+            Standing::NotDecided,
+            "this program relies on Katok, Comm. Math. Phys. 111 (1987), for simple polygons only, and the table has holes",
+        )
+    } else if evidence.coding.distinct_letters {
+        (
+            Standing::Proved,
+            "Katok, Comm. Math. Phys. 111 (1987), for every polygon; checked exactly: the table is a simple polygon",
+        )
+    } else {
+        (
+            Standing::Proved,
+            "Katok, Comm. Math. Phys. 111 (1987), for every polygon with a letter of its own for each side, and sharing letters makes no more words; checked exactly: the table is a simple polygon",
+        )
+    };
+    statement(
+        "subexponential",
+        "p(n) grows more slowly than every exponential",
+        standing,
+        None,
+        grounds,
+    )
 }
 
 fn growth(evidence: &Evidence<'_>) -> Vec<Statement> {
@@ -331,7 +411,7 @@ fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
             ),
         }
     };
-    let asymptotic = if evidence.facts.integrable {
+    let asymptotic = if evidence.facts.integrable && evidence.coding.distinct_letters {
         statement(
             "sufficient_asymptotic",
             "p(n) ~ c·nᵃ for some c and a (here a = 3)",
@@ -423,9 +503,15 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
             line_claim,
             standing,
             None,
-            format!(
-                "equivalent to the ratio criterion ({CRITERION_SOURCE}), since the language is factorial, prolongable and subexponential; {figures}"
-            ),
+            if evidence.coding.holes {
+                format!(
+                    "equivalent to the ratio criterion ({CRITERION_SOURCE}) if the language, which is factorial and prolongable, is subexponential; {figures}"
+                )
+            } else {
+                format!(
+                    "equivalent to the ratio criterion ({CRITERION_SOURCE}), since the language is factorial, prolongable and subexponential; {figures}"
+                )
+            },
         ),
     ]
 }

@@ -5,13 +5,14 @@
 //! product  = signed (("*" | "/") signed)*
 //! signed   = ("+" | "-") signed | power
 //! power    = atom ("^" signed)?            an integer exponent, possibly negative; right to left
-//! atom     = number | "pi" | "(" sum ")" | function "(" sum ("," sum)* ")"
+//! atom     = number | "pi" | name | "(" sum ")" | function "(" sum ("," sum)* ")"
 //! number   = 12 | 0.125 | .5 | 1e-3        all exact
 //! function = sqrt | cos | sin | tan | root
 //! ```
 //!
 //! `cos`, `sin` and `tan` take rational multiples of `pi`; `root(polynomial in x, value)` is the real root
-//! nearest to a rational value. The result is an exact element of a real number field, which an
+//! nearest to a rational value. A name stands for a value that was [defined](Evaluator::define) before: a number
+//! or a rational multiple of `pi`. The result is an exact element of a real number field, which an
 //! [`Evaluator`] grows as roots come up, so that all numbers of one file end in one field.
 //!
 //! Nothing here can run away: bounds on the length of the text, on nesting, on digits, on exponents, on the
@@ -21,6 +22,9 @@ mod evaluate;
 mod lexer;
 mod parser;
 mod root;
+
+use evaluate::{FUNCTIONS, Value};
+use lexer::Token;
 
 use crate::number::adjoin::{Adjoined, embed};
 use crate::number::{Field, Real};
@@ -80,6 +84,49 @@ pub struct Evaluator {
     /// Roots of polynomials chosen so far: (squarefree polynomial, value nearby, root in the current
     /// field).
     chosen_roots: Vec<(Vec<Integer>, Rational, Real)>,
+    /// Values by name, in the fields that were current when they were defined.
+    names: BTreeMap<String, Value>,
+}
+
+/// The names that an expression uses, with their places: neither functions nor `pi` nor `x`.
+///
+/// # Errors
+/// When the text is no expression.
+pub fn names_in(text: &str) -> Result<Vec<(String, Range<usize>)>, ExpressionFault> {
+    parser::parse(text)?;
+    let tokens = lexer::tokens(text)?;
+    let names = tokens.into_iter().filter_map(|(token, span)| match token {
+        Token::Name(name) => Some((name, span)),
+        _ => None,
+    });
+    Ok(names
+        .filter(|(name, _)| name_fault(name).is_none())
+        .collect())
+}
+
+/// Why a word cannot be the name of a value: what is wrong, and what to write instead.
+pub fn name_fault(name: &str) -> Option<(String, String)> {
+    let taken = |what: &str| {
+        let message = format!("`{name}` cannot be defined: it is {what}");
+        Some((message, "choose another name".into()))
+    };
+    if FUNCTIONS.contains(&name) {
+        return taken("a function");
+    }
+    match name {
+        "pi" => return taken("a number that is known"),
+        "x" => return taken("the variable of `root(polynomial, value)`"),
+        _ => {}
+    }
+    let starts = name.starts_with(|c: char| c.is_ascii_alphabetic() || c == '_');
+    if starts && name.chars().all(|c| c.is_ascii_alphanumeric() || c == '_') {
+        return None;
+    }
+    Some((
+        format!("`{}` cannot be a name", name.escape_debug()),
+        "a name is made of the letters a to z and A to Z, digits and `_`, and does not begin with a digit"
+            .into(),
+    ))
 }
 
 impl Default for Evaluator {
@@ -98,6 +145,7 @@ impl Evaluator {
             pure_cosine: None,
             square_roots: Vec::new(),
             chosen_roots: Vec::new(),
+            names: BTreeMap::new(),
         }
     }
 
@@ -116,12 +164,39 @@ impl Evaluator {
         evaluate::number(self, &tree)
     }
 
-    /// The square root of a number of the current field; the field grows by it when needed.
+    /// Gives a name to the value of an expression: a number, or a rational multiple of `pi`. An older value
+    /// of the name is forgotten.
     ///
     /// # Errors
-    /// When the number is negative or the field would become too large. The place in the text is empty.
+    /// Those of [`Evaluator::evaluate`].
+    ///
+    /// # Panics
+    /// If it cannot be a name: see [`name_fault`].
+    pub fn define(&mut self, name: &str, text: &str) -> Result<(), ExpressionFault> {
+        assert_eq!(name_fault(name), None);
+        let tree = parser::parse(text)?;
+        let value = evaluate::value(self, &tree)?;
+        self.names.insert(name.to_string(), value);
+        Ok(())
+    }
+
+    /// The cosine of `turns` full turns, growing the field if need be.
+    ///
+    /// # Errors
+    /// When the field would become too large.
+    pub fn cosine(&mut self, turns: &Rational) -> Result<Real, ExpressionFault> {
+        let value = evaluate::cosine(self, turns, &(0..0))?;
+        Ok(self.lift(&value))
+    }
+
+    /// The square root of a number, growing the field if need be.
+    ///
+    /// # Errors
+    /// When the number is negative, or the field would become too large.
     pub fn square_root(&mut self, number: &Real) -> Result<Real, ExpressionFault> {
-        evaluate::square_root(self, number, &(0..0))
+        let number = self.lift(number);
+        let value = evaluate::square_root(self, &number, &(0..0))?;
+        Ok(self.lift(&value))
     }
 
     /// A number that this evaluator returned earlier, in the current field. Rationals stay rationals.

@@ -7,8 +7,9 @@
 //! possible (φ(m) ≥ √(m/2), hence m ≤ 8d²). Each is tested by an exact power. Nothing is rounded.
 //!
 //! **Group.** The linear parts of the reflections in the sides generate a finite group exactly when all
-//! angles are rational multiples of π; it is then dihedral of order 2r with r the least common
-//! denominator of the angles in units of π.
+//! angles between sides are rational multiples of π; it is then dihedral of order 2r with r the least common
+//! denominator of the angles in units of π. The angles at the corners tell for the sides of one ring; for a
+//! hole the angle between its first side and that of the outline comes in addition.
 //!
 //! **Integrable.** The reflected copies tile the plane exactly when every angle is π/m for an integer m:
 //! rectangles and the triangles (π/3, π/3, π/3), (π/2, π/4, π/4), (π/2, π/3, π/6).
@@ -64,14 +65,21 @@ pub fn facts(table: &Table) -> Facts {
         Angle::Irrational => None,
     };
     let multiples: Option<Vec<Rational>> = angles.iter().map(in_pi).collect();
+    let between_rings = table.rings().skip(1).map(|ring| {
+        let (first, other) = (table.side_vector(0), table.side_vector(ring.start));
+        in_pi(&angle_between(table, &first, &other))
+    });
+    let turns: Option<Vec<Rational>> = multiples
+        .clone()
+        .and_then(|all| all.into_iter().map(Some).chain(between_rings).collect());
     let half = Rational::from((1, 2));
     let three_halves = Rational::from((3, 2));
     let all =
         |test: &dyn Fn(&Rational) -> bool| multiples.as_ref().is_some_and(|m| m.iter().all(test));
-    let group = match &multiples {
+    let group = match &turns {
         None => ReflectionGroup::Infinite,
-        Some(multiples) => {
-            let r = multiples.iter().fold(rug::Integer::from(1), |mut r, q| {
+        Some(turns) => {
+            let r = turns.iter().fold(rug::Integer::from(1), |mut r, q| {
                 r.lcm_mut(q.denom());
                 r
             });
@@ -94,15 +102,16 @@ pub fn facts(table: &Table) -> Facts {
 /// The area divided by √g.
 pub fn area_over_root_form(table: &Table) -> Real {
     let doubled = (0..table.sides()).fold(Real::from(0), |sum, i| {
-        sum + table.corner(i).cross(table.corner(i + 1))
+        sum + table.corner(i).cross(table.corner(table.after(i)))
     });
     doubled * Real::from(Rational::from((1, 2)))
 }
 
 /// The two sides at a corner, as vectors that leave it: along the next side, then back along the last.
 fn arms(table: &Table, corner: usize) -> (Vector, Vector) {
-    let k = table.sides();
-    let back = table.corner(corner + k - 1).minus(table.corner(corner));
+    let back = table
+        .corner(table.before(corner))
+        .minus(table.corner(corner));
     (table.side_vector(corner), back)
 }
 
@@ -113,10 +122,15 @@ fn is_convex_corner(table: &Table, corner: usize) -> bool {
 
 /// Decides one interior angle.
 pub fn angle(table: &Table, corner: usize) -> Angle {
-    let form = table.form();
     let (next, back) = arms(table, corner);
+    angle_between(table, &next, &back)
+}
+
+/// Decides the angle in [0, 2π) by which the direction of one vector is turned to that of another.
+fn angle_between(table: &Table, next: &Vector, back: &Vector) -> Angle {
+    let form = table.form();
     // z = conj(next)·back has argument α; w = z²/|z|² turns by 2α.
-    let z = next.conjugate().product(&back, form);
+    let z = next.conjugate().product(back, form);
     let norm = z.squared_length(form);
     let w = z
         .product(&z, form)
@@ -241,6 +255,33 @@ mod tests {
         assert_eq!(facts.angles[3], multiple(3, 2));
         assert_eq!(facts.group, ReflectionGroup::Finite { r: 2 });
         assert_eq!(facts.area_over_root_form, Real::from(3));
+    }
+
+    fn with_hole(hole: &[(i64, i64)]) -> Table {
+        let ring = |coordinates: &[(i64, i64)]| crate::table::Ring {
+            corners: coordinates
+                .iter()
+                .map(|&(x, y)| Vector::new(x.into(), y.into()))
+                .collect(),
+            letters: default_letters(coordinates.len()),
+        };
+        let outline = ring(&[(0, 0), (20, 0), (20, 20), (0, 20)]);
+        Table::with_holes("", outline, vec![ring(hole)], 1.into()).unwrap()
+    }
+
+    #[test]
+    fn a_hole_counts_in_the_area_and_in_the_group() {
+        let ring = facts(&with_hole(&[(5, 5), (15, 5), (15, 15), (5, 15)]));
+        assert!(ring.right_angled && !ring.convex && !ring.integrable);
+        assert_eq!(ring.angles[4..], vec![multiple(3, 2); 4]);
+        assert_eq!(ring.group, ReflectionGroup::Finite { r: 2 });
+        assert_eq!(ring.area_over_root_form, Real::from(300));
+        // The same square turned by π/4, and by the angle of slope 1/2, which is no rational multiple of π.
+        let turned = facts(&with_hole(&[(10, 5), (15, 10), (10, 15), (5, 10)]));
+        assert_eq!(turned.group, ReflectionGroup::Finite { r: 4 });
+        let irrational = facts(&with_hole(&[(8, 6), (12, 8), (10, 12), (6, 10)]));
+        assert!(irrational.right_angled);
+        assert_eq!(irrational.group, ReflectionGroup::Infinite);
     }
 
     #[test]

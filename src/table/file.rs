@@ -8,21 +8,47 @@
 //! | `corners`  | array of pairs of numbers, at most 255 |
 //! | `triangle` | three positive rational numbers: angles in proportion to them |
 //! | `regular`  | an integer from 3 to 255: a regular polygon on the unit circle |
+//! | `outline`  | array of pairs, one for each side: its length, and its heading in units of π, rational |
+//! | `base`     | the path, relative to this file, of a table file of which this is an affine image |
+//! | `mirror`   | with `base`: true to change the sign of second coordinates |
+//! | `stretch`  | with `base`: two positive numbers, by which coordinates are multiplied after mirroring |
+//! | `turn`     | with `base`: a rational angle in units of π, by which the rest is turned about the origin |
 //! | `form`     | with `corners`: the g of the plane form x² + g·y²; second coordinates are in units of √g |
-//! | `sides`    | optional letters, one character for each side; side i joins corner i to the next |
+//! | `sides`    | optional letters, one character for each side; side i joins corner i to the next; letters may repeat |
+//! | `holes`    | array of tables, each with `corners` and optional `sides` |
+//! | `define`   | table of names and their expressions |
+//! | `parameters` | the same; a setting `name=expression` overrides the file's |
 //! | `about`    | free text, ignored |
 //!
-//! Exactly one of `corners`, `triangle` and `regular` is there. A number is a string that holds an exact
+//! Exactly one of `corners`, `triangle`, `regular`, `outline` and `base` is there. An outline starts at the origin and must
+//! lead back there exactly. A base keeps its letters and its holes, unless the file names other `sides` for the
+//! outline; its parameters have the values that its own file gives them. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
 //!
+//! Names can be used in all expressions of the file, those of other names included, in any order. A name may
+//! stand for a rational multiple of `pi`. Functions, `pi` and `x` cannot be names.
+//!
+//! Corners run either way round. Holes lie inside the table and touch neither its outline nor each other. Their
+//! coordinates are those of the outline, for `triangle` and `regular` too (`reboundary table` shows them). Where
+//! the program counts through, it counts the corners of the outline counterclockwise, then those of each hole
+//! clockwise; the first corner of each ring stays the first. Sides without a letter get the first letters of the
+//! alphabet that the file does not name.
+//!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
+mod affine;
 mod faults;
+mod names;
+mod outline;
 mod read;
+mod rings;
+mod source;
 
 use super::Table;
 use super::diagnostic::Diagnostic;
+pub use names::{MOST_NAMES, Parameter};
+use read::Chain;
 use std::io::Read;
 use std::path::Path;
 use thiserror::Error;
@@ -41,6 +67,21 @@ pub struct LoadedTable {
     pub text: String,
     /// The name of the file without folder and extension.
     pub stem: String,
+    /// The name of the file as given.
+    pub file_name: String,
+    /// Its parameters, as set.
+    pub parameters: Vec<Parameter>,
+    /// The files that it stands on, the nearest first.
+    pub bases: Vec<BaseFile>,
+}
+
+/// A table file that another one names as its base.
+#[derive(Clone, Debug, PartialEq, Eq, serde::Serialize)]
+pub struct BaseFile {
+    /// Its path, from the place where the first file was named.
+    pub name: String,
+    /// Its text.
+    pub text: String,
 }
 
 /// Why a file gave no table.
@@ -82,6 +123,19 @@ pub enum TableFileError {
 /// # Errors
 /// As [`TableFileError`] says.
 pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
+    load_with(path, &[])
+}
+
+/// Reads a table from a file, with settings `name=expression` for its parameters.
+///
+/// # Errors
+/// As [`TableFileError`] says; a fault in a setting points into its text.
+pub fn load_with(path: &Path, settings: &[String]) -> Result<LoadedTable, TableFileError> {
+    load_in(path, settings, &Vec::new())
+}
+
+/// Reads a table that other files, which are being read, stand on.
+fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
     let file = path.display().to_string();
     let unreadable = |reason| TableFileError::Unreadable {
         file: file.clone(),
@@ -100,7 +154,7 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
         file: file.clone(),
         offset: e.utf8_error().valid_up_to(),
     })?;
-    parse(&file, &text)
+    parse_in(&file, &text, settings, chain)
 }
 
 /// Reads a table from a text; `file_name` is used in messages and for the stem.
@@ -108,6 +162,27 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
 /// # Errors
 /// As [`TableFileError`] says, except for reading.
 pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError> {
+    parse_with(file_name, text, &[])
+}
+
+/// Reads a table from a text, with settings `name=expression` for its parameters.
+///
+/// # Errors
+/// As [`TableFileError`] says, except for reading.
+pub fn parse_with(
+    file_name: &str,
+    text: &str,
+    settings: &[String],
+) -> Result<LoadedTable, TableFileError> {
+    parse_in(file_name, text, settings, &Vec::new())
+}
+
+fn parse_in(
+    file_name: &str,
+    text: &str,
+    settings: &[String],
+    chain: &Chain,
+) -> Result<LoadedTable, TableFileError> {
     if text.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge {
             file: file_name.into(),
@@ -124,7 +199,14 @@ pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError>
         || file_name.to_string(),
         |s| s.to_string_lossy().into_owned(),
     );
-    let table = read::table(file_name, text, &stem).map_err(TableFileError::Fault)?;
+    let mut chain = chain.clone();
+    let place = Path::new(file_name).canonicalize();
+    chain.push((place.unwrap_or_default(), file_name.to_string()));
+    let read::Reading {
+        table,
+        parameters,
+        bases,
+    } = read::table(file_name, text, &stem, settings, &chain).map_err(TableFileError::Fault)?;
     let mut notices = Vec::new();
     if table.turned_round() {
         notices.push(format!(
@@ -137,5 +219,8 @@ pub fn parse(file_name: &str, text: &str) -> Result<LoadedTable, TableFileError>
         notices,
         text: text.to_string(),
         stem,
+        parameters,
+        bases,
+        file_name: file_name.to_string(),
     })
 }

@@ -1,4 +1,4 @@
-//! Tables: simple polygons with exact corners and a letter on each side.
+//! Tables: simple polygons with exact corners and a letter on each side, perhaps with holes.
 //!
 //! - [`validity`]: which polygons are tables; every refusal names the corners or sides at fault.
 //! - [`triangulation`]: cutting a table into triangles by exact predicates.
@@ -21,15 +21,21 @@ pub mod validity;
 use crate::number::{Enclosure, Field, Real, Sign};
 pub use validity::TableFault;
 
-/// The index of a corner: 0 … k−1 counterclockwise.
+/// The index of a corner: 0 … k−1, the outline's counterclockwise, then each hole's clockwise. So the table
+/// lies to the left of every side.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct CornerId(pub u8);
 
-/// The index of a side: side i runs from corner i to corner i+1.
+/// The index of a side: side i runs from corner i to the next corner of its ring.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub struct SideId(pub u8);
 
-/// The most sides that a table can have: an index must fit in a byte.
+/// The index of a letter: letters are numbered in the order in which they first appear in the file. Sides
+/// with the same letter have the same one.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
+pub struct LetterId(pub u8);
+
+/// The most sides that a table can have, holes included: an index must fit in a byte.
 pub const MOST_SIDES: usize = 255;
 
 /// A point or vector of the plane with exact coordinates.
@@ -102,23 +108,37 @@ pub fn orientation(a: &Vector, b: &Vector, c: &Vector) -> Sign {
     b.minus(a).cross(&c.minus(a)).sign()
 }
 
-/// A checked polygon table: simple, counterclockwise, without straight corners.
+/// A closed polygonal line: the outline of a table or of a hole.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Ring {
+    /// Its corners, either way round.
+    pub corners: Vec<Vector>,
+    /// The letter of the side from each corner to the next; sides of a table may share a letter.
+    pub letters: Vec<char>,
+}
+
+/// A checked polygon table: simple, perhaps with holes, without straight corners.
 ///
-/// Invariants: at least three corners; all coordinates and the form are written in `field`; the form is
-/// positive; letters are distinct, one for each side.
+/// Invariants: at least three corners in each ring; the outline counterclockwise, holes clockwise, disjoint
+/// from each other and the outline, each inside the outline and outside the others; all coordinates and the
+/// form are written in `field`; the form is positive.
 #[derive(Clone, Debug)]
 pub struct Table {
     title: String,
     field: Field,
     corners: Vec<Vector>,
+    /// The first corner of each ring, the outline's (0) first; then the number of corners.
+    rings: Vec<usize>,
     form: Real,
-    letters: Vec<char>,
+    alphabet: Vec<char>,
+    /// The letter of each side.
+    letter_ids: Vec<LetterId>,
     turned_round: bool,
 }
 
 impl Table {
-    /// Checks a polygon and makes it a table. Corners in clockwise order are turned round: the order is
-    /// reversed, keeping corner 0 first and each letter on its side.
+    /// Checks a polygon without holes and makes it a table. Corners in clockwise order are turned round: the
+    /// order is reversed, keeping corner 0 first and each letter on its side.
     ///
     /// `form` is the g of the plane form x² + g·y²: the second coordinates are in units of √g.
     ///
@@ -130,13 +150,51 @@ impl Table {
         form: Real,
         letters: Vec<char>,
     ) -> Result<Table, TableFault> {
-        let mut corners = corners;
-        let mut letters = letters;
-        let turned_round = validity::check(&corners, &letters, &form)? == validity::Turn::Clockwise;
-        if turned_round {
-            corners[1..].reverse();
-            letters.reverse();
+        Table::with_holes(title, Ring { corners, letters }, Vec::new(), form)
+    }
+
+    /// Checks a polygon with holes and makes it a table. Rings that run the wrong way are turned round:
+    /// corners are reversed, the first one stays, and each letter stays on its side.
+    ///
+    /// # Errors
+    /// The first fault found. Corners and sides in it are numbered through as given: those of the outline,
+    /// then those of each hole.
+    pub fn with_holes(
+        title: &str,
+        outline: Ring,
+        holes: Vec<Ring>,
+        form: Real,
+    ) -> Result<Table, TableFault> {
+        let mut all = vec![outline];
+        all.extend(holes);
+        let turns = validity::check(&all, &form)?;
+        // Letters are numbered as given, before anything is turned round.
+        let mut alphabet: Vec<char> = Vec::new();
+        for letter in all.iter().flat_map(|ring| &ring.letters) {
+            if !alphabet.contains(letter) {
+                alphabet.push(*letter);
+            }
         }
+        let turned_round = turns[0] == validity::Turn::Clockwise;
+        for (i, (ring, turn)) in all.iter_mut().zip(&turns).enumerate() {
+            if (*turn == validity::Turn::Clockwise) == (i == 0) {
+                ring.corners[1..].reverse();
+                ring.letters.reverse();
+            }
+        }
+        let mut rings = vec![0];
+        for ring in &all {
+            rings.push(rings[rings.len() - 1] + ring.corners.len());
+        }
+        let letter_ids = all
+            .iter()
+            .flat_map(|ring| &ring.letters)
+            .map(|letter| {
+                let index = alphabet.iter().position(|known| known == letter);
+                LetterId(index.expect("collected above") as u8)
+            })
+            .collect();
+        let corners: Vec<Vector> = all.into_iter().flat_map(|ring| ring.corners).collect();
         let field = corners
             .iter()
             .flat_map(|c| [&c.x, &c.y])
@@ -152,9 +210,11 @@ impl Table {
         Ok(Table {
             title: title.into(),
             corners,
+            rings,
             form: form.lifted_to(&field),
             field,
-            letters,
+            alphabet,
+            letter_ids,
             turned_round,
         })
     }
@@ -169,24 +229,63 @@ impl Table {
         &self.field
     }
 
-    /// The number of sides, which is the number of corners.
+    /// The number of sides, which is the number of corners, holes included.
     pub fn sides(&self) -> usize {
         self.corners.len()
     }
 
-    /// The corners, counterclockwise.
+    /// The corners: the outline's counterclockwise, then each hole's clockwise.
     pub fn corners(&self) -> &[Vector] {
         &self.corners
     }
 
-    /// Corner i, indices taken modulo the number of corners.
+    /// A corner by its index, which is also the corner that the side of this index starts from.
+    ///
+    /// # Panics
+    /// If there is no such corner.
     pub fn corner(&self, index: usize) -> &Vector {
-        &self.corners[index % self.corners.len()]
+        &self.corners[index]
     }
 
-    /// The vector along side i, from corner i to corner i+1.
+    /// The indices of the corners of each ring, the outline first.
+    pub fn rings(&self) -> impl Iterator<Item = std::ops::Range<usize>> + '_ {
+        self.rings.windows(2).map(|ends| ends[0]..ends[1])
+    }
+
+    /// The number of holes.
+    pub fn holes(&self) -> usize {
+        self.rings.len() - 2
+    }
+
+    fn ring_of(&self, index: usize) -> std::ops::Range<usize> {
+        self.rings()
+            .find(|ring| ring.contains(&index))
+            .expect("a corner belongs to a ring")
+    }
+
+    /// The next corner on the same ring: where the side of this index ends.
+    pub fn after(&self, index: usize) -> usize {
+        let ring = self.ring_of(index);
+        if index + 1 < ring.end {
+            index + 1
+        } else {
+            ring.start
+        }
+    }
+
+    /// The corner before on the same ring, which is also the index of the side that ends at this corner.
+    pub fn before(&self, index: usize) -> usize {
+        let ring = self.ring_of(index);
+        if index > ring.start {
+            index - 1
+        } else {
+            ring.end - 1
+        }
+    }
+
+    /// The vector along side i, from corner i to the next on its ring.
     pub fn side_vector(&self, index: usize) -> Vector {
-        self.corner(index + 1).minus(self.corner(index))
+        self.corner(self.after(index)).minus(self.corner(index))
     }
 
     /// g of the plane form x² + g·y².
@@ -194,12 +293,33 @@ impl Table {
         &self.form
     }
 
-    /// The letter of each side.
+    /// The letters, by [`LetterId`]: each once, in the order in which they first appear in the file.
     pub fn letters(&self) -> &[char] {
-        &self.letters
+        &self.alphabet
     }
 
-    /// True when the corners were given clockwise and have been turned round.
+    /// The letter of a side as an index into [`Table::letters`].
+    pub fn letter_id(&self, side: SideId) -> LetterId {
+        self.letter_ids[side.0 as usize]
+    }
+
+    /// The letter of a side.
+    pub fn letter(&self, side: SideId) -> char {
+        self.alphabet[self.letter_id(side).0 as usize]
+    }
+
+    /// True when every side has a letter of its own.
+    pub fn has_distinct_letters(&self) -> bool {
+        self.alphabet.len() == self.corners.len()
+    }
+
+    /// True when each word is one beam: a polygon without holes whose sides have letters of their own. Then
+    /// p(n) follows from the numbers of generalized diagonals; otherwise words are bundles of beams.
+    pub fn has_one_beam_a_word(&self) -> bool {
+        self.has_distinct_letters() && self.holes() == 0
+    }
+
+    /// True when the corners of the outline were given clockwise and have been turned round.
     pub fn turned_round(&self) -> bool {
         self.turned_round
     }
@@ -237,7 +357,7 @@ impl Table {
             .sqrt()
     }
 
-    /// An enclosure of the perimeter.
+    /// An enclosure of the perimeter: of the lengths of all sides together, those of holes included.
     pub fn perimeter(&self, precision: u32) -> Enclosure {
         let mut sum = Enclosure::zero(precision);
         for i in 0..self.sides() {
@@ -246,10 +366,12 @@ impl Table {
         sum
     }
 
-    /// The side with a letter.
-    pub fn side_of_letter(&self, letter: char) -> Option<SideId> {
-        let index = self.letters.iter().position(|l| *l == letter)?;
-        Some(SideId(index as u8))
+    /// The sides with a letter.
+    pub fn sides_of_letter(&self, letter: char) -> Vec<SideId> {
+        (0..self.sides() as u8)
+            .map(SideId)
+            .filter(|side| self.letter(*side) == letter)
+            .collect()
     }
 }
 

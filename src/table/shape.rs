@@ -161,7 +161,7 @@ fn height(
 
 /// (u, g₀) with u²·g₀ = g: for a rational g a squarefree integer g₀ as far as trial division finds squares,
 /// otherwise u = 1.
-fn without_square(g: Real) -> (Real, Real) {
+pub(super) fn without_square(g: Real) -> (Real, Real) {
     let Some(value) = g.to_rational() else {
         return (Real::from(1), g);
     };

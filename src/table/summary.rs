@@ -1,7 +1,7 @@
 //! A table and its proved facts, ready to be written as JSON or text.
 
 use super::facts::{Facts, ReflectionGroup, squared_area};
-use super::{Table, Vector};
+use super::{SideId, Table, Vector};
 use crate::number::Real;
 use crate::number::poly;
 use serde::Serialize;
@@ -80,10 +80,12 @@ pub struct TableSummary {
     pub field: FieldSummary,
     /// g of the plane form x² + g·y².
     pub form: Exact,
-    /// Corners, counterclockwise.
+    /// Corners: the outline's counterclockwise, then each hole's clockwise.
     pub corners: Vec<ExactVector>,
     /// Sides.
     pub sides: Vec<SideSummary>,
+    /// The corners of each hole, clockwise.
+    pub holes: Vec<Vec<usize>>,
     /// Interior angles by corner: a rational multiple of π such as `2π/7`, or that it is none.
     pub angles: Vec<String>,
     /// All interior angles below π.
@@ -121,13 +123,14 @@ pub fn summary(table: &Table, facts: &Facts) -> TableSummary {
             .map(|i| {
                 let squared = table.side_vector(i).squared_length(table.form());
                 SideSummary {
-                    letter: table.letters()[i].to_string(),
-                    corners: [i, (i + 1) % k],
+                    letter: table.letter(SideId(i as u8)).to_string(),
+                    corners: [i, table.after(i)],
                     length: root_decimal(&squared),
                     squared_length: Exact::new(&squared),
                 }
             })
             .collect(),
+        holes: table.rings().skip(1).map(Iterator::collect).collect(),
         angles: facts.angles.iter().map(|a| a.describe()).collect(),
         convex: facts.convex,
         right_angled: facts.right_angled,

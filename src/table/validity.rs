@@ -1,14 +1,17 @@
 //! Which polygons are tables.
 //!
-//! A table is a simple polygon: sides meet only at common corners, no corner repeats, none is straight.
+//! A table is a simple polygon: sides meet only at common corners, no corner repeats, none is straight. Holes
+//! are simple polygons too, disjoint from the outline and from each other, inside the outline and outside the
+//! other holes.
 //! All tests are exact orientations and comparisons in the table's field; a floating-point filter with a
 //! proved bound decides most of them. Cost: k²/2 pairs of sides.
 
-use super::{MOST_SIDES, Vector, orientation};
+use super::{MOST_SIDES, Ring, Vector, orientation};
 use crate::number::{Real, Sign};
 use thiserror::Error;
 
-/// Why a polygon is not a table. Corners and sides are numbered from 0 in the order given.
+/// Why a polygon is not a table. Corners and sides are numbered from 0 in the order given: those of the
+/// outline, then those of each hole. Holes are numbered from 0.
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 pub enum TableFault {
     /// Fewer than three corners.
@@ -70,21 +73,39 @@ pub enum TableFault {
         /// Sides of the polygon.
         sides: usize,
     },
-    /// Two sides with the same letter.
-    #[error("sides {first} and {second} have the same letter `{letter}`")]
-    RepeatedLetter {
-        /// The earlier side.
-        first: usize,
-        /// The later side.
-        second: usize,
-        /// Their letter.
-        letter: char,
-    },
     /// The plane form is not positive.
     #[error("the plane form must be positive, it is {value}")]
     FormNotPositive {
         /// Its value as a decimal.
         value: String,
+    },
+    /// Fewer than three corners in a hole.
+    #[error("a hole needs at least 3 corners, hole {hole} has {count}")]
+    HoleTooFewCorners {
+        /// The hole.
+        hole: usize,
+        /// How many there are.
+        count: usize,
+    },
+    /// All corners of a hole on one line.
+    #[error("hole {hole} has zero area: all its corners lie on one line")]
+    HoleZeroArea {
+        /// The hole.
+        hole: usize,
+    },
+    /// A hole that lies outside the outline.
+    #[error("hole {hole} lies outside the outline of the table")]
+    HoleOutside {
+        /// The hole.
+        hole: usize,
+    },
+    /// A hole that lies inside another hole.
+    #[error("hole {inner} lies inside hole {outer}")]
+    HoleInHole {
+        /// The hole inside.
+        inner: usize,
+        /// The hole around it.
+        outer: usize,
     },
 }
 
@@ -97,53 +118,64 @@ pub enum Turn {
     Clockwise,
 }
 
-/// Checks everything that [`super::Table::new`] promises.
-pub fn check(corners: &[Vector], letters: &[char], form: &Real) -> Result<Turn, TableFault> {
-    let k = corners.len();
+/// Checks everything that [`super::Table::with_holes`] promises; the first ring is the outline. Returns the
+/// direction of each ring.
+pub fn check(rings: &[Ring], form: &Real) -> Result<Vec<Turn>, TableFault> {
+    check_counts(rings, form)?;
+    let all = Boundary::new(rings);
+    check_distinct(&all.corners)?;
+    for (r, ring) in rings.iter().enumerate() {
+        let corners = &ring.corners;
+        let on_line = |c: &Vector| orientation(&corners[0], &corners[1], c) == Sign::Zero;
+        if corners.iter().all(on_line) {
+            return Err(match r.checked_sub(1) {
+                None => TableFault::ZeroArea,
+                Some(hole) => TableFault::HoleZeroArea { hole },
+            });
+        }
+    }
+    check_corners(&all)?;
+    check_sides(&all)?;
+    check_places(rings)?;
+    Ok(rings.iter().map(|ring| turn(&ring.corners)).collect())
+}
+
+fn check_counts(rings: &[Ring], form: &Real) -> Result<(), TableFault> {
     if form.sign() != Sign::Positive {
         return Err(TableFault::FormNotPositive {
             value: form.decimal(6),
         });
     }
-    if k < 3 {
-        return Err(TableFault::TooFewCorners { count: k });
-    }
-    if k > MOST_SIDES {
-        return Err(TableFault::TooManyCorners { count: k });
-    }
-    if letters.len() != k {
-        return Err(TableFault::LetterCount {
-            letters: letters.len(),
-            sides: k,
-        });
-    }
-    for (second, letter) in letters.iter().enumerate() {
-        if let Some(first) = letters[..second].iter().position(|l| l == letter) {
-            return Err(TableFault::RepeatedLetter {
-                first,
-                second,
-                letter: *letter,
+    for (r, ring) in rings.iter().enumerate() {
+        let count = ring.corners.len();
+        if count < 3 {
+            return Err(match r.checked_sub(1) {
+                None => TableFault::TooFewCorners { count },
+                Some(hole) => TableFault::HoleTooFewCorners { hole, count },
+            });
+        }
+        if ring.letters.len() != count {
+            return Err(TableFault::LetterCount {
+                letters: ring.letters.len(),
+                sides: count,
             });
         }
     }
-    check_distinct(corners)?;
-    let flat = (2..k).all(|i| orientation(&corners[0], &corners[1], &corners[i]) == Sign::Zero);
-    if flat {
-        return Err(TableFault::ZeroArea);
+    let count = rings.iter().map(|ring| ring.corners.len()).sum();
+    if count > MOST_SIDES {
+        return Err(TableFault::TooManyCorners { count });
     }
-    check_corners(corners)?;
-    check_sides(corners)?;
-    Ok(turn(corners))
+    Ok(())
 }
 
-fn check_distinct(corners: &[Vector]) -> Result<(), TableFault> {
+fn check_distinct(corners: &[&Vector]) -> Result<(), TableFault> {
     #[expect(
         clippy::mutable_key_type,
         reason = "the caches inside a field take no part in equality or hash"
     )]
     let mut seen = std::collections::HashMap::new();
     for (second, corner) in corners.iter().enumerate() {
-        if let Some(first) = seen.insert(corner, second) {
+        if let Some(first) = seen.insert(*corner, second) {
             return Err(TableFault::RepeatedCorner { first, second });
         }
     }
@@ -151,11 +183,10 @@ fn check_distinct(corners: &[Vector]) -> Result<(), TableFault> {
 }
 
 /// Corners where the two sides lie on one line.
-fn check_corners(corners: &[Vector]) -> Result<(), TableFault> {
-    let k = corners.len();
-    for corner in 0..k {
-        let before = &corners[(corner + k - 1) % k];
-        let (here, after) = (&corners[corner], &corners[(corner + 1) % k]);
+fn check_corners(all: &Boundary<'_>) -> Result<(), TableFault> {
+    for corner in 0..all.corners.len() {
+        let before = all.corners[all.before[corner]];
+        let (here, after) = (all.corners[corner], all.corners[all.after[corner]]);
         if orientation(before, here, after) != Sign::Zero {
             continue;
         }
@@ -168,20 +199,76 @@ fn check_corners(corners: &[Vector]) -> Result<(), TableFault> {
     Ok(())
 }
 
-/// The corners with floating-point copies of them.
-struct Outline<'a> {
-    corners: &'a [Vector],
+/// That each hole lies inside the outline and outside the other holes. Since the rings do not touch, one
+/// corner tells for the whole hole.
+fn check_places(rings: &[Ring]) -> Result<(), TableFault> {
+    let holes = &rings[1..];
+    for (hole, ring) in holes.iter().enumerate() {
+        if !surrounds(&rings[0].corners, &ring.corners[0]) {
+            return Err(TableFault::HoleOutside { hole });
+        }
+    }
+    for (hole, ring) in holes.iter().enumerate() {
+        for (outer, other) in holes.iter().enumerate() {
+            if outer != hole && surrounds(&other.corners, &ring.corners[0]) {
+                return Err(TableFault::HoleInHole { inner: hole, outer });
+            }
+        }
+    }
+    Ok(())
+}
+
+/// True when a point that is not on a simple polygon lies inside it: the ray in the direction (1, 0) meets an
+/// odd number of its sides, a side counting with its lower end and without its upper one.
+fn surrounds(polygon: &[Vector], point: &Vector) -> bool {
+    let mut inside = false;
+    for (i, from) in polygon.iter().enumerate() {
+        let to = &polygon[(i + 1) % polygon.len()];
+        let upward = from.y <= point.y && point.y < to.y;
+        let downward = to.y <= point.y && point.y < from.y;
+        let side = || orientation(from, to, point);
+        if upward && side() == Sign::Positive || downward && side() == Sign::Negative {
+            inside = !inside;
+        }
+    }
+    inside
+}
+
+/// The corners of all rings with floating-point copies of them.
+pub(super) struct Boundary<'a> {
+    corners: Vec<&'a Vector>,
+    /// The corner before and after each on its ring.
+    before: Vec<usize>,
+    after: Vec<usize>,
     copies: Vec<(f64, f64)>,
     /// A determinant of the copies beyond this has the right sign.
     error: f64,
 }
 
-impl<'a> Outline<'a> {
+impl<'a> Boundary<'a> {
+    fn new(rings: &'a [Ring]) -> Boundary<'a> {
+        let mut sizes = Vec::new();
+        let mut corners = Vec::new();
+        for ring in rings {
+            sizes.push(ring.corners.len());
+            corners.extend(&ring.corners);
+        }
+        Boundary::of(corners, &sizes)
+    }
+
+    /// From the corners of all rings, and the number of corners of each.
+    ///
     /// The bound: let M be the largest absolute value of a copy. [`Real::to_f64`] is the nearest number or
     /// a neighbour, so a copy is off by at most 2⁻⁵¹·M, a difference of two by 5·2⁻⁵²·M (its own rounding
     /// included), a product of two differences by 22·2⁻⁵²·M², and the difference of two products, itself
     /// rounded, by 48·2⁻⁵²·M² < 2⁻⁴⁶·M².
-    fn new(corners: &'a [Vector]) -> Outline<'a> {
+    pub(super) fn of(corners: Vec<&'a Vector>, sizes: &[usize]) -> Boundary<'a> {
+        let (mut before, mut after) = (Vec::new(), Vec::new());
+        for &size in sizes {
+            let start = before.len();
+            before.extend((0..size).map(|i| start + (i + size - 1) % size));
+            after.extend((0..size).map(|i| start + (i + 1) % size));
+        }
         let copies: Vec<(f64, f64)> = corners
             .iter()
             .map(|c| (c.x.to_f64(), c.y.to_f64()))
@@ -196,14 +283,17 @@ impl<'a> Outline<'a> {
         } else {
             f64::INFINITY
         };
-        Outline {
+        Boundary {
             corners,
+            before,
+            after,
             copies,
             error,
         }
     }
 
-    fn orientation(&self, a: usize, b: usize, c: usize) -> Sign {
+    /// The orientation of three corners.
+    pub(super) fn orientation(&self, a: usize, b: usize, c: usize) -> Sign {
         let [(ax, ay), (bx, by), (cx, cy)] = [a, b, c].map(|i| self.copies[i]);
         let determinant = (bx - ax) * (cy - ay) - (by - ay) * (cx - ax);
         if determinant > self.error {
@@ -211,39 +301,38 @@ impl<'a> Outline<'a> {
         } else if determinant < -self.error {
             Sign::Negative
         } else {
-            orientation(&self.corners[a], &self.corners[b], &self.corners[c])
+            orientation(self.corners[a], self.corners[b], self.corners[c])
         }
     }
 
     /// True when corner c lies strictly inside the segment from corner a to corner b.
-    fn on_segment(&self, a: usize, b: usize, c: usize) -> bool {
+    pub(super) fn on_segment(&self, a: usize, b: usize, c: usize) -> bool {
         self.orientation(a, b, c) == Sign::Zero
-            && strictly_between(&self.corners[a], &self.corners[b], &self.corners[c])
+            && strictly_between(self.corners[a], self.corners[b], self.corners[c])
     }
 
     /// True when the segments ab and cd cross at a point inside both.
-    fn cross_properly(&self, [a, b]: [usize; 2], [c, d]: [usize; 2]) -> bool {
+    pub(super) fn cross_properly(&self, [a, b]: [usize; 2], [c, d]: [usize; 2]) -> bool {
         let opposite = |s: Sign, t: Sign| s != Sign::Zero && s == t.flip();
         opposite(self.orientation(a, b, c), self.orientation(a, b, d))
             && opposite(self.orientation(c, d, a), self.orientation(c, d, b))
     }
 }
 
-fn check_sides(corners: &[Vector]) -> Result<(), TableFault> {
-    let k = corners.len();
-    let outline = Outline::new(corners);
-    let ends = |side: usize| [side, (side + 1) % k];
+fn check_sides(all: &Boundary<'_>) -> Result<(), TableFault> {
+    let k = all.corners.len();
+    let ends = |side: usize| [side, all.after[side]];
     for first in 0..k {
         for second in first + 1..k {
             for (side, other) in [(first, second), (second, first)] {
                 let [a, b] = ends(side);
                 for corner in ends(other) {
-                    if corner != a && corner != b && outline.on_segment(a, b, corner) {
+                    if corner != a && corner != b && all.on_segment(a, b, corner) {
                         return Err(TableFault::CornerOnSide { corner, side });
                     }
                 }
             }
-            if outline.cross_properly(ends(first), ends(second)) {
+            if all.cross_properly(ends(first), ends(second)) {
                 return Err(TableFault::SidesCross { first, second });
             }
         }
@@ -273,7 +362,7 @@ fn turn(corners: &[Vector]) -> Turn {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::table::{Table, default_letters};
+    use crate::table::{SideId, Table, default_letters};
 
     fn points(coordinates: &[(i64, i64)]) -> Vec<Vector> {
         coordinates
@@ -327,20 +416,120 @@ mod tests {
         assert_eq!(table.corners()[0], points(&[(0, 0)])[0]);
         assert_eq!(table.corners()[1], points(&[(1, 0)])[0]);
         // The side from (0,0) to (1,0) was the last one, s; the next was r.
-        assert_eq!(table.letters(), ['s', 'r', 'q', 'p']);
+        let letters: Vec<char> = (0..4).map(|s| table.letter(SideId(s))).collect();
+        assert_eq!(letters, ['s', 'r', 'q', 'p']);
+        // The letters keep the order of the file.
+        assert_eq!(table.letters(), ['p', 'q', 'r', 's']);
+    }
+
+    fn ring(coordinates: &[(i64, i64)]) -> Ring {
+        Ring {
+            corners: points(coordinates),
+            letters: default_letters(coordinates.len()),
+        }
+    }
+
+    fn with_holes(holes: &[&[(i64, i64)]]) -> Result<Table, TableFault> {
+        let outline = ring(&[(0, 0), (12, 0), (12, 12), (0, 12)]);
+        Table::with_holes(
+            "",
+            outline,
+            holes.iter().map(|h| ring(h)).collect(),
+            1.into(),
+        )
     }
 
     #[test]
-    fn a_repeated_letter_is_refused() {
-        let square = points(&[(0, 0), (1, 0), (1, 1), (0, 1)]);
-        let fault = Table::new("", square, 1.into(), vec!['a', 'b', 'a', 'c']).unwrap_err();
-        assert!(matches!(
-            fault,
-            TableFault::RepeatedLetter {
-                first: 0,
-                second: 2,
-                ..
-            }
-        ));
+    fn faults_of_holes_name_the_hole_and_the_places() {
+        let good: &[(i64, i64)] = &[(1, 1), (3, 1), (3, 3), (1, 3)];
+        let cases: [(&[(i64, i64)], TableFault); 11] = [
+            (
+                &[(5, 5), (6, 6)],
+                TableFault::HoleTooFewCorners { hole: 1, count: 2 },
+            ),
+            (
+                &[(5, 5), (6, 6), (7, 7)],
+                TableFault::HoleZeroArea { hole: 1 },
+            ),
+            (
+                &[(13, 5), (14, 5), (14, 6)],
+                TableFault::HoleOutside { hole: 1 },
+            ),
+            // The outline inside the hole.
+            (
+                &[(-1, -1), (13, -1), (13, 13), (-1, 13)],
+                TableFault::HoleOutside { hole: 1 },
+            ),
+            // A hole inside the first, and around it.
+            (
+                &[(2, 2), (2, 1), (1, 2)],
+                TableFault::CornerOnSide { corner: 9, side: 4 },
+            ),
+            (
+                &[(2, 7), (0, 6), (2, 5)],
+                TableFault::CornerOnSide { corner: 9, side: 3 },
+            ),
+            // A corner on the outline; a corner of the outline's.
+            (
+                &[(12, 5), (11, 6), (11, 4)],
+                TableFault::CornerOnSide { corner: 8, side: 1 },
+            ),
+            (
+                &[(12, 12), (11, 10), (10, 11)],
+                TableFault::RepeatedCorner {
+                    first: 2,
+                    second: 8,
+                },
+            ),
+            (
+                &[(11, 5), (13, 6), (11, 7)],
+                TableFault::SidesCross {
+                    first: 1,
+                    second: 8,
+                },
+            ),
+            (
+                &[(5, 5), (6, 5), (7, 5), (6, 6)],
+                TableFault::StraightCorner { corner: 9 },
+            ),
+            (
+                &[(2, 2), (5, 2), (5, 4)],
+                TableFault::SidesCross {
+                    first: 5,
+                    second: 8,
+                },
+            ),
+        ];
+        for (hole, fault) in cases {
+            assert_eq!(with_holes(&[good, hole]).unwrap_err(), fault);
+        }
+        let small: &[(i64, i64)] = &[(5, 5), (6, 5), (6, 6)];
+        let large: &[(i64, i64)] = &[(4, 4), (8, 4), (8, 8), (4, 8)];
+        assert_eq!(
+            with_holes(&[small, large]).unwrap_err(),
+            TableFault::HoleInHole { inner: 0, outer: 1 }
+        );
+        assert_eq!(
+            with_holes(&[large, small]).unwrap_err(),
+            TableFault::HoleInHole { inner: 1, outer: 0 }
+        );
+    }
+
+    #[test]
+    fn holes_are_turned_clockwise_with_their_letters() {
+        let counterclockwise = Ring {
+            corners: points(&[(1, 1), (3, 1), (2, 3)]),
+            letters: vec!['p', 'q', 'a'],
+        };
+        let outline = ring(&[(0, 0), (12, 0), (12, 12), (0, 12)]);
+        let table = Table::with_holes("", outline, vec![counterclockwise], 1.into()).unwrap();
+        assert_eq!(table.holes(), 1);
+        assert_eq!(table.corners()[4..], points(&[(1, 1), (2, 3), (3, 1)]));
+        assert_eq!(table.letters(), ['a', 'b', 'c', 'd', 'p', 'q']);
+        let letters: Vec<char> = (4..7).map(|s| table.letter(SideId(s))).collect();
+        assert_eq!(letters, ['a', 'q', 'p']);
+        assert_eq!((table.after(6), table.before(4)), (4, 6));
+        assert_eq!((table.after(3), table.before(0)), (0, 3));
+        assert!(!table.has_one_beam_a_word());
     }
 }

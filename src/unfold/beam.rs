@@ -60,7 +60,7 @@ pub struct Piece {
 /// Scratch space for one step through a copy; holds the result until the next step.
 #[derive(Debug)]
 pub struct Spread<E: Engine + ?Sized> {
-    /// The parts, in order of their sides' indices.
+    /// The parts, in order of their letters, and for one letter of their sides.
     pub pieces: Vec<Piece>,
     /// The cells of the parts.
     pub points: Vec<E::Point>,
@@ -106,7 +106,7 @@ pub fn start<E: Engine>(engine: &E, mesh: &Mesh, side: SideId) -> (Front<E>, [E:
 /// Follows a beam through one copy of the table, from the gate that it enters to the sides that it hits.
 ///
 /// In a simple polygon a side is reached through one sequence of triangles, so there is at most one part
-/// for each side.
+/// for each side. With holes there may be several: one for each way past the holes.
 pub fn spread<E: Engine>(
     engine: &E,
     mesh: &Mesh,
@@ -141,7 +141,8 @@ pub fn spread<E: Engine>(
             }
         }
     }
-    out.pieces.sort_unstable_by_key(|piece| piece.side);
+    out.pieces
+        .sort_unstable_by_key(|piece| (mesh.letter(piece.side), piece.side));
 }
 
 impl<E: Engine> Spread<E> {

@@ -7,18 +7,25 @@
 //!   1, θ, …, θ^(d−1). They grow linearly with the crossings. The orientation is a polynomial in θ of
 //!   degree at most 2d − 2 with `i128` coefficients, reduced by the minimal polynomial; it is zero
 //!   exactly when all reduced coefficients are. Every operation is checked; an overflow falls through.
-//! - *Any group*: a pose is an exact isometry with big coordinates, whose length grows linearly.
+//! - *Any group*: a symmetry of the path may prove a zero ([`symmetry`](super::symmetry)); enclosures of [`WIDE`] bits
+//!   settle most other signs ([`wide_path`](super::wide_path)); integers of any size settle all
+//!   ([`big_path`](super::big_path)).
 //!
 //! Distances are wanted as enclosures only, so they have a path of their own: enclosed isometries, which
 //! cost the same at every depth.
 
+use super::big_path::{BigPath, BigTables};
 use super::engine::ExactTrail;
 use super::group::{FiniteGroup, scaled_coordinates};
 use super::isometry::{Isometry, side_reflections};
+use super::symmetry::Symmetries;
 use super::wide_path::{WidePath, WideTables};
 use crate::number::{Enclosure, Field, Real, Sign, Tiers};
 use crate::table::{CornerId, SideId, Table, Vector};
 use rug::Integer;
+
+/// Bits of the enclosures that are tried before integers of any size.
+pub const WIDE: u32 = 192;
 
 /// The name of a corner image on a path.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
@@ -37,6 +44,10 @@ pub struct ExactTables {
     corners: Vec<Vector>,
     reflections: Vec<Isometry>,
     finite: Option<FiniteTables>,
+    symmetries: Symmetries,
+    big: BigTables,
+    /// False to leave out everything but integers of any size.
+    shortcuts: bool,
 }
 
 /// The finite group over the integer lattice of the field.
@@ -62,7 +73,7 @@ pub struct ExactPath {
     elements: Vec<u16>,
     translations: Vec<i64>,
     row: usize,
-    big: Vec<Isometry>,
+    big: BigPath,
     wide: WidePath,
 }
 
@@ -73,9 +84,7 @@ impl ExactTrail for ExactPath {
             self.elements.truncate(crossings + 1);
             self.translations.truncate((crossings + 1) * self.row);
         }
-        if self.big.len() > crossings + 1 {
-            self.big.truncate(crossings + 1);
-        }
+        self.big.keep(crossings);
         self.wide.keep(crossings);
     }
 }
@@ -83,12 +92,25 @@ impl ExactTrail for ExactPath {
 impl ExactTables {
     /// Prepares exact answers for a table; with a group, machine integers come first.
     pub fn new(table: &Table, group: Option<&FiniteGroup>) -> ExactTables {
+        let reflections = side_reflections(table);
         ExactTables {
             field: table.field().clone(),
             form: table.form().clone(),
             corners: table.corners().to_vec(),
-            reflections: side_reflections(table),
             finite: group.and_then(|group| FiniteTables::new(table, group)),
+            symmetries: Symmetries::new(table),
+            big: BigTables::new(table.field(), table.form(), table.corners(), &reflections),
+            shortcuts: true,
+            reflections,
+        }
+    }
+
+    /// Leaves out everything but integers of any size.
+    pub fn without_shortcuts(self) -> ExactTables {
+        ExactTables {
+            finite: None,
+            shortcuts: false,
+            ..self
         }
     }
 
@@ -99,7 +121,7 @@ impl ExactTables {
             elements: Vec::new(),
             translations: Vec::new(),
             row: self.finite.as_ref().map_or(0, |f| 2 * f.degree),
-            big: Vec::new(),
+            big: BigPath::default(),
             wide: WidePath::default(),
         }
     }
@@ -124,39 +146,59 @@ impl ExactTables {
             tiers.integer += 1;
             return sign;
         }
-        tiers.big += 1;
         let (a, b, v) = points;
-        let a = a.map_or(Vector::new(0.into(), 0.into()), |a| {
-            self.position(path, sides, a)
+        // A walk that asks about the origin has a corner there.
+        let a = a.unwrap_or_else(|| ImageName {
+            crossings: 0,
+            corner: path.origin.expect("a walk of rays has an origin"),
         });
-        let b = self.position(path, sides, b);
-        let v = self.position(path, sides, v);
-        b.minus(&a).cross(&v.minus(&a)).sign()
+        if self.shortcuts {
+            if self.symmetries.prove_collinear(sides, a, b, v) {
+                tiers.symmetry += 1;
+                debug_assert_eq!(self.big.turn(&mut path.big, sides, [a, b, v]), Sign::Zero);
+                return Sign::Zero;
+            }
+            if let Some(sign) = self.wide_turn(path, sides, [a, b, v]) {
+                tiers.enclosure += 1;
+                return sign;
+            }
+        }
+        tiers.big += 1;
+        self.big.turn(&mut path.big, sides, [a, b, v])
     }
 
-    /// The exact position of a corner image.
+    /// The exact position of a corner image, up to a translation that is the same for the whole path.
     pub fn position(&self, path: &mut ExactPath, sides: &[SideId], name: ImageName) -> Vector {
         if let Some(finite) = &self.finite
             && let Some(row) = finite.position(path, sides, name)
         {
             return finite.vector(&self.field, &row);
         }
-        if path.big.is_empty() {
-            path.big.push(match path.origin {
-                Some(corner) => {
-                    Isometry::translation(self.corners[corner.0 as usize].times(&(-1).into()))
-                }
-                None => Isometry::identity(),
-            });
+        self.big.position(&mut path.big, sides, name)
+    }
+
+    /// The orientation, when enclosures of [`WIDE`] bits settle it.
+    fn wide_turn(
+        &self,
+        path: &mut ExactPath,
+        sides: &[SideId],
+        images: [ImageName; 3],
+    ) -> Option<Sign> {
+        let form = self.form.enclosure(WIDE);
+        let tables = self.wide_tables(&form);
+        let [a, b, v] = images.map(|name| path.wide.position(&tables, sides, name, WIDE));
+        let minus = |p: &[Enclosure; 2]| [p[0].sub(&a[0]), p[1].sub(&a[1])];
+        let (b, v) = (minus(&b), minus(&v));
+        let cross = b[0].mul(&v[1]).sub(&b[1].mul(&v[0]));
+        cross.sign().filter(|sign| *sign != Sign::Zero)
+    }
+
+    fn wide_tables<'a>(&'a self, form: &'a Enclosure) -> WideTables<'a> {
+        WideTables {
+            corners: &self.corners,
+            reflections: &self.reflections,
+            form,
         }
-        while path.big.len() <= name.crossings as usize {
-            let side = sides[path.big.len() - 1];
-            let last = path.big.last().expect("starts with the home pose");
-            path.big
-                .push(last.after(&self.reflections[side.0 as usize], &self.form));
-        }
-        let corner = &self.corners[name.corner.0 as usize];
-        path.big[name.crossings as usize].apply(corner, &self.form)
     }
 }
 
@@ -187,11 +229,7 @@ impl ExactTables {
             let square = norm(&coordinate(x), &coordinate(y), &form);
             return square.div_integer(&finite.scale).div_integer(&finite.scale);
         }
-        let tables = WideTables {
-            corners: &self.corners,
-            reflections: &self.reflections,
-            form: &form,
-        };
+        let tables = self.wide_tables(&form);
         let [ax, ay] = path.wide.position(&tables, sides, a, precision);
         let [bx, by] = path.wide.position(&tables, sides, b, precision);
         norm(&bx.sub(&ax), &by.sub(&ay), &form)

@@ -125,6 +125,7 @@ impl Filtered {
     pub fn big_only(table: &Table, deepest: usize) -> Filtered {
         let mut engine = Filtered::new(table, None, deepest);
         engine.bound.fill(f64::INFINITY);
+        engine.exact = engine.exact.without_shortcuts();
         engine
     }
 

@@ -98,7 +98,10 @@ impl Isometry {
 /// The reflection in each side of a table.
 pub fn side_reflections(table: &Table) -> Vec<Isometry> {
     (0..table.sides())
-        .map(|i| Isometry::reflection(table.corner(i), table.corner(i + 1), table.form()))
+        .map(|i| {
+            let next = table.corner(table.after(i));
+            Isometry::reflection(table.corner(i), next, table.form())
+        })
         .collect()
 }
 

@@ -6,7 +6,7 @@
 //! of the table left and right change places, which is why each gate has two entries, by parity.
 
 use crate::table::triangulation::{Beyond, Triangle, triangulate};
-use crate::table::{CornerId, SideId, Table};
+use crate::table::{CornerId, LetterId, SideId, Table};
 
 /// The index of a gate: edge j of triangle t is gate 3t + j.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -58,15 +58,20 @@ pub struct Mesh {
     /// Left and right end of each gate in an unmirrored copy.
     ends: Vec<(CornerId, CornerId)>,
     wedges: Vec<Wedge>,
+    /// The letter of each side.
+    letters: Vec<LetterId>,
+    letter_count: usize,
+    one_beam_a_word: bool,
 }
 
 impl Mesh {
     /// Triangulates a table and joins the triangles.
     pub fn new(table: &Table) -> Mesh {
-        Mesh::from_triangles(&triangulate(table), table.sides())
+        Mesh::from_triangles(&triangulate(table), table)
     }
 
-    fn from_triangles(triangles: &[Triangle], k: usize) -> Mesh {
+    fn from_triangles(triangles: &[Triangle], table: &Table) -> Mesh {
+        let k = table.sides();
         let gate = |t: usize, j: usize| GateId((3 * t + j % 3) as u16);
         let exit = |t: usize, j: usize| match triangles[t].beyond[j % 3] {
             Beyond::Side(side) => Exit::Bounce(side, gate(t, j)),
@@ -111,6 +116,9 @@ impl Mesh {
             sides,
             ends,
             wedges,
+            letters: (0..k).map(|s| table.letter_id(SideId(s as u8))).collect(),
+            letter_count: table.letters().len(),
+            one_beam_a_word: table.has_one_beam_a_word(),
         }
     }
 
@@ -143,5 +151,21 @@ impl Mesh {
     /// The number of sides of the table.
     pub fn side_count(&self) -> usize {
         self.sides.len()
+    }
+
+    /// The letter of a side.
+    #[inline(always)]
+    pub fn letter(&self, side: SideId) -> LetterId {
+        self.letters[side.0 as usize]
+    }
+
+    /// The number of letters.
+    pub fn letter_count(&self) -> usize {
+        self.letter_count
+    }
+
+    /// True when every word is one beam: see [`Table::has_one_beam_a_word`].
+    pub fn has_one_beam_a_word(&self) -> bool {
+        self.one_beam_a_word
     }
 }

@@ -4,7 +4,7 @@
 //! with the least travelling time; all numbers are exact rationals, so that a corner is hit or not, never
 //! nearly. Cost: k cross products for each hit; the numbers grow linearly in the count of hits.
 
-use super::{Point, along, between, cross, dot, mirrored};
+use super::{Domain, Point, along, between, cross, dot, mirrored};
 use rug::{Integer, Rational};
 
 /// What [`trace`] saw.
@@ -30,7 +30,7 @@ pub enum Meeting {
 /// A moving point of the closed table whose velocity points into the table.
 #[derive(Clone, Debug)]
 pub struct Ball<'a> {
-    corners: &'a [Point],
+    domain: &'a Domain,
     point: Point,
     velocity: Point,
 }
@@ -41,27 +41,27 @@ impl<'a> Ball<'a> {
     /// # Panics
     /// When the fraction isn't strictly between 0 and 1, or the velocity doesn't point inwards.
     pub fn on_side(
-        corners: &'a [Point],
+        domain: &'a Domain,
         side: usize,
         fraction: &Rational,
         velocity: Point,
     ) -> Ball<'a> {
         assert!(*fraction > 0 && *fraction < 1, "fraction {fraction}");
-        let direction = side_vector(corners, side);
+        let direction = domain.side_vector(side);
         assert!(cross(&direction, &velocity) > 0, "aim leaves the table");
         Ball {
-            corners,
-            point: along(&corners[side], fraction, &direction),
+            domain,
+            point: along(&domain.corners[side], fraction, &direction),
             velocity: primitive(&velocity),
         }
     }
 
     /// A ball that leaves `corner` strictly between its two sides, or nothing when the velocity points
     /// outwards or runs along a side.
-    pub fn at_corner(corners: &'a [Point], corner: usize, velocity: Point) -> Option<Ball<'a>> {
-        let k = corners.len();
-        let next = between(&corners[corner], &corners[(corner + 1) % k]);
-        let previous = between(&corners[corner], &corners[(corner + k - 1) % k]);
+    pub fn at_corner(domain: &'a Domain, corner: usize, velocity: Point) -> Option<Ball<'a>> {
+        let corners = &domain.corners;
+        let next = domain.side_vector(corner);
+        let previous = between(&corners[corner], &corners[domain.previous(corner)]);
         let inside = if cross(&next, &previous) > 0 {
             cross(&next, &velocity) > 0 && cross(&velocity, &previous) > 0
         } else {
@@ -69,7 +69,7 @@ impl<'a> Ball<'a> {
             !(cross(&previous, &velocity) >= 0 && cross(&velocity, &next) >= 0)
         };
         inside.then(|| Ball {
-            corners,
+            domain,
             point: corners[corner].clone(),
             velocity: primitive(&velocity),
         })
@@ -79,8 +79,9 @@ impl<'a> Ball<'a> {
     ///
     /// The side or corner that the ball is on is met at time 0 exactly, which doesn't count.
     pub fn advance(&mut self) -> Meeting {
-        let k = self.corners.len();
+        let k = self.domain.corners.len();
         let offsets: Vec<Point> = self
+            .domain
             .corners
             .iter()
             .map(|c| between(&self.point, c))
@@ -93,7 +94,7 @@ impl<'a> Ball<'a> {
             }
         };
         for i in 0..k {
-            let j = (i + 1) % k;
+            let j = self.domain.next[i];
             if heights[i].is_zero() {
                 let time = dot(&self.velocity, &offsets[i]) / dot(&self.velocity, &self.velocity);
                 offer(time, Meeting::Corner(i));
@@ -101,7 +102,7 @@ impl<'a> Ball<'a> {
             let straddles =
                 heights[i].cmp0() == heights[j].cmp0().reverse() && !heights[i].is_zero();
             if straddles {
-                let direction = side_vector(self.corners, i);
+                let direction = self.domain.side_vector(i);
                 let time = cross(&offsets[i], &direction) / cross(&self.velocity, &direction);
                 offer(time, Meeting::Side(i));
             }
@@ -109,7 +110,7 @@ impl<'a> Ball<'a> {
         let (time, meeting) = first.expect("a ball inside a bounded table meets its boundary");
         if let Meeting::Side(side) = meeting {
             self.point = along(&self.point, &time, &self.velocity);
-            let axis = side_vector(self.corners, side);
+            let axis = self.domain.side_vector(side);
             self.velocity = primitive(&mirrored(&self.velocity, &axis));
         }
         meeting
@@ -135,7 +136,18 @@ pub fn trace(
     aim: (&Rational, &Rational),
     hits: usize,
 ) -> Trace {
-    let mut ball = Ball::on_side(corners, side, fraction, (aim.0.clone(), aim.1.clone()));
+    trace_in(&Domain::polygon(corners), side, fraction, aim, hits)
+}
+
+/// [`trace`] in a table that may have holes.
+pub fn trace_in(
+    domain: &Domain,
+    side: usize,
+    fraction: &Rational,
+    aim: (&Rational, &Rational),
+    hits: usize,
+) -> Trace {
+    let mut ball = Ball::on_side(domain, side, fraction, (aim.0.clone(), aim.1.clone()));
     let mut seen = Trace {
         sides: vec![side],
         points: vec![ball.point.clone()],
@@ -156,10 +168,6 @@ pub fn trace(
     seen.sides.truncate(hits);
     seen.points.truncate(hits);
     seen
-}
-
-fn side_vector(corners: &[Point], side: usize) -> Point {
-    between(&corners[side], &corners[(side + 1) % corners.len()])
 }
 
 /// The same direction with coprime integer coordinates; keeps the numbers short.

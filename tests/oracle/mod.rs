@@ -1,8 +1,10 @@
 //! A slow oracle for the coding languages of polygonal billiards, written from the definition.
 //!
 //! It shares no code with the crate: exact rationals and integers are all it needs. A table is a simple
-//! polygon with rational corners in counterclockwise order; side i joins corner i to corner i + 1. The word
-//! of an orbit piece is the list of sides that it hits, the side it starts on included.
+//! polygon with rational corners in counterclockwise order; side i joins corner i to corner i + 1. It may have
+//! holes ([`Domain`]): their corners follow, clockwise, so the table is on the left of every side. The word
+//! of an orbit piece is the list of sides that it hits, the side it starts on included; where sides share
+//! letters, the list of their letters.
 //!
 //! - [`fold`]: one orbit, traced by reflecting the velocity inside the table.
 //! - [`unfold`]: all words and all generalized diagonals, from the finitely many ways in which a line can
@@ -16,14 +18,60 @@ pub mod fold;
 pub mod shapes;
 pub mod unfold;
 
-pub use fold::{Trace, trace};
+pub use fold::{Trace, trace, trace_in};
 pub use shapes::{is_convex, is_table, random_polygon};
-pub use unfold::{diagonals, languages};
+pub use unfold::{diagonals, diagonals_in, languages, languages_in};
 
 use rug::Rational;
 
 /// A point or vector of the plane.
 pub type Point = (Rational, Rational);
+
+/// A polygon with holes: all corners, and which corner follows each on its ring.
+#[derive(Clone, Debug)]
+pub struct Domain {
+    pub corners: Vec<Point>,
+    pub next: Vec<usize>,
+}
+
+impl Domain {
+    pub fn polygon(corners: &[Point]) -> Domain {
+        Domain::with_holes(corners, &[])
+    }
+
+    /// The outline counterclockwise, holes clockwise.
+    pub fn with_holes(outline: &[Point], holes: &[Vec<Point>]) -> Domain {
+        let mut corners = outline.to_vec();
+        let mut next: Vec<usize> = (1..outline.len()).chain([0]).collect();
+        for hole in holes {
+            let first = corners.len();
+            corners.extend(hole.iter().cloned());
+            next.extend((first + 1..corners.len()).chain([first]));
+        }
+        Domain { corners, next }
+    }
+
+    pub fn previous(&self, corner: usize) -> usize {
+        let found = self.next.iter().position(|&n| n == corner);
+        found.expect("a ring is closed")
+    }
+
+    pub fn side_vector(&self, side: usize) -> Point {
+        between(&self.corners[side], &self.corners[self.next[side]])
+    }
+}
+
+/// A language with the letters of the sides: `letters[i]` is the letter of side i.
+pub fn lettered(
+    languages: &[std::collections::BTreeSet<Vec<u8>>],
+    letters: &[u8],
+) -> Vec<std::collections::BTreeSet<Vec<u8>>> {
+    let spell = |word: &Vec<u8>| word.iter().map(|&s| letters[s as usize]).collect();
+    languages
+        .iter()
+        .map(|words| words.iter().map(spell).collect())
+        .collect()
+}
 
 /// The vector from `from` to `to`.
 pub fn between(from: &Point, to: &Point) -> Point {

@@ -36,7 +36,7 @@
 //! few traces for each pair kept.
 
 use super::fold::{Ball, Meeting};
-use super::{Point, along, between, cross, dot, mirrored};
+use super::{Domain, Point, along, between, cross, dot, mirrored};
 use rug::{Integer, Rational};
 use std::cmp::Ordering;
 use std::collections::BTreeSet;
@@ -45,6 +45,13 @@ use std::rc::Rc;
 /// The languages L₀ … L_longest of the table: `result[n]` has the words of length n of orbit pieces that
 /// meet no corner. L₀ has the empty word.
 pub fn languages(corners: &[Point], longest: usize) -> Vec<BTreeSet<Vec<u8>>> {
+    languages_in(&Domain::polygon(corners), longest)
+}
+
+/// [`languages`] of a table that may have holes. The argument of the module does not ask for one ring: two
+/// sides have no common point but a corner, whichever rings they belong to.
+pub fn languages_in(domain: &Domain, longest: usize) -> Vec<BTreeSet<Vec<u8>>> {
+    let corners = &domain.corners;
     assert!(corners.len() >= 3 && corners.len() <= 255);
     let mut found = vec![BTreeSet::new(); longest + 1];
     found[0].insert(Vec::new());
@@ -54,7 +61,7 @@ pub fn languages(corners: &[Point], longest: usize) -> Vec<BTreeSet<Vec<u8>>> {
     for side in 0..corners.len() {
         // Every side starts an orbit piece of length 1: aim inwards from its middle.
         found[1].insert(vec![side as u8]);
-        let mut search = Search::new(corners, side, longest);
+        let mut search = Search::new(domain, side, longest);
         search.grow(&Vec::new(), 0, &mut found);
     }
     found
@@ -69,15 +76,20 @@ pub fn languages(corners: &[Point], longest: usize) -> Vec<BTreeSet<Vec<u8>>> {
 /// folded table. Two segments that differ have different words or different end corners, since word and
 /// corners fix the segment in the unfolding.
 pub fn diagonals(corners: &[Point], longest: usize) -> Vec<usize> {
-    let words = languages(corners, longest);
+    diagonals_in(&Domain::polygon(corners), longest)
+}
+
+/// [`diagonals`] in a table that may have holes.
+pub fn diagonals_in(domain: &Domain, longest: usize) -> Vec<usize> {
+    let words = languages_in(domain, longest);
     words
         .iter()
-        .map(|level| level.iter().map(|w| diagonals_along(corners, w)).sum())
+        .map(|level| level.iter().map(|w| diagonals_along(domain, w)).sum())
         .collect()
 }
 
-fn diagonals_along(corners: &[Point], word: &[u8]) -> usize {
-    let mut unfolding = Unfolding::new(corners);
+fn diagonals_along(domain: &Domain, word: &[u8]) -> usize {
+    let mut unfolding = Unfolding::new(domain);
     for &side in word {
         unfolding.cross_side(side as usize);
     }
@@ -99,7 +111,7 @@ fn diagonals_along(corners: &[Point], word: &[u8]) -> usize {
             let expected = word.iter().map(|&s| Meeting::Side(s as usize));
             let expected = expected.chain([Meeting::Corner(end)]);
             let velocity = between(&tail.place, &head.place);
-            if Ball::at_corner(corners, start, velocity).is_some_and(|b| b.meets(expected)) {
+            if Ball::at_corner(domain, start, velocity).is_some_and(|b| b.meets(expected)) {
                 count += 1;
             }
         }
@@ -160,14 +172,17 @@ struct Unfolding {
     points: Vec<Corner>,
     copies: Vec<Vec<usize>>,
     gates: Vec<Gate>,
+    next: Vec<usize>,
 }
 
 impl Unfolding {
-    fn new(corners: &[Point]) -> Unfolding {
+    fn new(domain: &Domain) -> Unfolding {
+        let corners = &domain.corners;
         Unfolding {
             points: corners.iter().cloned().map(Corner::new).collect(),
             copies: vec![(0..corners.len()).collect()],
             gates: Vec::new(),
+            next: domain.next.clone(),
         }
     }
 
@@ -178,7 +193,7 @@ impl Unfolding {
     /// The gate of a line that leaves the last copy through `side`.
     fn exit(&self, side: usize) -> Gate {
         let last = self.last();
-        let (first, second) = (last[side], last[(side + 1) % last.len()]);
+        let (first, second) = (last[side], last[self.next[side]]);
         // Whoever leaves a counterclockwise polygon has the side's second corner on the left.
         if self.copies.len() % 2 == 1 {
             Gate {
@@ -198,7 +213,7 @@ impl Unfolding {
         self.gates.push(self.exit(side));
         let last = self.last().to_vec();
         let foot = self.points[last[side]].place.clone();
-        let axis = between(&foot, &self.points[last[(side + 1) % last.len()]].place);
+        let axis = between(&foot, &self.points[last[self.next[side]]].place);
         let one = Rational::from(1);
         let image = last
             .iter()
@@ -251,15 +266,15 @@ impl Candidate {
 
 /// Depth-first search over the words that start with one side.
 struct Search<'a> {
-    corners: &'a [Point],
+    domain: &'a Domain,
     longest: usize,
     word: Vec<u8>,
     unfolding: Unfolding,
 }
 
 impl<'a> Search<'a> {
-    fn new(corners: &'a [Point], side: usize, longest: usize) -> Search<'a> {
-        let mut unfolding = Unfolding::new(corners);
+    fn new(domain: &'a Domain, side: usize, longest: usize) -> Search<'a> {
+        let mut unfolding = Unfolding::new(domain);
         // The line enters the table through the starting side: left and right are those of an exit, swapped.
         let exit = unfolding.exit(side);
         unfolding.gates.push(Gate {
@@ -267,7 +282,7 @@ impl<'a> Search<'a> {
             right: exit.left,
         });
         Search {
-            corners,
+            domain,
             longest,
             word: vec![side as u8],
             unfolding,
@@ -285,7 +300,7 @@ impl<'a> Search<'a> {
             candidate.watch(&self.unfolding.points);
         }
         self.add_pairs(old, &mut candidates);
-        for side in 0..self.corners.len() {
+        for side in 0..self.domain.corners.len() {
             let gate = self.unfolding.exit(side);
             let passing: Vec<Candidate> = candidates
                 .iter()
@@ -386,11 +401,11 @@ impl<'a> Search<'a> {
     /// Traces the line through `point`, which enters the table through the starting side.
     fn reads(&self, point: &Point, velocity: Point, side: usize) -> bool {
         let start = self.word[0] as usize;
-        let foot = &self.corners[start];
-        let axis = between(foot, &self.corners[(start + 1) % self.corners.len()]);
+        let foot = &self.domain.corners[start];
+        let axis = self.domain.side_vector(start);
         let fraction = cross(&between(foot, point), &velocity) / cross(&axis, &velocity);
         let sides = self.word[1..].iter().map(|&s| s as usize).chain([side]);
-        Ball::on_side(self.corners, start, &fraction, velocity).meets(sides.map(Meeting::Side))
+        Ball::on_side(self.domain, start, &fraction, velocity).meets(sides.map(Meeting::Side))
     }
 
     /// A point and the direction of a line with the wanted signs: `sign` for the first `before` points on the

@@ -49,21 +49,21 @@ pub fn direction_language(
     if longest > MOST_ADDITIONS {
         return Err(DirectionFault::TooLong { length: longest });
     }
-    let k = flow.table().sides();
+    let k = flow.table().letters().len();
     let mut levels: Vec<(Vec<u8>, Vec<WordId>)> = Vec::new();
     // The parts of the present level, word by word.
     let mut words: Vec<Vec<Part>> = Vec::new();
     if longest > 0 {
-        let mut by_side: Vec<Vec<Part>> = (0..k).map(|_| Vec::new()).collect();
+        let mut by_letter: Vec<Vec<Part>> = (0..k).map(|_| Vec::new()).collect();
         for (index, cell) in flow.cells().iter().enumerate() {
-            by_side[cell.side.0 as usize].push(Part {
+            by_letter[letter_of(flow, index)].push(Part {
                 cell: index as u32,
                 low: cell.low.clone(),
                 high: cell.high.clone(),
             });
         }
         let mut letters = Vec::new();
-        for (letter, parts) in by_side.into_iter().enumerate() {
+        for (letter, parts) in by_letter.into_iter().enumerate() {
             if !parts.is_empty() {
                 letters.push(letter as u8);
                 words.push(parts);
@@ -77,12 +77,12 @@ pub fn direction_language(
         let (mut letters, mut parents) = (Vec::new(), Vec::new());
         let mut steps = 0;
         for (parent, parts) in words.iter().enumerate() {
-            let mut by_side: Vec<Vec<Part>> = (0..k).map(|_| Vec::new()).collect();
+            let mut by_letter: Vec<Vec<Part>> = (0..k).map(|_| Vec::new()).collect();
             for part in parts {
                 steps += 1;
-                follow(flow, part, &mut by_side);
+                follow(flow, part, &mut by_letter);
             }
-            for (letter, parts) in by_side.into_iter().enumerate() {
+            for (letter, parts) in by_letter.into_iter().enumerate() {
                 if !parts.is_empty() {
                     letters.push(letter as u8);
                     parents.push(parent as WordId);
@@ -98,7 +98,7 @@ pub fn direction_language(
 }
 
 /// Takes a part through the branches of its cell.
-fn follow(flow: &Flow, part: &Part, by_side: &mut [Vec<Part>]) {
+fn follow(flow: &Flow, part: &Part, by_letter: &mut [Vec<Part>]) {
     let range = flow.cells()[part.cell as usize].branches.clone();
     for branch in &flow.branches()[range] {
         if flow.order(&branch.high, &part.low) != Ordering::Greater {
@@ -115,11 +115,15 @@ fn follow(flow: &Flow, part: &Part, by_side: &mut [Vec<Part>]) {
             Ordering::Less => &branch.high,
             _ => &part.high,
         };
-        let side = flow.cells()[branch.target].side.0 as usize;
-        by_side[side].push(Part {
+        let letter = letter_of(flow, branch.target);
+        by_letter[letter].push(Part {
             cell: branch.target as u32,
             low: low.plus(&branch.shift),
             high: high.plus(&branch.shift),
         });
     }
+}
+
+fn letter_of(flow: &Flow, cell: usize) -> usize {
+    flow.table().letter_id(flow.cells()[cell].side).0 as usize
 }

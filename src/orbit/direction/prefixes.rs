@@ -8,7 +8,7 @@
 
 use crate::number::Real;
 use crate::run::{Control, Stopped};
-use crate::table::{SideId, Table, Vector};
+use crate::table::{LetterId, SideId, Table, Vector};
 use crate::unfold::isometry::side_reflections;
 use crate::unfold::mesh::{Exit, GateId};
 use crate::unfold::{Isometry, Mesh};
@@ -18,11 +18,12 @@ use crate::unfold::{Isometry, Mesh};
 pub struct Prefixes {
     /// Entry n: how many words of length n, from 0.
     pub counts: Vec<u64>,
-    /// The words of the greatest length, in the order of the sides.
-    pub words: Vec<Vec<SideId>>,
+    /// The words of the greatest length, in the order of the letters.
+    pub words: Vec<Vec<LetterId>>,
 }
 
 struct Walk<'a> {
+    table: &'a Table,
     mesh: Mesh,
     corners: &'a [Vector],
     form: &'a Real,
@@ -31,7 +32,6 @@ struct Walk<'a> {
     control: &'a Control,
     longest: usize,
     found: Prefixes,
-    word: Vec<SideId>,
 }
 
 /// Lines between two moments that have just entered a copy through a gate.
@@ -57,6 +57,7 @@ pub fn prefixes(
 ) -> Result<Prefixes, Stopped> {
     assert!(!aim.is_zero(), "the zero vector has no direction");
     let mut walk = Walk {
+        table,
         mesh: Mesh::new(table),
         corners: table.corners(),
         form: table.form(),
@@ -68,56 +69,75 @@ pub fn prefixes(
             counts: vec![0; longest + 1],
             words: Vec::new(),
         },
-        word: Vec::new(),
     };
     walk.found.counts[0] = 1;
     if longest == 0 {
         walk.found.words.push(Vec::new());
         return Ok(walk.found);
     }
+    let mut first: Vec<(LetterId, Band)> = Vec::new();
     for side in 0..table.sides() {
         let (low, high) = (
-            aim.cross(table.corner(side + 1)),
+            aim.cross(table.corner(table.after(side))),
             aim.cross(table.corner(side)),
         );
         if low < high {
             let side = SideId(side as u8);
-            let gate = walk.mesh.gate_of_side(side);
-            walk.follow(
-                side,
-                Band {
-                    pose: Isometry::identity(),
-                    gate,
-                    low,
-                    high,
-                },
-            )?;
+            let band = Band {
+                pose: Isometry::identity(),
+                gate: walk.mesh.gate_of_side(side),
+                low,
+                high,
+            };
+            first.push((table.letter_id(side), band));
         }
     }
+    walk.follow(first)?;
     Ok(walk.found)
 }
 
+/// Bands by letter, the letters in order.
+fn grouped(mut bands: Vec<(LetterId, Band)>) -> Vec<(LetterId, Vec<Band>)> {
+    bands.sort_by_key(|(letter, _)| *letter);
+    let mut groups: Vec<(LetterId, Vec<Band>)> = Vec::new();
+    for (letter, band) in bands {
+        match groups.last_mut() {
+            Some((last, group)) if *last == letter => group.push(band),
+            _ => groups.push((letter, vec![band])),
+        }
+    }
+    groups
+}
+
 impl Walk<'_> {
-    fn follow(&mut self, first: SideId, band: Band) -> Result<(), Stopped> {
-        // Depth first, on a stack of its own: words may be long.
-        let mut stack = vec![(1, first, band)];
-        while let Some((length, side, band)) = stack.pop() {
-            self.word.truncate(length - 1);
-            self.word.push(side);
+    /// Depth first, on a stack of its own: words may be long. A word with holes or shared letters may have
+    /// several bands.
+    fn follow(&mut self, first: Vec<(LetterId, Band)>) -> Result<(), Stopped> {
+        let mut word: Vec<LetterId> = Vec::new();
+        let mut stack: Vec<(usize, LetterId, Vec<Band>)> = Vec::new();
+        let mut next = grouped(first);
+        loop {
+            let length = word.len() + 1;
+            stack.extend(
+                next.drain(..)
+                    .rev()
+                    .map(|(letter, bands)| (length, letter, bands)),
+            );
+            let Some((length, letter, bands)) = stack.pop() else {
+                return Ok(());
+            };
+            word.truncate(length - 1);
+            word.push(letter);
             self.found.counts[length] += 1;
             self.control.tick(1)?;
             if length == self.longest {
-                self.found.words.push(self.word.clone());
-                continue;
+                self.found.words.push(word.clone());
+            } else {
+                let beyond = bands.into_iter().flat_map(|band| self.beyond(band));
+                let letters = beyond.map(|(side, band)| (self.table.letter_id(side), band));
+                next = grouped(letters.collect());
             }
-            let mut next = self.beyond(band);
-            next.sort_by_key(|(side, _)| std::cmp::Reverse(*side));
-            stack.extend(
-                next.into_iter()
-                    .map(|(side, band)| (length + 1, side, band)),
-            );
         }
-        Ok(())
     }
 
     /// The bands that leave a copy, with the sides they leave by.

@@ -144,10 +144,9 @@ fn strip(flow: &Flow, boundaries: &[Vec<Height>], cycle: &[Stage]) -> DirectionS
         &boundaries[stage.cell][stage.interval + 1].exact,
     );
     let middle = (low + high) * Real::from(Rational::from((1, 2)));
-    let k = flow.table().sides();
-    let corner = |i: usize| &flow.height(cell.copy, CornerId((i % k) as u8)).exact;
+    let corner = |i: usize| &flow.height(cell.copy, CornerId(i as u8)).exact;
     let side = cell.side.0 as usize;
-    let (first, second) = (corner(side), corner(side + 1));
+    let (first, second) = (corner(side), corner(flow.table().after(side)));
     // What the crossings take from the way, the flow has added.
     let way = cycle
         .iter()

@@ -13,7 +13,7 @@ pub(super) const FUNCTIONS: [&str; 5] = ["sqrt", "cos", "sin", "tan", "root"];
 
 /// A number, or a rational multiple of π, which is good for an angle only.
 #[derive(Clone, Debug)]
-enum Value {
+pub(super) enum Value {
     Number(Real),
     Angle(Rational),
 }
@@ -32,12 +32,17 @@ pub(super) fn number(evaluator: &mut Evaluator, node: &Node) -> Outcome<Real> {
     }
 }
 
-fn value(evaluator: &mut Evaluator, node: &Node) -> Outcome<Value> {
+/// The value of a tree, which may be an angle.
+pub(super) fn value(evaluator: &mut Evaluator, node: &Node) -> Outcome<Value> {
     let span = &node.span;
     match &node.kind {
         Kind::Number(value) => Ok(Value::Number(Real::from(value.clone()))),
         Kind::Name(name) if name == "pi" => Ok(Value::Angle(Rational::from(1))),
-        Kind::Name(name) => Err(unknown_name(name, span)),
+        Kind::Name(name) => match evaluator.names.get(name) {
+            Some(Value::Number(number)) => Ok(Value::Number(evaluator.lift(number))),
+            Some(Value::Angle(part)) => Ok(Value::Angle(part.clone())),
+            None => Err(unknown_name(evaluator, name, span)),
+        },
         Kind::Negated(inner) => Ok(match value(evaluator, inner)? {
             Value::Number(number) => Value::Number(-number),
             Value::Angle(part) => Value::Angle(-part),
@@ -57,13 +62,19 @@ fn value(evaluator: &mut Evaluator, node: &Node) -> Outcome<Value> {
     }
 }
 
-pub(super) fn unknown_name(name: &str, span: &Range<usize>) -> ExpressionFault {
+fn unknown_name(evaluator: &Evaluator, name: &str, span: &Range<usize>) -> ExpressionFault {
+    let defined: Vec<String> = evaluator.names.keys().map(|n| format!("`{n}`")).collect();
     let help = match name {
         "x" => "`x` stands only in the polynomial of `root(polynomial, value)`".to_string(),
         _ if FUNCTIONS.contains(&name) => {
             format!("write its argument in parentheses: `{name}(...)`")
         }
         _ if name.eq_ignore_ascii_case("pi") => "write `pi`".to_string(),
+        _ if !defined.is_empty() => format!(
+            "known are {}, `pi` and the functions {}",
+            defined.join(", "),
+            FUNCTIONS.join(", ")
+        ),
         _ => format!("known are `pi` and the functions {}", FUNCTIONS.join(", ")),
     };
     ExpressionFault::new(span, format!("unknown name `{name}`"), help)
@@ -243,7 +254,9 @@ fn call(
     if !FUNCTIONS.contains(&name) {
         let message = format!("unknown function `{name}`");
         let help = match name {
-            "pi" => "write `pi*(...)` for a product".to_string(),
+            _ if name == "pi" || evaluator.names.contains_key(name) => {
+                format!("write `{name}*(...)` for a product")
+            }
             "cbrt" => "write `root(x^3 - 2, 1.26)` for the cube root of 2".to_string(),
             _ => format!("known functions are {}", FUNCTIONS.join(", ")),
         };
@@ -322,7 +335,11 @@ pub(super) fn adjoin_fault(fault: &AdjoinFault, span: &Range<usize>) -> Expressi
 }
 
 /// cos(2π·turns), growing the field if need be.
-fn cosine(evaluator: &mut Evaluator, turns: &Rational, span: &Range<usize>) -> Outcome<Real> {
+pub(super) fn cosine(
+    evaluator: &mut Evaluator,
+    turns: &Rational,
+    span: &Range<usize>,
+) -> Outcome<Real> {
     let fault = |fault: AdjoinFault| adjoin_fault(&fault, span);
     let (negative, p, q) = cosine::reduced_angle(turns).map_err(fault)?;
     let generator = twice_cosine(evaluator, q).map_err(fault)?;
@@ -413,6 +430,7 @@ fn relative_polynomial(evaluator: &mut Evaluator, q: u32) -> Result<Vec<Real>, A
     Ok(vec![product, -(u * v), Real::from(1)])
 }
 
+/// The square root of a number that is not negative.
 pub(super) fn square_root(
     evaluator: &mut Evaluator,
     argument: &Real,

@@ -1,62 +1,83 @@
 //! From the text of a table file to a table.
 
+use super::BaseFile;
+use super::affine;
 use super::faults::{self, Layout};
-use crate::number::Real;
+use super::names::{Names, Parameter};
+use super::outline;
+use super::rings::{self, WrittenRing};
+use super::source::{Outcome, Source, Value, array, kind, number};
 use crate::number::adjoin::AdjoinFault;
-use crate::table::diagnostic::Diagnostic;
+use crate::number::{Field, Real};
 use crate::table::expression::Evaluator;
-use crate::table::{MOST_SIDES, Table, Vector, default_letters, shape};
-use rug::{Integer, Rational};
+use crate::table::{MOST_SIDES, Ring, Table, shape};
+use rug::Rational;
 use std::ops::Range;
-use toml::Spanned;
-use toml::de::{DeTable, DeValue};
+use std::path::PathBuf;
+use toml::de::DeTable;
 
-type Value<'i> = Spanned<DeValue<'i>>;
-pub(super) type Outcome<T> = Result<T, Box<Diagnostic>>;
-
-const SHAPES: [&str; 3] = ["corners", "triangle", "regular"];
-const KEYS: [&str; 7] = [
-    "title", "about", "corners", "triangle", "regular", "sides", "form",
+const SHAPES: [&str; 5] = ["corners", "triangle", "regular", "outline", "base"];
+const KEYS: [&str; 15] = [
+    "title",
+    "about",
+    "corners",
+    "triangle",
+    "regular",
+    "outline",
+    "base",
+    "mirror",
+    "stretch",
+    "turn",
+    "sides",
+    "form",
+    "holes",
+    "define",
+    "parameters",
 ];
-const RESERVED: [&str; 4] = ["define", "parameters", "outline", "holes"];
 
-/// The text that spans point into.
+/// The files that are being read, the outermost first: where they are, and their names as given.
+pub(super) type Chain = Vec<(PathBuf, String)>;
+
+/// A parsed file with its names.
 #[derive(Clone, Copy)]
-pub(super) struct Source<'a> {
-    pub(super) file: &'a str,
-    pub(super) text: &'a str,
+pub(super) struct Sheet<'a> {
+    pub(super) source: Source<'a>,
+    pub(super) document: &'a DeTable<'a>,
+    pub(super) names: &'a Names,
 }
 
-impl Source<'_> {
-    pub(super) fn fault<T>(
-        self,
-        span: &Range<usize>,
-        message: impl Into<String>,
-        help: impl Into<String>,
-    ) -> Outcome<T> {
-        Err(self.diagnostic(span, message, help))
+impl Sheet<'_> {
+    /// An evaluator that starts in a field and knows the names of the file.
+    pub(super) fn evaluator(&self, field: Field) -> Outcome<Evaluator> {
+        self.names.evaluator(self.source, self.document, field)
     }
+}
 
-    pub(super) fn diagnostic(
-        self,
-        span: &Range<usize>,
-        message: impl Into<String>,
-        help: impl Into<String>,
-    ) -> Box<Diagnostic> {
-        Box::new(Diagnostic {
-            file: self.file.into(),
-            source: self.text.into(),
-            span: span.clone(),
-            label: String::new(),
-            context: Vec::new(),
-            message: message.into(),
-            help: help.into(),
-        })
-    }
+/// An outline, perhaps with holes, that has been read, with the evaluator whose field holds it.
+pub(super) struct Drawn {
+    pub(super) evaluator: Evaluator,
+    pub(super) rings: Vec<WrittenRing>,
+    pub(super) form: Real,
+    pub(super) form_span: Option<Range<usize>>,
+    /// The files that it stands on, the nearest first.
+    pub(super) bases: Vec<BaseFile>,
+}
+
+/// What a file gives.
+pub(super) struct Reading {
+    pub(super) table: Table,
+    pub(super) parameters: Vec<Parameter>,
+    pub(super) bases: Vec<BaseFile>,
 }
 
 /// Reads and checks a table.
-pub(super) fn table(file: &str, text: &str, stem: &str) -> Outcome<Table> {
+pub(super) fn table(
+    file: &str,
+    text: &str,
+    stem: &str,
+    settings: &[String],
+    chain: &Chain,
+) -> Outcome<Reading> {
     let source = Source { file, text };
     let document = DeTable::parse(text).map_err(|e| {
         let message = format!("this is not valid TOML: {}", e.message());
@@ -66,43 +87,102 @@ pub(super) fn table(file: &str, text: &str, stem: &str) -> Outcome<Table> {
     let document = document.into_inner();
     check_keys(source, &document)?;
     let title = title(source, &document, stem)?;
-    let chosen: Vec<&str> = SHAPES
+    let names = Names::read(source, &document, settings)?;
+    let sheet = Sheet {
+        source,
+        document: &document,
+        names: &names,
+    };
+    let mut drawn = draw(sheet, chain)?;
+    let bases = std::mem::take(&mut drawn.bases);
+    Ok(Reading {
+        table: complete(sheet, &title, drawn)?,
+        parameters: names.parameters(),
+        bases,
+    })
+}
+
+/// Reads the one shape of the file.
+fn draw(sheet: Sheet<'_>, chain: &Chain) -> Outcome<Drawn> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
+    let mut chosen: Vec<_> = SHAPES
         .into_iter()
-        .filter(|key| document.contains_key(*key))
+        .filter_map(|shape| document.get_key_value(shape))
         .collect();
-    if let Some((key, _)) = document.get_key_value("form")
-        && let [only] = chosen[..]
-        && only != "corners"
-    {
-        let message = format!("`form` goes with `corners`, not with `{}`", chosen[0]);
-        let help = format!(
-            "remove this line: `{}` chooses the plane form itself",
-            chosen[0]
-        );
-        return source.fault(&key.span(), message, help);
-    }
-    let get = |key: &str| document.get(key).expect("a key that is there");
-    match chosen[..] {
-        ["corners"] => corners(source, &document, &title),
-        ["triangle"] => triangle(source, get("triangle"), &document, &title),
-        ["regular"] => regular(source, get("regular"), &document, &title),
-        [] => source.fault(
-            &(0..0),
-            "the file describes no table",
-            "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]` or `regular = 7`",
-        ),
-        _ => {
-            let mut keys: Vec<_> =
-                chosen.iter().filter_map(|key| document.get_key_value(*key)).map(|(k, _)| k).collect();
-            keys.sort_by_key(|key| key.span().start);
-            let names: Vec<String> = keys.iter().map(|key| format!("`{}`", key.get_ref())).collect();
-            source.fault(
-                &keys[1].span(),
-                format!("{} describe the table more than once", names.join(" and ")),
-                "keep exactly one of `corners`, `triangle` and `regular`",
-            )
+    chosen.sort_by_key(|(key, _)| key.span().start);
+    let [(key, value)] = chosen[..] else {
+        if chosen.is_empty() {
+            let help = "add `corners = [[\"0\", \"0\"], ...]`, `triangle = [\"1\", \"2\", \"4\"]`, `regular = 7`, `outline = ...` or `base = ...`";
+            return source.fault(&(0..0), "the file describes no table", help);
         }
+        let names: Vec<String> = chosen
+            .iter()
+            .map(|(key, _)| format!("`{}`", key.get_ref()))
+            .collect();
+        let message = format!("{} describe the table more than once", names.join(" and "));
+        let known: Vec<String> = SHAPES.iter().map(|shape| format!("`{shape}`")).collect();
+        let help = format!("keep exactly one of {}", known.join(", "));
+        return source.fault(&chosen[1].0.span(), message, help);
+    };
+    let shape = key.get_ref().as_ref();
+    if let Some((form, _)) = document.get_key_value("form")
+        && shape != "corners"
+    {
+        let message = format!("`form` goes with `corners`, not with `{shape}`");
+        let help = format!("remove this line: `{shape}` chooses the plane form itself");
+        return source.fault(&form.span(), message, help);
     }
+    let keys = document
+        .keys()
+        .find(|k| affine::MAPS.contains(&k.get_ref().as_ref()));
+    if let Some(map) = keys.filter(|_| shape != "base") {
+        let message = format!("`{}` goes with `base`, not with `{shape}`", map.get_ref());
+        let help = "write the shape into a file of its own and name that as `base`";
+        return source.fault(&map.span(), message, help);
+    }
+    match shape {
+        "corners" => corners(sheet, key.span(), value),
+        "triangle" => triangle(sheet, value),
+        "regular" => regular(sheet, value),
+        "outline" => outline::outline(sheet, key.span(), value),
+        "base" => affine::base(sheet, value, chain),
+        _ => unreachable!("one of the shapes"),
+    }
+}
+
+/// Adds letters and holes to an outline, brings all numbers into one field, and checks the table.
+fn complete(sheet: Sheet<'_>, title: &str, drawn: Drawn) -> Outcome<Table> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
+    let Drawn {
+        mut evaluator,
+        mut rings,
+        form,
+        form_span,
+        ..
+    } = drawn;
+    rings::read_letters(source, document, &mut rings[0], 0)?;
+    let first = rings.len();
+    rings.extend(rings::holes(source, &mut evaluator, document, first)?);
+    rings::check_total(source, &rings)?;
+    rings::complete_letters(&mut rings);
+    rings::lift(&evaluator, &mut rings);
+    let form = evaluator.lift(&form);
+    let plain = |ring: &WrittenRing| Ring {
+        corners: ring.corners.clone(),
+        letters: ring.letters.clone().expect("letters are complete"),
+    };
+    let holes = rings[1..].iter().map(plain).collect();
+    Table::with_holes(title, plain(&rings[0]), holes, form).map_err(|fault| {
+        let layout = Layout {
+            rings: &rings,
+            form: form_span,
+        };
+        faults::diagnostic(source, &layout, &fault)
+    })
 }
 
 fn check_keys(source: Source, document: &DeTable) -> Outcome<()> {
@@ -110,15 +190,6 @@ fn check_keys(source: Source, document: &DeTable) -> Outcome<()> {
     keys.sort_by_key(|key| key.span().start);
     for key in keys {
         let name = key.get_ref().as_ref();
-        if RESERVED.contains(&name) {
-            let message = format!("`{name}` is reserved and not supported in this version");
-            let help = match name {
-                "outline" => "write the corners themselves: `corners = [[\"0\", \"0\"], ...]`",
-                "holes" => "only tables without holes can be read",
-                _ => "write the values out in `corners`",
-            };
-            return source.fault(&key.span(), message, help);
-        }
         if !KEYS.contains(&name) {
             let help = match nearest_key(name) {
                 Some(known) => format!("did you mean `{known}`?"),
@@ -154,18 +225,6 @@ fn edit_distance(a: &str, b: &str) -> usize {
     row[b.len()]
 }
 
-fn kind(value: &DeValue) -> &'static str {
-    match value {
-        DeValue::String(_) => "a string",
-        DeValue::Integer(_) => "an integer",
-        DeValue::Float(_) => "a floating-point number",
-        DeValue::Boolean(_) => "a truth value",
-        DeValue::Datetime(_) => "a date or time",
-        DeValue::Array(_) => "an array",
-        DeValue::Table(_) => "a table of keys",
-    }
-}
-
 fn title(source: Source, document: &DeTable, stem: &str) -> Outcome<String> {
     if let Some(about) = document.get("about")
         && about.get_ref().as_str().is_none()
@@ -197,174 +256,58 @@ fn title(source: Source, document: &DeTable, stem: &str) -> Outcome<String> {
     Ok(text.to_string())
 }
 
-/// The exact number in a value.
-fn number(source: Source, evaluator: &mut Evaluator, value: &Value, what: &str) -> Outcome<Real> {
-    let span = value.span();
-    match value.get_ref() {
-        DeValue::Integer(integer) => {
-            let digits = integer.as_str().replace('_', "");
-            match Integer::from_str_radix(&digits, integer.radix() as i32) {
-                Ok(value) => Ok(Real::from(value)),
-                Err(_) => source.fault(&span, "this integer cannot be read", "write it in quotes"),
-            }
-        }
-        DeValue::String(text) => evaluator.evaluate(text).map_err(|fault| {
-            let inside = place_in_string(source.text, &span, text, &fault.span);
-            source.diagnostic(&inside, format!("{what}: {}", fault.message), fault.help)
-        }),
-        DeValue::Float(float) => {
-            let written = source.text.get(span.clone()).unwrap_or(float.as_str());
-            let finite = written.chars().any(|c| c.is_ascii_digit());
-            let help = if finite {
-                format!(
-                    "write it in quotes, as the exact decimal \"{}\"",
-                    written.replace('_', "")
-                )
-            } else {
-                "write a finite number in quotes".into()
-            };
-            let message = format!("{what} is a floating-point number, which is not exact");
-            source.fault(&span, message, help)
-        }
-        other => {
-            let message = format!("{what} must be a number, this is {}", kind(other));
-            source.fault(
-                &span,
-                message,
-                "write an exact expression in quotes, such as \"3/4\"",
-            )
-        }
-    }
-}
-
-/// Where a part of a string's content stands in the file: exact when the string is written without
-/// escapes, the whole string otherwise.
-fn place_in_string(
-    text: &str,
-    string: &Range<usize>,
-    content: &str,
-    part: &Range<usize>,
-) -> Range<usize> {
-    let raw = &text[string.clone()];
-    let mut quotes = if raw.starts_with("\"\"\"") || raw.starts_with("'''") {
-        3
-    } else {
-        1
-    };
-    // A line break right after three quotes is not part of the string.
-    if quotes == 3 {
-        let rest = &raw[3..];
-        quotes += if rest.starts_with("\r\n") {
-            2
-        } else {
-            usize::from(rest.starts_with('\n'))
-        };
-    }
-    let start = string.start + quotes;
-    if raw.get(quotes..quotes + content.len()) != Some(content) {
-        return string.clone();
-    }
-    if part.is_empty() {
-        // The end of the text, or an empty string: show the closing quote.
-        return start + part.start..start + part.start + 1;
-    }
-    start + part.start..start + part.end
-}
-
-fn array<'v, 'i>(
-    source: Source,
-    value: &'v Value<'i>,
-    what: &str,
-    help: &str,
-) -> Outcome<&'v [Value<'i>]> {
-    match value.get_ref() {
-        DeValue::Array(items) => Ok(items),
-        other => source.fault(
-            &value.span(),
-            format!("{what} must be an array, this is {}", kind(other)),
-            help,
-        ),
-    }
-}
-
-fn corners(source: Source, document: &DeTable, title: &str) -> Outcome<Table> {
-    let (key, value) = document.get_key_value("corners").expect("checked before");
-    let example = "write `corners = [[\"0\", \"0\"], [\"1\", \"0\"], [\"0\", \"1\"]]`";
-    let items = array(source, value, "`corners`", example)?;
-    // Before the numbers are evaluated: the count bounds the work.
-    if items.len() < 3 || items.len() > MOST_SIDES {
-        let message = format!(
-            "a table has from 3 to {MOST_SIDES} corners, this one has {}",
-            items.len()
-        );
-        return source.fault(
-            &key.span(),
-            message,
-            "write one pair of coordinates for each corner",
-        );
-    }
-    let mut evaluator = Evaluator::default();
-    let mut numbers = Vec::new();
-    for (i, item) in items.iter().enumerate() {
-        let help = "write a pair of numbers, such as `[\"1\", \"1/2\"]`";
-        let what = format!("corner {i} (counting from 0)");
-        let pair = array(source, item, &what, help)?;
-        if pair.len() != 2 {
-            let message = format!("{what} must have 2 coordinates, here are {}", pair.len());
-            return source.fault(&item.span(), message, help);
-        }
-        for (name, coordinate) in ["first", "second"].into_iter().zip(pair) {
-            let what = format!("the {name} coordinate of corner {i} (counting from 0)");
-            numbers.push(number(source, &mut evaluator, coordinate, &what)?);
-        }
-    }
-    let form_span = document.get("form").map(Spanned::span);
-    numbers.push(match document.get("form") {
+fn corners(sheet: Sheet<'_>, key: Range<usize>, value: &Value) -> Outcome<Drawn> {
+    let Sheet {
+        source, document, ..
+    } = sheet;
+    let mut evaluator = sheet.evaluator(Field::rationals())?;
+    let ring = rings::corners(source, &mut evaluator, &key, value, 0)?;
+    let form = match document.get("form") {
         Some(form) => number(source, &mut evaluator, form, "the plane form")?,
         None => Real::from(1),
-    });
-    let sides = letters(source, document, items.len())?;
-    evaluator.finish(&mut numbers);
-    let form = numbers.pop().expect("pushed last");
-    let points: Vec<Vector> = numbers
-        .chunks(2)
-        .map(|pair| Vector::new(pair[0].clone(), pair[1].clone()))
-        .collect();
-    let layout = Layout {
-        corners: items.iter().map(Spanned::span).collect(),
-        all: key.span(),
-        form: form_span,
-        letters: sides.letters.clone(),
-        letter_spans: sides.spans,
     };
-    Table::new(title, points, form, sides.letters)
-        .map_err(|fault| faults::diagnostic(source, &layout, &fault))
+    Ok(Drawn {
+        evaluator,
+        rings: vec![ring],
+        form,
+        form_span: document.get("form").map(Value::span),
+        bases: Vec::new(),
+    })
 }
 
+/// A shape that the program draws, in a field of its own.
 fn shaped(
-    source: Source,
+    sheet: Sheet<'_>,
     value: &Value,
-    document: &DeTable,
-    title: &str,
     shape: Result<shape::Shape, AdjoinFault>,
-) -> Outcome<Table> {
+) -> Outcome<Drawn> {
     let shape = shape.map_err(|fault| {
         let help = "the field of its cosines is too large; choose angles with a smaller common denominator";
-        source.diagnostic(&value.span(), format!("this shape cannot be used: {fault}"), help)
+        sheet.source.diagnostic(&value.span(), format!("this shape cannot be used: {fault}"), help)
     })?;
-    let sides = letters(source, document, shape.corners.len())?;
-    let layout = Layout {
-        corners: vec![value.span(); shape.corners.len()],
-        all: value.span(),
-        form: None,
-        letters: sides.letters.clone(),
-        letter_spans: sides.spans,
-    };
-    Table::new(title, shape.corners, shape.form, sides.letters)
-        .map_err(|fault| faults::diagnostic(source, &layout, &fault))
+    let numbers = shape.corners.iter().flat_map(|c| [&c.x, &c.y]);
+    let field = numbers
+        .chain([&shape.form])
+        .map(Real::field)
+        .find(|field| !field.is_rational())
+        .cloned();
+    Ok(Drawn {
+        evaluator: sheet.evaluator(field.unwrap_or_else(Field::rationals))?,
+        rings: vec![WrittenRing {
+            spans: vec![value.span(); shape.corners.len()],
+            corners: shape.corners,
+            all: value.span(),
+            letters: None,
+            letter_spans: Vec::new(),
+        }],
+        form: shape.form,
+        form_span: None,
+        bases: Vec::new(),
+    })
 }
 
-fn triangle(source: Source, value: &Value, document: &DeTable, title: &str) -> Outcome<Table> {
+fn triangle(sheet: Sheet<'_>, value: &Value) -> Outcome<Drawn> {
+    let source = sheet.source;
     let help = "write three numbers, such as `triangle = [\"1\", \"2\", \"4\"]`: the angles are in proportion \
                 to them";
     let items = array(source, value, "`triangle`", help)?;
@@ -373,7 +316,7 @@ fn triangle(source: Source, value: &Value, document: &DeTable, title: &str) -> O
         return source.fault(&value.span(), message, help);
     }
     let mut proportions: [Rational; 3] = Default::default();
-    let mut evaluator = Evaluator::default();
+    let mut evaluator = sheet.evaluator(Field::rationals())?;
     for (i, item) in items.iter().enumerate() {
         let what = format!("the angle at corner {i} (counting from 0)");
         let angle = number(source, &mut evaluator, item, &what)?;
@@ -390,19 +333,14 @@ fn triangle(source: Source, value: &Value, document: &DeTable, title: &str) -> O
             }
         };
     }
-    shaped(
-        source,
-        value,
-        document,
-        title,
-        shape::triangle(&proportions),
-    )
+    shaped(sheet, value, shape::triangle(&proportions))
 }
 
-fn regular(source: Source, value: &Value, document: &DeTable, title: &str) -> Outcome<Table> {
+fn regular(sheet: Sheet<'_>, value: &Value) -> Outcome<Drawn> {
+    let source = sheet.source;
     let count = number(
         source,
-        &mut Evaluator::default(),
+        &mut sheet.evaluator(Field::rationals())?,
         value,
         "the number of corners",
     )?;
@@ -411,72 +349,11 @@ fn regular(source: Source, value: &Value, document: &DeTable, title: &str) -> Ou
         .filter(|c| c.is_integer())
         .and_then(|c| c.numer().to_u32());
     match whole.filter(|k| (3..=MOST_SIDES as u32).contains(k)) {
-        Some(k) => shaped(source, value, document, title, shape::regular(k)),
+        Some(k) => shaped(sheet, value, shape::regular(k)),
         None => source.fault(
             &value.span(),
             "the number of corners of a regular polygon is out of range",
             format!("write an integer from 3 to {MOST_SIDES}, such as `regular = 7`"),
         ),
     }
-}
-
-/// The letters of the sides and where they stand.
-struct Sides {
-    letters: Vec<char>,
-    /// Empty when the letters are the default ones.
-    spans: Vec<Range<usize>>,
-}
-
-fn letters(source: Source, document: &DeTable, count: usize) -> Outcome<Sides> {
-    let Some(value) = document.get("sides") else {
-        return Ok(Sides {
-            letters: default_letters(count),
-            spans: Vec::new(),
-        });
-    };
-    let help = "write one character for each side, such as `sides = [\"a\", \"b\", \"c\"]`";
-    let items = array(source, value, "`sides`", help)?;
-    let mut sides = Sides {
-        letters: Vec::new(),
-        spans: Vec::new(),
-    };
-    for (i, item) in items.iter().enumerate() {
-        let Some(text) = item.get_ref().as_str() else {
-            let message = format!(
-                "the letter of side {i} must be a string, this is {}",
-                kind(item.get_ref())
-            );
-            return source.fault(&item.span(), message, help);
-        };
-        let mut characters = text.chars();
-        let (Some(letter), None) = (characters.next(), characters.next()) else {
-            let message = format!(
-                "the letter of side {i} must be one character, this is {}",
-                text.chars().count()
-            );
-            return source.fault(&item.span(), message, help);
-        };
-        if !is_letter(letter) {
-            let message = format!(
-                "`{}` cannot be the letter of side {i}",
-                letter.escape_debug()
-            );
-            let help = "choose a printable character that is no space, comma or quote";
-            return source.fault(&item.span(), message, help);
-        }
-        sides.letters.push(letter);
-        sides.spans.push(item.span());
-    }
-    if sides.letters.len() != count {
-        let message = format!("{} letters for {count} sides", sides.letters.len());
-        return source.fault(&value.span(), message, help);
-    }
-    Ok(sides)
-}
-
-/// Printable, and not one of the characters that separate words.
-fn is_letter(c: char) -> bool {
-    // What Debug escapes is not printable, or joins the character before.
-    let printable = c == '\\' || c.escape_debug().count() == 1;
-    printable && !c.is_whitespace() && !",\"'`".contains(c)
 }
