@@ -4,11 +4,13 @@ mod support;
 
 use proptest::prelude::*;
 use reboundary::number::{Real, Sign};
-use reboundary::orbit::periodic::{PeriodicWord, Wanted, is_balanced, periodic_words};
+use reboundary::orbit::periodic::{
+    PeriodicWord, Wanted, is_balanced, letter_class, periodic_words,
+};
 use reboundary::orbit::{Start, Step, TraceTables, Tracer};
 use reboundary::run::Control;
 use reboundary::table::facts::squared_area;
-use reboundary::table::{SideId, Table, Vector};
+use reboundary::table::{Ring, SideId, Table, Vector};
 use reboundary::unfold::Mesh;
 use reboundary::unfold::engine::{AnyEngine, Arithmetic};
 use rug::Rational;
@@ -285,6 +287,54 @@ fn big_integers_alone_give_the_same() {
     }
 }
 
+/// A square whose opposite sides share letters: orbits between opposite sides become powers of one letter.
+#[test]
+fn classes_of_letters_when_sides_share_them() {
+    let corners = unit_square().corners().to_vec();
+    let table = Table::new("shared", corners, 1.into(), vec!['a', 'b', 'a', 'b']).unwrap();
+    let found = periodic(&table, 6);
+    assert_eq!(found.len(), 5, "words of sides are those of the square");
+    let classes: BTreeSet<Vec<u8>> = found
+        .iter()
+        .map(|w| letter_class(&table, &w.word).iter().map(|l| l.0).collect())
+        .collect();
+    // ac, bd, abcd, abcadc, abdcbd: directions 0, ∞, 1, 2 and 1/2.
+    let expected = [vec![0], vec![1], vec![0, 1], vec![0, 0, 1], vec![0, 1, 1]];
+    assert_eq!(classes, expected.into_iter().collect());
+}
+
+/// Round holes too, every orbit that is found closes; the strips between a hole and the outline are among them.
+#[test]
+fn orbits_pass_holes() {
+    let ring = |corners: &[(i64, i64)], letters: &str| Ring {
+        corners: corners
+            .iter()
+            .map(|&(x, y)| Vector::new(x.into(), y.into()))
+            .collect(),
+        letters: letters.chars().collect(),
+    };
+    let outline = ring(&[(0, 0), (9, 0), (9, 7), (0, 7)], "abcd");
+    let hole = ring(&[(3, 2), (3, 4), (5, 4), (5, 2)], "efgh");
+    let table = Table::with_holes("square hole", outline, vec![hole], 1.into()).unwrap();
+    let tables = TraceTables::new(&table);
+    let found = periodic(&table, 8);
+    for word in &found {
+        check_by_tracing(&tables, word);
+    }
+    let vertical: Vec<(usize, String)> = found
+        .iter()
+        .filter(|w| w.word.len() == 2 && w.closing.displacement.x.is_zero())
+        .map(|w| (w.word.len(), w.squared_width(&table).to_string()))
+        .collect();
+    // From bottom to top left (3) and right (4) of the hole, and below and above it (2 each).
+    let widths = [9, 16, 4, 4].map(|w: i64| (2, w.to_string()));
+    let sorted = |mut list: Vec<(usize, String)>| {
+        list.sort();
+        list
+    };
+    assert_eq!(sorted(vertical), sorted(widths.to_vec()));
+}
+
 #[test]
 fn balance_is_counted_by_places() {
     let word = |letters: &[u8]| letters.iter().map(|l| SideId(*l)).collect::<Vec<_>>();
@@ -370,7 +420,9 @@ proptest! {
             prop_assert_eq!(word.closing.strip.breadth.sign(), Sign::Positive);
         }
         let by_powers = classes_by_powers(&table, 6, 40);
-        for word in classes(&found) {
+        // Letters are numbered as in the file, sides of a table given clockwise the other way round.
+        for word in &found {
+            let word: Vec<u8> = letter_class(&table, &word.word).iter().map(|l| l.0).collect();
             prop_assert!(by_powers.contains(&word), "{:?}", word);
         }
     }
