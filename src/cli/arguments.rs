@@ -289,6 +289,14 @@ pub struct DiagonalsOptions {
     /// The most sides that a listed diagonal crosses
     #[arg(long, value_name = "N", default_value_t = 8, value_parser = parse_length)]
     pub length: usize,
+    /// List all up to this geometric length instead, an exact number
+    #[arg(
+        long,
+        value_name = "L",
+        allow_hyphen_values = true,
+        conflicts_with = "length"
+    )]
+    pub distance: Option<String>,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
