@@ -16,6 +16,7 @@
 //! - [`factor_graph`]: Rauzy graphs of any factorial language, and the line-limit criterion;
 //! - [`figure`]: pictures from plain numbers;
 //! - [`study`]: all of it on one table, into one folder;
+//! - [`sweep`]: the complexity of every member of a family;
 //! - [`cli`]: the command line.
 //!
 //! ```
@@ -46,5 +47,6 @@ pub mod number;
 pub mod orbit;
 pub mod run;
 pub mod study;
+pub mod sweep;
 pub mod table;
 pub mod unfold;

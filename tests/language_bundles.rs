@@ -100,6 +100,13 @@ fn cases() -> Vec<Case> {
             vec![points(&[(1, 1), (1, 3), (2, 3), (2, 2), (4, 2), (4, 1)])],
             &one_to(12),
         ),
+        // All corners have right angles, and yet the reflection group is infinite.
+        case(
+            "turned square in a square",
+            points(&[(0, 0), (10, 0), (10, 10), (0, 10)]),
+            vec![points(&[(4, 3), (3, 5), (5, 6), (6, 4)])],
+            &one_to(8),
+        ),
         case(
             "crooked hole",
             frame.clone(),
@@ -278,7 +285,7 @@ fn measures_of_bundles_fill_the_phase_space() {
 #[test]
 fn long_words_do_not_depend_on_the_tier_or_the_threads() {
     let all = cases();
-    for case in [&all[0], &all[4], &all[8]] {
+    for case in [&all[0], &all[4], &all[7], &all[9]] {
         let longest = 9;
         let fast = support::language_by(&case.table, longest, Arithmetic::Tiered);
         let slow = support::language_by(&case.table, longest, Arithmetic::BigOnly);

@@ -491,7 +491,9 @@ fn square_corners_are_those_of_the_grid() {
 /// The foot of the perpendicular from a corner of a triangle on the opposite side, as a fraction.
 fn foot(table: &Table, side: usize) -> Real {
     let axis = table.side_vector(side);
-    let to = table.corner(side + 2).minus(table.corner(side));
+    let to = table
+        .corner((side + 2) % table.sides())
+        .minus(table.corner(side));
     let form = table.form();
     to.dot(&axis, form)
         .checked_div(&axis.squared_length(form))

@@ -6,7 +6,7 @@ use reboundary::factor_graph::census::count_graphs;
 use reboundary::factor_graph::criterion::{LineFigures, line_figures};
 use reboundary::run::Control;
 use reboundary::study::results::{Request, Results, compute};
-use reboundary::study::verdict::{Evidence, Standing, Statement, verdict};
+use reboundary::study::verdict::{Coding, Evidence, Standing, Statement, verdict};
 use reboundary::table::Table;
 use reboundary::table::facts::{Facts, facts};
 use reboundary::unfold::engine::Arithmetic;
@@ -135,6 +135,7 @@ fn the_missing_hypothesis_is_named() {
 /// The evidence of an honest study, owned, to be tampered with.
 struct Honest {
     facts: Facts,
+    coding: Coding,
     p: Vec<u64>,
     line: Vec<LineFigures>,
 }
@@ -144,6 +145,7 @@ impl Honest {
         let language = language(table, length);
         Honest {
             facts: facts(table),
+            coding: Coding::of(table),
             p: language.complexity(),
             line: count_graphs(&language, 1, 3)
                 .iter()
@@ -155,6 +157,7 @@ impl Honest {
     fn evidence(&self) -> Evidence<'_> {
         Evidence {
             facts: &self.facts,
+            coding: self.coding,
             p: &self.p,
             disagreement: None,
             measure_fault: None,

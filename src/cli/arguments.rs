@@ -4,7 +4,7 @@ use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, T
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 
 /// Complete, certified coding languages of polygonal billiards.
 ///
@@ -37,10 +37,30 @@ pub enum Command {
     Direction(DirectionOptions),
     /// All periodic words up to a length, one for each class under cyclic shift and reversal
     Periodic(PeriodicOptions),
+    /// The complexity of every member of a family of tables, into a folder; continues where it was stopped
+    Sweep(SweepOptions),
     /// One orbit from an exact start
     Trace(TraceOptions),
     /// Many orbits from random exact starts, one word a line
     Orbits(OrbitsOptions),
+}
+
+impl Command {
+    /// The file that the command is to write; folders are checked by the commands that fill them.
+    pub fn output_file(&self) -> Option<&Path> {
+        match self {
+            Command::Study(_) | Command::Sweep(_) => None,
+            Command::Table(options) => options.out.as_deref(),
+            Command::Words(options) => options.out.as_deref(),
+            Command::Complexity(options) => options.out.as_deref(),
+            Command::Diagonals(options) => options.out.as_deref(),
+            Command::Graph(options) => options.out.as_deref(),
+            Command::Direction(options) => options.out.as_deref(),
+            Command::Periodic(options) => options.out.as_deref(),
+            Command::Trace(options) => options.out.as_deref(),
+            Command::Orbits(options) => options.out.as_deref(),
+        }
+    }
 }
 
 /// Options of every command that computes.
@@ -351,6 +371,34 @@ pub enum GraphFormat {
     Csv,
     /// The factor graph of order N itself
     Graphml,
+}
+
+/// `sweep`.
+#[derive(Debug, Args)]
+pub struct SweepOptions {
+    /// The table file; its `[parameters]` are what --set varies
+    pub table: PathBuf,
+    /// Values of a parameter: t=1/10..9/10/17 (start, end, count), t={1/3,2/5} or t=2/5; repeat for more parameters
+    #[arg(long, value_name = "NAME=VALUES", required = true)]
+    pub set: Vec<String>,
+    /// Longest words
+    #[arg(long, value_name = "N", default_value_t = 20, value_parser = parse_positive_length)]
+    pub length: usize,
+    /// How to count
+    #[arg(long, value_enum, default_value = "diagonals")]
+    pub route: Route,
+    /// The N(n) in the picture; repeat for more [default: the largest n]
+    #[arg(long, value_name = "N")]
+    pub diagonals: Vec<usize>,
+    /// Folder for the results; finished members in it are kept
+    #[arg(long, value_name = "DIR")]
+    pub out: PathBuf,
+    /// Common options.
+    #[command(flatten)]
+    pub common: Common,
+    /// Arithmetic.
+    #[command(flatten)]
+    pub exactness: Exactness,
 }
 
 pub(super) fn parse_hits(text: &str) -> Result<usize, String> {

@@ -18,10 +18,11 @@ mod launch;
 pub mod orbit_arguments;
 mod orbit_picture;
 mod orbits;
-mod output;
+pub mod output;
 mod periodic;
-mod progress;
+pub mod progress;
 mod study;
+mod sweep;
 mod table;
 mod trace;
 mod trace_record;
@@ -61,6 +62,10 @@ pub fn main() -> ExitCode {
 }
 
 fn run(arguments: Arguments) -> Result<(), Fault> {
+    if let Some(path) = arguments.command.output_file() {
+        // Before the work, not after it.
+        crate::run::files::check_place(path)?;
+    }
     match &arguments.command {
         Command::Study(options) => with_threads(&options.common, || study::run(options)),
         Command::Table(options) => table::run(options),
@@ -70,6 +75,7 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
         Command::Direction(options) => with_threads(&options.common, || direction::run(options)),
         Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
+        Command::Sweep(options) => with_threads(&options.common, || sweep::run(options)),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),
     }

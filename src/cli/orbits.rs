@@ -14,7 +14,7 @@ use crate::orbit::statistics::{Estimate, OrbitShares, PathMeter, Statistics, orb
 use crate::orbit::trace::StartFault;
 use crate::orbit::{Start, TraceTables};
 use crate::run::Control;
-use crate::run::files::write_whole;
+use crate::run::files::{check_place, write_whole};
 use crate::study::folder::spell_code;
 use crate::study::record::decimal;
 use crate::table::facts::{facts, squared_area};
@@ -30,6 +30,9 @@ const BATCH_LETTERS: usize = 1 << 22;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
+    if let Some(file) = &options.statistics {
+        check_place(file)?;
+    }
     let (table, law) = read_law(options, &loaded.table)?;
     let tables = TraceTables::new(&table);
     let ensemble = Ensemble::new(&tables, law);

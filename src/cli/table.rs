@@ -4,7 +4,7 @@ use super::arguments::{Format, TableOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table, write_json};
 use crate::table::facts::facts;
-use crate::table::summary::{Exact, TableSummary, summary};
+use crate::table::summary::{AngleStanding, ConeSummary, Exact, TableSummary, summary};
 use serde::Serialize;
 use std::io::{self, Write};
 
@@ -49,6 +49,16 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
             "  field            degree {}, t = {}, root of {}",
             table.field.degree, table.field.generator, table.field.minimal_polynomial
         )?;
+        writeln!(
+            out,
+            "                   discriminant of the polynomial {}",
+            table.field.polynomial_discriminant
+        )?;
+        match table.walk_field.degree {
+            d if d == table.field.degree => writeln!(out, "  walks need       all of the field")?,
+            1 => writeln!(out, "  walks need       the rationals")?,
+            d => writeln!(out, "  walks need       a subfield of degree {d}")?,
+        }
     }
     if table.form.exact != "1" {
         writeln!(
@@ -65,13 +75,31 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
         Some(order) => writeln!(out, "  reflection group finite, order {order}")?,
         None => writeln!(out, "  reflection group infinite")?,
     }
+    if let Some(surface) = &table.surface {
+        writeln!(
+            out,
+            "  surface          genus {}, from {} copies",
+            surface.genus, surface.copies
+        )?;
+    }
+    write_symmetries(table, out)?;
     writeln!(out, "  area             {}", table.area)?;
     writeln!(out, "  perimeter        {}", table.perimeter)?;
     writeln!(out, "  mean chord       {}", table.mean_chord)?;
     for (i, corner) in table.corners.iter().enumerate() {
         writeln!(out, "  corner {i:<9} x = {}", exact(&corner.x))?;
         writeln!(out, "                   y = {}", exact(&corner.y))?;
-        writeln!(out, "                   angle {}", table.angles[i])?;
+        let AngleStanding { kind, .. } = &table.angle_standing[i];
+        let kind = if *kind == "right" { "" } else { kind };
+        let comma = if kind.is_empty() { "" } else { ", " };
+        writeln!(
+            out,
+            "                   angle {}{comma}{kind}",
+            table.angles[i]
+        )?;
+        if let Some(surface) = &table.surface {
+            writeln!(out, "                   {}", cone(&surface.cone_points[i]))?;
+        }
     }
     for side in &table.sides {
         let [from, to] = side.corners;
@@ -82,6 +110,33 @@ fn write_text(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
         )?;
     }
     Ok(())
+}
+
+fn write_symmetries(table: &TableSummary, out: &mut dyn Write) -> io::Result<()> {
+    if table.symmetries.is_empty() {
+        return writeln!(out, "  symmetries       none");
+    }
+    for (i, symmetry) in table.symmetries.iter().enumerate() {
+        let label = if i == 0 { "symmetries" } else { "" };
+        let cycles = symmetry
+            .cycles
+            .as_deref()
+            .unwrap_or("(permutes no letters)");
+        writeln!(out, "  {label:<16} {} {cycles}", symmetry.kind)?;
+    }
+    Ok(())
+}
+
+/// What a corner becomes on the surface.
+fn cone(cone: &ConeSummary) -> String {
+    let points = match cone.points {
+        1 => "1 point".to_string(),
+        n => format!("{n} points"),
+    };
+    match cone.turns {
+        1 => format!("{points} of the surface, flat (angle 2π)"),
+        turns => format!("{points} of the surface with angle {}π", 2 * turns),
+    }
 }
 
 /// One row for each corner with the side after it.

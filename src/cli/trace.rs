@@ -11,7 +11,7 @@ use crate::orbit::ensemble::{StartLaw, random_start};
 use crate::orbit::launch::{FirstHit, PointFault, backward, first_hit};
 use crate::orbit::path::{Limits, Path, PathEnd, follow};
 use crate::orbit::{Start, TraceTables};
-use crate::run::files::write_whole;
+use crate::run::files::{check_place, write_whole};
 use crate::study::folder::spell_code;
 use crate::table::{SideId, Table, Vector};
 
@@ -38,6 +38,9 @@ impl Traced {
 }
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
+    for file in options.picture.iter().chain(&options.unfolding) {
+        check_place(file)?;
+    }
     let traced = trace(options)?;
     emit(options.out.as_deref(), |out| match options.format {
         TraceFormat::Text => writeln!(out, "{}", traced.word()),

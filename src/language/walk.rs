@@ -1,7 +1,7 @@
 //! The depth-first walk over all beams of a table.
 //!
 //! In a polygon without holes whose sides have letters of their own, a beam after n − 1 crossings is a word of
-//! length n. In other tables a word is a bundle of beams, which [`bundle`](super::bundle) walks; then the beams
+//! length n. In other tables a word is a bundle of beams, which `bundle` walks; then the beams
 //! of one word are visited one after another, and the first of them is marked. The walk visits the words of a subtree in
 //! lexicographic order, so a visitor that appends what it sees to a list per length gets every level in
 //! order. Only the beams on the way down and their unvisited siblings are in memory: O(longest · k) cells.

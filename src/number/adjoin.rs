@@ -297,7 +297,7 @@ fn evaluate_enclosed(p: &[Integer], at: &Enclosure) -> Enclosure {
 /// An interval with exactly one root of an irreducible polynomial: the number that `gamma` converges
 /// to. On an interval where the derivative has no zero there is at most one; ends because roots of an
 /// irreducible polynomial are simple.
-fn isolating_interval(
+pub(crate) fn isolating_interval(
     minimal: &[Integer],
     gamma: &dyn Fn(u32) -> Enclosure,
 ) -> (Rational, Rational) {

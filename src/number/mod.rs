@@ -9,6 +9,8 @@
 //! - [`field`]: the field and its enclosures of θ to any precision.
 //! - [`real`]: elements of the field, with total comparison and a proved zero test.
 //! - [`adjoin`]: growing the field by a root of a polynomial with coefficients in it.
+//! - [`subfield`]: the field that some elements generate.
+//! - [`discriminant`]: of the polynomial that defines a field.
 //! - [`cosine`]: the fields of cosines of rational multiples of π.
 //! - [`enclosure`]: intervals with outward rounding, certified decimals.
 //! - [`tiers`]: counts of how often each level of arithmetic decided a sign.
@@ -17,14 +19,17 @@ pub mod adjoin;
 mod algebra;
 mod characteristic;
 pub mod cosine;
+pub mod discriminant;
 pub mod enclosure;
 pub mod factor;
 pub mod field;
 mod hensel;
 mod modular;
+mod operators;
 mod over_field;
 pub mod poly;
 pub mod real;
+pub mod subfield;
 pub mod tiers;
 
 pub use enclosure::Enclosure;

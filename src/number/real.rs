@@ -14,7 +14,6 @@ use super::field::Field;
 use super::tiers::Sign;
 use rug::{Integer, Rational};
 use std::cmp::Ordering;
-use std::ops::{Add, AddAssign, Div, Mul, MulAssign, Neg, Sub, SubAssign};
 
 /// An exactly known real number.
 ///
@@ -310,7 +309,7 @@ impl Real {
         }
     }
 
-    fn combine(&self, other: &Real, subtract: bool) -> Real {
+    pub(super) fn combine(&self, other: &Real, subtract: bool) -> Real {
         if self.coordinates.len() != other.coordinates.len() || !self.field.same(&other.field) {
             let (a, b) = self.aligned(other);
             return a.combine(&b, subtract);
@@ -331,7 +330,15 @@ impl Real {
         )
     }
 
-    fn product(&self, other: &Real) -> Real {
+    pub(super) fn negated(&self) -> Real {
+        Real {
+            field: self.field.clone(),
+            coordinates: self.coordinates.iter().map(|c| Integer::from(-c)).collect(),
+            den: self.den.clone(),
+        }
+    }
+
+    pub(super) fn product(&self, other: &Real) -> Real {
         if self.coordinates.len() != other.coordinates.len() || !self.field.same(&other.field) {
             let (a, b) = self.aligned(other);
             return a.product(&b);
@@ -515,93 +522,6 @@ impl From<Rational> for Real {
             coordinates: vec![num],
             den,
         }
-    }
-}
-
-macro_rules! operators {
-    ($trait:ident, $method:ident, |$a:ident, $b:ident| $body:expr) => {
-        impl $trait<&Real> for &Real {
-            type Output = Real;
-            fn $method(self, other: &Real) -> Real {
-                let ($a, $b) = (self, other);
-                $body
-            }
-        }
-        impl $trait<Real> for Real {
-            type Output = Real;
-            fn $method(self, other: Real) -> Real {
-                (&self).$method(&other)
-            }
-        }
-        impl $trait<&Real> for Real {
-            type Output = Real;
-            fn $method(self, other: &Real) -> Real {
-                (&self).$method(other)
-            }
-        }
-        impl $trait<Real> for &Real {
-            type Output = Real;
-            fn $method(self, other: Real) -> Real {
-                self.$method(&other)
-            }
-        }
-    };
-}
-
-operators!(Add, add, |a, b| a.combine(b, false));
-operators!(Sub, sub, |a, b| a.combine(b, true));
-operators!(Mul, mul, |a, b| a.product(b));
-// Division by zero is a mistake of the caller, as for the machine's own integers.
-operators!(Div, div, |a, b| a.checked_div(b).expect("division by zero"));
-
-impl Neg for &Real {
-    type Output = Real;
-    fn neg(self) -> Real {
-        Real {
-            field: self.field.clone(),
-            coordinates: self.coordinates.iter().map(|c| Integer::from(-c)).collect(),
-            den: self.den.clone(),
-        }
-    }
-}
-
-impl Neg for Real {
-    type Output = Real;
-    fn neg(self) -> Real {
-        -&self
-    }
-}
-
-impl AddAssign for Real {
-    fn add_assign(&mut self, other: Real) {
-        *self = &*self + &other;
-    }
-}
-
-impl SubAssign for Real {
-    fn sub_assign(&mut self, other: Real) {
-        *self = &*self - &other;
-    }
-}
-
-impl MulAssign for Real {
-    fn mul_assign(&mut self, other: Real) {
-        *self = &*self * &other;
-    }
-}
-
-impl num_traits::Zero for Real {
-    fn zero() -> Real {
-        Real::from(0)
-    }
-    fn is_zero(&self) -> bool {
-        Real::is_zero(self)
-    }
-}
-
-impl num_traits::One for Real {
-    fn one() -> Real {
-        Real::from(1)
     }
 }
 

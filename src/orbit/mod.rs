@@ -1,6 +1,6 @@
 //! Exact orbits.
 //!
-//! - [`line`]: an oriented line in table coordinates, at three levels of arithmetic.
+//! - [`line`](mod@line): an oriented line in table coordinates, at three levels of arithmetic.
 //! - [`trace`]: following one orbit from an exact start.
 //! - [`ensemble`]: many orbits from random exact starts.
 //! - [`direction`]: all orbits in one direction.

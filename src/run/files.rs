@@ -52,6 +52,19 @@ fn parent(path: &Path) -> Result<PathBuf, OutputFault> {
     }
 }
 
+/// Refuses a place for a file before the work is done that would fill it: its folder is missing, or it is a folder
+/// itself.
+///
+/// # Errors
+/// When [`write_whole`] would refuse.
+pub fn check_place(path: &Path) -> Result<(), OutputFault> {
+    parent(path)?;
+    if path.is_dir() {
+        return Err(OutputFault::IsFolder { path: path.into() });
+    }
+    Ok(())
+}
+
 /// Writes a file through a temporary one in the same folder.
 ///
 /// # Errors
@@ -60,10 +73,8 @@ pub fn write_whole(
     path: &Path,
     fill: impl FnOnce(&mut dyn Write) -> io::Result<()>,
 ) -> Result<(), OutputFault> {
+    check_place(path)?;
     let folder = parent(path)?;
-    if path.is_dir() {
-        return Err(OutputFault::IsFolder { path: path.into() });
-    }
     let fault = |source| OutputFault::System {
         path: path.into(),
         source,
@@ -201,6 +212,11 @@ mod tests {
             1,
             "no leftovers"
         );
+        assert!(check_place(&path).is_ok());
+        assert!(matches!(
+            check_place(folder.path()),
+            Err(OutputFault::IsFolder { .. })
+        ));
         let nowhere = write_whole(&folder.path().join("no/file"), |_| Ok(()));
         assert!(matches!(nowhere, Err(OutputFault::NoParent { .. })));
     }

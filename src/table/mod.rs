@@ -3,6 +3,9 @@
 //! - [`validity`]: which polygons are tables; every refusal names the corners or sides at fault.
 //! - [`triangulation`]: cutting a table into triangles by exact predicates.
 //! - [`facts`]: angles, reflection group, area, perimeter, convexity, each proved.
+//! - [`symmetry`]: isometries that keep a table, exactly.
+//! - [`surface`]: the closed surface of a finite reflection group.
+//! - [`frame`]: coordinates that need the smallest field.
 //! - [`summary`]: a table and its facts, ready to be written.
 //! - [`expression`]: the exact expressions of a table file.
 //! - [`file`](mod@file): the TOML table file.
@@ -13,8 +16,11 @@ pub mod diagnostic;
 pub mod expression;
 pub mod facts;
 pub mod file;
+pub mod frame;
 pub mod shape;
 pub mod summary;
+pub mod surface;
+pub mod symmetry;
 pub mod triangulation;
 pub mod validity;
 
@@ -239,12 +245,11 @@ impl Table {
         &self.corners
     }
 
-    /// A corner by its index, which is also the corner that the side of this index starts from.
-    ///
-    /// # Panics
-    /// If there is no such corner.
+    /// A corner by its index, which is also the corner that the side of this index starts from. Indices are
+    /// taken modulo the number of corners; with holes the next corner is not always that of the next index, but
+    /// that of [`Table::after`].
     pub fn corner(&self, index: usize) -> &Vector {
-        &self.corners[index]
+        &self.corners[index % self.corners.len()]
     }
 
     /// The indices of the corners of each ring, the outline first.

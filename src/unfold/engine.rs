@@ -6,10 +6,12 @@
 //! [`Trail`]; a depth-first walk keeps one.
 
 use super::filtered::Filtered;
+use super::framed::Framed;
 use super::group::FiniteGroup;
 use super::lattice::Lattice;
 use crate::number::{Enclosure, Sign, Tiers};
 use crate::table::facts::{ReflectionGroup, facts};
+use crate::table::frame::Frame;
 use crate::table::{CornerId, SideId, Table, Vector};
 
 /// The sides crossed so far, and what an engine keeps to answer exactly along them.
@@ -145,10 +147,10 @@ pub enum Arithmetic {
 /// The engine that suits a table.
 #[derive(Debug)]
 pub enum AnyEngine {
-    /// Finite group over the rationals.
-    Lattice(Lattice),
+    /// Finite group over the rationals, if need be in a frame.
+    Lattice(Framed<Lattice>),
     /// Everything else.
-    Filtered(Box<Filtered>),
+    Filtered(Box<Framed<Filtered>>),
 }
 
 /// Runs an expression with the concrete engine inside an [`AnyEngine`] bound to a name.
@@ -172,25 +174,32 @@ const LARGEST_TABULATED_GROUP: u64 = 4096;
 impl AnyEngine {
     /// Chooses and prepares the engine for walks of at most `deepest` crossings.
     ///
-    /// Cost: for a finite group of order 2r, 2r·k exact products; otherwise k.
+    /// When another frame needs a smaller field, the engine works there (see [`Frame`]), except for
+    /// [`Arithmetic::BigOnly`], which stays in the table's own coordinates.
+    ///
+    /// Cost: one look for the frame; for a finite group of order 2r, 2r·k exact products; otherwise k.
     pub fn new(table: &Table, deepest: usize, arithmetic: Arithmetic) -> AnyEngine {
         // Orientations do not depend on where the table lies, but the sizes of coordinates do.
-        let table = &table.moved_to_origin();
+        let moved = table.moved_to_origin();
+        if arithmetic == Arithmetic::BigOnly {
+            let engine = Filtered::big_only(&moved, deepest);
+            return AnyEngine::Filtered(Box::new(Framed::new(engine, None)));
+        }
+        let frame = Frame::smaller(table);
+        let table = frame.as_ref().map_or(&moved, |frame| &frame.table);
         let group = match facts(table).group {
             ReflectionGroup::Finite { r } if r <= LARGEST_TABULATED_GROUP => {
                 Some(FiniteGroup::generate(table))
             }
             _ => None,
         };
-        if arithmetic == Arithmetic::BigOnly {
-            return AnyEngine::Filtered(Box::new(Filtered::big_only(table, deepest)));
-        }
         if let Some(group) = &group
             && let Some(lattice) = Lattice::new(table, group, deepest)
         {
-            return AnyEngine::Lattice(lattice);
+            return AnyEngine::Lattice(Framed::new(lattice, frame));
         }
-        AnyEngine::Filtered(Box::new(Filtered::new(table, group.as_ref(), deepest)))
+        let engine = Filtered::new(table, group.as_ref(), deepest);
+        AnyEngine::Filtered(Box::new(Framed::new(engine, frame)))
     }
 
     /// One line for reports: how signs are decided.
@@ -199,7 +208,7 @@ impl AnyEngine {
             AnyEngine::Lattice(_) => {
                 "machine integers (finite reflection group over the rationals)"
             }
-            AnyEngine::Filtered(filtered) => filtered.describe(),
+            AnyEngine::Filtered(filtered) => filtered.inner().describe(),
         }
     }
 }

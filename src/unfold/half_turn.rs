@@ -39,6 +39,8 @@ const MOST_KNOWN: usize = 6;
 #[derive(Clone, Debug)]
 pub struct HalfTurns {
     half_orders: Vec<Option<usize>>,
+    /// The side that ends at each corner: corners of holes follow each other on their own rings.
+    before: Vec<usize>,
 }
 
 /// What a crossing counts as in a palindrome beside its side.
@@ -109,6 +111,9 @@ impl HalfTurns {
         };
         HalfTurns {
             half_orders: (0..table.sides()).map(half_order).collect(),
+            before: (0..table.sides())
+                .map(|corner| table.before(corner))
+                .collect(),
         }
     }
 
@@ -139,7 +144,7 @@ impl HalfTurns {
         let mut symbols = vec![Symbol::Crossing; path.len()];
         let mut at = 0;
         while at + 1 < path.len() {
-            let corner = common_corner(self.half_orders.len(), path[at], path[at + 1]);
+            let corner = common_corner(&self.before, path[at], path[at + 1]);
             let image = corner.map(|corner| ImageName {
                 crossings: at as u32,
                 corner,
@@ -222,7 +227,7 @@ impl HalfTurns {
         if c == 0 || c >= length {
             return None;
         }
-        let corner = common_corner(self.half_orders.len(), path.sides[c - 1], path.sides[c])?;
+        let corner = common_corner(&self.before, path.sides[c - 1], path.sides[c])?;
         let m = self.half_orders[corner.0 as usize]?;
         let image = ImageName {
             crossings: c as u32,
@@ -255,8 +260,7 @@ impl HalfTurns {
     }
 
     fn is_side_at(&self, side: SideId, corner: CornerId) -> bool {
-        let k = self.half_orders.len();
         let (side, corner) = (side.0 as usize, corner.0 as usize);
-        side == corner || side == (corner + k - 1) % k
+        side == corner || side == self.before[corner]
     }
 }

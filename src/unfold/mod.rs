@@ -5,6 +5,7 @@
 //! - [`engine`]: what a walk needs of arithmetic: placing corner images and deciding orientations.
 //! - [`lattice`]: the engine for finite groups over the rationals: machine integers only.
 //! - [`filtered`]: the engine for everything else: floating point with a proved bound, exact behind it.
+//! - [`framed`]: an engine that works in the frame with the smallest field.
 //! - [`exact_path`]: exact positions along a path, for the cases that the filter leaves open.
 //! - [`big_path`]: exact poses in integers of any size.
 //! - [`symmetry`] and [`half_turn`]: collinear images proved by the symmetry of a path.
@@ -18,6 +19,7 @@ pub mod engine;
 pub mod exact_path;
 pub mod fan;
 pub mod filtered;
+pub mod framed;
 pub mod group;
 pub mod half_turn;
 pub mod isometry;

@@ -33,6 +33,10 @@ pub struct Symmetries {
     half_turns: HalfTurns,
     /// By corner: its angle in units of π, when that is rational.
     angles: Vec<Option<Rational>>,
+    /// The side that ends at each corner.
+    before: Vec<usize>,
+    /// The sides of each ring of the table.
+    rings: Vec<std::ops::Range<usize>>,
 }
 
 /// The proved direction of a segment between two images.
@@ -54,6 +58,10 @@ impl Symmetries {
         Symmetries {
             half_turns: HalfTurns::new(table),
             angles: (0..table.sides()).map(rational).collect(),
+            before: (0..table.sides())
+                .map(|corner| table.before(corner))
+                .collect(),
+            rings: table.rings().collect(),
         }
     }
 
@@ -99,10 +107,10 @@ impl Symmetries {
         if x.corner == y.corner {
             return self.mirror(path, x, y).map(Direction::Perpendicular);
         }
-        let k = self.angles.len() as u8;
-        let side = if (x.corner.0 + 1) % k == y.corner.0 {
+        let before = |corner: CornerId| self.before[corner.0 as usize];
+        let side = if before(y.corner) == x.corner.0 as usize {
             x.corner.0
-        } else if (y.corner.0 + 1) % k == x.corner.0 {
+        } else if before(x.corner) == y.corner.0 as usize {
             y.corner.0
         } else {
             return None;
@@ -166,19 +174,28 @@ impl Symmetries {
     /// The angle vector·θ modulo π, in units of π and in [0, 1), when the vector is a combination of differences of sides
     /// that meet at a rational angle.
     ///
-    /// These corners join the sides to paths (not all corners are rational), on each of which the entries must sum to
-    /// zero. At a corner with angle α, θ of the side before minus θ of the side after is α modulo π, and it counts as often
-    /// as the entries before it on its path say.
+    /// These corners join the sides of each ring to paths, on each of which the entries must sum to zero. At a corner with
+    /// angle α, θ of the side before minus θ of the side after is α modulo π, and it counts as often as the entries before
+    /// it on its path say. A ring with rational corners alone counts as one path, without the joint at its first side:
+    /// that leaves angles unknown, and makes none wrong.
     fn angle_of(&self, vector: &[i64]) -> Option<Rational> {
-        let k = vector.len();
         let mut angle = Rational::new();
-        let Some(first) = self.angles.iter().position(Option::is_none) else {
-            return vector.iter().all(|x| *x == 0).then_some(angle);
-        };
+        for ring in &self.rings {
+            angle += self.angle_of_ring(vector, ring)?;
+        }
+        let whole = Rational::from(angle.floor_ref());
+        Some(angle - whole)
+    }
+
+    /// The part of one ring, not reduced modulo π.
+    fn angle_of_ring(&self, vector: &[i64], ring: &std::ops::Range<usize>) -> Option<Rational> {
+        let joints = &self.angles[ring.clone()];
+        let first = joints.iter().position(Option::is_none).unwrap_or(0);
+        let mut angle = Rational::new();
         // Side `first` begins a path, because the corner before it joins nothing.
         let mut carried = 0;
-        for step in 0..k {
-            let side = (first + step) % k;
+        for step in 0..ring.len() {
+            let side = ring.start + (first + step) % ring.len();
             match &self.angles[side] {
                 None if carried != 0 => return None,
                 Some(alpha) if carried != 0 => angle += Rational::from(alpha * carried),
@@ -186,11 +203,7 @@ impl Symmetries {
             }
             carried += vector[side];
         }
-        if carried != 0 {
-            return None;
-        }
-        let whole = Rational::from(angle.floor_ref());
-        Some(angle - whole)
+        (carried == 0).then_some(angle)
     }
 
     fn prove_by_translation(
@@ -227,9 +240,9 @@ fn gcd(a: usize, b: usize) -> usize {
     if b == 0 { a } else { gcd(b, a % b) }
 }
 
-/// The corner at which two neighbouring sides of a polygon with k sides meet.
-pub(super) fn common_corner(k: usize, a: SideId, b: SideId) -> Option<CornerId> {
-    let follows = |first: SideId, second: SideId| (first.0 as usize + 1) % k == second.0 as usize;
+/// The corner at which two neighbouring sides meet; `before` has the side that ends at each corner.
+pub(super) fn common_corner(before: &[usize], a: SideId, b: SideId) -> Option<CornerId> {
+    let follows = |first: SideId, second: SideId| before[second.0 as usize] == first.0 as usize;
     if follows(a, b) {
         Some(CornerId(b.0))
     } else if follows(b, a) {
