@@ -1,10 +1,12 @@
 //! Commands and options.
 
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
+use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::{Path, PathBuf};
+use std::time::Duration;
 
 /// Complete, certified coding languages of polygonal billiards.
 ///
@@ -99,6 +101,32 @@ impl Exactness {
             Arithmetic::Tiered
         }
     }
+}
+
+/// Limits of a run that can give a part of its result.
+#[derive(Clone, Copy, Debug, Args)]
+pub struct Limits {
+    /// Stop after this time and write what is complete: seconds, or with s, m, h, such as 30s, 5m or 2h
+    #[arg(long, value_name = "TIME", value_parser = parse_time)]
+    pub budget_time: Option<Duration>,
+    /// Stop when more memory is used and write what is complete: bytes, or with K, M, G
+    #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
+    pub budget_memory: Option<u64>,
+}
+
+impl Limits {
+    /// As the watch takes them.
+    pub fn budget(self) -> Budget {
+        Budget {
+            time: self.budget_time,
+            memory: self.budget_memory,
+        }
+    }
+}
+
+fn parse_time(text: &str) -> Result<Duration, String> {
+    budget::parse_time(text)
+        .ok_or_else(|| "write a number of seconds, or a number with s, m or h, such as 5m".into())
 }
 
 /// Text for people, or a format for programs.
@@ -290,6 +318,18 @@ pub struct ComplexityOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Budget.
+    #[command(flatten)]
+    pub limits: Limits,
+    /// Keep the results of finished parts in this folder
+    #[arg(long, value_name = "DIR")]
+    pub checkpoint: Option<PathBuf>,
+    /// Continue from the checkpoint, if it holds anything
+    #[arg(long, requires = "checkpoint")]
+    pub resume: bool,
+    /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,

@@ -2,12 +2,18 @@
 
 use super::arguments::{ComplexityOptions, Format, Route};
 use super::fault::Fault;
-use super::output::{emit, read_table, write_columns, write_json};
+use super::output::{emit, note, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
+use super::stats::Stats;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::language::walk;
+use crate::number::Tiers;
+use crate::run::budget::{Budget, stages};
+use crate::run::checkpoint::{Checkpoint, Identity, Ledger, Unkept};
+use crate::run::{Control, StopReason, Stopped, memory};
 use crate::table::Table;
+use crate::table::file::LoadedTable;
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
@@ -29,64 +35,239 @@ struct ComplexityRecord {
     routes_agree: Option<bool>,
     complete: bool,
     complete_to: usize,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    stats: Option<Stats>,
+}
+
+/// What one stage found.
+struct Stage {
+    length: usize,
+    diagonals: Option<Vec<u64>>,
+    p: Vec<u64>,
+    /// Where the routes differ first, when both ran.
+    disagreement: Option<Option<usize>>,
 }
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
+    let control = interruptible_control();
+    let budget = options.limits.budget();
+    let watch = budget.watch(&control);
+    if budget.memory.is_some() && memory::resident().is_none() {
+        return Err(Fault::BadInput(
+            "this system does not tell how much memory is used: leave out --budget-memory".into(),
+        ));
+    }
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let route = route(table, options.route)?;
-    let (mesh, length) = (Mesh::new(table), options.length);
-    let engine = AnyEngine::new(table, length, options.exactness.arithmetic());
-    let control = interruptible_control();
+    let checkpoint = open_checkpoint(options, &loaded, route)?;
+    let mut stats = Stats::new();
     let progress = Progress::new(&control, options.common.quiet);
-    let mut found = None;
-    if route != Route::Beams {
-        progress.begin("generalized diagonals", None);
-        found = Some(diagonals::count(&engine, &mesh, length.saturating_sub(2), &control)?.0);
+    let lengths = match budget == Budget::default() {
+        true => vec![options.length],
+        false => stages(options.length),
+    };
+    let engine = AnyEngine::new(table, options.length, options.exactness.arithmetic());
+    let walks = Walks {
+        engine: &engine,
+        mesh: &Mesh::new(table),
+        sides: table.sides() as u64,
+        route,
+        control: &control,
+        progress: &progress,
+        checkpoint: checkpoint.as_ref(),
+    };
+    let mut done = None;
+    let mut stopped = false;
+    for length in lengths {
+        match walks.stage(length, &mut stats) {
+            Ok(stage) => done = Some(stage),
+            Err(Stopped) => {
+                stopped = true;
+                break;
+            }
+        }
     }
-    let by_diagonals = found
-        .as_ref()
-        .map(|n| p_from_diagonals(table.sides() as u64, n, length));
-    let by_beams = if route == Route::Diagonals {
-        None
-    } else {
-        progress.begin("beams", by_diagonals.as_ref().map(|p| p.iter().sum()));
-        Some(walk::count(&engine, &mesh, length, &control)?.0)
+    drop((progress, watch));
+    if let Some(failure) = checkpoint.as_ref().and_then(Checkpoint::failure) {
+        note(&format!("the checkpoint is not up to date: {failure}"));
+    }
+    stats.finish(&engine, checkpoint.as_ref());
+    if options.stats && (done.is_none() || options.format != Format::Json) {
+        stats.tell();
+    }
+    let disagreement = match done {
+        Some(ref stage) => stage.disagreement.flatten(),
+        None => None,
     };
-    drop(progress);
-    let disagreement = match (&by_beams, &by_diagonals) {
-        (Some(a), Some(b)) => Some(first_disagreement(a, b)),
-        _ => None,
+    let complete_to = done.as_ref().map(|stage| stage.length);
+    if let Some(stage) = done {
+        let told = (options.stats && options.format == Format::Json).then_some(stats);
+        let record = record(table, options.length, route, stage, told);
+        emit(options.out.as_deref(), |out| match options.format {
+            Format::Text => write_text(&record, out),
+            Format::Json => write_json(out, &record),
+            Format::Csv => write_csv(&record, out),
+        })?;
+    }
+    if let Some(n) = disagreement {
+        return Err(Fault::Failed(format!(
+            "the two routes to p(n) differ, first at n = {n}; please report this table as a fault of the program"
+        )));
+    }
+    match stopped {
+        true => Err(stop(&control, complete_to, options)),
+        false => Ok(()),
+    }
+}
+
+/// What the stages share.
+struct Walks<'a> {
+    engine: &'a AnyEngine,
+    mesh: &'a Mesh,
+    sides: u64,
+    route: Route,
+    control: &'a Control,
+    progress: &'a Progress,
+    checkpoint: Option<&'a Checkpoint>,
+}
+
+impl Walks<'_> {
+    /// Counts up to a length by the routes asked for.
+    fn stage(&self, length: usize, stats: &mut Stats) -> Result<Stage, Stopped> {
+        let (engine, mesh, control) = (self.engine, self.mesh, self.control);
+        let mut found = None;
+        if self.route != Route::Beams {
+            self.progress.begin("generalized diagonals", None);
+            let most = length.saturating_sub(2);
+            let count =
+                |ledger: &dyn Ledger| diagonals::count_kept(engine, mesh, most, control, ledger);
+            found = Some(self.walk("diagonals", length, stats, count)?);
+        }
+        let by_diagonals = found
+            .as_ref()
+            .map(|n| p_from_diagonals(self.sides, n, length));
+        let mut by_beams = None;
+        if self.route != Route::Diagonals {
+            let words = by_diagonals.as_ref().map(|p| p.iter().sum());
+            self.progress.begin("beams", words);
+            let count =
+                |ledger: &dyn Ledger| walk::count_kept(engine, mesh, length, control, ledger);
+            by_beams = Some(self.walk("beams", length, stats, count)?);
+        }
+        let disagreement = match (&by_beams, &by_diagonals) {
+            (Some(a), Some(b)) => Some(first_disagreement(a, b)),
+            _ => None,
+        };
+        Ok(Stage {
+            length,
+            diagonals: found,
+            p: by_beams.or(by_diagonals).expect("at least one route ran"),
+            disagreement,
+        })
+    }
+
+    /// One walk, with its parts kept when there is a checkpoint.
+    fn walk(
+        &self,
+        name: &'static str,
+        length: usize,
+        stats: &mut Stats,
+        count: impl FnOnce(&dyn Ledger) -> Result<(Vec<u64>, Tiers), Stopped>,
+    ) -> Result<Vec<u64>, Stopped> {
+        let timer = stats.begin(name, length, self.control.done());
+        let counted = match self.checkpoint {
+            Some(checkpoint) => count(&checkpoint.walk(name, length)),
+            None => count(&Unkept),
+        };
+        let tiers = counted.as_ref().ok().map(|(_, tiers)| *tiers);
+        stats.end(timer, self.control.done(), tiers);
+        Ok(counted?.0)
+    }
+}
+
+/// The checkpoint asked for. Threads, budgets and formats do not change what the parts are.
+fn open_checkpoint(
+    options: &ComplexityOptions,
+    loaded: &LoadedTable,
+    route: Route,
+) -> Result<Option<Checkpoint>, Fault> {
+    let Some(folder) = &options.checkpoint else {
+        return Ok(None);
     };
-    let p = by_beams.or(by_diagonals).expect("at least one route ran");
-    let counts = Counts::from_p(p);
-    let record = ComplexityRecord {
+    let mut table = loaded.text.clone();
+    for base in &loaded.bases {
+        table += &format!("\n[base {}]\n{}", base.name, base.text);
+    }
+    let mut line = format!("--length {} --route {}", options.length, name(route));
+    for setting in &options.settings.set {
+        line += &format!(" --set {setting}");
+    }
+    if options.exactness.exact_only {
+        line += " --exact-only";
+    }
+    let identity = Identity {
+        version: env!("CARGO_PKG_VERSION").into(),
+        table,
+        options: line,
+    };
+    let checkpoint = Checkpoint::open(folder, &identity, options.resume)?;
+    if checkpoint.rejected() > 0 && !options.common.quiet {
+        note(&format!(
+            "{} lines of the checkpoint are torn or altered; their parts are computed again",
+            checkpoint.rejected()
+        ));
+    }
+    Ok(Some(checkpoint))
+}
+
+/// Says why the work was stopped and what there is of it.
+fn stop(control: &Control, complete_to: Option<usize>, options: &ComplexityOptions) -> Fault {
+    let why = match control.reason() {
+        Some(StopReason::Time) => "the time allowed was over",
+        Some(StopReason::Memory) => "more memory was used than allowed",
+        Some(StopReason::Signal) | None => "a signal came",
+    };
+    let what = match complete_to {
+        Some(n) => format!("the result is complete to n = {n} of {}", options.length),
+        None => "nothing was written".into(),
+    };
+    let next = match options.checkpoint {
+        Some(_) => "; finished parts are kept, and --resume continues",
+        None => "",
+    };
+    Fault::Stopped(format!("{why} before the work was complete; {what}{next}"))
+}
+
+fn record(
+    table: &Table,
+    length: usize,
+    route: Route,
+    stage: Stage,
+    stats: Option<Stats>,
+) -> ComplexityRecord {
+    let counts = Counts::from_p(stage.p);
+    ComplexityRecord {
         schema: "reboundary-complexity/1",
         title: table.title().into(),
         length,
-        route: match route {
-            Route::Beams => "beams",
-            Route::Diagonals => "diagonals",
-            Route::Both => "both",
-        },
+        route: name(route),
         p: counts.p,
         first_difference: counts.first_difference,
         second_difference: counts.second_difference,
-        diagonals: found,
-        routes_agree: disagreement.map(|d| d.is_none()),
-        complete: true,
-        complete_to: length,
-    };
-    emit(options.out.as_deref(), |out| match options.format {
-        Format::Text => write_text(&record, out),
-        Format::Json => write_json(out, &record),
-        Format::Csv => write_csv(&record, out),
-    })?;
-    match disagreement {
-        Some(Some(n)) => Err(Fault::Failed(format!(
-            "the two routes to p(n) differ, first at n = {n}; please report this table as a fault of the program"
-        ))),
-        _ => Ok(()),
+        diagonals: stage.diagonals,
+        routes_agree: stage.disagreement.map(|d| d.is_none()),
+        complete: stage.length == length,
+        complete_to: stage.length,
+        stats,
+    }
+}
+
+fn name(route: Route) -> &'static str {
+    match route {
+        Route::Beams => "beams",
+        Route::Diagonals => "diagonals",
+        Route::Both => "both",
     }
 }
 
@@ -129,10 +310,22 @@ fn write_text(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> 
     writeln!(out, "{}", record.title)?;
     write_columns(out, &["n", "p(n)", "s(n)", "b(n)", "N(n)"], &rows(record))?;
     match record.routes_agree {
-        Some(true) => writeln!(out, "both routes agree for every n up to {}", record.length),
-        Some(false) => writeln!(out, "the routes DISAGREE"),
-        None => Ok(()),
+        Some(true) => writeln!(
+            out,
+            "both routes agree for every n up to {}",
+            record.complete_to
+        )?,
+        Some(false) => writeln!(out, "the routes DISAGREE")?,
+        None => {}
     }
+    if !record.complete {
+        writeln!(
+            out,
+            "stopped: complete to n = {} of {}",
+            record.complete_to, record.length
+        )?;
+    }
+    Ok(())
 }
 
 fn write_csv(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> {

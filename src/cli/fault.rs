@@ -2,6 +2,7 @@
 
 use crate::language::walk::GrowthFault;
 use crate::run::Stopped;
+use crate::run::checkpoint::CheckpointFault;
 use crate::run::files::OutputFault;
 use crate::study::folder::FolderFault;
 use crate::study::results::StudyFault;
@@ -95,6 +96,12 @@ impl From<OutputFault> for Fault {
             OutputFault::System { .. } => Fault::Failed(error.to_string()),
             _ => Fault::BadInput(error.to_string()),
         }
+    }
+}
+
+impl From<CheckpointFault> for Fault {
+    fn from(error: CheckpointFault) -> Fault {
+        Fault::BadInput(error.to_string())
     }
 }
 

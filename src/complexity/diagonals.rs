@@ -8,6 +8,7 @@
 //! p(n) steps, in memory O(n).
 
 use crate::number::Tiers;
+use crate::run::checkpoint::{Ledger, Unkept};
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
 use crate::table::{CornerId, SideId, Vector};
@@ -59,7 +60,21 @@ pub fn count(
     most: usize,
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
-    with_engine!(engine, engine => count_with(engine, mesh, most, control))
+    count_kept(engine, mesh, most, control, &Unkept)
+}
+
+/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of the other parts alone.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn count_kept(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    with_engine!(engine, engine => count_parts(engine, mesh, most, control, ledger))
 }
 
 /// The same on a given engine.
@@ -72,8 +87,20 @@ pub fn count_with<E: Engine>(
     most: usize,
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
+    count_parts(engine, mesh, most, control, &Unkept)
+}
+
+fn count_parts<E: Engine>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
     let new = || Counter(vec![0; most + 1]);
-    let (counters, tiers) = walk_fans(engine, mesh, most, control, new)?;
+    let recall = |part| ledger.recall(part).map(Counter);
+    let keep = |part, counter: &Counter| ledger.keep(part, &counter.0);
+    let (counters, tiers) = walk_fans(engine, mesh, most, control, new, (recall, keep))?;
     let mut n = vec![0; most + 1];
     for counter in counters {
         for (sum, part) in n.iter_mut().zip(&counter.0) {
@@ -97,7 +124,8 @@ pub fn list(
     control: &Control,
 ) -> Result<(Vec<Diagonal>, Tiers), Stopped> {
     let (lists, tiers) = with_engine!(engine, engine => {
-        let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default)?;
+        let no_ledger = (|_| None, |_, _: &Collector| {});
+        let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default, no_ledger)?;
         (lists, tiers)
     });
     let mut all: Vec<Diagonal> = lists.into_iter().flat_map(|c| c.0).collect();
@@ -148,13 +176,18 @@ impl<E: Engine> Listener<E> for Collector {
 /// Fans to aim for when the work is divided.
 const SEEDS: usize = 256;
 
-/// Walks all fans; returns the listeners in a fixed order that does not depend on the number of threads.
+/// Walks all fans; returns the listeners in a fixed order that does not depend on the number of threads. `recall` may know
+/// the listener of a part from before; `keep` hears of each part that was walked to its end.
 fn walk_fans<E: Engine, L: Listener<E>>(
     engine: &E,
     mesh: &Mesh,
     most: usize,
     control: &Control,
     new_listener: impl Fn() -> L + Sync,
+    (recall, keep): (
+        impl Fn(usize) -> Option<L> + Sync,
+        impl Fn(usize, &L) + Sync,
+    ),
 ) -> Result<(Vec<L>, Tiers), Stopped> {
     assert!(
         most <= engine.deepest(),
@@ -198,9 +231,14 @@ fn walk_fans<E: Engine, L: Listener<E>>(
     }
     let walked: Vec<(L, Tiers)> = seeds
         .par_iter()
-        .map(|seed| {
+        .enumerate()
+        .map(|(part, seed)| {
+            if let Some(listener) = recall(part) {
+                return Ok((listener, Tiers::default()));
+            }
             let mut listener = new_listener();
             let tiers = walk_seed(engine, mesh, most, control, seed, &mut listener)?;
+            keep(part, &listener);
             Ok((listener, tiers))
         })
         .collect::<Result<_, Stopped>>()?;

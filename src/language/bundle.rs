@@ -289,13 +289,17 @@ fn letters<E: Engine>(engine: &E, mesh: &Mesh) -> Vec<Seed<E>> {
     seeds
 }
 
-/// The walk of [`walk_beams`](super::walk::walk_beams) over bundles.
+/// The walk of [`walk_beams`](super::walk::walk_beams) over bundles; `recall` and `keep` as there.
 pub(super) fn walk<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
+    (recall, keep): (
+        impl Fn(usize) -> Option<V> + Sync,
+        impl Fn(usize, &V) + Sync,
+    ),
 ) -> Result<(Vec<V>, Tiers), Stopped> {
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
@@ -307,9 +311,14 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     if split < longest {
         let walked = seeds
             .par_iter()
-            .map(|seed| {
+            .enumerate()
+            .map(|(part, seed)| {
+                if let Some(visitor) = recall(part) {
+                    return Ok((visitor, Tiers::default()));
+                }
                 let mut visitor = new_visitor(Part::Subtree);
                 let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
+                keep(part, &visitor);
                 Ok((visitor, tiers))
             })
             .collect::<Result<Vec<(V, Tiers)>, Stopped>>()?;
@@ -367,6 +376,8 @@ fn divide<E: Engine, V: Visitor<E>>(
         seeds = next;
         length += 1;
     }
+    let strands = seeds.iter().map(|seed| seed.bundle.strands.len() as u64);
+    control.tick(strands.sum())?;
     Ok((seeds, length))
 }
 

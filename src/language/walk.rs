@@ -13,6 +13,7 @@
 use super::bundle;
 use super::tree::{Language, LanguageFault, WordId};
 use crate::number::Tiers;
+use crate::run::checkpoint::{Ledger, Unkept};
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
 use crate::table::{LetterId, SideId};
@@ -89,12 +90,29 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
 ) -> Result<(Vec<V>, Tiers), Stopped> {
+    let no_ledger = (|_| None, |_, _: &V| {});
+    walk_kept(engine, mesh, longest, control, new_visitor, no_ledger)
+}
+
+/// The same walk. `recall` may know the visitor of a subtree from before; `keep` hears of each that was walked to
+/// its end.
+fn walk_kept<E: Engine, V: Visitor<E>>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    new_visitor: impl Fn(Part) -> V + Sync,
+    (recall, keep): (
+        impl Fn(usize) -> Option<V> + Sync,
+        impl Fn(usize, &V) + Sync,
+    ),
+) -> Result<(Vec<V>, Tiers), Stopped> {
     assert!(
         longest <= engine.deepest() + 1,
         "the engine must reach the longest word"
     );
     if !mesh.has_one_beam_a_word() {
-        return bundle::walk(engine, mesh, longest, control, new_visitor);
+        return bundle::walk(engine, mesh, longest, control, new_visitor, (recall, keep));
     }
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
@@ -104,9 +122,14 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     } else {
         seeds
             .par_iter()
-            .map(|seed| {
+            .enumerate()
+            .map(|(part, seed)| {
+                if let Some(visitor) = recall(part) {
+                    return Ok((visitor, Tiers::default()));
+                }
                 let mut visitor = new_visitor(Part::Subtree);
                 let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
+                keep(part, &visitor);
                 Ok((visitor, tiers))
             })
             .collect::<Result<_, Stopped>>()?
@@ -210,6 +233,7 @@ fn divide<E: Engine, V: Visitor<E>>(
         seeds = longer;
         length += 1;
     }
+    control.tick(seeds.len() as u64)?;
     Ok((seeds, length))
 }
 
@@ -424,9 +448,25 @@ pub fn count(
     longest: usize,
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
+    count_kept(engine, mesh, longest, control, &Unkept)
+}
+
+/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of the other parts alone.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn count_kept(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let new = |_| Counter::default();
+    let recall = |part| ledger.recall(part).map(Counter);
+    let keep = |part, counter: &Counter| ledger.keep(part, &counter.0);
     let (counters, tiers) = with_engine!(engine, engine => {
-        let (counters, tiers) = walk_beams(engine, mesh, longest, control, |_| Counter::default())?;
-        (counters, tiers)
+        walk_kept(engine, mesh, longest, control, new, (recall, keep))?
     });
     let mut p = vec![0; longest + 1];
     p[0] = 1;

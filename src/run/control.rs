@@ -3,17 +3,30 @@
 //! Workers call [`Control::tick`] every few thousand steps. It costs one relaxed atomic addition and one
 //! load, and is the only contact between the mathematics and the world outside.
 
-use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
+use std::sync::atomic::{AtomicU8, AtomicU64, Ordering};
 
-/// Why work ended before it was complete.
+/// Work ended before it was complete; [`Control::reason`] says why.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, thiserror::Error)]
-#[error("stopped by a signal before the work was complete")]
+#[error("stopped before the work was complete")]
 pub struct Stopped;
+
+/// Who asked to stop.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+#[repr(u8)]
+pub enum StopReason {
+    /// A signal, such as Ctrl-C.
+    Signal = 1,
+    /// The time allowed is over.
+    Time,
+    /// More memory is used than allowed.
+    Memory,
+}
 
 /// Shared between the thread that listens for signals, the progress display and the workers.
 #[derive(Debug, Default)]
 pub struct Control {
-    stop: AtomicBool,
+    /// 0 while nobody asked to stop, else a [`StopReason`].
+    stop: AtomicU8,
     done: AtomicU64,
 }
 
@@ -26,14 +39,30 @@ impl Control {
         Control::default()
     }
 
-    /// Asks all workers to stop soon.
+    /// Asks all workers to stop soon, because of a signal.
     pub fn stop(&self) {
-        self.stop.store(true, Ordering::Relaxed);
+        self.stop_for(StopReason::Signal);
+    }
+
+    /// Asks all workers to stop soon. Only the first reason is kept.
+    pub fn stop_for(&self, reason: StopReason) {
+        let (relaxed, first) = (Ordering::Relaxed, reason as u8);
+        let _ = self.stop.compare_exchange(0, first, relaxed, relaxed);
     }
 
     /// True after [`Control::stop`].
     pub fn is_stopped(&self) -> bool {
-        self.stop.load(Ordering::Relaxed)
+        self.stop.load(Ordering::Relaxed) != 0
+    }
+
+    /// Who asked to stop, if anybody did.
+    pub fn reason(&self) -> Option<StopReason> {
+        match self.stop.load(Ordering::Relaxed) {
+            0 => None,
+            code if code == StopReason::Time as u8 => Some(StopReason::Time),
+            code if code == StopReason::Memory as u8 => Some(StopReason::Memory),
+            _ => Some(StopReason::Signal),
+        }
     }
 
     /// Reports finished steps and asks whether to go on.
