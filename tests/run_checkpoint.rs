@@ -145,14 +145,19 @@ fn a_checkpoint_in_use_or_of_something_else_is_refused_with_the_reason() {
         Err(CheckpointFault::InUse { .. })
     ));
     drop(open);
-    let changes: [(fn(&mut Identity), &str); 3] = [
-        (|i| i.version = "2".into(), "version 1 of the program"),
-        (|i| i.table = "kite".into(), "another table"),
-        (|i| i.options = "--length 8".into(), "`--length 9`"),
-    ];
-    for (change, reason) in changes {
-        let mut other = identity();
-        change(&mut other);
+    let with = |version: &str, table: &str, options: &str| Identity {
+        version: version.into(),
+        table: table.into(),
+        options: options.into(),
+    };
+    for (other, reason) in [
+        (
+            with("2", "square", "--length 9"),
+            "version 1 of the program",
+        ),
+        (with("1", "kite", "--length 9"), "another table"),
+        (with("1", "square", "--length 8"), "`--length 9`"),
+    ] {
         let fault = Checkpoint::open(folder.path(), &other, true).expect_err("foreign");
         assert!(fault.to_string().contains(reason), "{fault}");
     }

@@ -6,7 +6,7 @@
 //! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
-//! - [`stats`]: what a run took.
+//! - `stats`: what a run took.
 //! - one module for each command.
 
 pub mod arguments;

@@ -31,6 +31,10 @@ impl Budget {
             return Watch { watcher: None };
         }
         let end = self.time.and_then(|time| Instant::now().checked_add(time));
+        if self.time == Some(Duration::ZERO) {
+            // Not left to the order in which threads start.
+            control.stop_for(StopReason::Time);
+        }
         let (ended, hears_end) = channel::<()>();
         let control = control.clone();
         let thread = std::thread::spawn(move || {
