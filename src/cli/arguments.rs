@@ -1,5 +1,6 @@
 //! Commands and options.
 
+use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
@@ -32,6 +33,10 @@ pub enum Command {
     Diagonals(DiagonalsOptions),
     /// Special words and path balls of the factor graphs, or one graph as GraphML
     Graph(GraphOptions),
+    /// All orbits in one direction: words, corner-to-corner segments, strips, interval exchange
+    Direction(DirectionOptions),
+    /// All periodic words up to a length, one for each class under cyclic shift and reversal
+    Periodic(PeriodicOptions),
     /// The complexity of every member of a family of tables, into a folder; continues where it was stopped
     Sweep(SweepOptions),
     /// One orbit from an exact start
@@ -50,6 +55,8 @@ impl Command {
             Command::Complexity(options) => options.out.as_deref(),
             Command::Diagonals(options) => options.out.as_deref(),
             Command::Graph(options) => options.out.as_deref(),
+            Command::Direction(options) => options.out.as_deref(),
+            Command::Periodic(options) => options.out.as_deref(),
             Command::Trace(options) => options.out.as_deref(),
             Command::Orbits(options) => options.out.as_deref(),
         }
@@ -145,7 +152,7 @@ fn parse_length(text: &str) -> Result<usize, String> {
     }
 }
 
-fn parse_positive_length(text: &str) -> Result<usize, String> {
+pub(super) fn parse_positive_length(text: &str) -> Result<usize, String> {
     match parse_length(text)? {
         0 => Err("write a length of at least 1".into()),
         length => Ok(length),
@@ -302,6 +309,14 @@ pub struct DiagonalsOptions {
     /// The most sides that a listed diagonal crosses
     #[arg(long, value_name = "N", default_value_t = 8, value_parser = parse_length)]
     pub length: usize,
+    /// List all up to this geometric length instead, an exact number
+    #[arg(
+        long,
+        value_name = "L",
+        allow_hyphen_values = true,
+        conflicts_with = "length"
+    )]
+    pub distance: Option<String>,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -386,64 +401,7 @@ pub struct SweepOptions {
     pub exactness: Exactness,
 }
 
-/// `trace`.
-#[derive(Debug, Args)]
-pub struct TraceOptions {
-    /// The table file
-    pub table: PathBuf,
-    /// Parameters.
-    #[command(flatten)]
-    pub settings: Settings,
-    /// Where to start: LETTER@FRACTION, such as a@1/3, a third of the way along side a; a2@1/3 for the second of
-    /// several sides with the letter a
-    #[arg(long, value_name = "START")]
-    pub start: String,
-    /// Direction as a vector X,Y in the table's coordinates
-    #[arg(long, value_name = "X,Y", allow_hyphen_values = true)]
-    pub aim: String,
-    /// Letters of the word; the starting side is the first
-    #[arg(long, value_name = "N", default_value_t = 100, value_parser = parse_hits)]
-    pub hits: usize,
-    /// Text: the word; CSV and JSON give each hit exactly and as decimals
-    #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
-    /// File for the output [default: standard output]
-    #[arg(long, value_name = "PATH")]
-    pub out: Option<PathBuf>,
-    /// No notices
-    #[arg(long)]
-    pub quiet: bool,
-}
-
-/// `orbits`.
-#[derive(Debug, Args)]
-pub struct OrbitsOptions {
-    /// The table file
-    pub table: PathBuf,
-    /// Parameters.
-    #[command(flatten)]
-    pub settings: Settings,
-    /// Number of orbits
-    #[arg(long, value_name = "M", default_value_t = 1000)]
-    pub count: u64,
-    /// Letters of each word; the starting side is the first
-    #[arg(long, value_name = "N", default_value_t = 200, value_parser = parse_hits)]
-    pub hits: usize,
-    /// Seed of the random starts
-    #[arg(long, value_name = "K", default_value_t = 0)]
-    pub seed: u64,
-    /// Text: one word a line; CSV and JSON Lines add the exact start
-    #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
-    /// File for the output [default: standard output]
-    #[arg(long, value_name = "PATH")]
-    pub out: Option<PathBuf>,
-    /// Common options.
-    #[command(flatten)]
-    pub common: Common,
-}
-
-fn parse_hits(text: &str) -> Result<usize, String> {
+pub(super) fn parse_hits(text: &str) -> Result<usize, String> {
     match text.parse::<usize>() {
         Ok(hits) if hits >= 1 => Ok(hits),
         _ => Err("write a whole number of at least 1".into()),

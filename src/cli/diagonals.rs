@@ -2,15 +2,21 @@
 
 use super::arguments::{DiagonalsOptions, Format};
 use super::fault::Fault;
+use super::launch::Launcher;
 use super::output::{emit, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
+use crate::complexity::by_distance::{DistanceFault, list_within};
 use crate::complexity::diagonals::{Diagonal, list};
+use crate::number::Real;
 use crate::study::folder::{spell_code, write_diagonals};
 use crate::table::Table;
-use crate::table::summary::{ExactVector, root_decimal};
+use crate::table::facts::{Angle, facts, squared_area};
+use crate::table::summary::{Exact, ExactVector, root_decimal};
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
+use rug::Rational;
 use serde::Serialize;
+use std::f64::consts::PI;
 use std::io::{self, Write};
 
 #[derive(Serialize)]
@@ -36,6 +42,9 @@ struct DiagonalsRecord {
 
 pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
+    if let Some(distance) = &options.distance {
+        return within(options, &loaded.table, distance);
+    }
     let table = &loaded.table;
     let mesh = Mesh::new(table);
     let engine = AnyEngine::new(table, options.length, options.exactness.arithmetic());
@@ -48,6 +57,33 @@ pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
         Format::Text => write_text(table, &found, out),
         Format::Csv => write_diagonals(table, &found, out),
         Format::Json => write_json(out, &record(table, &found, options.length)),
+    })
+}
+
+fn within(options: &DiagonalsOptions, table: &Table, text: &str) -> Result<(), Fault> {
+    let mut launcher = Launcher::new(table);
+    let distance = launcher.positive("--distance", text)?;
+    let (table, lifter) = launcher.finish();
+    let distance = lifter.number(&distance);
+    let control = interruptible_control();
+    let progress = Progress::new(&control, options.common.quiet);
+    progress.begin("generalized diagonals", None);
+    let found = list_within(
+        &table,
+        &Mesh::new(&table),
+        &(&distance * &distance),
+        options.exactness.arithmetic(),
+        &control,
+    );
+    let found = found.map_err(|fault| match fault {
+        DistanceFault::Stopped(stopped) => stopped.into(),
+        DistanceFault::TooFar => Fault::BadInput(fault.to_string()),
+    })?;
+    drop(progress);
+    emit(options.out.as_deref(), |out| match options.format {
+        Format::Text => write_text(&table, &found, out),
+        Format::Csv => write_diagonals(&table, &found, out),
+        Format::Json => write_json(out, &distance_record(&table, &found, &distance)),
     })
 }
 
@@ -97,4 +133,89 @@ fn write_text(table: &Table, found: &[Diagonal], out: &mut dyn Write) -> io::Res
         &["sides", "from", "to", "code", "x", "y", "length"],
         &rows,
     )
+}
+
+/// Segments between two corners, in both directions.
+#[derive(Serialize)]
+struct Pair {
+    corners: [u8; 2],
+    /// Not oriented.
+    count: usize,
+    /// L²/(2π·area) between two right angles, four times that between a right angle and one of 270°: the
+    /// leading term for almost every right-angled table of a family (Athreya, Eskin, Zorich, arXiv 1212.1660).
+    /// Null for other pairs.
+    published: Option<f64>,
+}
+
+#[derive(Serialize)]
+struct DistanceRecord {
+    schema: &'static str,
+    title: String,
+    distance: Exact,
+    /// N(L), oriented.
+    count: usize,
+    /// N(L)/L²: between two positive bounds for large L on every table with rational angles (Masur 1988, 1990).
+    count_over_squared_distance: f64,
+    /// How many of them cross 0, 1, 2, … sides.
+    by_crossings: Vec<u64>,
+    /// How many are no longer than L/16, 2L/16, …, L.
+    by_distance: Vec<usize>,
+    /// For right-angled tables: each pair of different corners.
+    pairs: Option<Vec<Pair>>,
+    diagonals: Vec<Listed>,
+}
+
+fn distance_record(table: &Table, found: &[Diagonal], distance: &Real) -> DistanceRecord {
+    let most = found.iter().map(|d| d.code.len()).max().unwrap_or(0);
+    let mut by_crossings = vec![0; most + 1];
+    found.iter().for_each(|d| by_crossings[d.code.len()] += 1);
+    let squares: Vec<Real> = found
+        .iter()
+        .map(|d| d.displacement.squared_length(table.form()))
+        .collect();
+    let by_distance = (1..=16)
+        .map(|i| {
+            let part = distance * &Real::from(Rational::from((i, 16)));
+            let square = &part * &part;
+            // Sorted by length.
+            squares.partition_point(|s| *s <= square)
+        })
+        .collect();
+    DistanceRecord {
+        schema: "reboundary-diagonals-within/1",
+        title: table.title().into(),
+        distance: Exact::new(distance),
+        count: found.len(),
+        count_over_squared_distance: found.len() as f64 / distance.to_f64().powi(2),
+        by_crossings,
+        by_distance,
+        pairs: pairs(table, found, distance),
+        diagonals: found.iter().map(|d| listed(table, d)).collect(),
+    }
+}
+
+fn pairs(table: &Table, found: &[Diagonal], distance: &Real) -> Option<Vec<Pair>> {
+    let facts = facts(table);
+    if !facts.right_angled {
+        return None;
+    }
+    let right = Angle::RationalMultipleOfPi(Rational::from((1, 2)));
+    let area = squared_area(table, &facts).to_f64().sqrt();
+    let unit = distance.to_f64().powi(2) / (2.0 * PI * area);
+    let k = table.sides();
+    let mut all = Vec::new();
+    for (a, b) in (0..k).flat_map(|a| (a + 1..k).map(move |b| (a, b))) {
+        let joins = |d: &&Diagonal| (d.start.0 as usize, d.end.0 as usize) == (a, b);
+        let rights = [a, b].iter().filter(|c| facts.angles[**c] == right).count();
+        all.push(Pair {
+            corners: [a as u8, b as u8],
+            count: found.iter().filter(joins).count(),
+            published: match rights {
+                2 => Some(unit),
+                1 => Some(4.0 * unit),
+                _ => None,
+            },
+        });
+    }
+    Some(all)
 }

@@ -2,6 +2,8 @@
 //!
 //! - [`arguments`]: commands and options.
 //! - [`fault`]: what can go wrong, and the exit code of each.
+//! - [`launch`]: starts and aims.
+//! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
 //! - one module for each command.
@@ -9,15 +11,21 @@
 pub mod arguments;
 mod complexity;
 mod diagonals;
+mod direction;
 pub mod fault;
 mod graph;
+mod launch;
+pub mod orbit_arguments;
+mod orbit_picture;
 mod orbits;
 pub mod output;
+mod periodic;
 pub mod progress;
 mod study;
 mod sweep;
 mod table;
 mod trace;
+mod trace_record;
 mod words;
 
 use arguments::{Arguments, Command, Common};
@@ -65,6 +73,8 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Direction(options) => with_threads(&options.common, || direction::run(options)),
+        Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
         Command::Sweep(options) => with_threads(&options.common, || sweep::run(options)),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),

@@ -1,32 +1,74 @@
 //! `reboundary orbits`.
 
-use super::arguments::{Format, OrbitsOptions};
+use super::arguments::Format;
 use super::fault::Fault;
-use super::output::{emit, read_table};
+use super::launch::{Launcher, side_name};
+use super::orbit_arguments::OrbitsOptions;
+use super::output::{emit, note, read_table};
 use super::progress::{Progress, interruptible_control};
-use crate::orbit::TraceTables;
-use crate::orbit::ensemble::{Sample, StartLaw, sample};
+use crate::language::{measure, walk};
+use crate::number::Enclosure;
+use crate::orbit::ensemble::Sample;
+use crate::orbit::law::{Ensemble, Law};
+use crate::orbit::statistics::{Estimate, OrbitShares, PathMeter, Statistics, orbit_shares};
+use crate::orbit::trace::StartFault;
+use crate::orbit::{Start, TraceTables};
 use crate::run::Control;
+use crate::run::files::{check_place, write_whole};
 use crate::study::folder::spell_code;
-use crate::table::Table;
+use crate::study::record::decimal;
+use crate::table::facts::{facts, squared_area};
+use crate::table::{LetterId, Table};
+use crate::unfold::Mesh;
+use crate::unfold::engine::{AnyEngine, Arithmetic};
 use rayon::prelude::*;
 use std::io::{self, Write};
+use std::path::Path;
 
-/// Orbits that are traced before they are written: bounds the memory.
-const BATCH: u64 = 4096;
+/// Letters that are traced before they are written: bounds the memory, whatever the length of an orbit.
+const BATCH_LETTERS: usize = 1 << 22;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
-    let table = &loaded.table;
-    let tables = TraceTables::new(table);
-    let law = StartLaw::new(table);
+    if let Some(file) = &options.statistics {
+        check_place(file)?;
+    }
+    let (table, law) = read_law(options, &loaded.table)?;
+    let tables = TraceTables::new(&table);
+    let ensemble = Ensemble::new(&tables, law);
+    let count = match (options.count, ensemble.count()) {
+        (Some(count), Some(most)) if count > most => {
+            return Err(Fault::BadInput(format!(
+                "--count {count} is more than the {most} starts that there are"
+            )));
+        }
+        (Some(count), _) | (None, Some(count)) => count,
+        (None, None) => 1000,
+    };
+    if options.statistics.is_some() && (count < 2 || options.hits < options.blocks.max(2)) {
+        return Err(Fault::BadInput(
+            "--statistics needs at least two orbits, and as many hits as the longest blocks and two"
+                .into(),
+        ));
+    }
     let control = interruptible_control();
     let progress = Progress::new(&control, options.common.quiet);
-    progress.begin("orbits", Some(options.count));
-    let done = emit(options.out.as_deref(), |out| {
-        write_all(options, table, &tables, &law, &control, out)
-    });
+    progress.begin("orbits", Some(count));
+    let mut job = Job {
+        options,
+        table: &table,
+        ensemble: &ensemble,
+        meter: PathMeter::new(&table),
+        count,
+        control: &control,
+        statistics: Statistics::default(),
+        refused: None,
+    };
+    let done = emit(options.out.as_deref(), |out| job.write_all(out));
     drop(progress);
+    if let Some((index, fault)) = job.refused {
+        return Err(Fault::BadInput(format!("start {index} (from 0): {fault}")));
+    }
     if control.is_stopped() {
         let what = match options.out {
             Some(_) => "nothing was written",
@@ -36,55 +78,244 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
             "a signal came before all orbits were traced; {what}"
         )));
     }
-    done
+    done?;
+    match &options.statistics {
+        Some(path) => write_statistics(options, &table, &job.statistics, path, &control),
+        None => Ok(()),
+    }
 }
 
-fn write_all(
-    options: &OrbitsOptions,
-    table: &Table,
-    tables: &TraceTables,
-    law: &StartLaw,
-    control: &Control,
-    out: &mut dyn Write,
-) -> io::Result<()> {
-    if options.format == Format::Csv {
-        writeln!(out, "orbit,side,fraction,aim_x,aim_y,word")?;
+/// The law, and the table in the field that its starts need.
+fn read_law(options: &OrbitsOptions, table: &Table) -> Result<(Table, Law), Fault> {
+    let mut launcher = Launcher::new(table);
+    if let Some((places, directions)) = options.grid {
+        return Ok((table.clone(), Law::Grid { places, directions }));
     }
-    let mut first = 0;
-    while first < options.count {
-        let batch = BATCH.min(options.count - first);
-        let rows: Vec<String> = (first..first + batch)
-            .into_par_iter()
-            .map(|index| {
-                let sample = sample(tables, law, options.seed, index, options.hits);
-                row(table, index, &sample, options.format)
-            })
-            .collect();
-        for row in rows {
-            writeln!(out, "{row}")?;
-        }
-        first += batch;
-        if control.tick(batch).is_err() {
-            return Err(io::Error::other("stopped"));
-        }
+    if let Some(path) = &options.starts {
+        return read_starts(launcher, path);
     }
-    Ok(())
+    if let Some(start) = &options.start {
+        let (side, fraction) = launcher.side_start(start)?;
+        let (table, lifter) = launcher.finish();
+        let fraction = lifter.number(&fraction);
+        return Ok((table, Law::Point { side, fraction }));
+    }
+    let aim = match (&options.aim, &options.heading) {
+        (Some(aim), _) => launcher.aim(aim)?,
+        (None, Some(heading)) => launcher.heading(heading)?,
+        (None, None) => return Ok((table.clone(), Law::Cosine)),
+    };
+    let (table, lifter) = launcher.finish();
+    Ok((table, Law::Direction(lifter.vector(&aim))))
+}
+
+fn read_starts(mut launcher: Launcher<'_>, path: &Path) -> Result<(Table, Law), Fault> {
+    let place = |row: usize, text: String| {
+        Fault::BadInput(format!("{}, row {row}: {text}", path.display()))
+    };
+    let whole = |e: csv::Error| Fault::BadInput(format!("{}: {e}", path.display()));
+    let mut rows = csv::Reader::from_path(path).map_err(whole)?;
+    let header = rows.headers().map_err(whole)?.clone();
+    let column = |name: &str| {
+        header.iter().position(|h| h == name).ok_or_else(|| {
+            Fault::BadInput(format!(
+                "{} has no column `{name}`; it needs side, fraction, aim_x and aim_y",
+                path.display()
+            ))
+        })
+    };
+    let columns = [
+        column("side")?,
+        column("fraction")?,
+        column("aim_x")?,
+        column("aim_y")?,
+    ];
+    let mut read = Vec::new();
+    for (number, row) in (1..).zip(rows.records()) {
+        let row = row.map_err(whole)?;
+        let [side, fraction, x, y] = columns.map(|c| row.get(c).unwrap_or_default());
+        let inner = |f: Fault| place(number, f.to_string());
+        let (side, fraction) = launcher
+            .side_start(&format!("{side}@{fraction}"))
+            .map_err(inner)?;
+        let aim = launcher.aim(&format!("{x},{y}")).map_err(inner)?;
+        read.push((side, fraction, aim));
+    }
+    let (table, lifter) = launcher.finish();
+    let starts = read
+        .into_iter()
+        .map(|(side, fraction, aim)| Start {
+            side,
+            fraction: lifter.number(&fraction),
+            aim: lifter.vector(&aim),
+        })
+        .collect();
+    Ok((table, Law::List(starts)))
+}
+
+struct Job<'a> {
+    options: &'a OrbitsOptions,
+    table: &'a Table,
+    ensemble: &'a Ensemble<'a>,
+    meter: PathMeter,
+    count: u64,
+    control: &'a Control,
+    statistics: Statistics,
+    refused: Option<(u64, StartFault)>,
+}
+
+impl Job<'_> {
+    fn write_all(&mut self, out: &mut dyn Write) -> io::Result<()> {
+        if self.options.format == Format::Csv {
+            writeln!(out, "orbit,side,fraction,aim_x,aim_y,word")?;
+        }
+        let most = (BATCH_LETTERS / self.options.hits).clamp(1, 4096) as u64;
+        let mut first = 0;
+        while first < self.count {
+            let batch = most.min(self.count - first);
+            let rows: Vec<Result<Row, StartFault>> = (first..first + batch)
+                .into_par_iter()
+                .map(|index| self.row(index))
+                .collect();
+            for (index, row) in (first..).zip(rows) {
+                match row {
+                    Ok(row) => {
+                        writeln!(out, "{}", row.text)?;
+                        if let Some(shares) = row.shares {
+                            self.statistics.add(shares);
+                        }
+                    }
+                    Err(fault) => {
+                        self.refused = Some((index, fault));
+                        return Err(io::Error::other("a start was refused"));
+                    }
+                }
+            }
+            first += batch;
+            if self.control.tick(batch).is_err() {
+                return Err(io::Error::other("stopped"));
+            }
+        }
+        Ok(())
+    }
+
+    fn row(&self, index: u64) -> Result<Row, StartFault> {
+        let options = self.options;
+        let sample = self.ensemble.sample(options.seed, index, options.hits)?;
+        let shares = options.statistics.is_some().then(|| {
+            let length = self.meter.path_length(&sample.start, &sample.word);
+            let word = sample.word.iter().map(|s| self.table.letter_id(*s));
+            orbit_shares(&word.collect::<Vec<_>>(), options.blocks, length)
+        });
+        Ok(Row {
+            text: row(self.table, index, &sample, options.format),
+            shares,
+        })
+    }
+}
+
+struct Row {
+    text: String,
+    shares: Option<OrbitShares>,
 }
 
 fn row(table: &Table, index: u64, sample: &Sample, format: Format) -> String {
     let word = spell_code(table, &sample.word);
-    let side = table.letter(sample.start.side);
+    let side = side_name(table, sample.start.side);
     let (fraction, aim) = (&sample.start.fraction, &sample.start.aim);
     match format {
         Format::Text => word,
         Format::Csv => format!("{index},{side},{fraction},{},{},{word}", aim.x, aim.y),
         Format::Json => serde_json::json!({
             "orbit": index,
-            "side": side.to_string(),
+            "side": side,
             "fraction": fraction.to_string(),
             "aim": [aim.x.to_string(), aim.y.to_string()],
             "word": word,
         })
         .to_string(),
     }
+}
+
+/// One row of the statistics.
+struct Compared {
+    quantity: String,
+    estimate: Estimate,
+    exact: Enclosure,
+}
+
+fn write_statistics(
+    options: &OrbitsOptions,
+    table: &Table,
+    statistics: &Statistics,
+    path: &Path,
+    control: &Control,
+) -> Result<(), Fault> {
+    let rows = compare(options, table, statistics, control)?;
+    let z = |row: &Compared| row.estimate.z(row.exact.to_f64());
+    write_whole(path, |out| {
+        let mut csv = csv::Writer::from_writer(out);
+        csv.write_record(["quantity", "observed", "standard_error", "exact", "z"])?;
+        for row in &rows {
+            csv.write_record([
+                row.quantity.clone(),
+                row.estimate.mean.to_string(),
+                row.estimate.standard_error.to_string(),
+                decimal(&row.exact),
+                format!("{:.3}", z(row)),
+            ])?;
+        }
+        csv.flush()
+    })?;
+    if !options.common.quiet {
+        let largest = rows.iter().map(|r| z(r).abs()).fold(0.0, f64::max);
+        note(&format!(
+            "{} quantities compared; the largest z-score is {largest:.2}",
+            rows.len()
+        ));
+    }
+    Ok(())
+}
+
+/// The mean chord, then all blocks by length, in the order of the sides.
+fn compare(
+    options: &OrbitsOptions,
+    table: &Table,
+    statistics: &Statistics,
+    control: &Control,
+) -> Result<Vec<Compared>, Fault> {
+    let bits = 160;
+    let area = squared_area(table, &facts(table))
+        .enclosure_within(bits)
+        .sqrt();
+    let chord = Enclosure::pi(bits).mul(&area).div(&table.perimeter(bits));
+    let mut rows = vec![Compared {
+        quantity: "mean chord".into(),
+        estimate: statistics.chord().expect("at least two orbits"),
+        exact: chord.expect("a perimeter is positive"),
+    }];
+    let mesh = Mesh::new(table);
+    let engine = AnyEngine::new(table, options.blocks, Arithmetic::Tiered);
+    let (language, _) = walk::grow(&engine, &mesh, options.blocks, control)?;
+    for length in 1..=options.blocks {
+        let measures = measure::measure(table, &engine, &mesh, length, length, control)?;
+        for (word, measure) in (0..).zip(&measures.kept) {
+            let block: Vec<LetterId> = language
+                .word(length, word)
+                .into_iter()
+                .map(LetterId)
+                .collect();
+            rows.push(Compared {
+                quantity: block
+                    .iter()
+                    .map(|l| table.letters()[l.0 as usize])
+                    .collect(),
+                estimate: statistics.block(&block).expect("at least two orbits"),
+                exact: measure
+                    .div(&measures.whole)
+                    .expect("a perimeter is positive"),
+            });
+        }
+    }
+    Ok(rows)
 }

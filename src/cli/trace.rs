@@ -1,299 +1,242 @@
 //! `reboundary trace`.
 
-use super::arguments::{Format, TraceOptions};
 use super::fault::Fault;
+use super::launch::{Launcher, fault, side_name};
+use super::orbit_arguments::{TraceFormat, TraceOptions};
+use super::orbit_picture::{draw_orbit, draw_unfolding};
 use super::output::{emit, note, read_table, write_json};
+use super::trace_record::{record, write_csv, write_lines};
 use crate::number::Real;
-use crate::orbit::trace::{State, Step};
-use crate::orbit::{Start, TraceTables, Tracer};
+use crate::orbit::ensemble::{StartLaw, random_start};
+use crate::orbit::launch::{FirstHit, PointFault, backward, first_hit};
+use crate::orbit::path::{Limits, Path, PathEnd, follow};
+use crate::orbit::{Start, TraceTables};
+use crate::run::files::{check_place, write_whole};
 use crate::study::folder::spell_code;
-use crate::table::diagnostic::Diagnostic;
-use crate::table::expression::Evaluator;
-use crate::table::summary::{Exact, ExactVector};
 use crate::table::{SideId, Table, Vector};
-use serde::Serialize;
-use std::io::{self, Write};
-use std::ops::Range;
+
+/// What a trace found, with what is needed to write and draw it.
+pub struct Traced {
+    /// The table, in the field of start and aim.
+    pub table: Table,
+    /// The point inside the table that the orbit started from, when it did.
+    pub from: Option<Vector>,
+    /// Followed back in time.
+    pub backward: bool,
+    /// The orbit; `None` when it ran into a corner before any side.
+    pub path: Option<Path>,
+    /// Why it ended.
+    pub end: PathEnd,
+}
+
+impl Traced {
+    /// The word, as text.
+    pub fn word(&self) -> String {
+        let word = self.path.as_ref().map_or(&[][..], |p| &p.word);
+        spell_code(&self.table, word)
+    }
+}
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, &options.settings, options.quiet)?;
-    let (table, start) = parse_launch(&loaded.table, &options.start, &options.aim)?;
-    let table = &table;
-    let tables = TraceTables::new(table);
-    let mut tracer = Tracer::new(&tables, start).map_err(|f| Fault::BadInput(f.to_string()))?;
-    let wants_states = options.format != Format::Text;
-    let mut states = Vec::new();
-    let mut end = None;
-    loop {
-        if wants_states {
-            states.push(tracer.state());
-        }
-        if tracer.word().len() >= options.hits {
-            break;
-        }
-        let step = tracer.advance();
-        if !matches!(step, Step::Hit(_)) {
-            end = Some(step);
-            break;
-        }
+    for file in options.picture.iter().chain(&options.unfolding) {
+        check_place(file)?;
     }
-    let mut word = tracer.word().to_vec();
-    if let Some(Step::Period(period)) = end {
-        while word.len() < options.hits {
-            word.push(word[word.len() - period]);
-            if wants_states {
-                states.push(states[states.len() - period].clone());
-            }
-        }
-    }
-    let statement = end.map(|step| describe(table, step, tracer.word().len()));
+    let traced = trace(options)?;
     emit(options.out.as_deref(), |out| match options.format {
-        Format::Text => writeln!(out, "{}", spell_code(table, &word)),
-        Format::Csv => write_csv(table, &states, out),
-        Format::Json => write_json(out, &record(table, &word, &states, end)),
+        TraceFormat::Text => writeln!(out, "{}", traced.word()),
+        TraceFormat::Csv => write_csv(&traced, out),
+        TraceFormat::Json => write_json(out, &record(&traced)),
+        TraceFormat::Jsonl => write_lines(&traced, out),
     })?;
-    if let Some(statement) = statement.filter(|_| !options.quiet) {
-        note(&statement);
+    draw(options, &traced)?;
+    if !options.quiet {
+        describe(&traced).iter().for_each(|text| note(text));
     }
     Ok(())
 }
 
-fn describe(table: &Table, step: Step, letters: usize) -> String {
-    match step {
-        Step::Corner(corner) => {
+/// Where an orbit starts.
+enum Launch {
+    Side(Start),
+    Inside(Vector, Vector),
+}
+
+fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
+    let loaded = read_table(&options.table, &options.settings, options.quiet)?;
+    let (table, launch, distance) = launch(options, &loaded.table)?;
+    let tables = TraceTables::new(&table);
+    let refused = |text: String| Fault::BadInput(text);
+    let (start, from, gone) = match launch {
+        Launch::Side(start) => {
+            // Refuses a bad start before it is turned round.
+            crate::orbit::Tracer::new(&tables, start.clone())
+                .map_err(|f| refused(f.to_string()))?;
+            let start = if options.backward {
+                backward(&table, &start)
+            } else {
+                start
+            };
+            (start, None, Real::from(0))
+        }
+        Launch::Inside(point, aim) => {
+            let aim = match options.backward {
+                true => aim.times(&Real::from(-1)),
+                false => aim,
+            };
+            let text = options.from.as_deref().unwrap_or_default();
+            let hit = first_hit(&table, &point, &aim).map_err(|f| point_fault(&table, text, f))?;
+            match hit {
+                FirstHit::Side(start, way) => (start, Some(point), way),
+                FirstHit::Corner(corner, _) => {
+                    let end = PathEnd::Corner(corner);
+                    return Ok(Traced {
+                        table,
+                        from: Some(point),
+                        backward: options.backward,
+                        path: None,
+                        end,
+                    });
+                }
+            }
+        }
+    };
+    // The field may hold no root of |aim|², so distances are compared as squares.
+    let squared = start.aim.squared_length(table.form());
+    let limits = Limits {
+        letters: options
+            .hits
+            .unwrap_or(if distance.is_some() { usize::MAX } else { 100 }),
+        squared_distance: distance.map(|d| &(&d * &d) / &squared),
+        gone,
+    };
+    let too_far = |most: &Real| &limits.gone * &limits.gone > *most;
+    if limits.squared_distance.as_ref().is_some_and(too_far) {
+        return Ok(Traced {
+            table,
+            from,
+            backward: options.backward,
+            path: None,
+            end: PathEnd::Distance,
+        });
+    }
+    let wants_states = options.format != TraceFormat::Text
+        || options.picture.is_some()
+        || options.unfolding.is_some();
+    let path = follow(&tables, start, &limits, wants_states).map_err(|f| refused(f.to_string()))?;
+    Ok(Traced {
+        from,
+        backward: options.backward,
+        end: path.end,
+        path: Some(path),
+        table,
+    })
+}
+
+/// Reads where to start, and the greatest distance; the table comes back in the field that they need.
+fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Option<Real>), Fault> {
+    let mut launcher = Launcher::new(table);
+    let distance = match &options.distance {
+        Some(text) => Some(launcher.positive("--distance", text)?),
+        None => None,
+    };
+    if let Some(seed) = options.seed {
+        let start = random_start(&StartLaw::new(table), seed, 0);
+        if !options.quiet {
+            note(&format!(
+                "the random start is --start {}@{} --aim {},{}",
+                side_name(table, start.side),
+                start.fraction,
+                start.aim.x,
+                start.aim.y
+            ));
+        }
+        let (table, lifter) = launcher.finish();
+        let distance = distance.map(|d| lifter.number(&d));
+        return Ok((table, Launch::Side(start), distance));
+    }
+    let start = match &options.start {
+        Some(text) => Some(launcher.side_start(text)?),
+        None => None,
+    };
+    let from = match &options.from {
+        Some(text) => Some(launcher.point(text)?),
+        None => None,
+    };
+    let aim = match (&options.aim, &options.heading) {
+        (Some(aim), _) => launcher.aim(aim)?,
+        (None, Some(heading)) => launcher.heading(heading)?,
+        (None, None) => unreachable!("the parser asks for an aim, a heading or a seed"),
+    };
+    let (table, lifter) = launcher.finish();
+    let aim = lifter.vector(&aim);
+    let launch = match (start, from) {
+        (Some((side, fraction)), _) => Launch::Side(Start {
+            side,
+            fraction: lifter.number(&fraction),
+            aim,
+        }),
+        (None, Some(point)) => Launch::Inside(lifter.vector(&point), aim),
+        (None, None) => unreachable!("the parser asks for a start, a point or a seed"),
+    };
+    Ok((table, launch, distance.map(|d| lifter.number(&d))))
+}
+
+fn point_fault(table: &Table, text: &str, refused: PointFault) -> Fault {
+    let help = match refused {
+        PointFault::OnSide(side) => format!(
+            "start on the side with --start {}@FRACTION",
+            side_name(table, side)
+        ),
+        _ => "write a point strictly inside the table; `reboundary table` lists its corners".into(),
+    };
+    fault("--from", text, 0..text.len(), refused.to_string(), &help)
+}
+
+/// What is told beside the result.
+fn describe(traced: &Traced) -> Vec<String> {
+    let table = &traced.table;
+    let letters = traced.path.as_ref().map_or(0, |p| p.word.len());
+    let mut notes = Vec::new();
+    if let Some(period) = traced.path.as_ref().and_then(|p| p.period) {
+        notes.push(format!(
+            "the orbit is periodic: after {period} hits it is exactly at its start again, in the same direction"
+        ));
+    }
+    match traced.end {
+        PathEnd::Corner(corner) => {
             let before = SideId(table.before(corner.0 as usize) as u8);
-            format!(
-                "the orbit runs into corner {} (between sides {} and {}) after {letters} {}, the start included, and ends there",
+            notes.push(format!(
+                "the orbit runs into corner {} (between sides {} and {}) after {letters} {}{}, and ends there",
                 corner.0,
                 table.letter(before),
                 table.letter(SideId(corner.0)),
                 if letters == 1 { "hit" } else { "hits" },
-            )
+                if traced.from.is_some() { "" } else { ", the start included" },
+            ))
         }
-        Step::Period(period) => format!(
-            "the orbit is periodic: after {period} hits it is exactly at its start again, in the same direction"
-        ),
-        Step::Hit(_) => String::new(),
+        PathEnd::Distance => notes.push(format!(
+            "the next hit is farther than the distance allows; the word has {letters} letters"
+        )),
+        PathEnd::Letters => {}
     }
+    notes
 }
 
-/// A fault at a place of an option's text.
-fn fault(option: &str, text: &str, span: Range<usize>, message: String, help: &str) -> Fault {
-    Fault::BadText(Box::new(Diagnostic {
-        file: option.into(),
-        source: text.into(),
-        span,
-        label: String::new(),
-        context: Vec::new(),
-        message,
-        help: help.into(),
-    }))
-}
-
-/// Reads the start and the aim. Their numbers may need a larger field than the table's; the table comes back
-/// written in that field.
-fn parse_launch(table: &Table, start: &str, aim: &str) -> Result<(Table, Start), Fault> {
-    let mut evaluator = Evaluator::new(table.field().clone());
-    let (side, fraction) = parse_start(table, &mut evaluator, start)?;
-    let aim = parse_aim(&mut evaluator, aim)?;
-    let field = evaluator.field().clone();
-    let lifted = |number: &Real| evaluator.lift(number).lifted_to(&field);
-    let start = Start {
-        side,
-        fraction: lifted(&fraction),
-        aim: Vector::new(lifted(&aim.x), lifted(&aim.y)),
+fn draw(options: &TraceOptions, traced: &Traced) -> Result<(), Fault> {
+    let Some(path) = &traced.path else {
+        return Ok(());
     };
-    Ok((table.in_field(&field, lifted), start))
-}
-
-fn parse_start(
-    table: &Table,
-    evaluator: &mut Evaluator,
-    text: &str,
-) -> Result<(SideId, Real), Fault> {
-    let help = "write LETTER@FRACTION, such as a@1/3: a third of the way along side a";
-    let Some(at) = text.find('@') else {
-        let message = "the start has no `@` between its side and its fraction".into();
-        return Err(fault("--start", text, 0..text.len(), message, help));
-    };
-    let side = parse_side(table, text, at)?;
-    let fraction = evaluate(evaluator, "--start", text, at + 1..text.len())?;
-    if fraction <= Real::from(0) || fraction >= Real::from(1) {
-        let message = format!(
-            "the start must lie inside its side: {} is not strictly between 0 and 1",
-            text[at + 1..].trim()
-        );
-        return Err(fault("--start", text, at + 1..text.len(), message, help));
+    let title = format!("Orbit in {}", traced.table.title());
+    let mut points: Vec<Vector> = traced.from.iter().cloned().collect();
+    points.extend(path.states.iter().map(|s| s.point.clone()));
+    if let Some(file) = &options.picture {
+        let description = format!("An orbit with {} hits.", path.word.len());
+        let svg = draw_orbit(&traced.table, &points, &title, &description)?;
+        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
     }
-    Ok((side, fraction))
-}
-
-/// The side named before the `@`: its letter, and when sides share it which of them, counted from 1.
-fn parse_side(table: &Table, text: &str, at: usize) -> Result<SideId, Fault> {
-    let named = &text[..at];
-    let sides = match named.chars().next() {
-        Some(letter) => table.sides_of_letter(letter),
-        None => Vec::new(),
-    };
-    let rest = named.get(named.chars().next().map_or(0, char::len_utf8)..);
-    let which = rest.filter(|rest| !rest.is_empty());
-    let count = sides.len();
-    match (which, &sides[..]) {
-        (None, [side]) => return Ok(*side),
-        (None, [_, _, ..]) => {
-            let message = format!("{count} sides have the letter `{named}`");
-            let help = format!(
-                "write which: `{named}1@...` to `{named}{count}@...`, in the order of the sides in `reboundary table`"
-            );
-            return Err(fault("--start", text, 0..at, message, &help));
-        }
-        (Some(which), [_, ..]) => {
-            let index = which.parse::<usize>().ok().and_then(|w| w.checked_sub(1));
-            if let Some(side) = index.and_then(|index| sides.get(index)) {
-                return Ok(*side);
-            }
-        }
-        (_, []) => {}
+    if let Some(file) = &options.unfolding {
+        let svg = draw_unfolding(&traced.table, &path.word, &path.states)?;
+        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
     }
-    let known: Vec<String> = table.letters().iter().map(char::to_string).collect();
-    let message = format!("`{named}` is not a side of this table");
-    let help = format!("its sides are {}", known.join(", "));
-    Err(fault("--start", text, 0..at, message, &help))
-}
-
-fn parse_aim(evaluator: &mut Evaluator, text: &str) -> Result<Vector, Fault> {
-    let help = "write a vector X,Y in the table's coordinates, such as 2,5 or sqrt(2),1";
-    let commas = top_level_commas(text);
-    let [comma] = commas[..] else {
-        let message = format!(
-            "the aim needs two coordinates, this has {}",
-            commas.len() + 1
-        );
-        return Err(fault("--aim", text, 0..text.len(), message, help));
-    };
-    let x = evaluate(evaluator, "--aim", text, 0..comma)?;
-    let y = evaluate(evaluator, "--aim", text, comma + 1..text.len())?;
-    // The second number may have made the field larger.
-    let aim = Vector::new(evaluator.lift(&x), y);
-    if aim.is_zero() {
-        let message = "the aim is the zero vector, which has no direction".into();
-        return Err(fault("--aim", text, 0..text.len(), message, help));
-    }
-    Ok(aim)
-}
-
-/// Commas outside parentheses.
-fn top_level_commas(text: &str) -> Vec<usize> {
-    let mut depth = 0i32;
-    let mut found = Vec::new();
-    for (at, c) in text.char_indices() {
-        match c {
-            '(' => depth += 1,
-            ')' => depth -= 1,
-            ',' if depth == 0 => found.push(at),
-            _ => {}
-        }
-    }
-    found
-}
-
-/// Evaluates a part of an option's text.
-fn evaluate(
-    evaluator: &mut Evaluator,
-    option: &str,
-    text: &str,
-    part: Range<usize>,
-) -> Result<Real, Fault> {
-    evaluator.evaluate(&text[part.clone()]).map_err(|e| {
-        let span = part.start + e.span.start..part.start + e.span.end;
-        fault(option, text, span, e.message, &e.help)
-    })
-}
-
-#[derive(Serialize)]
-#[serde(tag = "kind", rename_all = "snake_case")]
-enum End {
-    Hits,
-    Corner { corner: u8, after_hits: usize },
-    Period { hits: usize },
-}
-
-#[derive(Serialize)]
-struct Hit {
-    hit: usize,
-    side: String,
-    fraction: Exact,
-    point: ExactVector,
-    direction: ExactVector,
-}
-
-#[derive(Serialize)]
-struct TraceRecord {
-    schema: &'static str,
-    title: String,
-    word: String,
-    end: End,
-    /// g of the plane form: second coordinates are in units of √g.
-    form: Exact,
-    hits: Vec<Hit>,
-}
-
-fn record(table: &Table, word: &[SideId], states: &[State], end: Option<Step>) -> TraceRecord {
-    TraceRecord {
-        schema: "reboundary-trace/1",
-        title: table.title().into(),
-        word: spell_code(table, word),
-        end: match end {
-            Some(Step::Corner(corner)) => End::Corner {
-                corner: corner.0,
-                after_hits: word.len(),
-            },
-            Some(Step::Period(hits)) => End::Period { hits },
-            _ => End::Hits,
-        },
-        form: Exact::new(table.form()),
-        hits: states
-            .iter()
-            .enumerate()
-            .map(|(i, state)| Hit {
-                hit: i + 1,
-                side: table.letter(state.side).to_string(),
-                fraction: Exact::new(&state.fraction),
-                point: ExactVector::new(&state.point),
-                direction: ExactVector::new(&state.direction),
-            })
-            .collect(),
-    }
-}
-
-fn write_csv(table: &Table, states: &[State], out: &mut dyn Write) -> io::Result<()> {
-    let mut csv = csv::Writer::from_writer(out);
-    csv.write_record([
-        "hit",
-        "side",
-        "fraction",
-        "x",
-        "y",
-        "fraction_decimal",
-        "x_decimal",
-        "y_decimal",
-        "direction_x",
-        "direction_y",
-    ])?;
-    for (i, state) in states.iter().enumerate() {
-        let (fraction, point) = (Exact::new(&state.fraction), ExactVector::new(&state.point));
-        csv.write_record([
-            (i + 1).to_string(),
-            table.letter(state.side).to_string(),
-            fraction.exact,
-            point.x.exact,
-            point.y.exact,
-            fraction.decimal,
-            point.x.decimal,
-            point.y.decimal,
-            state.direction.x.to_string(),
-            state.direction.y.to_string(),
-        ])?;
-    }
-    csv.flush()
+    Ok(())
 }

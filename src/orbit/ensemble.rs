@@ -21,7 +21,7 @@ use rug::{Integer, Rational};
 /// Draws random starts on one table.
 #[derive(Debug)]
 pub struct StartLaw {
-    /// Cumulative side lengths, ending at the perimeter.
+    /// Cumulative side lengths, in units of the longest side.
     cumulative: Vec<f64>,
     /// Unit vectors along the sides, in the true Euclidean plane.
     along: Vec<[f64; 2]>,
@@ -72,29 +72,40 @@ impl StartLaw {
             let target = random.random::<f64>() * total;
             let side = self.cumulative.partition_point(|c| *c <= target);
             let side = side.min(self.cumulative.len() - 1);
-            let odd = Integer::from(random.random::<u32>() | 1);
+            let side = SideId(side as u8);
+            let fraction = odd_fraction(random);
             let along: f64 = 2.0 * random.random::<f64>() - 1.0;
-            let across = (1.0 - along * along).sqrt();
-            let [x, y] = self.along[side];
-            // The inner normal of a counterclockwise side is to its left.
-            let aim = [
-                along * x - across * y,
-                (along * y + across * x) / self.root_form,
-            ];
-            // A wide second unit needs more places for the same precision.
-            let places = 30 + self.root_form.log2().floor().max(0.0) as u32;
-            let aim = [dyadic(aim[0], 30), dyadic(aim[1], places)];
-            let start = Start {
-                side: SideId(side as u8),
-                fraction: Real::from(Rational::from((odd, Integer::from(1) << 32))),
-                aim: Vector::new(aim[0].clone(), aim[1].clone()),
-            };
-            // Rounding can turn a grazing aim along the side or out of the table; such a draw is void.
-            if across > 1e-8 {
-                return start;
+            if let Some(aim) = dyadic_aim(self, side, along) {
+                return Start {
+                    side,
+                    fraction,
+                    aim,
+                };
             }
         }
     }
+}
+
+/// A random odd multiple of 2^−32 between 0 and 1.
+pub(super) fn odd_fraction(random: &mut impl Rng) -> Real {
+    let odd = Integer::from(random.random::<u32>() | 1);
+    Real::from(Rational::from((odd, Integer::from(1) << 32)))
+}
+
+/// The aim from a side whose component along it is `along` for unit length, with coordinates that are multiples
+/// of 2^−30 (finer ones of a wide second unit). `None` when the rounding could turn it along the side or out of the table.
+pub(super) fn dyadic_aim(law: &StartLaw, side: SideId, along: f64) -> Option<Vector> {
+    let across = (1.0 - along * along).sqrt();
+    let [x, y] = law.along[side.0 as usize];
+    // The inner normal of a counterclockwise side is to its left.
+    let aim = [
+        along * x - across * y,
+        (along * y + across * x) / law.root_form,
+    ];
+    // A wide second unit needs more places for the same precision.
+    let places = 30 + law.root_form.log2().floor().max(0.0) as u32;
+    let [x, y] = [dyadic(aim[0], 30), dyadic(aim[1], places)];
+    (across > 1e-8).then(|| Vector::new(x, y))
 }
 
 fn dyadic(value: f64, bits: u32) -> Real {
@@ -114,6 +125,17 @@ pub struct Sample {
     pub word: Vec<SideId>,
 }
 
+/// The first start that orbit `index` of a seed draws.
+pub fn random_start(law: &StartLaw, seed: u64, index: u64) -> Start {
+    law.draw(&mut generator(seed, index))
+}
+
+pub(super) fn generator(seed: u64, index: u64) -> ChaCha8Rng {
+    let mut random = ChaCha8Rng::seed_from_u64(seed);
+    random.set_stream(index);
+    random
+}
+
 /// Orbit `index` of a seed: a word of `letters` letters from a random exact start. A periodic orbit is
 /// continued round its period.
 pub fn sample(
@@ -123,8 +145,7 @@ pub fn sample(
     index: u64,
     letters: usize,
 ) -> Sample {
-    let mut random = ChaCha8Rng::seed_from_u64(seed);
-    random.set_stream(index);
+    let mut random = generator(seed, index);
     loop {
         let start = law.draw(&mut random);
         let Ok(orbit) = trace(tables, start.clone(), letters) else {

@@ -6,6 +6,9 @@
 //! recorded sides; every 4096 hits the floating-point line is renewed from the enclosures, so its error
 //! never grows past what that many bounces add. A corner hit is an exact zero, proved in the field.
 //!
+//! With a finite reflection group the first renewal puts the line on the [`surface`](super::surface) of the
+//! copies instead, where nothing has to be caught up any more.
+//!
 //! A *period* is a return to the same side, the same point and the same direction, proved in the field
 //! whenever floating point cannot exclude it.
 //!
@@ -14,10 +17,14 @@
 //! its numbers stay bounded, otherwise they grow by a fixed number of bits with every hit.
 
 use super::line::{ExactLine, FloatLine, LineTables, WideLine, point_on};
+use super::surface::SurfaceLine;
 use crate::number::{Real, Sign, Tiers};
+use crate::table::facts::{ReflectionGroup, facts};
 use crate::table::{CornerId, SideId, Table, Vector};
 use crate::unfold::Mesh;
+use crate::unfold::group::FiniteGroup;
 use crate::unfold::mesh::{Exit, GateId};
+use std::sync::OnceLock;
 use thiserror::Error;
 
 /// A table prepared for tracing.
@@ -26,6 +33,8 @@ pub struct TraceTables {
     lines: LineTables,
     mesh: Mesh,
     table: Table,
+    /// The group of the table moved to the origin, when it is finite; made for the first long orbit.
+    group: OnceLock<Option<FiniteGroup>>,
 }
 
 impl TraceTables {
@@ -35,7 +44,18 @@ impl TraceTables {
             lines: LineTables::new(table),
             mesh: Mesh::new(table),
             table: table.clone(),
+            group: OnceLock::new(),
         }
+    }
+
+    fn group(&self) -> Option<&FiniteGroup> {
+        let make = || match facts(&self.table).group {
+            ReflectionGroup::Finite { r } if 2 * r <= LARGEST_GROUP => {
+                Some(FiniteGroup::generate(&self.table.moved_to_origin()))
+            }
+            _ => None,
+        };
+        self.group.get_or_init(make).as_ref()
     }
 
     /// The table.
@@ -100,6 +120,8 @@ pub struct Tracer<'a> {
     wide: Follower<WideLine>,
     exact: Follower<ExactLine>,
     exact_start: ExactLine,
+    /// On a table with a finite group, after the first renewal: takes the place of all the others.
+    surface: Option<Box<SurfaceLine>>,
     /// Decisions so far: float, enclosure (as `integer`), exact (as `big`).
     pub tiers: Tiers,
 }
@@ -113,6 +135,10 @@ struct Follower<L> {
 
 /// Hits after which the floating-point line is renewed.
 const RENEW: usize = 4096;
+/// The same on the surface, where errors grow more slowly: (2·2¹⁸ + 3)·2⁻⁵² is about 10⁻¹⁰.
+const RENEW_SURFACE: usize = 1 << 18;
+/// The largest group whose copies are tabulated.
+const LARGEST_GROUP: u64 = 4096;
 
 impl<'a> Tracer<'a> {
     /// Checks a start and stands on it; the start's side is the first letter of the word.
@@ -151,6 +177,7 @@ impl<'a> Tracer<'a> {
                 at: 0,
             },
             exact_start: line,
+            surface: None,
             start,
             tiers: Tiers::default(),
         })
@@ -178,6 +205,18 @@ impl<'a> Tracer<'a> {
             }
         };
         let (side, next) = exit;
+        if let Some(surface) = &mut self.surface {
+            if side == self.start.side && surface.would_return(side) {
+                return Step::Period(self.sides.len());
+            }
+            surface.cross(side);
+            self.gate = next;
+            self.sides.push(side);
+            if self.sides.len().is_multiple_of(RENEW_SURFACE) {
+                surface.renew();
+            }
+            return Step::Hit(side);
+        }
         let mut float = self.float;
         float.bounce(&self.tables.lines, side.0 as usize);
         if side == self.start.side
@@ -196,6 +235,14 @@ impl<'a> Tracer<'a> {
     }
 
     fn side_of(&mut self, corner: CornerId) -> Sign {
+        if let Some(surface) = &self.surface {
+            if let Some(sign) = surface.side_of(corner) {
+                self.tiers.float += 1;
+                return sign;
+            }
+            self.tiers.big += 1;
+            return surface.exact_side_of(corner);
+        }
         let corner = corner.0 as usize;
         let lines = &self.tables.lines;
         if let Some(sign) = self.float.side_of(lines, corner) {
@@ -214,6 +261,17 @@ impl<'a> Tracer<'a> {
 
     #[cold]
     fn renew(&mut self) {
+        if let Some(group) = self.tables.group() {
+            let origin = self.tables.table.corner(0);
+            let direction = &self.exact_start.d;
+            let moment = &self.exact_start.moment - &direction.cross(origin);
+            let mut surface =
+                SurfaceLine::new(group, self.tables.table.sides(), direction, &moment);
+            self.sides[1..].iter().for_each(|side| surface.cross(*side));
+            surface.renew();
+            self.surface = Some(Box::new(surface));
+            return;
+        }
         self.catch_up_wide();
         self.float = FloatLine::from_wide(&self.wide.line, &self.tables.lines);
     }
