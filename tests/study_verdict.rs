@@ -262,3 +262,17 @@ fn a_short_study_suggests_nothing() {
         assert_eq!(find(&long.statements, id).standing, Standing::Trend, "{id}");
     }
 }
+
+#[test]
+fn a_language_of_one_word_a_length_has_no_line_limit() {
+    let corners = (0..4).map(|i| unit_square().corner(i).clone()).collect();
+    let table = Table::new("one letter", corners, 1.into(), vec!['a'; 4]).unwrap();
+    let results = study(&table, 9);
+    let at = |id: &str| {
+        let statement = find(&results.statements, id);
+        (statement.standing, statement.at)
+    };
+    assert_eq!(at("ratio_criterion"), (Standing::Proved, None));
+    assert_eq!(at("line_limit"), (Standing::Violated, Some(1)));
+    assert_eq!(at("sufficient_small"), (Standing::NotDecided, None));
+}

@@ -301,7 +301,9 @@ fn note_lines(chart: &Chart) -> Vec<String> {
         .note
         .as_deref()
         .map_or(Vec::new(), |n| wrap(n, SMALL_TEXT, WIDTH - 2.0 * MARGIN));
-    let unshown = |p: &&(f64, f64)| !chart.x_scale.shows(p.0) || !chart.y_scale.shows(p.1);
+    // A value that is no number is a gap that the caller means.
+    let unshown =
+        |p: &&(f64, f64)| !p.1.is_nan() && (!chart.x_scale.shows(p.0) || !chart.y_scale.shows(p.1));
     let count = chart
         .series
         .iter()
@@ -315,7 +317,7 @@ fn note_lines(chart: &Chart) -> Vec<String> {
             "points have"
         };
         lines.push(format!(
-            "{count} {plural} no place on these axes (zero, negative or not finite)."
+            "{count} {plural} no place on these axes (zero, negative or infinite)."
         ));
     }
     lines

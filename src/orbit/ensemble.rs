@@ -3,7 +3,8 @@
 //! Starts follow the invariant measure (the cosine law): a side with probability proportional to its length,
 //! a point uniform on it, and a direction whose component along the side, for unit length, is uniform on
 //! (−1, 1). The drawn numbers are dyadic, so each start is exact: fractions are odd multiples of 2^−32, and
-//! aims have coordinates that are multiples of 2^−30 in the table's plane. The law is that of the measure up to
+//! aims have coordinates that are multiples of 2^−30 in the table's plane
+//! (second coordinates of a finer dyadic step when the plane form exceeds 4). The law is that of the measure up to
 //! this rounding.
 //!
 //! Orbit i of seed s uses stream i of the ChaCha8 generator with seed s, so it depends on nothing else. A
@@ -11,7 +12,7 @@
 
 use super::line::point_on;
 use super::trace::{Start, Step, TraceTables, trace};
-use crate::number::Real;
+use crate::number::{Real, Sign};
 use crate::table::{SideId, Table, Vector};
 use rand::{Rng, RngExt, SeedableRng};
 use rand_chacha::ChaCha8Rng;
@@ -20,7 +21,7 @@ use rug::{Integer, Rational};
 /// Draws random starts on one table.
 #[derive(Debug)]
 pub struct StartLaw {
-    /// Cumulative side lengths, ending at the perimeter.
+    /// Cumulative side lengths, in units of the longest side.
     cumulative: Vec<f64>,
     /// Unit vectors along the sides, in the true Euclidean plane.
     along: Vec<[f64; 2]>,
@@ -30,18 +31,33 @@ pub struct StartLaw {
 impl StartLaw {
     /// Prepares a table.
     pub fn new(table: &Table) -> StartLaw {
-        let root_form = table.form().to_f64().sqrt();
+        // Quotients of exact numbers have no size, so every table keeps its law, however large or small.
+        let form = table.form();
+        let squares: Vec<Real> = (0..table.sides())
+            .map(|i| table.side_vector(i).squared_length(form))
+            .collect();
+        let longest = squares.iter().max().expect("a table has sides").clone();
+        let root = |part: &Real, whole: &Real| {
+            let share = part.checked_div(whole).expect("sides have positive length");
+            share.to_f64().sqrt()
+        };
         let mut total = 0.0;
         let mut cumulative = Vec::new();
         let mut along = Vec::new();
-        for i in 0..table.sides() {
+        for (i, square) in squares.iter().enumerate() {
             let v = table.side_vector(i);
-            let (x, y) = (v.x.to_f64(), v.y.to_f64() * root_form);
-            let length = x.hypot(y);
-            total += length;
+            let signed = |root: f64, sign: Sign| match sign {
+                Sign::Negative => -root,
+                _ => root,
+            };
+            total += root(square, &longest);
             cumulative.push(total);
-            along.push([x / length, y / length]);
+            along.push([
+                signed(root(&v.x.pow(2), square), v.x.sign()),
+                signed(root(&(v.y.pow(2) * form), square), v.y.sign()),
+            ]);
         }
+        let root_form = form.to_f64().sqrt().clamp(1e-250, 1e250);
         StartLaw {
             cumulative,
             along,
@@ -77,7 +93,7 @@ pub(super) fn odd_fraction(random: &mut impl Rng) -> Real {
 }
 
 /// The aim from a side whose component along it is `along` for unit length, with coordinates that are multiples
-/// of 2^−30. `None` when the rounding could turn it along the side or out of the table.
+/// of 2^−30 (finer ones of a wide second unit). `None` when the rounding could turn it along the side or out of the table.
 pub(super) fn dyadic_aim(law: &StartLaw, side: SideId, along: f64) -> Option<Vector> {
     let across = (1.0 - along * along).sqrt();
     let [x, y] = law.along[side.0 as usize];
@@ -86,7 +102,9 @@ pub(super) fn dyadic_aim(law: &StartLaw, side: SideId, along: f64) -> Option<Vec
         along * x - across * y,
         (along * y + across * x) / law.root_form,
     ];
-    let [x, y] = aim.map(|c| dyadic(c, 30));
+    // A wide second unit needs more places for the same precision.
+    let places = 30 + law.root_form.log2().floor().max(0.0) as u32;
+    let [x, y] = [dyadic(aim[0], 30), dyadic(aim[1], places)];
     (across > 1e-8).then(|| Vector::new(x, y))
 }
 

@@ -16,6 +16,9 @@
 //! vector d be off by at most a (Euclidean length) and μ by at most m. A bounce is one rounded complex
 //! product with a tabulated factor of modulus 1, so it leaves d off by at most a′ = a + 4u + 2η, and μ by at
 //! most m′ = m + R·a′ + R·(8η + 16u). The value d × v − μ is then off by at most R·(a + 4η) + 1.01·m.
+//! All this holds while roundings are relative: the follower starts only when R, √g and the length of the direction
+//! lie between 10^−60 and 10^60, so that what underflow spoils is less than 10^−180, far below η·R. Otherwise its errors
+//! are infinite, and the enclosures decide.
 
 use crate::number::{Enclosure, Real, Sign};
 use crate::table::{Table, Vector};
@@ -105,7 +108,19 @@ impl FloatLine {
         let (x, y) = (line.d[0].to_f64(), line.d[1].to_f64() * tables.root_form);
         // The cross product of true coordinates is √g times that of table coordinates.
         let moment = line.moment.to_f64() * tables.root_form;
-        let scale = 1.0 / x.hypot(y);
+        let length = x.hypot(y);
+        let scale = 1.0 / length;
+        if ![length, tables.reach, tables.root_form]
+            .iter()
+            .all(|size| (1e-60..1e60).contains(size))
+        {
+            return FloatLine {
+                d: [x, y],
+                moment,
+                direction_error: f64::INFINITY,
+                moment_error: f64::INFINITY,
+            };
+        }
         FloatLine {
             d: [x * scale, y * scale],
             moment: moment * scale,
@@ -144,14 +159,16 @@ impl FloatLine {
         self.moment_error += tables.reach * (self.direction_error + 8.0 * TABULATED + 16.0 * UNIT);
     }
 
-    /// True when the two lines may be the same, within a loose tolerance.
+    /// True when the two lines may be the same, within a loose tolerance; always when the errors are infinite.
     #[inline(always)]
     pub fn is_near(&self, other: &FloatLine, tables: &LineTables) -> bool {
         let slack = 1e-9 + self.direction_error + other.direction_error;
         let moment_slack = 1e-9 * tables.reach + self.moment_error + other.moment_error;
-        (self.d[0] - other.d[0]).abs() <= slack
-            && (self.d[1] - other.d[1]).abs() <= slack
-            && (self.moment - other.moment).abs() <= moment_slack
+        // What is not a number counts as near.
+        let far = |a: f64, b: f64, slack: f64| (a - b).abs() > slack;
+        !(far(self.d[0], other.d[0], slack)
+            || far(self.d[1], other.d[1], slack)
+            || far(self.moment, other.moment, moment_slack))
     }
 
     /// The direction, of length about 1, in the true Euclidean plane.
@@ -172,7 +189,13 @@ impl WideLine {
     pub fn from_exact(line: &ExactLine) -> WideLine {
         // Relative to the direction's length, so that short aims lose nothing.
         let scale = line.d.x.to_f64().abs().max(line.d.y.to_f64().abs());
-        let bits = WIDE + scale.log2().abs().ceil() as u32 + 8;
+        // Out of the range of floating point the bounds are merely too wide to decide.
+        let places = if scale.is_normal() {
+            scale.log2().abs().ceil() as u32
+        } else {
+            0
+        };
+        let bits = WIDE + places + 8;
         WideLine {
             d: [
                 line.d.x.enclosure_within(bits),

@@ -192,7 +192,7 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
         picture(
             "ratio.svg",
             "The ratio p(n+1)/p(n)",
-            "p(n+1)/p(n) − 1 = s(n)/p(n) on logarithmic axes, beside 3/n, which it follows when p(n) is close to a multiple of n³. It tends to 0 exactly when the factor graphs converge locally to the line.",
+            "p(n+1)/p(n) − 1 = s(n)/p(n) on logarithmic axes, beside 3/n, which it follows when p(n) is close to a multiple of n³. For a language of subexponential complexity it tends to 0 exactly when the factor graphs converge locally to the line.",
             |c| draw_chart(&ratio, c),
         )?,
     ])

@@ -158,11 +158,22 @@ fn exact(value: &Exact) -> String {
     }
 }
 
-/// The first places of a decimal.
+/// A decimal rounded to six places.
 fn short(decimal: &str) -> String {
-    match decimal.find('.') {
-        Some(point) => decimal.chars().take(point + 7).collect(),
-        None => decimal.into(),
+    const PLACES: usize = 6;
+    let Some((whole, fraction)) = decimal.split_once('.') else {
+        return decimal.into();
+    };
+    let sign = if whole.starts_with('-') { "-" } else { "" };
+    let kept = format!("{}{:0<7.7}", whole.trim_start_matches('-'), fraction);
+    match kept.parse::<rug::Integer>() {
+        Ok(tenfold) => {
+            let rounded = (tenfold + 5u32) / 10u32;
+            let digits = format!("{:0>7}", rounded.to_string());
+            let (whole, fraction) = digits.split_at(digits.len() - PLACES);
+            format!("{sign}{whole}.{fraction}")
+        }
+        Err(_) => decimal.into(),
     }
 }
 
@@ -416,5 +427,20 @@ fn again_section(page: &mut String, record: &Record<'_>, extras: &Extras<'_>) {
             "<p>It stands on this file:</p>\n<pre>{}</pre>\n",
             escape(&base.text)
         ));
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::short;
+
+    #[test]
+    fn short_decimals_are_rounded() {
+        assert_eq!(short("1.41421356237309504880"), "1.414214");
+        assert_eq!(short("-0.99999950000000000000"), "-1.000000");
+        assert_eq!(short("0.00000149999999999999"), "0.000001");
+        assert_eq!(short("59.00847396772772066262"), "59.008474");
+        assert_eq!(short("7"), "7");
+        assert_eq!(short("0.5"), "0.500000");
     }
 }

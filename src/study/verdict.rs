@@ -146,6 +146,11 @@ impl Evidence<'_> {
         reasons.join(", and ")
     }
 
+    /// The first n from which on p is constant: where p(n+1) = p(n) every word of length n extends in one way only.
+    fn constant_from(&self) -> Option<usize> {
+        (1..self.longest()).find(|&n| self.p[n + 1] == self.p[n])
+    }
+
     /// The range of p(n)/n³ over the whole study.
     pub fn range(&self) -> Option<CubicRange> {
         cubic_range(self.p, CUBIC_FROM, self.longest())
@@ -158,6 +163,9 @@ const CHECKED_CONVEX_RATIONAL: &str =
     "checked exactly: convex, every angle a rational multiple of π, every side a letter of its own";
 const CHECKED_INTEGRABLE: &str =
     "checked exactly: every angle is π divided by an integer, so reflected copies tile the plane";
+
+const SMALL_CLAIM: &str = "p(n) = o(n^(4/3))";
+const BOUNDS_CLAIM: &str = "c₁nᵃ ≤ p(n) ≤ c₂nᵃ with a < 3/2";
 
 fn statement(
     id: &'static str,
@@ -380,6 +388,19 @@ fn ceil6(x: f64) -> f64 {
 
 /// The three conditions of arXiv 2402.15877 that each imply the line limit.
 fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
+    if let Some(n) = evidence.constant_from() {
+        let open = |id, claim: &str| {
+            let grounds = format!(
+                "not applied: p is constant from n = {n} on, and the factor graphs are cycles of one size"
+            );
+            statement(id, claim, Standing::NotDecided, None, grounds)
+        };
+        return vec![
+            open("sufficient_small", SMALL_CLAIM),
+            open("sufficient_bounds", BOUNDS_CLAIM),
+            open("sufficient_asymptotic", "p(n) ~ c·nᵃ for some c and a"),
+        ];
+    }
     let exponent =
         (evidence.longest() >= 4).then(|| local_exponent(evidence.p, evidence.longest() / 2));
     let too_fast = |id, claim: &str, least: f64| {
@@ -435,8 +456,8 @@ fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
         )
     };
     vec![
-        too_fast("sufficient_small", "p(n) = o(n^(4/3))", 4.0 / 3.0),
-        too_fast("sufficient_bounds", "c₁nᵃ ≤ p(n) ≤ c₂nᵃ with a < 3/2", 1.5),
+        too_fast("sufficient_small", SMALL_CLAIM, 4.0 / 3.0),
+        too_fast("sufficient_bounds", BOUNDS_CLAIM, 1.5),
         asymptotic,
     ]
 }
@@ -478,6 +499,29 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
                 None,
                 format!(
                     "the ratio criterion of {CRITERION_SOURCE} for factorial, prolongable languages of subexponential complexity, all proved above"
+                ),
+            ),
+        ];
+    }
+    if let Some(n) = evidence.constant_from() {
+        return vec![
+            statement(
+                "ratio_criterion",
+                ratio_claim,
+                Standing::Proved,
+                None,
+                format!(
+                    "p({}) = p({n}), so every word of length {n} or more extends in one way only, and p is constant",
+                    n + 1
+                ),
+            ),
+            statement(
+                "line_limit",
+                line_claim,
+                Standing::Violated,
+                Some(n),
+                format!(
+                    "p is constant from n = {n} on, so all later factor graphs are cycles of the same finite sizes"
                 ),
             ),
         ];

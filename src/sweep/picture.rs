@@ -59,6 +59,19 @@ pub fn draw(rows: &[Row], quantities: &[Quantity]) -> Result<String, FigureError
         }
     }
     let left_out = curves.len().saturating_sub(MOST_CURVES);
+    let gaps = rows.iter().filter(|row| !row.is_table).count();
+    let mut notes = Vec::new();
+    if gaps > 0 {
+        notes.push(format!(
+            "Gaps: no simple polygon at {gaps} of {} members.",
+            rows.len()
+        ));
+    }
+    if left_out > 0 {
+        notes.push(format!(
+            "{left_out} further curves are left out; the files have all."
+        ));
+    }
     curves.truncate(MOST_CURVES);
     for (_, points) in &mut curves {
         points.sort_by(|a, b| a.0.total_cmp(&b.0));
@@ -80,8 +93,7 @@ pub fn draw(rows: &[Row], quantities: &[Quantity]) -> Result<String, FigureError
                 ink: None,
             })
             .collect(),
-        note: (left_out > 0)
-            .then(|| format!("{left_out} further curves are left out; the files have all.")),
+        note: (!notes.is_empty()).then(|| notes.join(" ")),
         ..Chart::default()
     };
     let caption = Caption::new(

@@ -161,7 +161,7 @@ fn angle_between(table: &Table, next: &Vector, back: &Vector) -> Angle {
     let w = z
         .product(&z, form)
         .times(&norm.inverse().expect("sides have positive length"));
-    let approximate = approximate_angle(&z, form) / std::f64::consts::PI;
+    let approximate = approximate_angle(&z, &w, form) / std::f64::consts::PI;
     let degree = table.field().degree() as u64;
     for order in 1..=8 * degree * degree {
         // The multiple that the angle would have; the floating-point value only selects it.
@@ -177,13 +177,22 @@ fn angle_between(table: &Table, next: &Vector, back: &Vector) -> Angle {
     Angle::Irrational
 }
 
-/// The argument of z in (0, 2π).
-fn approximate_angle(z: &Vector, form: &Real) -> f64 {
-    let argument = (z.y.to_f64() * form.to_f64().sqrt()).atan2(z.x.to_f64());
-    if argument < 0.0 {
-        argument + std::f64::consts::TAU
-    } else {
-        argument
+/// The argument of z in [0, 2π), from w = z²/|z|². Whatever the size of z, w has modulus 1, so that no table is too
+/// large or too small for floating point. Half the argument of w is that of z up to a half turn, which exact signs settle.
+fn approximate_angle(z: &Vector, w: &Vector, form: &Real) -> f64 {
+    use std::f64::consts::PI;
+    let height = (w.y.pow(2) * form).to_f64().sqrt();
+    let half = match w.y.sign() {
+        Sign::Negative => -height,
+        _ => height,
+    }
+    .atan2(w.x.to_f64())
+        / 2.0;
+    match (z.y.sign(), z.x.sign()) {
+        (Sign::Positive, _) => half + if half < 0.0 { PI } else { 0.0 },
+        (Sign::Negative, _) => half + if half > 0.0 { PI } else { 2.0 * PI },
+        (Sign::Zero, Sign::Negative) => PI,
+        (Sign::Zero, _) => 0.0,
     }
 }
 
@@ -320,6 +329,35 @@ mod tests {
         let irrational = facts(&with_hole(&[(8, 6), (12, 8), (10, 12), (6, 10)]));
         assert!(irrational.right_angled);
         assert_eq!(irrational.group, ReflectionGroup::Infinite);
+    }
+
+    #[test]
+    fn angles_do_not_depend_on_the_size_of_the_table() {
+        // Neither 10^±800, the squared lengths, nor 10^±1600 is in the range of floating point.
+        let shapes: [(&[(i64, i64)], i64); 4] = [
+            (&[(0, 0), (1, 0), (1, 1), (0, 1)], 1),
+            (&[(0, 0), (2, 0), (1, 1)], 3),
+            (&[(0, 0), (3, 0), (0, 4)], 1),
+            (&[(0, 0), (2, 0), (2, 1), (1, 1), (1, 2), (0, 2)], 1),
+        ];
+        for (coordinates, form) in shapes {
+            let plain = table(coordinates, form);
+            let letters = default_letters(coordinates.len());
+            for scale in [
+                Real::from(10).pow(400),
+                Real::from(10).pow(400).inverse().unwrap(),
+            ] {
+                let corners = (0..plain.sides())
+                    .map(|i| plain.corner(i).times(&scale))
+                    .collect();
+                let scaled = Table::new("", corners, form.into(), letters.clone()).unwrap();
+                let (found, expected) = (facts(&scaled), facts(&plain));
+                assert_eq!(found.angles, expected.angles);
+                assert_eq!(found.group, expected.group);
+                assert_eq!(found.right_angled, expected.right_angled);
+                assert_eq!(found.integrable, expected.integrable);
+            }
+        }
     }
 
     #[test]
