@@ -73,8 +73,18 @@ fn theorems_are_used_exactly_where_they_hold() {
             assert_eq!(proved, convex_rational, "{}: {id}", table.title());
         }
         for id in TOO_FAST {
-            let claim = &find(&results.statements, id).claim;
-            assert_eq!(claim.contains("does not hold"), convex_rational, "{claim}");
+            let statement = find(&results.statements, id);
+            let sentence = statement.sentence();
+            assert_eq!(
+                sentence.contains("does not hold"),
+                convex_rational,
+                "{sentence}"
+            );
+            // A script that reads id, standing and `holds` must not take the negation for the claim.
+            assert!(!statement.claim.contains("not hold"));
+            if convex_rational {
+                assert_eq!(statement.holds, Some(false));
+            }
         }
         let asymptotic = find(&results.statements, "sufficient_asymptotic");
         let expected = match tiles {

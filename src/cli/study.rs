@@ -101,9 +101,10 @@ fn summary(results: &Results, out: &Path, to: &mut dyn Write) -> io::Result<()> 
     for statement in &results.statements {
         writeln!(
             to,
-            "  {:<12} {}",
+            "  {:<12} {}{}",
             statement.standing.label(),
-            statement.claim
+            statement.sentence(),
+            statement.reach()
         )?;
     }
     writeln!(to, "Open {}", out.join("report.html").display())

@@ -134,16 +134,12 @@ fn standings(page: &mut String, results: &Results) {
     for statement in &results.statements {
         let standing = statement.standing;
         let id = serde_json::to_value(standing).expect("a plain name");
-        let at = match (standing, statement.at) {
-            (super::verdict::Standing::Computed, Some(n)) => format!(" to n = {n}"),
-            (super::verdict::Standing::Violated, Some(n)) => format!(" at n = {n}"),
-            _ => String::new(),
-        };
+        let at = statement.reach();
         page.push_str(&format!(
             "<tr><td><span class=\"standing {}\">{}</span>{at}</td><td>{}</td><td>{}</td></tr>\n",
             id.as_str().unwrap_or_default(),
             standing.label(),
-            escape(&statement.claim),
+            escape(&statement.sentence()),
             escape(&statement.grounds)
         ));
     }

@@ -47,8 +47,10 @@ pub struct Statement {
     pub id: &'static str,
     /// The statement.
     pub claim: String,
-    /// How firmly it stands.
+    /// How firmly it, or its negation, stands.
     pub standing: Standing,
+    /// True when the statement is said to hold, false when its negation is; null when neither.
+    pub holds: Option<bool>,
     /// For a violated statement the n at which it fails; for a computed one the last n.
     pub at: Option<usize>,
     /// The theorem and its checked hypotheses, or the figures, or what is missing.
@@ -178,8 +180,41 @@ fn statement(
         id,
         claim: claim.into(),
         standing,
+        holds: match standing {
+            Standing::Proved | Standing::Computed | Standing::Trend => Some(true),
+            Standing::NotDecided => None,
+            Standing::Violated => Some(false),
+        },
         at,
         grounds: grounds.into(),
+    }
+}
+
+impl Statement {
+    /// The same standing for the negation.
+    fn negated(self) -> Statement {
+        Statement {
+            holds: Some(false),
+            ..self
+        }
+    }
+
+    /// The statement for people, with its negation in words.
+    pub fn sentence(&self) -> String {
+        match (self.standing, self.holds) {
+            (Standing::Proved, Some(false)) => format!("{} — does not hold", self.claim),
+            (Standing::Trend, Some(false)) => format!("{} — seems not to hold", self.claim),
+            _ => self.claim.clone(),
+        }
+    }
+
+    /// How far a computed or violated statement reaches: ` to n = 60`, ` at n = 7`, or nothing.
+    pub fn reach(&self) -> String {
+        match (self.standing, self.at) {
+            (Standing::Computed, Some(n)) => format!(" to n = {n}"),
+            (Standing::Violated, Some(n)) => format!(" at n = {n}"),
+            _ => String::new(),
+        }
     }
 }
 
@@ -407,22 +442,24 @@ fn sufficient_conditions(evidence: &Evidence<'_>) -> Vec<Statement> {
         if evidence.is_convex_rational() {
             return statement(
                 id,
-                format!("{claim} — does not hold"),
+                claim,
                 Standing::Proved,
                 None,
                 format!("p(n) ≥ c₁n³ with c₁ > 0: {CUBIC_SOURCE}; {CHECKED_CONVEX_RATIONAL}"),
-            );
+            )
+            .negated();
         }
         match exponent {
             Some(e) if e > least + 0.5 => statement(
                 id,
-                format!("{claim} — seems not to hold"),
+                claim,
                 Standing::Trend,
                 None,
                 format!(
                     "the local exponent at the end of the study is {e:.4}, well above {least:.4}"
                 ),
-            ),
+            )
+            .negated(),
             _ => statement(
                 id,
                 claim,
