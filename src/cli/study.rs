@@ -101,10 +101,9 @@ fn summary(results: &Results, out: &Path, to: &mut dyn Write) -> io::Result<()> 
     for statement in &results.statements {
         writeln!(
             to,
-            "  {:<12} {}{}",
-            statement.standing.label(),
-            statement.sentence(),
-            statement.reach()
+            "  {:<19} {}",
+            format!("{}{}", statement.standing.label(), statement.reach()),
+            statement.sentence()
         )?;
     }
     writeln!(to, "Open {}", out.join("report.html").display())
