@@ -15,7 +15,7 @@ mod diagonals;
 mod direction;
 pub mod fault;
 mod graph;
-mod launch;
+pub mod launch;
 pub mod orbit_arguments;
 mod orbit_picture;
 mod orbits;

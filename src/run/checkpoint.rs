@@ -117,7 +117,19 @@ pub struct Checkpoint {
     rejected: usize,
     log: Mutex<Log>,
     /// Holds the lock; the system frees it however the process ends.
-    _lock: File,
+    _lock: Lock,
+}
+
+/// A locked file. It is unlocked in so many words, because closing it is not enough while a child process that
+/// is being started shares it.
+#[derive(Debug)]
+struct Lock(File);
+
+impl Drop for Lock {
+    fn drop(&mut self) {
+        // The system frees what this could not.
+        let _ = self.0.unlock();
+    }
 }
 
 const LOG: &str = "parts.log";
@@ -168,6 +180,7 @@ impl Checkpoint {
             }
             Err(fs::TryLockError::Error(source)) => return Err(system(source)),
         }
+        let lock = Lock(lock);
         let identity_text = serde_json::to_string(identity).map_err(|e| system(e.into()))?;
         let (mut known, mut rejected) = (BTreeMap::new(), 0);
         if log_path.exists() {
