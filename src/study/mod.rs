@@ -1,6 +1,7 @@
 //! The main job: everything about one table, into one folder.
 //!
 //! - [`results`]: the computation, stage by stage, on the rooms below.
+//! - [`statement`]: a statement and its standing.
 //! - [`verdict`]: what follows from it, with the standing of every statement.
 //! - [`pictures`]: the figures of a study.
 //! - [`record`]: the file `study.json`.
@@ -12,4 +13,5 @@ pub mod pictures;
 pub mod record;
 pub mod report;
 pub mod results;
+pub mod statement;
 pub mod verdict;

@@ -3,7 +3,7 @@
 //! The record has no times and no paths, so the same input gives the same bytes.
 
 use super::results::{Results, StageTiers};
-use super::verdict::Statement;
+use super::statement::Statement;
 use crate::complexity::growth::CubicRange;
 use crate::factor_graph::census::GraphCounts;
 use crate::factor_graph::criterion::LineFigures;

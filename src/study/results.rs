@@ -3,7 +3,8 @@
 //! Stages, each on the room that owns it: facts; generalized diagonals and p by fans (cheap, and it tells how
 //! much memory the rest needs); the language by beams; measures; factor graphs; the verdict.
 
-use super::verdict::{Coding, Evidence, Statement, verdict};
+use super::statement::Statement;
+use super::verdict::{Coding, Evidence, verdict};
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
