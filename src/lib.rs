@@ -12,6 +12,7 @@
 //! - [`run`]: what long work needs;
 //! - [`language`]: the words, and the measures of their cylinders;
 //! - [`orbit`]: single orbits, traced exactly;
+//! - [`certificate`]: claims about words that others can check;
 //! - [`complexity`]: how many words, and the generalized diagonals that make new ones;
 //! - [`factor_graph`]: Rauzy graphs of any factorial language, and the line-limit criterion;
 //! - [`figure`]: pictures from plain numbers;
@@ -38,6 +39,7 @@
 #![forbid(unsafe_code)]
 #![deny(missing_docs)]
 
+pub mod certificate;
 pub mod cli;
 pub mod complexity;
 pub mod factor_graph;

@@ -10,6 +10,7 @@
 //! of one length sum to exactly that. A missing word, a word too many or a wrong cell breaks the sum,
 //! and nothing in it counts words: the check shares only the cells with the walk.
 
+use super::beams::WordBeam;
 use super::walk::{GrowthFault, Part, Visit, Visitor, walk_beams};
 use crate::number::{Enclosure, Real};
 use crate::run::Control;
@@ -29,6 +30,11 @@ pub struct RootSum {
 impl RootSum {
     /// Adds `coefficient·√radicand`; the radicand must not be negative.
     pub fn add(&mut self, coefficient: i64, radicand: Real) {
+        self.add_multiple(&Rational::from(coefficient), radicand);
+    }
+
+    /// The same with a rational coefficient.
+    pub fn add_multiple(&mut self, coefficient: &Rational, radicand: Real) {
         let (factor, radicand) = match radicand.to_rational() {
             Some(value) => extract_square(value),
             None => (Rational::from(1), radicand),
@@ -37,6 +43,13 @@ impl RootSum {
         *sum += factor * coefficient;
         if *sum == 0 {
             self.terms.remove(&radicand);
+        }
+    }
+
+    /// Adds another sum.
+    pub fn add_sum(&mut self, other: &RootSum) {
+        for (coefficient, radicand) in other.terms() {
+            self.add_multiple(coefficient, radicand.clone());
         }
     }
 
@@ -98,6 +111,15 @@ pub fn exact_measure<E: Engine>(
     for (sign, a, b) in vertices(visit.cell, visit.lefts) {
         let vector = visit.engine.displacement(trail, a, b);
         sum.add(sign, vector.squared_length(form));
+    }
+    sum
+}
+
+/// The exact measure of a beam that was kept.
+pub fn beam_measure(beam: &WordBeam, form: &Real) -> RootSum {
+    let mut sum = RootSum::default();
+    for (sign, a, b) in vertices(&beam.images, beam.lefts) {
+        sum.add(sign, b.minus(a).squared_length(form));
     }
     sum
 }

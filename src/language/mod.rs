@@ -4,11 +4,13 @@
 //!   fits.
 //! - [`walk`]: the depth-first walk over all beams of a table, and the tree that it grows.
 //! - `bundle`: the same when a word has several beams: repeated letters, holes.
+//! - [`follow`]: one word through the table.
 //! - [`beams`]: the exact beams of all words of one length.
 //! - [`measure`]: cylinder measures, and the check of their sum.
 
 pub mod beams;
 mod bundle;
+pub mod follow;
 pub mod measure;
 pub mod tree;
 pub mod walk;
