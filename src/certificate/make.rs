@@ -45,7 +45,7 @@ pub fn write_number(value: &Real) -> String {
 }
 
 fn write_field(field: &Field) -> FieldText {
-    let (low, high) = field.root_interval(64);
+    let (low, high) = field.isolating_interval();
     FieldText {
         polynomial: field
             .minimal_polynomial()

@@ -1,6 +1,7 @@
 //! Commands and options.
 
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
+use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::unfold::engine::Arithmetic;
@@ -41,6 +42,12 @@ pub enum Command {
     Periodic(PeriodicOptions),
     /// The complexity of every member of a family of tables, into a folder; continues where it was stopped
     Sweep(SweepOptions),
+    /// Where a word lies: beam, exact measure, an orbit, its diagonals; or why it is no word of the table
+    Locate(LocateOptions),
+    /// A certificate for all words of one length
+    Certify(CertifyOptions),
+    /// Check a certificate, by code that shares only exact numbers with what made it
+    Verify(VerifyOptions),
     /// One orbit from an exact start
     Trace(TraceOptions),
     /// Many orbits from random exact starts, one word a line
@@ -51,7 +58,9 @@ impl Command {
     /// The file that the command is to write; folders are checked by the commands that fill them.
     pub fn output_file(&self) -> Option<&Path> {
         match self {
-            Command::Study(_) | Command::Sweep(_) => None,
+            Command::Study(_) | Command::Sweep(_) | Command::Verify(_) => None,
+            Command::Locate(options) => options.out.as_deref(),
+            Command::Certify(options) => Some(&options.file),
             Command::Table(options) => options.out.as_deref(),
             Command::Words(options) => options.out.as_deref(),
             Command::Complexity(options) => options.out.as_deref(),

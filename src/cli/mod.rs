@@ -6,16 +6,19 @@
 //! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
+//! - [`word_arguments`]: options of the commands about single words and certificates.
 //! - `stats`: what a run took.
 //! - one module for each command.
 
 pub mod arguments;
+mod certify;
 mod complexity;
 mod diagonals;
 mod direction;
 pub mod fault;
 mod graph;
 pub mod launch;
+mod locate;
 pub mod orbit_arguments;
 mod orbit_picture;
 mod orbits;
@@ -28,6 +31,9 @@ mod sweep;
 mod table;
 mod trace;
 mod trace_record;
+pub mod word_arguments;
+mod word_picture;
+mod word_record;
 mod words;
 
 use arguments::{Arguments, Command, Common};
@@ -78,6 +84,11 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Direction(options) => with_threads(&options.common, || direction::run(options)),
         Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
         Command::Sweep(options) => with_threads(&options.common, || sweep::run(options)),
+        Command::Locate(options) => with_threads(&options.common, || locate::run(options)),
+        Command::Certify(options) => {
+            with_threads(&options.common, || certify::run_certify(options))
+        }
+        Command::Verify(options) => certify::run_verify(options),
         Command::Trace(options) => trace::run(options),
         Command::Orbits(options) => with_threads(&options.common, || orbits::run(options)),
     }

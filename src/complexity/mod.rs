@@ -9,3 +9,4 @@ pub mod by_distance;
 pub mod counts;
 pub mod diagonals;
 pub mod growth;
+pub mod with_code;

@@ -126,6 +126,11 @@ impl Field {
         lo < hi && poly::roots_between(&poly::sturm_sequence(&self.0.minimal), lo, hi) == 1
     }
 
+    /// The interval (lo, hi] that the field was given, which holds θ and no other root. It never changes.
+    pub fn isolating_interval(&self) -> (&Rational, &Rational) {
+        (&self.0.isolating.0, &self.0.isolating.1)
+    }
+
     /// An interval (lo, hi] of width at most 2^−bits that holds θ.
     pub fn root_interval(&self, bits: u32) -> (Rational, Rational) {
         let mut interval = self.0.interval.lock().expect("no panic while refining");

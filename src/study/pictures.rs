@@ -280,7 +280,8 @@ pub fn telling_beam(beams: &[WordBeam]) -> Option<&WordBeam> {
     })
 }
 
-fn corridor_shape(table: &Table, beam: &WordBeam) -> Corridor {
+/// The corridor of a word with its beam, as a figure takes it.
+pub fn corridor_shape(table: &Table, beam: &WordBeam) -> Corridor {
     let root = root_form(table);
     let home = table.moved_to_origin();
     let reflections = side_reflections(&home);

@@ -22,7 +22,7 @@ pub(super) mod plane;
 mod trace;
 
 use super::format::{End, Entry, Header, Kind, PLACES, Refutation, SCHEMA, Witness};
-use crate::number::{Enclosure, Real, Sign};
+use crate::number::{Enclosure, Field, Real, Sign};
 use cells::{Conditions, Line, Way};
 use plane::{Plane, number, rational};
 use rug::{Integer, Rational};
@@ -153,6 +153,11 @@ pub fn verify(input: impl BufRead) -> Result<Verdict, Rejection> {
         verdict.complexity = language.complexity;
     }
     Ok(verdict)
+}
+
+/// Reads a number of the table's field as the format writes it.
+pub fn read_number(field: &Field, text: &str) -> Option<Real> {
+    number(field, text)
 }
 
 fn parse<T: serde::de::DeserializeOwned>(line: u64, text: &str) -> Result<T, Rejection> {
