@@ -232,33 +232,49 @@ struct Search<'a> {
     second: &'a Language,
     /// Letters of the first language in the order of assignment.
     order: Vec<u8>,
+    /// For each of them its place among the letters of the first language.
+    ranks: Vec<usize>,
     /// Letters of the second language.
     targets: Vec<u8>,
     /// Entry n, then letter: words of length n that begin with it.
     beginning: [Vec<Vec<usize>>; 2],
-    /// The assignment: for a prefix of `order`, indices into `targets`.
+    /// The assignment, for a prefix of `order`: how many targets past its own place a letter's image stands. So letters
+    /// are tried on their own places first.
     chosen: Vec<usize>,
 }
 
 impl<'a> Search<'a> {
     fn new(first: &'a Language, second: &'a Language) -> Search<'a> {
+        let (order, letters_of_first) = (order_of_assignment(first), letters(first));
+        let rank = |letter: &u8| letters_of_first.iter().position(|l| l == letter);
         Search {
             first,
             second,
-            order: order_of_assignment(first),
+            ranks: order.iter().filter_map(rank).collect(),
+            order,
             targets: letters(second),
             beginning: [first, second].map(words_by_first_letter),
             chosen: Vec::new(),
         }
     }
 
+    /// The image that a choice gives to the letter at a place of the order.
+    fn image(&self, at: usize, choice: usize) -> u8 {
+        self.targets[(self.ranks[at] + choice) % self.targets.len()]
+    }
+
     /// The map so far.
     fn renaming(&self) -> Renaming {
         let mut image = vec![None; self.first.alphabet()];
-        for (letter, target) in self.order.iter().zip(&self.chosen) {
-            image[*letter as usize] = Some(self.targets[*target]);
+        for (at, choice) in self.chosen.iter().enumerate() {
+            image[self.order[at] as usize] = Some(self.image(at, *choice));
         }
         Renaming { image }
+    }
+
+    fn is_taken(&self, image: u8) -> bool {
+        let mut chosen = self.chosen.iter().enumerate();
+        chosen.any(|(at, choice)| self.image(at, *choice) == image)
     }
 
     /// Goes on to the next full map under which the languages agree to a length, and gives the matched words of that
@@ -268,8 +284,8 @@ impl<'a> Search<'a> {
         if self.chosen.len() == self.order.len() {
             // The shortest part of the dead map that is dead already at this length: everything below it is.
             let full = std::mem::take(&mut self.chosen);
-            for target in full {
-                self.chosen.push(target);
+            for choice in full {
+                self.chosen.push(choice);
                 if self.matched(length, control)?.is_none() {
                     break;
                 }
@@ -278,11 +294,11 @@ impl<'a> Search<'a> {
         }
         loop {
             let mut found = None;
-            for target in from..self.targets.len() {
-                if self.chosen.contains(&target) {
+            for choice in from..self.targets.len() {
+                if self.is_taken(self.image(self.chosen.len(), choice)) {
                     continue;
                 }
-                self.chosen.push(target);
+                self.chosen.push(choice);
                 found = match self.fits(length) {
                     true => self.matched(length, control)?,
                     false => None,
@@ -296,7 +312,7 @@ impl<'a> Search<'a> {
                 Some(pairs) if self.chosen.len() == self.order.len() => return Ok(Some(pairs)),
                 Some(_) => from = 0,
                 None => match self.chosen.pop() {
-                    Some(target) => from = target + 1,
+                    Some(choice) => from = choice + 1,
                     None => return Ok(None),
                 },
             }
@@ -307,7 +323,7 @@ impl<'a> Search<'a> {
     fn fits(&self, length: usize) -> bool {
         let at = self.chosen.len() - 1;
         let letter = self.order[at] as usize;
-        let image = self.targets[self.chosen[at]] as usize;
+        let image = self.image(at, self.chosen[at]) as usize;
         let [first, second] = &self.beginning;
         (1..=length).all(|n| first[n][letter] == second[n][image])
     }

@@ -192,6 +192,12 @@ pub fn heaviest_first(measures: &[Enclosure]) -> Vec<WordId> {
     order
 }
 
+/// The words by measure, lightest first; ties as in [`heaviest_first`].
+pub fn lightest_first(measures: &[Enclosure]) -> Vec<WordId> {
+    let turned: Vec<Enclosure> = measures.iter().map(Enclosure::neg).collect();
+    heaviest_first(&turned)
+}
+
 /// Blocks of one length in the words of another.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct Blocks {

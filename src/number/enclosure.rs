@@ -428,7 +428,10 @@ mod tests {
             ((-2, 0), (0, 2)),
         ] {
             let found = make(given).abs();
-            assert_eq!((found.lo(), found.hi()), (make(expected).lo(), make(expected).hi()));
+            assert_eq!(
+                (found.lo(), found.hi()),
+                (make(expected).lo(), make(expected).hi())
+            );
         }
     }
 
