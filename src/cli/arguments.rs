@@ -1,5 +1,6 @@
 //! Commands and options.
 
+use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions};
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::run::budget::{self, Budget};
@@ -36,6 +37,12 @@ pub enum Command {
     Diagonals(DiagonalsOptions),
     /// Special words and path balls of the factor graphs, or one graph as GraphML
     Graph(GraphOptions),
+    /// How far the languages of tables agree, letters as they are or up to a renaming
+    Compare(CompareOptions),
+    /// Cylinder measures with certified bounds, entropy, and the distance from counting words
+    Measures(MeasuresOptions),
+    /// Trees of special words, and the generalized diagonals that make bispecial ones
+    Special(SpecialOptions),
     /// All orbits in one direction: words, corner-to-corner segments, strips, interval exchange
     Direction(DirectionOptions),
     /// All periodic words up to a length, one for each class under cyclic shift and reversal
@@ -66,6 +73,9 @@ impl Command {
             Command::Complexity(options) => options.out.as_deref(),
             Command::Diagonals(options) => options.out.as_deref(),
             Command::Graph(options) => options.out.as_deref(),
+            Command::Compare(options) => options.out.as_deref(),
+            Command::Measures(options) => options.out.as_deref(),
+            Command::Special(options) => options.out.as_deref(),
             Command::Direction(options) => options.out.as_deref(),
             Command::Periodic(options) => options.out.as_deref(),
             Command::Trace(options) => options.out.as_deref(),
@@ -179,7 +189,7 @@ fn parse_graph_order(text: &str) -> Result<usize, String> {
     }
 }
 
-fn parse_length(text: &str) -> Result<usize, String> {
+pub(super) fn parse_length(text: &str) -> Result<usize, String> {
     match text.parse::<usize>() {
         Ok(length) if length <= LONGEST => Ok(length),
         Ok(length) => Err(format!(
@@ -208,7 +218,7 @@ fn parse_study_length(text: &str) -> Result<usize, String> {
     }
 }
 
-fn parse_bytes(text: &str) -> Result<u64, String> {
+pub(super) fn parse_bytes(text: &str) -> Result<u64, String> {
     let (digits, factor) = match text.char_indices().last() {
         Some((at, 'K' | 'k')) => (&text[..at], 1u64 << 10),
         Some((at, 'M' | 'm')) => (&text[..at], 1 << 20),

@@ -20,7 +20,7 @@ use std::f64::consts::PI;
 use std::io::{self, Write};
 
 #[derive(Serialize)]
-struct Listed {
+pub(super) struct Listed {
     crossings: usize,
     start_corner: u8,
     end_corner: u8,
@@ -87,7 +87,8 @@ fn within(options: &DiagonalsOptions, table: &Table, text: &str) -> Result<(), F
     })
 }
 
-fn listed(table: &Table, diagonal: &Diagonal) -> Listed {
+/// A diagonal with its letters, exact displacement and length.
+pub(super) fn listed(table: &Table, diagonal: &Diagonal) -> Listed {
     Listed {
         crossings: diagonal.code.len(),
         start_corner: diagonal.start.0,

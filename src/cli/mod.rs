@@ -1,5 +1,6 @@
 //! The command line: parsing, printing, exit codes. The rooms below compute.
 //!
+//! - [`analysis_arguments`]: options of the commands that analyse languages.
 //! - [`arguments`]: commands and options.
 //! - [`fault`]: what can go wrong, and the exit code of each.
 //! - [`launch`]: starts and aims.
@@ -10,21 +11,26 @@
 //! - `stats`: what a run took.
 //! - one module for each command.
 
+pub mod analysis_arguments;
 pub mod arguments;
 mod certify;
+mod compare;
 mod complexity;
 mod diagonals;
 mod direction;
 pub mod fault;
 mod graph;
+mod grown;
 pub mod launch;
 mod locate;
+mod measures;
 pub mod orbit_arguments;
 mod orbit_picture;
 mod orbits;
 pub mod output;
 mod periodic;
 pub mod progress;
+mod special;
 mod stats;
 mod study;
 mod sweep;
@@ -81,6 +87,9 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),
+        Command::Compare(options) => with_threads(&options.common, || compare::run(options)),
+        Command::Measures(options) => with_threads(&options.common, || measures::run(options)),
+        Command::Special(options) => with_threads(&options.common, || special::run(options)),
         Command::Direction(options) => with_threads(&options.common, || direction::run(options)),
         Command::Periodic(options) => with_threads(&options.common, || periodic::run(options)),
         Command::Sweep(options) => with_threads(&options.common, || sweep::run(options)),

@@ -4,9 +4,11 @@
 //! - [`counts`]: p, its differences, and the comparison of the two routes.
 //! - [`by_distance`]: generalized diagonals up to a geometric length.
 //! - [`growth`]: p(n)/n³ and local exponents.
+//! - [`special_tree`]: special words as trees, and the diagonals that make each bispecial word.
 
 pub mod by_distance;
 pub mod counts;
 pub mod diagonals;
 pub mod growth;
+pub mod special_tree;
 pub mod with_code;

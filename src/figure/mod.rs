@@ -26,6 +26,7 @@ mod plane;
 mod scale;
 mod shading;
 pub mod style;
+mod tree;
 
 pub use cells::{CellShape, Cells, cells_picture};
 pub use chart::{Chart, Mark, Series, draw_chart};
@@ -34,6 +35,7 @@ pub use graph::{GraphDrawing, circle_layout, graph_picture};
 pub use plane::{HoleShape, TableShape, orbit_picture, table_picture};
 pub use scale::Scale;
 pub use shading::shade_apart;
+pub use tree::{LABELLED_LEAVES, MOST_LEAVES, TreeDrawing, TreeMark, TreeNode, tree_picture};
 
 use thiserror::Error;
 

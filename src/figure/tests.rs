@@ -17,6 +17,7 @@ use super::{
 
 mod colours;
 mod measures;
+mod trees;
 
 /// No text runs into other text or leaves the canvas.
 fn assert_text_is_free(name: &str, canvas: &Canvas, size: Point) {

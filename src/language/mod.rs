@@ -7,9 +7,13 @@
 //! - [`follow`]: one word through the table.
 //! - [`beams`]: the exact beams of all words of one length.
 //! - [`measure`]: cylinder measures, and the check of their sum.
+//! - [`distribution`]: entropy, distance to the uniform law, block frequencies.
+//! - [`compare`]: how far two languages agree, letters as they are or up to a renaming.
 
 pub mod beams;
 mod bundle;
+pub mod compare;
+pub mod distribution;
 pub mod follow;
 pub mod measure;
 pub mod tree;

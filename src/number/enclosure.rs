@@ -259,6 +259,49 @@ impl Enclosure {
         Enclosure { lo, hi }
     }
 
+    /// The natural logarithm of a positive number; `None` when the lower bound is not positive.
+    pub fn ln(&self) -> Option<Enclosure> {
+        if self.lo <= 0 {
+            return None;
+        }
+        let (mut lo, mut hi) = (self.lo.clone(), self.hi.clone());
+        lo.ln_round(Round::Down);
+        hi.ln_round(Round::Up);
+        Some(Enclosure { lo, hi })
+    }
+
+    /// The absolute value.
+    pub fn abs(&self) -> Enclosure {
+        if self.lo >= 0 {
+            return self.clone();
+        }
+        let turned = self.neg();
+        if self.hi <= 0 {
+            return turned;
+        }
+        Enclosure {
+            lo: Float::new(self.precision()),
+            hi: if turned.hi > self.hi {
+                turned.hi
+            } else {
+                self.hi.clone()
+            },
+        }
+    }
+
+    /// A lower and an upper bound with `digits` places after the point, rounded outwards: both texts, read as exact
+    /// decimals, enclose the number.
+    ///
+    /// # Panics
+    /// If a bound is infinite.
+    pub fn decimal_bounds(&self, digits: usize) -> (String, String) {
+        let scale = Integer::from(Integer::u_pow_u(10, digits as u32));
+        let scaled = |bound: &Float| bound.to_rational().expect("finite bounds") * &scale;
+        let low = Integer::from(scaled(&self.lo).floor_ref());
+        let high = Integer::from(scaled(&self.hi).ceil_ref());
+        (fixed_point(&low, digits), fixed_point(&high, digits))
+    }
+
     /// The enclosed number rounded to `digits` places after the point, when the interval is narrow
     /// enough to settle every digit up to one unit in the last place; `None` otherwise.
     ///
@@ -357,6 +400,50 @@ mod tests {
                 .unwrap(),
             "5"
         );
+    }
+
+    #[test]
+    fn natural_logarithm_of_two_to_fifty_places() {
+        // 50 places of the natural logarithm of 2: OEIS A002162.
+        let two = Enclosure::from_rational(&ratio(2, 1), 200);
+        assert_eq!(
+            two.ln().unwrap().decimal(50).unwrap(),
+            "0.69314718055994530941723212145817656807550013436026"
+        );
+        assert!(Enclosure::zero(53).ln().is_none());
+        let logarithm = Enclosure::from_rational(&ratio(1, 3), 60).ln().unwrap();
+        assert!(logarithm.hi() < &0.0 && logarithm.width() > 0);
+    }
+
+    #[test]
+    fn absolute_values_of_all_sign_patterns() {
+        let make = |(lo, hi): (i32, i32)| {
+            Enclosure::between(Float::with_val(53, lo), Float::with_val(53, hi))
+        };
+        for (given, expected) in [
+            ((2, 3), (2, 3)),
+            ((-3, -2), (2, 3)),
+            ((-3, 2), (0, 3)),
+            ((-2, 3), (0, 3)),
+            ((-2, 0), (0, 2)),
+        ] {
+            let found = make(given).abs();
+            assert_eq!(
+                (found.lo(), found.hi()),
+                (make(expected).lo(), make(expected).hi())
+            );
+        }
+    }
+
+    #[test]
+    fn decimal_bounds_round_outwards() {
+        let third = Enclosure::from_rational(&ratio(1, 3), 80);
+        let negative = third.neg();
+        let pair = |a: &str, b: &str| (a.to_string(), b.to_string());
+        assert_eq!(third.decimal_bounds(4), pair("0.3333", "0.3334"));
+        assert_eq!(negative.decimal_bounds(4), pair("-0.3334", "-0.3333"));
+        let half = Enclosure::from_rational(&ratio(1, 2), 80);
+        assert_eq!(half.decimal_bounds(3), pair("0.500", "0.500"));
     }
 
     #[test]

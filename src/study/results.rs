@@ -131,7 +131,7 @@ pub enum Stage {
 
 /// Peak bytes for each word of a study: the language twice while subtrees are joined, and the neighbours of
 /// the graphs being counted.
-const STUDY_BYTES_PER_WORD: u64 = 2 * BYTES_PER_WORD + 32;
+pub const STUDY_BYTES_PER_WORD: u64 = 2 * BYTES_PER_WORD + 32;
 
 /// Runs the computation of a study.
 ///
@@ -233,6 +233,19 @@ fn shown_length(p: &[u64]) -> usize {
 /// With the estimate, when it exceeds what is allowed.
 pub fn check_memory(words: u64, length: usize, allowed: Option<u64>) -> Result<(), StudyFault> {
     let needed = words.saturating_mul(STUDY_BYTES_PER_WORD);
+    check_bytes(words, length, needed, allowed)
+}
+
+/// The same for work that needs so many bytes.
+///
+/// # Errors
+/// With the estimate, when it exceeds what is allowed.
+pub fn check_bytes(
+    words: u64,
+    length: usize,
+    needed: u64,
+    allowed: Option<u64>,
+) -> Result<(), StudyFault> {
     let allowed = allowed.or_else(|| memory::available().map(|free| free / 10 * 9));
     match allowed {
         Some(allowed) if needed > allowed => Err(StudyFault::Memory {
