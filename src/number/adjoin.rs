@@ -17,6 +17,7 @@
 //! stage 2 can need factoring a polynomial of degree d·deg f (see [`factor`](super::factor)).
 
 use super::algebra::Algebra;
+use super::effort::{charge_with, product_cost, weight_of_bits, weights};
 use super::enclosure::Enclosure;
 use super::factor::{FactorFault, factor, surely_squarefree};
 use super::field::{Field, LARGEST_DEGREE};
@@ -289,6 +290,11 @@ fn vanishing_factor(
 
 fn evaluate_enclosed(p: &[Integer], at: &Enclosure) -> Enclosure {
     let precision = at.precision();
+    charge_with(|| {
+        let size = weight_of_bits(precision.into());
+        product_cost(weights(p), 1)
+            .saturating_add((4 * p.len() as u64).saturating_mul(product_cost(size, size)))
+    });
     p.iter().rev().fold(Enclosure::zero(precision), |sum, c| {
         sum.mul(at).add(&Enclosure::from_integer(c, precision))
     })

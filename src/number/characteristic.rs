@@ -6,7 +6,8 @@
 //! values in a row, so the coefficients are at most (1+R)^n. Cost: n³ machine operations a prime, about
 //! n·log₂(1+R)/30 primes.
 
-use super::modular::{PrimeField, primes_from};
+use super::effort::{charge, charge_with, weight, weights};
+use super::modular::{MODULAR_STEP, PrimeField, primes_from};
 use rug::Integer;
 use rug::ops::Pow;
 
@@ -32,6 +33,7 @@ pub(crate) fn characteristic_polynomial(matrix: &[Vec<Integer>]) -> Vec<Integer>
         let image = modulo_prime(matrix, field);
         // result + modulus·t ≡ image modulo the prime.
         let step = field.inverse(field.reduce(&modulus));
+        charge_with(|| 8 * (n as u64 + 1) * weight(&modulus));
         for (c, residue) in result.iter_mut().zip(image) {
             let t = field.mul(field.sub(residue, field.reduce(c)), step);
             *c += Integer::from(&modulus * t);
@@ -49,6 +51,9 @@ pub(crate) fn characteristic_polynomial(matrix: &[Vec<Integer>]) -> Vec<Integer>
 
 fn modulo_prime(matrix: &[Vec<Integer>], field: PrimeField) -> Vec<u64> {
     let n = matrix.len();
+    // Hessenberg form takes at most n³ steps twice, the chain n³/6.
+    charge(MODULAR_STEP * 2 * (n as u64).pow(3));
+    charge_with(|| 4 * matrix.iter().map(|row| weights(row)).sum::<u64>());
     let mut h: Vec<Vec<u64>> = matrix
         .iter()
         .map(|row| row.iter().map(|c| field.reduce(c)).collect())

@@ -6,6 +6,7 @@
 //! 2cos(jt) = V_j(2cos t) with V₀ = 2, V₁ = x, V_{j+1} = x·V_j − V_{j−1}.
 
 use super::adjoin::AdjoinFault;
+use super::effort::{charge_with, product_cost, weight_of_bits};
 use super::enclosure::Enclosure;
 use super::field::{Field, LARGEST_DEGREE};
 use super::poly;
@@ -201,6 +202,11 @@ pub fn multiple_angle_polynomial(j: u32) -> Vec<Real> {
 /// rounded outwards by MPFR.
 pub fn twice_cosine_enclosure(p: u32, q: u32, bits: u32) -> Enclosure {
     let precision = bits + 16;
+    // π and a cosine: some products for each doubling of the precision, and more for the series.
+    charge_with(|| {
+        let size = weight_of_bits(precision.into());
+        product_cost(size, size).saturating_mul(200)
+    });
     let angle = Enclosure::pi(precision)
         .mul_integer(&Integer::from(2 * u64::from(p)))
         .div_integer(&Integer::from(q));

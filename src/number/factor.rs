@@ -17,6 +17,7 @@
 //! two sums over its roots, in machine additions. A budget on the products makes the worst case
 //! (fields with few automorphism orders, such as those of many square roots) an error and not a hang.
 
+use super::effort::{charge, charge_with, weight};
 use super::hensel;
 use super::modular::{ModularPoly, PrimeField, primes_from, reachable_degrees};
 use super::poly::{degree, derivative, exact_quotient, gcd, multiply, primitive, trim};
@@ -226,6 +227,7 @@ impl Recombination {
         let bound = ((norm * lead) << (n as u32 + 1)).max(squares << 64u32);
         let mut modulus = Integer::from(field.prime);
         while modulus <= bound {
+            charge_with(|| weight(&modulus));
             modulus *= field.prime;
         }
         let inverse = lead
@@ -294,6 +296,7 @@ impl Recombination {
                 });
             }
             self.budget -= 1;
+            charge(16 + 2 * size as u64);
             let sum = |j: usize| {
                 chosen
                     .iter()

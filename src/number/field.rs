@@ -8,6 +8,7 @@
 //! interval is halved on demand. Cost of one more bit: one evaluation of the polynomial at a dyadic
 //! point, O(d) products of integers as long as the precision; enclosures are cached per precision.
 
+use super::effort::{charge, gcd_cost, product_cost, weight, weight_of_bits};
 use super::enclosure::Enclosure;
 use super::poly;
 use super::real::Real;
@@ -15,7 +16,7 @@ use super::tiers::Sign;
 use rug::float::Round;
 use rug::{Float, Integer, Rational};
 use std::collections::BTreeMap;
-use std::sync::{Arc, Mutex};
+use std::sync::{Arc, Mutex, PoisonError};
 
 /// The degree above which a field is refused: past it nothing would finish in useful time.
 pub const LARGEST_DEGREE: usize = 64;
@@ -133,10 +134,17 @@ impl Field {
 
     /// An interval (lo, hi] of width at most 2^−bits that holds θ.
     pub fn root_interval(&self, bits: u32) -> (Rational, Rational) {
-        let mut interval = self.0.interval.lock().expect("no panic while refining");
+        // Work that is ended while it refines leaves a valid interval behind.
+        let mut interval = self
+            .0
+            .interval
+            .lock()
+            .unwrap_or_else(PoisonError::into_inner);
         let target = Rational::from((Integer::from(1), Integer::from(1) << bits));
         // Each pass halves the interval, so this ends.
         while Rational::from(&interval.1 - &interval.0) > target {
+            let size = weight(interval.0.numer()) + weight(interval.1.numer());
+            charge(gcd_cost(size, size));
             let middle = Rational::from(&interval.0 + &interval.1) / 2;
             let p = &self.0.minimal;
             let at_middle = poly::sign_at(p, &middle);
@@ -165,7 +173,8 @@ impl Field {
 
     /// Enclosures of 1, θ, …, θ^(d−1) whose bounds have `precision` bits.
     pub fn powers(&self, precision: u32) -> Arc<Vec<Enclosure>> {
-        let mut cache = self.0.powers.lock().expect("no panic while caching");
+        // Work that is ended here has cached nothing yet.
+        let mut cache = self.0.powers.lock().unwrap_or_else(PoisonError::into_inner);
         if let Some(found) = cache.get(&precision) {
             return found.clone();
         }
@@ -174,6 +183,8 @@ impl Field {
             Float::with_val_round(precision, &lo, Round::Down).0,
             Float::with_val_round(precision, &hi, Round::Up).0,
         );
+        let size = weight_of_bits(precision.into());
+        charge((4 * self.degree() as u64).saturating_mul(product_cost(size, size)));
         let mut powers = vec![Enclosure::from_integer(&Integer::from(1), precision)];
         for i in 1..self.degree() {
             powers.push(powers[i - 1].mul(&theta));

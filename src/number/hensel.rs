@@ -5,6 +5,7 @@
 //! f ≡ g·h and s·g + t·h ≡ 1 modulo m, g and h monic; afterwards the same modulo m². Cost for degree n
 //! and r factors: O(log k · log r) products of polynomials of degree n with coefficients below p^k.
 
+use super::effort::{charge_with, division_cost, product_cost, weight, weights};
 use super::modular::{ModularPoly, PrimeField};
 use super::poly::trim;
 use rug::Integer;
@@ -12,6 +13,7 @@ use rug::Integer;
 type Poly = Vec<Integer>;
 
 fn reduced(mut p: Poly, modulus: &Integer) -> Poly {
+    charge_with(|| division_cost(weights(&p), weight(modulus)));
     for c in &mut p {
         *c = std::mem::take(c).modulo(modulus);
     }
@@ -46,6 +48,7 @@ fn divide(a: &[Integer], monic: &[Integer], modulus: &Integer) -> (Poly, Poly) {
         let shift = rest.len() - monic.len();
         let factor = rest.last().expect("nonempty").clone().modulo(modulus);
         if factor != 0 {
+            charge_with(|| product_cost(weights(monic), weight(&factor)));
             for (i, c) in monic.iter().enumerate() {
                 rest[shift + i] -= Integer::from(c * &factor);
             }

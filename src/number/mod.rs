@@ -13,6 +13,7 @@
 //! - [`discriminant`]: of the polynomial that defines a field.
 //! - [`cosine`]: the fields of cosines of rational multiples of π.
 //! - [`enclosure`]: intervals with outward rounding, certified decimals.
+//! - [`effort`]: a bound on work that is the same on every machine.
 //! - [`tiers`]: counts of how often each level of arithmetic decided a sign.
 
 pub mod adjoin;
@@ -20,6 +21,7 @@ mod algebra;
 mod characteristic;
 pub mod cosine;
 pub mod discriminant;
+pub mod effort;
 pub mod enclosure;
 pub mod factor;
 pub mod field;

@@ -6,7 +6,14 @@
 //! Algebra*, chapter 14, from memory). The splitting uses a fixed generator, so equal input gives equal
 //! work; its result does not depend on the random choices. Cost: O(n³ + n² log p) products for degree n.
 
+use super::effort::{charge, charge_with, weights};
 use rug::Integer;
+
+/// The cost of one product and sum modulo a prime, a division included.
+pub(crate) const MODULAR_STEP: u64 = 8;
+
+/// The cost of finding the next prime.
+const PRIME_STEP: u64 = 8192;
 
 /// A polynomial over the field of `prime` elements.
 pub(crate) type ModularPoly = Vec<u64>;
@@ -61,11 +68,13 @@ impl PrimeField {
 
     /// The residues of a polynomial's coefficients.
     pub(crate) fn reduce_poly(self, p: &[Integer]) -> ModularPoly {
+        charge_with(|| 4 * weights(p));
         trimmed(p.iter().map(|c| self.reduce(c)).collect())
     }
 
     /// The value at a point.
     pub(crate) fn evaluate(self, p: &[Integer], point: u64) -> u64 {
+        charge_with(|| 4 * weights(p));
         p.iter().rev().fold(0, |value, c| {
             self.add(self.mul(value, point), self.reduce(c))
         })
@@ -75,6 +84,7 @@ impl PrimeField {
         if a.is_empty() || b.is_empty() {
             return Vec::new();
         }
+        charge(MODULAR_STEP * (a.len() * b.len()) as u64 + 64);
         let mut product = vec![0; a.len() + b.len() - 1];
         for (i, x) in a.iter().enumerate().filter(|(_, x)| **x != 0) {
             for (j, y) in b.iter().enumerate() {
@@ -95,6 +105,8 @@ impl PrimeField {
 
     /// Quotient and remainder.
     pub(crate) fn divide(self, a: &[u64], b: &[u64]) -> (ModularPoly, ModularPoly) {
+        let steps = (a.len() + 1).saturating_sub(b.len()) * b.len();
+        charge(MODULAR_STEP * steps as u64 + 512);
         let lead = self.inverse(*b.last().expect("division by the zero polynomial"));
         let mut rest = a.to_vec();
         let mut quotient = vec![0; (a.len() + 1).saturating_sub(b.len())];
@@ -291,6 +303,7 @@ fn trimmed(mut p: ModularPoly) -> ModularPoly {
 pub(crate) fn primes_from(start: u32) -> impl Iterator<Item = PrimeField> {
     let mut current = Integer::from(start.max(3) - 1);
     std::iter::from_fn(move || {
+        charge(PRIME_STEP);
         // Below 2⁶⁴ the test behind this is deterministic in effect: no composite passes it.
         current = Integer::from(current.next_prime_ref());
         let prime = current.to_u64().filter(|p| *p < 1 << 31)?;

@@ -3,6 +3,7 @@
 //!
 //! Coefficients from the constant term up; monic unless said otherwise.
 
+use super::effort::{charge_with, gcd_cost, weight, weights};
 use super::field::Field;
 use super::modular::{PrimeField, primes_from};
 use super::real::Real;
@@ -104,6 +105,7 @@ pub(crate) fn images<'a>(
 /// The exponent of a prime in a nonzero element's coordinates: the largest e with all of them divisible
 /// by q^e.
 fn exponent(c: &Real, q: &Integer) -> i64 {
+    charge_with(|| 64 * (weights(c.coordinates()) + weight(c.denominator())));
     let count = |n: &Integer| i64::from(n.clone().remove_factor(q).1);
     let numerators = c.coordinates().iter().filter(|n| **n != 0).map(count).min();
     numerators.expect("nonzero") - count(c.denominator())
@@ -115,6 +117,10 @@ pub(crate) fn integral_scale(f: &[Real]) -> Rational {
     let mut den = Integer::from(1);
     let mut content = Integer::new();
     for c in f[..m].iter().filter(|c| !c.is_zero()) {
+        charge_with(|| {
+            let content = gcd_cost(weights(c.coordinates()), weight(&content));
+            content.saturating_add(gcd_cost(weight(&den), weight(c.denominator())))
+        });
         den.lcm_mut(c.denominator());
         c.coordinates().iter().for_each(|n| content.gcd_mut(n));
     }
@@ -142,6 +148,7 @@ pub(crate) fn integral_scale(f: &[Real]) -> Rational {
             break;
         }
         let q = Integer::from(q);
+        charge_with(|| 4 * (weight(&rest_den) + weight(&rest_content)));
         if rest_den.is_divisible(&q) || (rest_content != 0 && rest_content.is_divisible(&q)) {
             rest_den.remove_factor_mut(&q);
             if rest_content != 0 {

@@ -3,6 +3,7 @@
 //! A polynomial is a slice of coefficients from the constant term up, without leading zeros; the zero
 //! polynomial is empty.
 
+use super::effort::{charge_with, division_cost, gcd_cost, product_cost, weight, weights};
 use super::tiers::Sign;
 use rug::ops::Pow;
 use rug::{Integer, Rational};
@@ -33,6 +34,7 @@ pub fn multiply(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
     if a.is_empty() || b.is_empty() {
         return Vec::new();
     }
+    charge_with(|| polynomial_product_cost(a, b));
     let mut product = vec![Integer::new(); a.len() + b.len() - 1];
     for (i, x) in a.iter().enumerate().filter(|(_, x)| **x != 0) {
         for (j, y) in b.iter().enumerate() {
@@ -40,6 +42,17 @@ pub fn multiply(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
         }
     }
     product
+}
+
+/// The cost of multiplying the coefficients of a with those of b.
+pub(crate) fn polynomial_product_cost(a: &[Integer], b: &[Integer]) -> u64 {
+    let longest = |p: &[Integer]| p.iter().map(weight).max().unwrap_or(0);
+    // By hand, the sum of all products of weights; scaled down where long products are cheaper than by hand.
+    let (long_a, long_b) = (longest(a), longest(b));
+    let by_hand = weights(a).saturating_mul(weights(b)) / long_a.saturating_mul(long_b).max(1);
+    by_hand
+        .saturating_add(1)
+        .saturating_mul(product_cost(long_a, long_b))
 }
 
 /// The quotient a/b when b divides a over the integers.
@@ -57,6 +70,10 @@ pub fn exact_quotient(a: &[Integer], b: &[Integer]) -> Option<Vec<Integer>> {
             return None;
         }
         let factor = top.div_exact(lead);
+        charge_with(|| {
+            division_cost(weight(&factor), weight(lead))
+                .saturating_add(polynomial_product_cost(std::slice::from_ref(&factor), b))
+        });
         if factor != 0 {
             for (i, c) in b[..b.len() - 1].iter().enumerate() {
                 rest[shift + i] -= c * &factor;
@@ -95,6 +112,10 @@ pub fn narrow_root(p: &[Integer], interval: &mut (Rational, Rational), bits: u32
             interval.0 = Rational::from(&interval.1 - &target);
             return;
         }
+        charge_with(|| {
+            let size = weight(interval.0.numer()) + weight(interval.1.numer());
+            gcd_cost(size, size)
+        });
         let middle = Rational::from(&interval.0 + &interval.1) / 2;
         match sign_at(p, &middle) {
             Sign::Zero => {
@@ -111,11 +132,13 @@ pub fn narrow_root(p: &[Integer], interval: &mut (Rational, Rational), bits: u32
 pub fn primitive(p: &[Integer]) -> Vec<Integer> {
     let mut content = Integer::new();
     for c in p {
+        charge_with(|| gcd_cost(weight(c), weight(&content)));
         content.gcd_mut(c);
     }
     if content == 0 || content == 1 {
         return p.to_vec();
     }
+    charge_with(|| division_cost(weights(p), weight(&content)));
     p.iter().map(|c| c.clone().div_exact(&content)).collect()
 }
 
@@ -123,11 +146,17 @@ pub fn primitive(p: &[Integer]) -> Vec<Integer> {
 pub fn sign_at(p: &[Integer], point: &Rational) -> Sign {
     let (num, den) = (point.numer(), point.denom());
     let mut value = Integer::new();
-    let mut weight = Integer::from(1);
+    let mut scale = Integer::from(1);
     for c in p.iter().rev() {
+        charge_with(|| {
+            let power = weight(&scale);
+            product_cost(weight(&value), weight(num))
+                .saturating_add(product_cost(power, weight(c)))
+                .saturating_add(product_cost(power, weight(den)))
+        });
         value *= num;
-        value += Integer::from(c * &weight);
-        weight *= den;
+        value += Integer::from(c * &scale);
+        scale *= den;
     }
     value.cmp0().into()
 }
@@ -136,6 +165,11 @@ pub fn sign_at(p: &[Integer], point: &Rational) -> Sign {
 pub fn value_at(p: &[Integer], point: &Rational) -> Rational {
     let mut value = Rational::new();
     for c in p.iter().rev() {
+        charge_with(|| {
+            let size = weight(value.numer()) + weight(value.denom());
+            gcd_cost(size, weight(point.numer()) + weight(point.denom()))
+                .saturating_add(gcd_cost(size, weight(c)))
+        });
         value *= point;
         value += c;
     }
@@ -155,6 +189,10 @@ pub fn positive_remainder(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
         // Multiply by |lead| so that the division is exact and the sign is kept.
         let factor = if *lead < 0 { -top } else { top };
         let scale = lead.clone().abs();
+        charge_with(|| {
+            let once = product_cost(weights(&rest), weight(&scale));
+            once.saturating_add(product_cost(weights(b), weight(&factor)))
+        });
         for c in &mut rest {
             *c *= &scale;
         }

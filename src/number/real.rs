@@ -9,8 +9,12 @@
 //! a fixed-precision evaluation, repeated at twice the precision until it settles; for a nonzero number
 //! it must, and zero never gets there.
 
+use super::effort::{
+    charge_with, division_cost, gcd_cost, product_cost, weight, weight_of_bits, weights,
+};
 use super::enclosure::Enclosure;
 use super::field::Field;
+use super::poly::polynomial_product_cost;
 use super::tiers::Sign;
 use rug::{Integer, Rational};
 use std::cmp::Ordering;
@@ -97,10 +101,10 @@ impl Real {
 
     /// The value, when it is rational.
     pub fn to_rational(&self) -> Option<Rational> {
-        self.coordinates[1..]
-            .iter()
-            .all(|c| *c == 0)
-            .then(|| Rational::from((&self.coordinates[0], &self.den)))
+        self.coordinates[1..].iter().all(|c| *c == 0).then(|| {
+            charge_with(|| gcd_cost(weight(&self.coordinates[0]), weight(&self.den)));
+            Rational::from((&self.coordinates[0], &self.den))
+        })
     }
 
     /// True exactly when the number is zero.
@@ -286,6 +290,7 @@ impl Real {
             if common == 1 {
                 break;
             }
+            charge_with(|| gcd_cost(weight(&common), weight(c)));
             common.gcd_mut(c);
         }
         common.abs_mut();
@@ -293,6 +298,12 @@ impl Real {
             common = -common;
         }
         if common != 1 {
+            charge_with(|| {
+                division_cost(
+                    weights(&self.coordinates) + weight(&self.den),
+                    weight(&common),
+                )
+            });
             self.den.div_exact_mut(&common);
             for c in &mut self.coordinates {
                 c.div_exact_mut(&common);
@@ -314,6 +325,10 @@ impl Real {
             let (a, b) = self.aligned(other);
             return a.combine(&b, subtract);
         }
+        charge_with(|| {
+            product_cost(weights(&self.coordinates), weight(&other.den))
+                .saturating_add(product_cost(weights(&other.coordinates), weight(&self.den)))
+        });
         let coordinates = self
             .coordinates
             .iter()
@@ -372,6 +387,7 @@ pub(crate) fn sign_of_coordinates(field: &Field, coordinates: &[Integer]) -> Sig
 
 fn enclose_coordinates(field: &Field, coordinates: &[Integer], precision: u32) -> Enclosure {
     let powers = field.powers(precision);
+    charge_with(|| product_cost(weights(coordinates), 4 * weight_of_bits(precision.into())));
     let mut sum = Enclosure::zero(precision);
     for (c, power) in coordinates.iter().zip(powers.iter()) {
         if *c != 0 {
@@ -383,6 +399,7 @@ fn enclose_coordinates(field: &Field, coordinates: &[Integer], precision: u32) -
 
 /// Product of two coordinate vectors as polynomials in θ, not yet reduced.
 fn multiply(a: &[Integer], b: &[Integer]) -> Vec<Integer> {
+    charge_with(|| polynomial_product_cost(a, b));
     let mut product = vec![Integer::new(); a.len() + b.len() - 1];
     for (i, x) in a.iter().enumerate().filter(|(_, x)| **x != 0) {
         for (j, y) in b.iter().enumerate() {
@@ -402,6 +419,7 @@ pub(crate) fn reduce_powers(field: &Field, mut coordinates: Vec<Integer>) -> Vec
             continue;
         }
         let shift = coordinates.len() - d;
+        charge_with(|| polynomial_product_cost(std::slice::from_ref(&top), minimal));
         for (i, m) in minimal[..d].iter().enumerate() {
             coordinates[shift + i] -= m * &top;
         }
@@ -422,6 +440,13 @@ pub(crate) fn solve_fraction_free(mut m: Vec<Vec<Integer>>) -> (Vec<Integer>, In
         let pivot = (k..n).find(|&i| m[i][k] != 0).expect("a regular matrix");
         m.swap(k, pivot);
         for i in (0..n).filter(|&i| i != k) {
+            charge_with(|| {
+                let [left, right] = [&m[i][k + 1..], &m[k][k + 1..]].map(weights);
+                let (pivot, factor) = (weight(&m[k][k]), weight(&m[i][k]));
+                product_cost(left, 2 * pivot)
+                    .saturating_add(product_cost(right, factor))
+                    .saturating_add(product_cost(left.max(right), 2 * weight(&previous)))
+            });
             for j in (k + 1)..=n {
                 let kept = Integer::from(&m[i][j] * &m[k][k]);
                 let gone = Integer::from(&m[i][k] * &m[k][j]);

@@ -16,9 +16,10 @@
 
 use super::adjoin::isolating_interval;
 use super::characteristic::characteristic_polynomial;
+use super::effort::{charge, charge_with, gcd_cost, weight};
 use super::factor::squarefree_part;
 use super::field::Field;
-use super::modular::{PrimeField, primes_from};
+use super::modular::{MODULAR_STEP, PrimeField, primes_from};
 use super::over_field::{integral_scale, scaled};
 use super::real::{Real, reduce_powers};
 use rug::{Integer, Rational};
@@ -172,6 +173,17 @@ fn coordinates_over(powers: &[Real], targets: &[Real]) -> Option<Vec<Vec<Rationa
         for (_, row) in rows.iter_mut().enumerate().filter(|(i, _)| *i != column) {
             let factor = row[column].clone();
             if factor != 0 {
+                charge_with(|| {
+                    let size = |r: &Rational| weight(r.numer()) + weight(r.denom());
+                    let factor = size(&factor);
+                    let pairs = row.iter().zip(&pivot_row).skip(column);
+                    // A product with two greatest common divisors, and a sum with one.
+                    let cost = |(c, p): (&Rational, &Rational)| {
+                        gcd_cost(size(p), factor)
+                            .saturating_add(gcd_cost(size(p) + factor, size(c)))
+                    };
+                    pairs.map(cost).sum()
+                });
                 for (c, p) in row.iter_mut().zip(&pivot_row).skip(column) {
                     *c -= Rational::from(p * &factor);
                 }
@@ -203,6 +215,8 @@ fn surely_generate(field: &Field, elements: &[Real]) -> bool {
     let element = residues(combination.coordinates());
     let mut power = vec![0; d];
     power[0] = 1;
+    // A product and its reduction for each row, and the elimination.
+    charge(MODULAR_STEP * 3 * (d as u64).pow(3));
     let mut rows = Vec::with_capacity(d);
     for _ in 0..d {
         rows.push(power.clone());

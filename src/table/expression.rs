@@ -16,7 +16,8 @@
 //! [`Evaluator`] grows as roots come up, so that all numbers of one file end in one field.
 //!
 //! Nothing here can run away: bounds on the length of the text, on nesting, on digits, on exponents, on the
-//! size of intermediate numbers and on the field's degree are checked before the work they bound.
+//! size of intermediate numbers and on the field's degree are checked before the work they bound, and what they
+//! leave open ends with a budget of [`MOST_WORK`] (see [`effort`]).
 
 mod evaluate;
 mod lexer;
@@ -27,6 +28,7 @@ use evaluate::{FUNCTIONS, Value};
 use lexer::Token;
 
 use crate::number::adjoin::{Adjoined, embed};
+use crate::number::effort::{self, Exhausted};
 use crate::number::{Field, Real};
 use rug::{Integer, Rational};
 use std::collections::BTreeMap;
@@ -44,6 +46,11 @@ pub const LARGEST_EXPONENT: u32 = 1000;
 /// The most bits of a number on the way: of a rational, or of all coordinates of a field element together.
 pub const MOST_BITS: usize = 65_536;
 
+/// The most work of one expression, or of one table file and the files that it stands on together, in units of
+/// [`effort`]: half a minute of an ordinary machine, for which
+/// the documents promise one minute.
+pub const MOST_WORK: u64 = 26_000_000_000;
+
 /// What is wrong with an expression.
 #[derive(Clone, Debug, PartialEq, Eq, Error)]
 #[error("{message}")]
@@ -57,6 +64,14 @@ pub struct ExpressionFault {
 }
 
 impl ExpressionFault {
+    /// What the user reads when the budget of work ends at this place.
+    pub(super) fn too_much_work(span: &Range<usize>) -> ExpressionFault {
+        let help = "use fewer roots, roots of lower degree, or shorter numbers; or a plane form (`form = ...`) \
+                    that takes a root out of the coordinates";
+        let message = "working this out exactly takes more work than one table file may cause";
+        ExpressionFault::new(span, message, help)
+    }
+
     fn new(span: &Range<usize>, message: impl Into<String>, help: impl Into<String>) -> Self {
         ExpressionFault {
             span: span.clone(),
@@ -160,8 +175,24 @@ impl Evaluator {
     /// # Errors
     /// The first fault, with its place in the text and what to write instead. The evaluator stays usable.
     pub fn evaluate(&mut self, text: &str) -> Result<Real, ExpressionFault> {
-        let tree = parser::parse(text)?;
-        evaluate::number(self, &tree)
+        self.bounded(0..text.len(), |evaluator| {
+            let tree = parser::parse(text)?;
+            evaluate::number(evaluator, &tree)
+        })
+    }
+
+    /// Does some work within the budget that runs, or within [`MOST_WORK`] when none does.
+    fn bounded<T>(
+        &mut self,
+        span: Range<usize>,
+        work: impl FnOnce(&mut Evaluator) -> Result<T, ExpressionFault>,
+    ) -> Result<T, ExpressionFault> {
+        // Growing moves what is known to the new field: a copy is kept, so that the evaluator stays usable.
+        let before = self.clone();
+        effort::within(MOST_WORK, || work(self)).unwrap_or_else(|Exhausted| {
+            *self = before;
+            Err(ExpressionFault::too_much_work(&span))
+        })
     }
 
     /// Gives a name to the value of an expression: a number, or a rational multiple of `pi`. An older value
@@ -174,10 +205,12 @@ impl Evaluator {
     /// If it cannot be a name: see [`name_fault`].
     pub fn define(&mut self, name: &str, text: &str) -> Result<(), ExpressionFault> {
         assert_eq!(name_fault(name), None);
-        let tree = parser::parse(text)?;
-        let value = evaluate::value(self, &tree)?;
-        self.names.insert(name.to_string(), value);
-        Ok(())
+        self.bounded(0..text.len(), |evaluator| {
+            let tree = parser::parse(text)?;
+            let value = evaluate::value(evaluator, &tree)?;
+            evaluator.names.insert(name.to_string(), value);
+            Ok(())
+        })
     }
 
     /// The cosine of `turns` full turns, growing the field if need be.
@@ -185,8 +218,10 @@ impl Evaluator {
     /// # Errors
     /// When the field would become too large.
     pub fn cosine(&mut self, turns: &Rational) -> Result<Real, ExpressionFault> {
-        let value = evaluate::cosine(self, turns, &(0..0))?;
-        Ok(self.lift(&value))
+        self.bounded(0..0, |evaluator| {
+            let value = evaluate::cosine(evaluator, turns, &(0..0))?;
+            Ok(evaluator.lift(&value))
+        })
     }
 
     /// The square root of a number, growing the field if need be.
@@ -194,9 +229,11 @@ impl Evaluator {
     /// # Errors
     /// When the number is negative, or the field would become too large.
     pub fn square_root(&mut self, number: &Real) -> Result<Real, ExpressionFault> {
-        let number = self.lift(number);
-        let value = evaluate::square_root(self, &number, &(0..0))?;
-        Ok(self.lift(&value))
+        self.bounded(0..0, |evaluator| {
+            let number = evaluator.lift(number);
+            let value = evaluate::square_root(evaluator, &number, &(0..0))?;
+            Ok(evaluator.lift(&value))
+        })
     }
 
     /// A number that this evaluator returned earlier, in the current field. Rationals stay rationals.

@@ -47,6 +47,8 @@ mod source;
 
 use super::Table;
 use super::diagnostic::Diagnostic;
+use super::expression::MOST_WORK;
+use crate::number::effort::{self, Exhausted};
 pub use names::{MOST_NAMES, Parameter};
 use read::Chain;
 use std::io::Read;
@@ -113,6 +115,14 @@ pub enum TableFileError {
         /// The first byte at fault, from 0.
         offset: usize,
     },
+    /// Reading the file takes too much work.
+    #[error(
+        "{file}: reading this file takes more work than one table file may cause; use shorter numbers, roots of lower degree, or fewer corners"
+    )]
+    TooMuchWork {
+        /// The name as given.
+        file: String,
+    },
     /// The text is no table.
     #[error("{0}")]
     Fault(Box<Diagnostic>),
@@ -131,7 +141,19 @@ pub fn load(path: &Path) -> Result<LoadedTable, TableFileError> {
 /// # Errors
 /// As [`TableFileError`] says; a fault in a setting points into its text.
 pub fn load_with(path: &Path, settings: &[String]) -> Result<LoadedTable, TableFileError> {
-    load_in(path, settings, &Vec::new())
+    bounded(&path.display().to_string(), || {
+        load_in(path, settings, &Vec::new())
+    })
+}
+
+/// Reads within the budget of one file. A part that is too much says so itself, at its place; what is left over for here
+/// is the little in between.
+fn bounded(
+    file: &str,
+    read: impl FnOnce() -> Result<LoadedTable, TableFileError>,
+) -> Result<LoadedTable, TableFileError> {
+    effort::within(MOST_WORK, read)
+        .unwrap_or_else(|Exhausted| Err(TableFileError::TooMuchWork { file: file.into() }))
 }
 
 /// Reads a table that other files, which are being read, stand on.
@@ -174,7 +196,9 @@ pub fn parse_with(
     text: &str,
     settings: &[String],
 ) -> Result<LoadedTable, TableFileError> {
-    parse_in(file_name, text, settings, &Vec::new())
+    bounded(file_name, || {
+        parse_in(file_name, text, settings, &Vec::new())
+    })
 }
 
 fn parse_in(

@@ -9,6 +9,7 @@
 use super::Vector;
 use crate::number::adjoin::AdjoinFault;
 use crate::number::cosine::{cosine_field, generator_of, multiple_angle, reduced_angle};
+use crate::number::effort::{charge_with, weight};
 use crate::number::{Field, Real};
 use rug::{Integer, Rational};
 
@@ -171,6 +172,7 @@ pub(super) fn without_square(g: Real) -> (Real, Real) {
     let mut q = Integer::from(2);
     while Integer::from(q.square_ref()) <= kernel && q < 10_000 {
         let square = Integer::from(q.square_ref());
+        charge_with(|| 16 * weight(&kernel));
         while kernel.is_divisible(&square) {
             kernel.div_exact_mut(&square);
             outside *= &q;

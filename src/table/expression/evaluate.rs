@@ -4,6 +4,7 @@ use super::parser::{Kind, Node};
 use super::{Evaluator, ExpressionFault, LARGEST_EXPONENT, MOST_BITS, root};
 use crate::number::adjoin::{AdjoinFault, Adjoined, adjoin_root};
 use crate::number::cosine;
+use crate::number::effort::{charge_with, gcd_cost, weight};
 use crate::number::{Field, Real, Sign};
 use rug::{Integer, Rational};
 use std::ops::Range;
@@ -503,6 +504,11 @@ fn from_known_roots(evaluator: &Evaluator, argument: &Real) -> Option<Real> {
                 .filter(move |(i, _)| subset >> i & 1 == 1)
                 .map(|(_, k)| k)
         };
+        charge_with(|| {
+            let size = |a: &Rational| weight(a.numer()) + weight(a.denom());
+            let whole = chosen().map(|(a, _)| size(a)).sum::<u64>() + size(&wanted);
+            gcd_cost(whole, whole)
+        });
         let product = chosen().fold(Rational::from(1), |p, (a, _)| p * a);
         let square = Rational::from(&product * &wanted);
         if square.numer().is_perfect_square() && square.denom().is_perfect_square() {

@@ -6,8 +6,12 @@
 
 use super::lexer::{Token, tokens};
 use super::{DEEPEST_NESTING, ExpressionFault};
+use crate::number::effort::charge;
 use rug::Rational;
 use std::ops::Range;
+
+/// The cost of reading one byte.
+const READING_STEP: u64 = 100;
 
 /// A part of an expression and its place.
 #[derive(Clone, Debug)]
@@ -36,6 +40,7 @@ pub(super) enum Kind {
 
 /// The tree of an expression.
 pub(super) fn parse(text: &str) -> Result<Node, ExpressionFault> {
+    charge(READING_STEP * text.len() as u64);
     let mut parser = Parser {
         tokens: tokens(text)?,
         next: 0,

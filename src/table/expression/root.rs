@@ -9,6 +9,7 @@ use super::evaluate::{adjoin_fault, integer_exponent, number};
 use super::parser::{Kind, Node};
 use super::{Evaluator, ExpressionFault, MOST_BITS};
 use crate::number::adjoin::{AdjoinFault, adjoin_root};
+use crate::number::effort::{charge_with, gcd_cost, weight};
 use crate::number::factor::{factor, squarefree_part};
 use crate::number::field::LARGEST_DEGREE;
 use crate::number::{Enclosure, Real, poly};
@@ -177,6 +178,14 @@ fn product(a: &[Rational], b: &[Rational]) -> Vec<Rational> {
     if a.is_empty() || b.is_empty() {
         return Vec::new();
     }
+    charge_with(|| {
+        let size = |c: &Rational| weight(c.numer()) + weight(c.denom());
+        let longest = |p: &[Rational]| p.iter().map(size).max().unwrap_or(0);
+        let terms = (a.len() * b.len()) as u64;
+        // A product, and a sum with what is there.
+        let once = gcd_cost(longest(a), longest(b));
+        terms.saturating_mul(once.saturating_mul(3))
+    });
     let mut result = vec![Rational::new(); a.len() + b.len() - 1];
     for (i, x) in a.iter().enumerate() {
         for (j, y) in b.iter().enumerate() {

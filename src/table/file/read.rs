@@ -10,10 +10,14 @@ use super::source::{Outcome, Source, Value, array, kind, number};
 use crate::number::adjoin::AdjoinFault;
 use crate::number::{Field, Real};
 use crate::table::expression::Evaluator;
+use crate::table::facts::facts;
+use crate::table::summary::summary;
+use crate::table::triangulation::triangulate;
 use crate::table::{MOST_SIDES, Ring, Table, shape};
 use rug::Rational;
 use std::ops::Range;
 use std::path::PathBuf;
+use toml::Spanned;
 use toml::de::DeTable;
 
 const SHAPES: [&str; 5] = ["corners", "triangle", "regular", "outline", "base"];
@@ -93,13 +97,38 @@ pub(super) fn table(
         document: &document,
         names: &names,
     };
-    let mut drawn = draw(sheet, chain)?;
+    let shape = shape_key(&document);
+    let mut drawn = source.affordable(&shape, "reading this shape", || draw(sheet, chain))?;
     let bases = std::mem::take(&mut drawn.bases);
+    let table = source.affordable(&shape, "checking these corners", || {
+        complete(sheet, &title, drawn)
+    })?;
+    source.affordable(&shape, "proving the facts about this table", || {
+        rehearse(&table);
+        Ok(())
+    })?;
     Ok(Reading {
-        table: complete(sheet, &title, drawn)?,
+        table,
         parameters: names.parameters(),
         bases,
     })
+}
+
+/// The place of the first shape.
+fn shape_key(document: &DeTable) -> Range<usize> {
+    let keys = document.keys();
+    let shapes = keys.filter(|key| SHAPES.contains(&key.get_ref().as_ref()));
+    shapes
+        .map(Spanned::span)
+        .min_by_key(|span| span.start)
+        .unwrap_or(0..0)
+}
+
+/// What every command does with a table before its own work. Done once while the budget of the file runs, it tells
+/// that a table that was read is ready for use in a time that is bounded too.
+fn rehearse(table: &Table) {
+    triangulate(table);
+    summary(table, &facts(table));
 }
 
 /// Reads the one shape of the file.

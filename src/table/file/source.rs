@@ -1,8 +1,9 @@
 //! Pointing into the text of a table file, and the plain values in it.
 
 use crate::number::Real;
+use crate::number::effort::{self, Exhausted};
 use crate::table::diagnostic::Diagnostic;
-use crate::table::expression::{Evaluator, MOST_DIGITS};
+use crate::table::expression::{Evaluator, MOST_DIGITS, MOST_WORK};
 use rug::Integer;
 use std::ops::Range;
 use toml::Spanned;
@@ -26,6 +27,21 @@ impl Source<'_> {
         help: impl Into<String>,
     ) -> Outcome<T> {
         Err(self.diagnostic(span, message, help))
+    }
+
+    /// Does work within the budget of the file; when that ends here, the fault points at `span` and says what
+    /// took too much.
+    pub(super) fn affordable<T>(
+        self,
+        span: &Range<usize>,
+        what: &str,
+        work: impl FnOnce() -> Outcome<T>,
+    ) -> Outcome<T> {
+        effort::within(MOST_WORK, work).unwrap_or_else(|Exhausted| {
+            let message = format!("{what} takes more work than one table file may cause");
+            let help = "use shorter numbers, roots of lower degree, or fewer corners";
+            self.fault(span, message, help)
+        })
     }
 
     pub(super) fn diagnostic(
