@@ -176,6 +176,29 @@ fn altered_languages_are_rejected() {
 }
 
 #[test]
+fn orbits_through_corners_are_rejected() {
+    // From the bottom of the L through its inner corner (1, 1) to the top: the corner is only touched, the sides hit are
+    // those of the word.
+    let table = table("l-of-three-squares.toml");
+    let good = language_certificate(&table, 2);
+    let at = lines(&good).iter().position(|line| line.contains("\"ae\"")).unwrap();
+    let through = |start: &str| {
+        with_entry(&good, at, |entry| {
+            let witness = entry.witness.as_mut().unwrap();
+            witness.start = start.into();
+            witness.aim = ["-1", "2"].map(String::from);
+        })
+    };
+    check(&through("2/3")).unwrap();
+    let rejected = check(&through("3/4")).unwrap_err();
+    assert!(rejected.to_string().contains("meets a corner"), "{rejected}");
+    // Starts that are none.
+    for start in ["0", "1", "-1/2", "3/2", "1/0", "x"] {
+        assert!(check(&through(start)).is_err(), "{start}");
+    }
+}
+
+#[test]
 fn a_swapped_table_is_rejected() {
     let names = ["square.toml", "golden-rectangle.toml"];
     let [square, rectangle] = names.map(|name| language_certificate(&table(name), 5));
