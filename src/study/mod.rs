@@ -4,6 +4,7 @@
 //! - [`statement`]: a statement and its standing.
 //! - [`verdict`]: what follows from it, with the standing of every statement.
 //! - [`pictures`]: the figures of a study.
+//! - [`sheet`]: a table at a size that can be drawn.
 //! - [`record`]: the file `study.json`.
 //! - [`report`]: the file `report.html`.
 //! - [`folder`]: all files of a study.
@@ -13,5 +14,6 @@ pub mod pictures;
 pub mod record;
 pub mod report;
 pub mod results;
+pub mod sheet;
 pub mod statement;
 pub mod verdict;

@@ -50,7 +50,7 @@ use super::diagnostic::Diagnostic;
 use super::expression::MOST_WORK;
 use crate::number::effort::{self, Exhausted};
 pub use names::{MOST_NAMES, Parameter};
-use read::Chain;
+use read::{Chain, Link};
 use std::io::Read;
 use std::path::Path;
 use thiserror::Error;
@@ -71,7 +71,7 @@ pub struct LoadedTable {
     pub stem: String,
     /// The name of the file as given.
     pub file_name: String,
-    /// Its parameters, as set.
+    /// Its parameters, as set, and after them those of the files that it stands on which a setting can reach.
     pub parameters: Vec<Parameter>,
     /// The files that it stands on, the nearest first.
     pub bases: Vec<BaseFile>,
@@ -156,8 +156,8 @@ fn bounded(
         .unwrap_or_else(|Exhausted| Err(TableFileError::TooMuchWork { file: file.into() }))
 }
 
-/// Reads a table that other files, which are being read, stand on.
-fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
+/// The text of a file, checked for size and encoding.
+fn read_text(path: &Path) -> Result<String, TableFileError> {
     let file = path.display().to_string();
     let unreadable = |reason| TableFileError::Unreadable {
         file: file.clone(),
@@ -172,10 +172,22 @@ fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTabl
     if bytes.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge { file });
     }
-    let text = String::from_utf8(bytes).map_err(|e| TableFileError::NotText {
+    String::from_utf8(bytes).map_err(|e| TableFileError::NotText {
         file: file.clone(),
         offset: e.utf8_error().valid_up_to(),
-    })?;
+    })
+}
+
+/// The files that a table file stands on, the nearest first, as far as its chain of `base` can be followed. No number
+/// is read, so this says nothing about whether they give a table.
+pub fn bases(file_name: &str, text: &str) -> Vec<BaseFile> {
+    affine::named_bases(file_name, text)
+}
+
+/// Reads a table that other files, which are being read, stand on.
+fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
+    let file = path.display().to_string();
+    let text = read_text(path)?;
     parse_in(&file, &text, settings, chain)
 }
 
@@ -225,7 +237,11 @@ fn parse_in(
     );
     let mut chain = chain.clone();
     let place = Path::new(file_name).canonicalize();
-    chain.push((place.unwrap_or_default(), file_name.to_string()));
+    chain.push(Link {
+        place: place.unwrap_or_default(),
+        name: file_name.to_string(),
+        parameters: Vec::new(),
+    });
     let read::Reading {
         table,
         parameters,
