@@ -22,7 +22,8 @@
 //!
 //! Exactly one of `corners`, `triangle`, `regular`, `outline` and `base` is there. An outline starts at the origin and must
 //! lead back there exactly. A base keeps its letters and its holes, unless the file names other `sides` for the
-//! outline; its parameters have the values that its own file gives them. A number is a string that holds an exact
+//! outline; its parameters have the values that its own file gives them, unless a setting reaches them: a setting `name=expression`
+//! is for the first file on the way to the last base that gives the name a meaning. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
 //!
@@ -34,6 +35,27 @@
 //! the program counts through, it counts the corners of the outline counterclockwise, then those of each hole
 //! clockwise; the first corner of each ring stays the first. Sides without a letter get the first letters of the
 //! alphabet that the file does not name.
+//!
+//! **Bounds.** What a file may cost is bounded for any input:
+//!
+//! | what | at most |
+//! |------|---------|
+//! | bytes of a file | 1 MiB ([`LARGEST_FILE`]) |
+//! | files that stand on each other | 16 |
+//! | names in `define` and `parameters` | 64 ([`MOST_NAMES`]) |
+//! | corners, those of holes included | 255 ([`MOST_SIDES`](super::MOST_SIDES)) |
+//! | bytes of an expression | 4096 ([`LONGEST_EXPRESSION`](super::expression::LONGEST_EXPRESSION)) |
+//! | nesting of an expression | 64 ([`DEEPEST_NESTING`](super::expression::DEEPEST_NESTING)) |
+//! | digits of a number | 1000 ([`MOST_DIGITS`](super::expression::MOST_DIGITS)) |
+//! | exponents | 1000 up or down ([`LARGEST_EXPONENT`](super::expression::LARGEST_EXPONENT)) |
+//! | bits of an exact number | 65536 ([`MOST_BITS`](super::expression::MOST_BITS)) |
+//! | degree of the field | 64 ([`LARGEST_DEGREE`](crate::number::field::LARGEST_DEGREE)) |
+//! | work, its bases included | [`MOST_WORK`] units |
+//!
+//! The last one bounds the time: see [`effort`]. It covers reading the numbers, growing and factoring for their field, checking
+//! the corners, and what every command does first: cutting into triangles, the smaller field of walks, the facts. On an
+//! ordinary machine it is over in a minute; being a count and no clock, it refuses the same files everywhere. A refusal points at
+//! the part that was too much.
 //!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
