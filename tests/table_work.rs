@@ -6,15 +6,17 @@
 
 use reboundary::number::effort::{Exhausted, measured, within};
 use reboundary::table::expression::{Evaluator, MOST_WORK};
-use reboundary::table::file::{LARGEST_FILE, LoadedTable, TableFileError, load, parse};
+use reboundary::table::file::{LARGEST_FILE, LoadedTable, TableFileError, load, parse, rehearse};
 use std::time::{Duration, Instant};
 
 const ALLOWED: Duration = Duration::from_secs(300);
 
-/// Reads a text within the bound.
+/// Reads a text and does what every command does first, within the bound.
 fn read(name: &str, text: &str) -> Result<LoadedTable, String> {
     let begun = Instant::now();
-    let result = parse(&format!("{name}.toml"), text).map_err(|fault| fault.to_string());
+    let result = parse(&format!("{name}.toml"), text)
+        .and_then(|loaded| rehearse(&loaded).map(|()| loaded))
+        .map_err(|fault| fault.to_string());
     let taken = begun.elapsed();
     assert!(taken < ALLOWED, "{name}: {taken:?}");
     result

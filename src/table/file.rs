@@ -52,10 +52,10 @@
 //! | degree of the field | 64 ([`LARGEST_DEGREE`](crate::number::field::LARGEST_DEGREE)) |
 //! | work, its bases included | [`MOST_WORK`] units |
 //!
-//! The last one bounds the time: see [`effort`]. It covers reading the numbers, growing and factoring for their field, checking
-//! the corners, and what every command does first: cutting into triangles, the smaller field of walks, the facts. On an
-//! ordinary machine it is over in a minute; being a count and no clock, it refuses the same files everywhere. A refusal points at
-//! the part that was too much.
+//! The last one bounds the time: see [`effort`]. It covers reading the numbers, growing and factoring for their field, and
+//! checking the corners. [`rehearse`] bounds what every command does first in the same way: cutting into triangles,
+//! the smaller field of walks, the facts. On an ordinary machine each is over in a minute; being a count and no clock, it
+//! refuses the same files everywhere. A refusal points at the part that was too much.
 //!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
@@ -176,6 +176,15 @@ fn bounded(
 ) -> Result<LoadedTable, TableFileError> {
     effort::within(MOST_WORK, read)
         .unwrap_or_else(|Exhausted| Err(TableFileError::TooMuchWork { file: file.into() }))
+}
+
+/// Does what every command does with a table before its own work, within another budget of [`MOST_WORK`], and forgets
+/// the results: after it a table is known to be ready for use in bounded time.
+///
+/// # Errors
+/// A diagnostic when that is too much.
+pub fn rehearse(loaded: &LoadedTable) -> Result<(), TableFileError> {
+    read::rehearse(&loaded.file_name, &loaded.text, &loaded.table).map_err(TableFileError::Fault)
 }
 
 /// The text of a file, checked for size and encoding.

@@ -125,10 +125,6 @@ pub(super) fn table(
     let table = source.affordable(&shape, "checking these corners", || {
         complete(sheet, &title, drawn)
     })?;
-    source.affordable(&shape, "proving the facts about this table", || {
-        rehearse(&table);
-        Ok(())
-    })?;
     Ok(Reading {
         table,
         parameters,
@@ -146,11 +142,15 @@ fn shape_key(document: &DeTable) -> Range<usize> {
         .unwrap_or(0..0)
 }
 
-/// What every command does with a table before its own work. Done once while the budget of the file runs, it tells
-/// that a table that was read is ready for use in a time that is bounded too.
-fn rehearse(table: &Table) {
-    triangulate(table);
-    summary(table, &facts(table));
+/// See [`super::rehearse`].
+pub(super) fn rehearse(file: &str, text: &str, table: &Table) -> Outcome<()> {
+    let source = Source { file, text };
+    let shape = DeTable::parse(text).map_or(0..0, |document| shape_key(document.get_ref()));
+    source.affordable(&shape, "proving the facts about this table", || {
+        triangulate(table);
+        summary(table, &facts(table));
+        Ok(())
+    })
 }
 
 /// Reads the one shape of the file.
