@@ -63,14 +63,14 @@ const ROW: f64 = 30.0;
 /// Height of the rows together when they are too many for labels.
 const DENSE_HEIGHT: f64 = 1100.0;
 /// Half the width and height of a node's box.
-const HALF: Point = [14.0, 12.5];
+const HALF: Point = [14.0, 11.5];
 const MARGIN: f64 = 18.0;
 /// Between the left edge and the root.
 const LEFT: f64 = 46.0;
 /// Between the last column and the right edge.
 const RIGHT: f64 = 72.0;
 /// Between the top and the first row: the numbers of the columns stand there.
-const TOP: f64 = 62.0;
+const TOP: f64 = 74.0;
 /// Columns are at most so far apart.
 const WIDEST_STEP: f64 = 150.0;
 /// Narrowest columns in which notes are shown.
@@ -239,8 +239,8 @@ fn look(mark: TreeMark) -> (Ink, Ink, f64) {
 fn draw_marker(canvas: &mut Canvas, at: Point, mark: TreeMark, r: f64) {
     let (marker, size, colour) = match mark {
         TreeMark::Plain => (Marker::Disc, 0.6 * r, GREY),
-        TreeMark::Framed => (Marker::Ring, r, GREY),
-        TreeMark::Filled => (Marker::Square, r, ink(1)),
+        TreeMark::Framed => (Marker::Ring, r - 0.5, GREY),
+        TreeMark::Filled => (Marker::Square, 1.15 * r, ink(1)),
         TreeMark::Falling => (Marker::Triangle, r, ink(0)),
     };
     canvas.marker(at, marker, size, colour);
