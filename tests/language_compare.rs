@@ -3,9 +3,7 @@
 mod oracle;
 mod support;
 
-use reboundary::language::compare::{
-    Renaming, compare_under, compare_up_to_renaming, differences,
-};
+use reboundary::language::compare::{Renaming, compare_under, compare_up_to_renaming, differences};
 use reboundary::language::{Language, WordId};
 use reboundary::number::Real;
 use reboundary::run::Control;
@@ -89,8 +87,16 @@ fn check_certificate(a: &Language, b: &Language) {
         assert_ne!(ours, theirs);
         let lone = differences(a, b, renaming, n);
         let spelled = |language: &Language, list: &[WordId], map: &[Option<u8>]| {
-            let rename = |w: &WordId| language.word(n, *w).iter().map(|l| map[*l as usize]).collect();
-            list.iter().map(rename).collect::<BTreeSet<Vec<Option<u8>>>>()
+            let rename = |w: &WordId| {
+                language
+                    .word(n, *w)
+                    .iter()
+                    .map(|l| map[*l as usize])
+                    .collect()
+            };
+            list.iter()
+                .map(rename)
+                .collect::<BTreeSet<Vec<Option<u8>>>>()
         };
         let own: Vec<Option<u8>> = (0..b.alphabet() as u8).map(Some).collect();
         let only_ours: BTreeSet<_> = ours.difference(&theirs).cloned().collect();
@@ -129,10 +135,17 @@ fn rewritten(table: &Table, turn: usize) -> Table {
     let mut corners = table.corners().to_vec();
     corners.rotate_left(turn % table.sides());
     if turn % 2 == 1 {
-        corners.iter_mut().for_each(|c| *c = Vector::new(-&c.x, c.y.clone()));
+        corners
+            .iter_mut()
+            .for_each(|c| *c = Vector::new(-&c.x, c.y.clone()));
     }
-    Table::new(table.title(), corners, table.form().clone(), table.letters().to_vec())
-        .unwrap_or_else(|fault| panic!("{fault}"))
+    Table::new(
+        table.title(),
+        corners,
+        table.form().clone(),
+        table.letters().to_vec(),
+    )
+    .unwrap_or_else(|fault| panic!("{fault}"))
 }
 
 #[test]
@@ -149,7 +162,12 @@ fn similar_tables_agree() {
             let other = Table::new("similar", corners, table.form().clone(), letters)
                 .unwrap_or_else(|fault| panic!("{fault}"));
             let second = language(&other, 8);
-            assert_eq!(agree_to(&first, &second), 8, "{} from {step}", table.title());
+            assert_eq!(
+                agree_to(&first, &second),
+                8,
+                "{} from {step}",
+                table.title()
+            );
             check_certificate(&first, &second);
         }
     }
@@ -161,19 +179,31 @@ fn rectangles_of_all_ratios_agree() {
     for (a, b) in [(2, 1), (1, 2), (3, 7), (355, 113), (1, 1000)] {
         let corners = [(0, 0), (a, 0), (a, b), (0, b)];
         let rectangle = integer_table("rectangle", 1, &corners);
-        assert_eq!(agree_to(&square, &language(&rectangle, 12)), 12, "{a} by {b}");
+        assert_eq!(
+            agree_to(&square, &language(&rectangle, 12)),
+            12,
+            "{a} by {b}"
+        );
         // Irrational ratio too: second coordinates in units of the root of 2.
         let rectangle = integer_table("rectangle", 2, &corners);
-        assert_eq!(agree_to(&square, &language(&rectangle, 12)), 12, "{a} by {b}√2");
+        assert_eq!(
+            agree_to(&square, &language(&rectangle, 12)),
+            12,
+            "{a} by {b}√2"
+        );
     }
     for name in ["golden-rectangle", "turned-rectangle", "square-by-regular"] {
-        assert_eq!(agree_to(&square, &language(&polygon(name), 12)), 12, "{name}");
+        assert_eq!(
+            agree_to(&square, &language(&polygon(name), 12)),
+            12,
+            "{name}"
+        );
     }
-    // And no other parallelogram does: pqp needs parallel sides that overlap at right angles to themselves.
+    // A parallelogram without right angles does not.
     assert!(agree_to(&square, &language(&polygon("rhombus-60"), 12)) < 4);
 }
 
-/// p(1) … p(6) are 3, 6, 12, 20, 32, 50 for both, and yet no renaming exists at length 5.
+/// p(n) is the same for both up to n = 6, and yet no renaming exists at length 5.
 #[test]
 fn equal_counts_do_not_make_equal_languages() {
     let [a, b] = ["biquadratic-triangle", "sextic-triangle"].map(|n| language(&polygon(n), 6));
@@ -216,7 +246,8 @@ fn sturmian_languages_have_equal_counts() {
 
 #[test]
 fn different_numbers_of_letters_leave_no_renaming() {
-    let [square, triangle] = [support::unit_square(), support::equilateral()].map(|t| language(&t, 5));
+    let [square, triangle] =
+        [support::unit_square(), support::equilateral()].map(|t| language(&t, 5));
     let found = compare_up_to_renaming(&square, &triangle, &Control::new()).unwrap();
     assert_eq!((found.agree_to, found.renaming.clone()), (0, None));
     assert_eq!(found.first_difference(), Some(1));
@@ -238,7 +269,7 @@ fn renamings_are_one_to_one() {
 }
 
 /// Trying the 12! renamings of a regular 12-gon would take years; the search takes a moment, whether they
-/// agree or not. A stretched 12-gon differs at length 3, where 108 more words pass between sides that were parallel.
+/// agree or not. A stretched 12-gon has other words at length 3: in a convex table every two letters are a word.
 #[test]
 fn twelve_sides_take_a_moment() {
     let table = polygon("regular-dodecagon");
