@@ -73,8 +73,8 @@ const RIGHT: f64 = 72.0;
 const TOP: f64 = 74.0;
 /// Columns are at most so far apart.
 const WIDEST_STEP: f64 = 150.0;
-/// Narrowest columns in which notes are shown.
-const NOTE_STEP: f64 = 74.0;
+/// What a column needs beside a box and its note: the gap between them, and some of the edge.
+const NOTE_GAP: f64 = 20.0;
 /// Narrowest canvas: the legend needs it.
 const NARROWEST: f64 = 620.0;
 
@@ -154,7 +154,9 @@ pub(crate) fn compose_tree(tree: &TreeDrawing) -> Result<(Canvas, Point), Figure
     };
     let mut canvas = Canvas::default();
     draw_columns(&mut canvas, &tree.axis, depth, step, bottom);
-    let shows_note = |node: &TreeNode| labelled && step >= NOTE_STEP && !node.note.is_empty();
+    let note_widths = tree.nodes.iter().map(|n| text_width(&n.note, SMALL_TEXT));
+    let notes_fit = step >= 2.0 * HALF[0] + note_widths.fold(0.0, f64::max) + NOTE_GAP;
+    let shows_note = |node: &TreeNode| labelled && notes_fit && !node.note.is_empty();
     for (i, node) in tree.nodes.iter().enumerate() {
         let Some(parent) = node.parent else {
             continue;
