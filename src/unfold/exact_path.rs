@@ -65,6 +65,8 @@ struct FiniteTables {
     powers: Vec<(f64, f64)>,
     scale: Integer,
     next: Vec<u16>,
+    /// After so many crossings, and one image more, no coordinate has left the `i64`.
+    deepest: usize,
     /// Rows of 2d numbers: x coordinates, then y coordinates.
     shift: Vec<i64>,
     image: Vec<i64>,
@@ -91,7 +93,7 @@ struct Scratch {
 }
 
 impl ExactTrail for ExactPath {
-    #[inline]
+    #[inline(always)]
     fn keep(&mut self, crossings: usize) {
         if self.elements.len() > crossings + 1 {
             self.elements.truncate(crossings + 1);
@@ -284,21 +286,26 @@ impl FiniteTables {
                 (value, value.abs() * 2f64.powi(-50))
             })
             .collect();
+        let (shift, image) = (rows(&group.shift)?, rows(&group.image)?);
+        let largest = |row: &[i64]| row.iter().map(|c| c.unsigned_abs()).max().unwrap_or(0);
+        // The start is an image, and so is the end.
+        let room = (i64::MAX as u64).checked_sub(largest(&image).checked_mul(2)?)?;
         Some(FiniteTables {
             k: table.sides(),
             degree,
+            deepest: (room / largest(&shift).max(1)) as usize,
             narrow_below: narrow_bound(&reduction),
             narrow_reduction: narrowed(&reduction),
             reduction,
             powers,
-            shift: rows(&group.shift)?,
-            image: rows(&group.image)?,
+            shift,
+            image,
             next: group.next.clone(),
             scale,
         })
     }
 
-    /// Extends the machine-integer poses to a crossing; `None` on overflow.
+    /// Extends the machine-integer poses to a crossing; `None` when coordinates might not fit.
     fn reach(&self, path: &mut ExactPath, sides: &[SideId], crossings: usize) -> Option<()> {
         let row = path.row;
         if path.elements.is_empty() {
@@ -312,15 +319,15 @@ impl FiniteTables {
                 None => path.translations.extend(std::iter::repeat_n(0, row)),
             }
         }
-        while path.elements.len() <= crossings {
-            let here = path.elements.len() - 1;
+        if crossings > self.deepest {
+            return None;
+        }
+        for here in path.elements.len() - 1..crossings {
             let at = path.elements[here] as usize * self.k + sides[here].0 as usize;
-            for c in 0..row {
-                let sum = path.translations[here * row + c].checked_add(self.shift[at * row + c]);
-                let Some(sum) = sum else {
-                    path.translations.truncate((here + 1) * row);
-                    return None;
-                };
+            let shift = &self.shift[at * row..(at + 1) * row];
+            let from = here * row;
+            for (c, step) in shift.iter().enumerate() {
+                let sum = path.translations[from + c] + step;
                 path.translations.push(sum);
             }
             path.elements.push(self.next[at]);
