@@ -57,3 +57,26 @@ fn far_counts_leap_and_ask_less() {
         );
     }
 }
+
+#[test]
+fn threads_and_arithmetic_change_no_count_of_leaps() {
+    for name in ["equilateral", "right-isosceles", "heptagonal-triangle"] {
+        let path = format!("{}/polygons/{name}.toml", env!("CARGO_MANIFEST_DIR"));
+        let table = load(Path::new(&path)).expect("a table of the shelf").table;
+        let (mesh, control) = (Mesh::new(&table), Control::new());
+        let counted = |threads: usize, arithmetic: Arithmetic| {
+            let engine = AnyEngine::new(&table, 90, arithmetic);
+            let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build();
+            let pool = pool.expect("threads");
+            pool.install(|| count(&engine, &mesh, 90, &control).expect("not stopped"))
+        };
+        let (expected, tiers) = counted(1, Arithmetic::Tiered);
+        for threads in [2, 7] {
+            assert_eq!(
+                counted(threads, Arithmetic::Tiered),
+                (expected.clone(), tiers)
+            );
+        }
+        assert_eq!(counted(2, Arithmetic::BigOnly).0, expected, "{name}");
+    }
+}

@@ -12,6 +12,7 @@ use super::leaps;
 use crate::number::Tiers;
 use crate::run::checkpoint::{Ledger, Unkept};
 use crate::run::control::STEPS_PER_TICK;
+use crate::run::parts::{self, Kept};
 use crate::run::{Control, Stopped};
 use crate::table::{CornerId, SideId, Vector};
 use crate::unfold::engine::{AnyEngine, Engine, Leaping, Trail};
@@ -66,7 +67,7 @@ pub fn count(
     count_kept(engine, mesh, most, control, &Unkept)
 }
 
-/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of the other parts alone.
+/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of all parts.
 ///
 /// # Errors
 /// When the control asks to stop.
@@ -186,8 +187,11 @@ fn count_parts<E: Engine>(
     walk: impl Fn(&Seed<E>, &mut Counter) -> Result<Tiers, Stopped> + Sync,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
     let new = || Counter(vec![0; most + 1]);
-    let recall = |part| ledger.recall(part).map(Counter);
-    let keep = |part, counter: &Counter| ledger.keep(part, &counter.0);
+    let recall = |part| {
+        // A checkpoint's version, table and options agree, so the length does too.
+        parts::recall::<Counter>(ledger, part).filter(|(counter, _)| counter.0.len() == most + 1)
+    };
+    let keep = |part, counter: &Counter, tiers| parts::keep(ledger, part, counter, tiers);
     let (counters, tiers) = walk_fans(engine, mesh, most, control, new, (recall, keep), walk)?;
     let mut n = vec![0; most + 1];
     for counter in counters {
@@ -212,7 +216,7 @@ pub fn list(
     control: &Control,
 ) -> Result<(Vec<Diagonal>, Tiers), Stopped> {
     let (lists, tiers) = with_engine!(engine, engine => {
-        let no_ledger = (|_| None, |_, _: &Collector| {});
+        let no_ledger = (|_| None, |_, _: &Collector, _| {});
         let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default, no_ledger, |seed, found| {
             walk_seed(engine, mesh, most, control, seed, found)
         })?;
@@ -226,6 +230,17 @@ pub fn list(
 }
 
 struct Counter(Vec<u64>);
+
+impl Kept for Counter {
+    fn write(&self, out: &mut Vec<u64>) -> bool {
+        out.extend(&self.0);
+        true
+    }
+
+    fn read(numbers: &mut &[u64]) -> Option<Counter> {
+        Some(Counter(std::mem::take(numbers).to_vec()))
+    }
+}
 
 impl<E: Engine> Listener<E> for Counter {
     #[inline(always)]
@@ -275,8 +290,8 @@ fn walk_fans<E: Engine, L: Listener<E>>(
     control: &Control,
     new_listener: impl Fn() -> L + Sync,
     (recall, keep): (
-        impl Fn(usize) -> Option<L> + Sync,
-        impl Fn(usize, &L) + Sync,
+        impl Fn(usize) -> Option<(L, Tiers)> + Sync,
+        impl Fn(usize, &L, Tiers) + Sync,
     ),
     walk: impl Fn(&Seed<E>, &mut L) -> Result<Tiers, Stopped> + Sync,
 ) -> Result<(Vec<L>, Tiers), Stopped> {
@@ -324,12 +339,12 @@ fn walk_fans<E: Engine, L: Listener<E>>(
         .par_iter()
         .enumerate()
         .map(|(part, seed)| {
-            if let Some(listener) = recall(part) {
-                return Ok((listener, Tiers::default()));
+            if let Some(known) = recall(part) {
+                return Ok(known);
             }
             let mut listener = new_listener();
             let tiers = walk(seed, &mut listener)?;
-            keep(part, &listener);
+            keep(part, &listener, tiers);
             Ok((listener, tiers))
         })
         .collect::<Result<_, Stopped>>()?;
