@@ -114,7 +114,7 @@ fn half_equilateral_diagonals(most: usize) -> Vec<u64> {
 fn agrees(table: &Table, sides: u64, diagonals: &[u64], limit: f64) {
     let p = p_from_diagonals(sides, diagonals, FAR);
     // Leading coefficients of the lattice counts: `limit`·n³.
-    let ratio = p[600] as f64 / 600f64.powi(3) / limit;
+    let ratio = p[FAR] as f64 / (FAR as f64).powi(3) / limit;
     assert!((ratio - 1.0).abs() < 0.01, "{}: {ratio}", table.title());
     assert_eq!(p_by_fans(table, FAR), p, "{}", table.title());
 }

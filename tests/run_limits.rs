@@ -72,23 +72,28 @@ fn words_killed_again_and_again_give_the_same_bytes() {
         "--exact-only",
     ];
     let expected = done(&plain);
-    let kept = [&plain[..], &RESUMED].concat();
+    // Into a file: a pipe that nobody reads would fill, and the run would wait to be killed.
+    let kept = [&plain[..], &["--out", "words.csv"], &RESUMED].concat();
     let place = place();
-    let (output, kills) = killed_until_done(&place, &kept);
-    assert_eq!(text(&output.stdout), expected);
+    let same = || {
+        let found = fs::read(place.path().join("words.csv")).expect("a file");
+        assert!(text(&found) == expected);
+    };
+    let (_, kills) = killed_until_done(&place, &kept);
     assert!(kills >= 3, "{kills} kills");
+    same();
     let again = run_in(
         &place,
         &[&kept[..], &["--stats", "--threads", "3"]].concat(),
     );
-    assert_eq!(text(&again.stdout), expected);
+    same();
     let told = text(&again.stderr);
     assert!(told.contains("parts from the checkpoint"), "{told}");
     assert!(told.contains("13 bytes a word"), "{told}");
     damage(&place);
     let mended = run_in(&place, &kept);
     assert!(text(&mended.stderr).contains("2 lines of the checkpoint are torn or altered"));
-    assert_eq!(text(&mended.stdout), expected);
+    same();
 }
 
 #[test]
@@ -102,10 +107,6 @@ fn a_study_killed_again_and_again_gives_the_same_bytes() {
     let kept = [&at("found")[..], &RESUMED].concat();
     let (_, kills) = killed_until_done(&place, &kept);
     assert!(kills >= 3, "{kills} kills");
-    assert_eq!(
-        entries(place.path()).iter().filter(|p| p.is_dir()).count(),
-        2
-    );
     let same = || {
         let found = contents(&place.path().join("found"));
         assert_eq!(found.len(), expected.len());
