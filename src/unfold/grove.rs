@@ -9,7 +9,7 @@
 //! The trees are those of unmirrored copies; in a mirrored copy left and right change places. They hold positions as
 //! seen from the copy at the root, so one grove serves all linear parts: see [`Leaping`].
 //!
-//! Memory: about 60 bytes for each word of the length m. Cost of growing: Σ p(n), n ≤ m, steps of beams.
+//! Memory: about 130 bytes for each word of the length m. Cost of growing: Σ p(n), n ≤ m, steps of beams.
 
 use super::beam::{self, Meeting};
 use super::engine::{Engine, Leaping, Trail};
