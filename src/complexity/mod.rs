@@ -11,6 +11,6 @@ pub mod by_distance;
 pub mod counts;
 pub mod diagonals;
 pub mod growth;
+mod leaps;
 pub mod special_tree;
 pub mod with_code;
-mod leaps;

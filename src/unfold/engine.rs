@@ -203,7 +203,7 @@ pub enum Arithmetic {
 #[derive(Debug)]
 pub enum AnyEngine {
     /// Finite group over the rationals, if need be in a frame.
-    Lattice(Framed<Lattice>),
+    Lattice(Box<Framed<Lattice>>),
     /// Everything else.
     Filtered(Box<Framed<Filtered>>),
 }
@@ -213,7 +213,10 @@ pub enum AnyEngine {
 macro_rules! with_engine {
     ($any:expr, $engine:ident => $body:expr) => {
         match $any {
-            $crate::unfold::engine::AnyEngine::Lattice($engine) => $body,
+            $crate::unfold::engine::AnyEngine::Lattice($engine) => {
+                let $engine = &**$engine;
+                $body
+            }
             $crate::unfold::engine::AnyEngine::Filtered($engine) => {
                 let $engine = &**$engine;
                 $body
@@ -251,7 +254,7 @@ impl AnyEngine {
         if let Some(group) = &group
             && let Some(lattice) = Lattice::new(table, group, deepest)
         {
-            return AnyEngine::Lattice(Framed::new(lattice, frame));
+            return AnyEngine::Lattice(Box::new(Framed::new(lattice, frame)));
         }
         let engine = Filtered::new(table, group.as_ref(), deepest);
         AnyEngine::Filtered(Box::new(Framed::new(engine, frame)))

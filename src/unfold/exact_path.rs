@@ -322,7 +322,8 @@ impl FiniteTables {
         if crossings > self.deepest {
             return None;
         }
-        for here in path.elements.len() - 1..crossings {
+        while path.elements.len() <= crossings {
+            let here = path.elements.len() - 1;
             let at = path.elements[here] as usize * self.k + sides[here].0 as usize;
             let shift = &self.shift[at * row..(at + 1) * row];
             let from = here * row;

@@ -340,7 +340,7 @@ mod tests {
             let mesh = Mesh::new(&table);
             match AnyEngine::new(&table, 20, Arithmetic::Tiered) {
                 AnyEngine::Lattice(engine) => {
-                    check(&engine, &mesh, |a, b| if a == b { 0.0 } else { 1.0 });
+                    check(&*engine, &mesh, |a, b| if a == b { 0.0 } else { 1.0 });
                 }
                 AnyEngine::Filtered(engine) if engine.can_leap() => {
                     check(&*engine, &mesh, |a, b| {

@@ -92,7 +92,7 @@ fn matrices(group: &FiniteGroup, form: &Real) -> Option<(Vec<[[i64; 2]; 2]>, i64
     let entries: Vec<[Rational; 4]> = (group.rotation.iter().zip(&group.mirrored))
         .map(|(w, mirrored)| {
             let (x, y) = (w.x.to_rational()?, w.y.to_rational()?);
-            let form_y = Rational::from(&y * form.to_rational()?);
+            let form_y = &y * form.to_rational()?;
             // (x + y·√−g)(u + v·√−g), with −v for v when mirrored.
             Some(match mirrored {
                 false => [x.clone(), -form_y, y, x],
