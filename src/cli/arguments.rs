@@ -143,6 +143,17 @@ impl Limits {
     }
 }
 
+/// Options about keeping the results of finished parts.
+#[derive(Clone, Debug, Args)]
+pub struct Keeping {
+    /// Keep the results of finished parts in this folder
+    #[arg(long, value_name = "DIR")]
+    pub checkpoint: Option<PathBuf>,
+    /// Continue from the checkpoint, if it holds anything
+    #[arg(long, requires = "checkpoint")]
+    pub resume: bool,
+}
+
 fn parse_time(text: &str) -> Result<Duration, String> {
     budget::parse_time(text)
         .ok_or_else(|| "write a number of seconds, or a number with s, m or h, such as 5m".into())
@@ -252,9 +263,18 @@ pub struct StudyOptions {
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
     #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
+    /// Stop after this time and write what is complete, of shorter words: seconds, or with s, m, h, such as 30s, 5m or 2h
+    #[arg(long, value_name = "TIME", value_parser = parse_time)]
+    pub budget_time: Option<Duration>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
     pub budget_memory: Option<u64>,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
+    /// Tell steps, decisions by tier, time and memory on standard error
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
@@ -306,9 +326,18 @@ pub struct WordsOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Stop after this time and write what is complete, of shorter words: seconds, or with s, m, h, such as 30s, 5m or 2h
+    #[arg(long, value_name = "TIME", value_parser = parse_time)]
+    pub budget_time: Option<Duration>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
     pub budget_memory: Option<u64>,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
+    /// Tell steps, decisions by tier, time and memory on standard error
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
@@ -340,12 +369,9 @@ pub struct ComplexityOptions {
     /// Budget.
     #[command(flatten)]
     pub limits: Limits,
-    /// Keep the results of finished parts in this folder
-    #[arg(long, value_name = "DIR")]
-    pub checkpoint: Option<PathBuf>,
-    /// Continue from the checkpoint, if it holds anything
-    #[arg(long, requires = "checkpoint")]
-    pub resume: bool,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
     /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
     #[arg(long)]
     pub stats: bool,
@@ -382,6 +408,12 @@ pub struct DiagonalsOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Budget.
+    #[command(flatten)]
+    pub limits: Limits,
+    /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
@@ -410,6 +442,12 @@ pub struct GraphOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Budget.
+    #[command(flatten)]
+    pub limits: Limits,
+    /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,

@@ -9,6 +9,7 @@
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
 //! - [`word_arguments`]: options of the commands about single words and certificates.
 //! - `stats`: what a run took.
+//! - `work`: limits, stages and checkpoints of long commands.
 //! - one module for each command.
 
 pub mod analysis_arguments;
@@ -41,6 +42,7 @@ pub mod word_arguments;
 mod word_picture;
 mod word_record;
 mod words;
+mod work;
 
 use arguments::{Arguments, Command, Common};
 use clap::Parser;

@@ -3,12 +3,20 @@
 use super::arguments::{SHORTEST_STUDY, StudyOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
-use super::progress::{Progress, interruptible_control};
+use super::work::{Work, options_line, time_only};
+use crate::language::tree::BYTES_PER_WORD;
+use crate::language::walk::GrowthFault;
 use crate::run::files::ResultFolder;
+use crate::run::{Control, StopReason, Stopped};
 use crate::study::folder::{Extras, MARK, write};
-use crate::study::results::{Request, Results, Stage, compute};
+use crate::study::results::{
+    DEFAULT_LENGTH, Request, Results, Stage, StudyFault, compute_kept, default_length,
+};
+use crate::table::Table;
+use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 use std::path::{Path, PathBuf};
+use std::time::Instant;
 
 pub fn run(options: &StudyOptions) -> Result<(), Fault> {
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
@@ -26,6 +34,9 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
             order + 1
         )));
     }
+    let quiet = options.common.quiet;
+    let mut work = Work::begin(time_only(options.budget_time), quiet)?;
+    work.open(&options.keeping, &loaded, &checkpoint_line(options), quiet)?;
     let request = Request {
         length: options.length.or(options
             .graph_order
@@ -34,31 +45,149 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         arithmetic: options.exactness.arithmetic(),
         memory: options.budget_memory,
     };
-    let control = interruptible_control();
-    let progress = Progress::new(&control, options.common.quiet);
-    let results = compute(&loaded.table, &request, &control, |stage| {
+    let mut done = None;
+    let mut stopped = false;
+    for request in requests(&request, &work, &loaded.table)? {
+        match stage(&mut work, &loaded.table, &request) {
+            Ok(results) => done = Some(results),
+            Err(StudyFault::Stopped(_) | StudyFault::Growth(GrowthFault::Stopped(_))) => {
+                stopped = true;
+                break;
+            }
+            Err(fault) => return Err(fault.into()),
+        }
+    }
+    let Some(results) = done else {
+        return Err(work.stopped(None));
+    };
+    work.progress.begin("writing", None);
+    let command = command(options, &results);
+    let mut notices = loaded.notices.clone();
+    // The order asked for may be beyond a shorter study.
+    let graph_order = options.graph_order.filter(|order| *order < results.length);
+    if stopped {
+        notices.push(format!(
+            "the work was stopped before it was complete: this is the study of the words up to length {}",
+            results.length
+        ));
+    }
+    let extras = Extras {
+        table_file: &loaded.text,
+        notices: &notices,
+        parameters: &loaded.parameters,
+        bases: &loaded.bases,
+        command: &command,
+        graph_order,
+        arithmetic: request.arithmetic,
+        stop: match work.control.reason() {
+            _ if !stopped => "complete",
+            Some(StopReason::Time) => "time",
+            Some(StopReason::Memory) => "memory",
+            Some(StopReason::Signal) | None => "signal",
+        },
+    };
+    work.unwatch();
+    // A limit that was reached does not keep what is complete from being written; a signal while it is written does.
+    let fresh = Control::new();
+    let writing = match work.control.reason() {
+        Some(reason) if stopped || reason == StopReason::Time => &fresh,
+        _ => &*work.control,
+    };
+    write(&results, &extras, &out, writing)?;
+    work.stats.bytes_per_word = Some(BYTES_PER_WORD);
+    work.end(&AnyEngine::new(&loaded.table, 1, request.arithmetic));
+    if options.stats {
+        work.stats.tell();
+    }
+    emit(None, |to| summary(&results, &out, to))?;
+    let what = match request.length {
+        Some(length) => format!(" of {length}"),
+        None => String::new(),
+    };
+    match stopped {
+        true => Err(work.stopped(Some(format!(
+            "the study is complete to n = {}{what}",
+            results.length
+        )))),
+        false => Ok(()),
+    }
+}
+
+/// The studies to make one after another; only the last of them is written. Without a limit of time there is one.
+fn requests(last: &Request, work: &Work, table: &Table) -> Result<Vec<Request>, Fault> {
+    if work.is_unlimited() {
+        return Ok(vec![*last]);
+    }
+    let longest = match last.length {
+        Some(length) => length,
+        None => match default_length(table, last.arithmetic, &work.control) {
+            Ok(length) => length,
+            Err(Stopped) => return Err(work.stopped(None)),
+        },
+    };
+    let mut lengths = work.lengths(longest);
+    lengths.pop();
+    let mut requests: Vec<Request> = lengths
+        .into_iter()
+        .map(|length| Request {
+            length: Some(length),
+            ..*last
+        })
+        .collect();
+    requests.push(*last);
+    Ok(requests)
+}
+
+/// One study, its walks told to the progress and to the stats.
+fn stage(work: &mut Work, table: &Table, request: &Request) -> Result<Results, StudyFault> {
+    let Work {
+        control,
+        progress,
+        stats,
+        checkpoint,
+        ..
+    } = work;
+    let mut walks = Vec::new();
+    let results = compute_kept(table, request, control, checkpoint.as_ref(), |stage| {
         let (name, steps) = match stage {
-            Stage::Fans => ("generalized diagonals", None),
+            Stage::Fans => ("diagonals", None),
             Stage::Beams { words } => ("language", Some(words)),
             Stage::Measures { words } => ("measures", Some(words)),
             Stage::Graphs => ("factor graphs", None),
         };
         progress.begin(name, steps);
-    })?;
-    progress.begin("writing", None);
-    let command = command(options, &results);
-    let extras = Extras {
-        table_file: &loaded.text,
-        notices: &loaded.notices,
-        parameters: &loaded.parameters,
-        bases: &loaded.bases,
-        command: &command,
-        graph_order: options.graph_order,
-        arithmetic: request.arithmetic,
-    };
-    write(&results, &extras, &out, &control)?;
-    drop(progress);
-    emit(None, |to| summary(&results, &out, to))
+        walks.push((Instant::now(), control.done(), name));
+    });
+    let done = results.as_ref().ok();
+    let mut until = (Instant::now(), control.done());
+    let mut told = Vec::new();
+    for (at, steps, name) in walks.into_iter().rev() {
+        let tiers = done.and_then(|results| match name {
+            "diagonals" => Some(results.tiers.fans),
+            "language" => Some(results.tiers.beams),
+            "measures" => Some(results.measures.tiers),
+            _ => None,
+        });
+        told.push((name, until.0 - at, until.1 - steps, tiers));
+        until = (at, steps);
+    }
+    let length = done.map(|results| results.length).or(request.length);
+    for (name, time, steps, tiers) in told.into_iter().rev() {
+        stats.add(name, length.unwrap_or(DEFAULT_LENGTH), time, steps, tiers);
+    }
+    results
+}
+
+/// The options that the parts depend on.
+fn checkpoint_line(options: &StudyOptions) -> String {
+    let mut asked = "study".to_string();
+    if let Some(length) = options.length {
+        asked += &format!(" --length {length}");
+    }
+    if let Some(order) = options.graph_order {
+        asked += &format!(" --graph-order {order}");
+    }
+    options_line(&asked, &options.settings.set, options.exactness.exact_only)
 }
 
 /// The command that reproduces the study, without folders and threads.

@@ -17,7 +17,7 @@
 //! one letter a level is one bundle.
 
 use super::tree::WordId;
-use super::walk::{Part, SUBTREES, Visit, Visitor, sides_by_letter};
+use super::walk::{Part, SUBTREES, Visit, Visitor, joined, sides_by_letter, walk_seeds};
 use crate::number::Tiers;
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
@@ -25,7 +25,6 @@ use crate::table::{LetterId, SideId};
 use crate::unfold::Mesh;
 use crate::unfold::beam::{self, Front, Spread};
 use crate::unfold::engine::{Engine, Trail};
-use rayon::prelude::*;
 
 /// One beam of a word.
 struct Strand<E: Engine> {
@@ -297,8 +296,8 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
     (recall, keep): (
-        impl Fn(usize) -> Option<V> + Sync,
-        impl Fn(usize, &V) + Sync,
+        impl Fn(usize) -> Option<(V, Tiers)> + Sync,
+        impl Fn(usize, &V, Tiers) + Sync,
     ),
 ) -> Result<(Vec<V>, Tiers), Stopped> {
     let mut tiers = Tiers::default();
@@ -306,28 +305,15 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     if longest == 0 {
         return Ok((vec![head], tiers));
     }
-    let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
-    let mut visitors = vec![head];
-    if split < longest {
-        let walked = seeds
-            .par_iter()
-            .enumerate()
-            .map(|(part, seed)| {
-                if let Some(visitor) = recall(part) {
-                    return Ok((visitor, Tiers::default()));
-                }
-                let mut visitor = new_visitor(Part::Subtree);
-                let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
-                keep(part, &visitor);
-                Ok((visitor, tiers))
-            })
-            .collect::<Result<Vec<(V, Tiers)>, Stopped>>()?;
-        for (visitor, part) in walked {
-            tiers.absorb(part);
-            visitors.push(visitor);
-        }
+    let (mut seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
+    if split >= longest {
+        seeds.clear();
     }
-    Ok((visitors, tiers))
+    let walk = |seed: &Seed<E>, visitor: &mut V| {
+        walk_subtree(engine, mesh, longest, control, seed, visitor)
+    };
+    let subtrees = walk_seeds(&seeds, &new_visitor, walk, (recall, keep))?;
+    Ok(joined(head, tiers, subtrees))
 }
 
 /// Follows all words level by level until there are enough. Returns them with their length.

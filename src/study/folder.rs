@@ -50,6 +50,8 @@ pub struct Extras<'a> {
     pub graph_order: Option<usize>,
     /// Which tiers may decide.
     pub arithmetic: Arithmetic,
+    /// Why the study is not longer: `complete`, or `time`, `memory` or `signal` when it was stopped.
+    pub stop: &'static str,
 }
 
 /// Why a study's folder was not written.
@@ -114,7 +116,7 @@ pub fn write(
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
         parameters: extras.parameters.to_vec(),
     };
-    let record = record(results, extras.table_file, options, extras.bases);
+    let record = record(results, extras, options);
     folder.write("report.html", |out| {
         let page = report(results, &record, &drawn, &listed, extras);
         out.write_all(page.as_bytes())

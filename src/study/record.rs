@@ -2,6 +2,7 @@
 //!
 //! The record has no times and no paths, so the same input gives the same bytes.
 
+use super::folder::Extras;
 use super::results::{Results, StageTiers};
 use super::statement::Statement;
 use crate::complexity::growth::CubicRange;
@@ -10,7 +11,7 @@ use crate::factor_graph::criterion::LineFigures;
 use crate::factor_graph::export::spell;
 use crate::language::WordId;
 use crate::number::Enclosure;
-use crate::table::file::{BaseFile, Parameter};
+use crate::table::file::Parameter;
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
 
@@ -170,21 +171,18 @@ pub fn width(value: &Enclosure) -> String {
 }
 
 /// Gathers the record of a study.
-pub fn record<'a>(
-    results: &'a Results,
-    table_file: &'a str,
-    options: Options,
-    bases: &'a [BaseFile],
-) -> Record<'a> {
+pub fn record<'a>(results: &'a Results, extras: &Extras<'a>, options: Options) -> Record<'a> {
     let n = results.shown_length;
     Record {
         schema: SCHEMA,
         program: Program::this(),
         options,
-        table_file,
-        base_files: bases.iter().map(|base| base.text.as_str()).collect(),
+        table_file: extras.table_file,
+        base_files: (extras.bases.iter())
+            .map(|base| base.text.as_str())
+            .collect(),
         table: summary(&results.table, &results.facts),
-        stop: "complete",
+        stop: extras.stop,
         complexity: Complexity {
             p: &results.counts.p,
             first_difference: &results.counts.first_difference,
