@@ -1,6 +1,6 @@
 //! `reboundary words`.
 
-use super::arguments::{Format, WordsOptions};
+use super::arguments::{WordsFormat, WordsOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
 use super::progress::{Progress, interruptible_control};
@@ -16,6 +16,9 @@ use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 
 pub fn run(options: &WordsOptions) -> Result<(), Fault> {
+    if options.format == WordsFormat::Stored {
+        return super::store::run(options);
+    }
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
     let (mesh, length) = (Mesh::new(table), options.length);
@@ -28,7 +31,7 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
     progress.begin("language", Some(words));
     let (language, _) = walk::grow(&engine, &mesh, length, &control)?;
     let measures = match options.format {
-        Format::Text => Vec::new(),
+        WordsFormat::Text => Vec::new(),
         _ => {
             progress.begin("measures", Some(words));
             measure::measure(table, &engine, &mesh, length, length, &control)?.kept
@@ -36,9 +39,9 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
     };
     drop(progress);
     emit(options.out.as_deref(), |out| match options.format {
-        Format::Text => write_text(table, &language, out),
-        Format::Csv => write_csv(table, &language, &measures, out),
-        Format::Json => write_json_lines(table, &language, &measures, out),
+        WordsFormat::Text | WordsFormat::Stored => write_text(table, &language, out),
+        WordsFormat::Csv => write_csv(table, &language, &measures, out),
+        WordsFormat::Json => write_json_lines(table, &language, &measures, out),
     })
 }
 
