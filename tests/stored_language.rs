@@ -541,3 +541,45 @@ fn altered_and_torn_files_are_refused() {
         Err(StoreFault::NotStored { .. })
     ));
 }
+
+/// A file that was altered and given the right sum is no accident; what can be checked still is.
+#[test]
+fn parts_that_do_not_fit_each_other_are_refused() {
+    let (_folder, path) = place();
+    stored(&table("right-isosceles"), 6, 2, &path);
+    let whole = std::fs::read(&path).expect("written");
+    let end = whole.len();
+    let size = |bytes: &[u8]| u64::from_le_bytes(bytes.try_into().expect("eight")) as usize;
+    let graph_end = 16 + size(&whole[end - 32..end - 24]);
+    let refused = |alter: &dyn Fn(&mut Vec<u8>)| {
+        let mut altered = whole.clone();
+        alter(&mut altered);
+        let sum = crc32fast::hash(&altered[..altered.len() - 8]);
+        let at = altered.len() - 8;
+        altered[at..at + 4].copy_from_slice(&sum.to_le_bytes());
+        let (_folder, path) = place();
+        std::fs::write(&path, altered).expect("written");
+        open(&path).map(|language| language.bytes())
+    };
+    assert_eq!(refused(&|_| ()).expect("unaltered"), end as u64);
+    for alter in [
+        // The last target, the number of states, the letter of the first arc, the first arc of a state.
+        &(|bytes: &mut Vec<u8>| bytes[graph_end - 1] = 255) as &dyn Fn(&mut Vec<u8>),
+        &|bytes| bytes[20] += 1,
+        &|bytes| bytes[28] = 1,
+        // The root of the automaton and its number of words; the brace of the description; sizes of the parts.
+        &|bytes| {
+            let json = end - 32 - size(&bytes[end - 16..end - 8]);
+            bytes[json - 20] ^= 1;
+        },
+        &|bytes| {
+            let json = end - 32 - size(&bytes[end - 16..end - 8]);
+            bytes[json] = b'[';
+        },
+        &|bytes| bytes[end - 32] += 1,
+        &|bytes| bytes[end - 17] = 255,
+    ] {
+        let fault = refused(alter).expect_err("altered");
+        assert!(matches!(fault, StoreFault::Damaged { .. }), "{fault}");
+    }
+}
