@@ -1,6 +1,7 @@
 //! Commands and options.
 
 use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions};
+use super::ask_arguments::AskOptions;
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::run::budget::{self, Budget};
@@ -31,6 +32,8 @@ pub enum Command {
     Table(TableOptions),
     /// All words of one length, one a line
     Words(WordsOptions),
+    /// Questions to a stored language: words, continuations, counts, patterns, special words
+    Ask(AskOptions),
     /// The complexity p(n) and its differences, by one route or by both
     Complexity(ComplexityOptions),
     /// Generalized diagonals with ends, code and exact displacement
@@ -70,6 +73,7 @@ impl Command {
             Command::Certify(options) => Some(&options.file),
             Command::Table(options) => options.out.as_deref(),
             Command::Words(options) => options.out.as_deref(),
+            Command::Ask(options) => options.out.as_deref(),
             Command::Complexity(options) => options.out.as_deref(),
             Command::Diagonals(options) => options.out.as_deref(),
             Command::Graph(options) => options.out.as_deref(),
@@ -320,9 +324,9 @@ pub struct WordsOptions {
     /// Length of the words
     #[arg(long, value_name = "N", value_parser = parse_length)]
     pub length: usize,
-    /// Text: one word a line; CSV and JSON add the certified measure of each word
+    /// How the words are written
     #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
+    pub format: WordsFormat,
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
@@ -344,6 +348,20 @@ pub struct WordsOptions {
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Formats of `words`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum WordsFormat {
+    /// One word a line
+    #[default]
+    Text,
+    /// One JSON object a line: the word and its certified measure
+    Json,
+    /// The words with their certified measures
+    Csv,
+    /// All words up to this length in one file for `ask`; needs --out
+    Stored,
 }
 
 /// `complexity`.

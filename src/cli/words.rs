@@ -1,6 +1,6 @@
 //! `reboundary words`.
 
-use super::arguments::{Format, WordsOptions};
+use super::arguments::{WordsFormat, WordsOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
 use super::work::{Work, options_line, time_only};
@@ -21,12 +21,15 @@ use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 
 pub fn run(options: &WordsOptions) -> Result<(), Fault> {
+    if options.format == WordsFormat::Stored {
+        return super::store::run(options);
+    }
     let quiet = options.common.quiet;
     let mut work = Work::begin(time_only(options.budget_time), quiet)?;
     let loaded = read_table(&options.table, &options.settings, quiet)?;
     let table = &loaded.table;
     let mesh = Mesh::new(table);
-    let measured = options.format != Format::Text;
+    let measured = options.format != WordsFormat::Text;
     let asked = format!("words --length {}", options.length);
     let line = options_line(&asked, &options.settings.set, options.exactness.exact_only);
     work.open(&options.keeping, &loaded, &line, quiet)?;
@@ -57,9 +60,9 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
     }
     if let Some((language, measures)) = &done {
         emit(options.out.as_deref(), |out| match options.format {
-            Format::Text => write_text(table, language, out),
-            Format::Csv => write_csv(table, language, measures, out),
-            Format::Json => write_json_lines(table, language, measures, out),
+            WordsFormat::Text | WordsFormat::Stored => write_text(table, language, out),
+            WordsFormat::Csv => write_csv(table, language, measures, out),
+            WordsFormat::Json => write_json_lines(table, language, measures, out),
         })?;
     }
     let what = |(language, _): (Language, _)| {

@@ -56,9 +56,18 @@ impl<E: Engine> Bundle<E> {
 }
 
 /// A bundle that can be followed on its own: with the sides crossed by each of its beams.
-struct Seed<E: Engine> {
+pub(super) struct Seed<E: Engine> {
     bundle: Bundle<E>,
     paths: Vec<Vec<SideId>>,
+}
+
+impl<E: Engine> Seed<E> {
+    /// The letters of its word, those of any of its beams.
+    pub(super) fn word(&self, mesh: &Mesh) -> Vec<u8> {
+        let start = self.bundle.strands[0].start;
+        let sides = [start].into_iter().chain(self.paths[0].iter().copied());
+        sides.map(|side| mesh.letter(side).0).collect()
+    }
 }
 
 /// Lanes with trails of their own; more beams than that share them.
@@ -305,7 +314,7 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     if longest == 0 {
         return Ok((vec![head], tiers));
     }
-    let (mut seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
+    let (mut seeds, split) = divide(engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers)?;
     if split >= longest {
         seeds.clear();
     }
@@ -317,10 +326,11 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
 }
 
 /// Follows all words level by level until there are enough. Returns them with their length.
-fn divide<E: Engine, V: Visitor<E>>(
+pub(super) fn divide<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
+    enough: usize,
     control: &Control,
     visitor: &mut V,
     tiers: &mut Tiers,
@@ -338,7 +348,7 @@ fn divide<E: Engine, V: Visitor<E>>(
     let mut length = 1;
     let mut out = Spread::default();
     // One bundle alone may have very many beams, and then there is nothing to divide.
-    while length < longest && seeds.len() < SUBTREES && length < MOST_LEVELS {
+    while length < longest && seeds.len() < enough && length < MOST_LEVELS {
         let mut next = Vec::new();
         for (parent, seed) in (0..).zip(&seeds) {
             control.tick(seed.bundle.strands.len() as u64)?;
@@ -380,7 +390,8 @@ fn renumbered<E: Engine>(mut bundle: Bundle<E>) -> Bundle<E> {
     bundle
 }
 
-fn walk_subtree<E: Engine, V: Visitor<E>>(
+/// Walks the words below a seed, depth first.
+pub(super) fn walk_subtree<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,

@@ -66,11 +66,19 @@ pub enum Part {
 }
 
 /// A beam with everything it needs to be followed on its own.
-struct Seed<E: Engine> {
+pub(super) struct Seed<E: Engine> {
     start: SideId,
     path: Vec<SideId>,
     front: Front<E>,
     cell: Vec<E::Point>,
+}
+
+impl<E: Engine> Seed<E> {
+    /// The letters of its word.
+    pub(super) fn word(&self, mesh: &Mesh) -> Vec<u8> {
+        let sides = [self.start].into_iter().chain(self.path.iter().copied());
+        sides.map(|side| mesh.letter(side).0).collect()
+    }
 }
 
 /// Subtrees to aim for when the work is divided.
@@ -117,7 +125,7 @@ fn walk_kept<E: Engine, V: Visitor<E>>(
     }
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
-    let (mut seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
+    let (mut seeds, split) = divide(engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers)?;
     if split >= longest {
         seeds.clear();
     }
@@ -183,10 +191,11 @@ pub(super) fn sides_by_letter(mesh: &Mesh) -> Vec<SideId> {
 
 /// Follows all beams level by level until there are enough, showing them to the visitor. Returns them with
 /// their word length.
-fn divide<E: Engine, V: Visitor<E>>(
+pub(super) fn divide<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
+    enough: usize,
     control: &Control,
     visitor: &mut V,
     tiers: &mut Tiers,
@@ -221,7 +230,7 @@ fn divide<E: Engine, V: Visitor<E>>(
         });
     }
     let mut out = Spread::default();
-    while length < longest && seeds.len() < SUBTREES {
+    while length < longest && seeds.len() < enough {
         control.tick(seeds.len() as u64)?;
         let mut longer = Vec::new();
         for (parent, seed) in (0..).zip(&seeds) {
@@ -278,7 +287,8 @@ struct Waiting<E: Engine> {
     cut: bool,
 }
 
-fn walk_subtree<E: Engine, V: Visitor<E>>(
+/// Walks the words below a seed, depth first.
+pub(super) fn walk_subtree<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
