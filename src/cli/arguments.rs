@@ -1,5 +1,6 @@
 //! Commands and options.
 
+use super::language_source::LanguageSource;
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
@@ -374,14 +375,15 @@ pub struct DiagonalsOptions {
 /// `graph`.
 #[derive(Debug, Args)]
 pub struct GraphOptions {
-    /// The table file
-    pub table: PathBuf,
+    /// The language.
+    #[command(flatten)]
+    pub source: LanguageSource,
     /// Parameters.
     #[command(flatten)]
     pub settings: Settings,
-    /// Largest order n of the factor graphs
-    #[arg(long, value_name = "N", default_value_t = 30, value_parser = parse_positive_length)]
-    pub length: usize,
+    #[doc = "Largest order n of the factor graphs [default: 30, or as far as the words of a file reach]"]
+    #[arg(long, value_name = "N", value_parser = parse_positive_length)]
+    pub length: Option<usize>,
     /// Largest radius of the ball census
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,

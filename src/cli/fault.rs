@@ -1,6 +1,7 @@
 //! What can go wrong, and the exit code that says so.
 
 use crate::language::walk::GrowthFault;
+use crate::reference::file::ReferenceFileError;
 use crate::run::Stopped;
 use crate::run::checkpoint::CheckpointFault;
 use crate::run::files::OutputFault;
@@ -60,6 +61,15 @@ impl From<TableFileError> for Fault {
     fn from(error: TableFileError) -> Fault {
         match error {
             TableFileError::Fault(diagnostic) => Fault::BadText(diagnostic),
+            other => Fault::BadInput(other.to_string()),
+        }
+    }
+}
+
+impl From<ReferenceFileError> for Fault {
+    fn from(error: ReferenceFileError) -> Fault {
+        match error {
+            ReferenceFileError::Fault(diagnostic) => Fault::BadText(diagnostic),
             other => Fault::BadInput(other.to_string()),
         }
     }

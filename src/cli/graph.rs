@@ -2,14 +2,12 @@
 
 use super::arguments::{GraphFormat, GraphOptions};
 use super::fault::Fault;
-use super::output::{emit, read_table, write_columns, write_json};
+use super::language_source::{self, Completeness, Loaded};
+use super::output::{emit, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
 use crate::factor_graph::census::{GraphCounts, count_graphs};
 use crate::factor_graph::criterion::{LineFigures, line_figures};
 use crate::factor_graph::export::write_graphml;
-use crate::language::walk;
-use crate::unfold::Mesh;
-use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
 use std::io::{self, Write};
 
@@ -50,39 +48,48 @@ impl Order<'_> {
 struct GraphRecord<'a> {
     schema: &'static str,
     title: String,
+    source: &'a Completeness,
     length: usize,
     radii: usize,
     orders: Vec<Order<'a>>,
 }
 
 pub fn run(options: &GraphOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
-    let table = &loaded.table;
-    let (mesh, length) = (Mesh::new(table), options.length);
-    let engine = AnyEngine::new(table, length + 1, options.exactness.arithmetic());
     let control = interruptible_control();
-    let progress = Progress::new(&control, options.common.quiet);
-    progress.begin("language", None);
-    let (language, _) = walk::grow(&engine, &mesh, length + 1, &control)?;
+    let quiet = options.common.quiet;
+    let progress = Progress::new(&control, quiet);
+    let loaded = language_source::load(
+        &options.source,
+        &options.settings,
+        options.exactness,
+        options.length,
+        quiet,
+        &control,
+        &progress,
+    )?;
+    let (language, letters) = (&loaded.language, &loaded.letters);
+    let length = language.longest() - 1;
     progress.begin("factor graphs", None);
-    let graphs = count_graphs(&language, 1, options.radii);
+    let graphs = count_graphs(language, 1, options.radii);
     drop(progress);
     emit(options.out.as_deref(), |out| match options.format {
         GraphFormat::Text => {
-            writeln!(out, "{}", table.title())?;
+            writeln!(out, "{}", loaded.title)?;
+            write_standing(&loaded, out)?;
             let (header, rows) = rows(&graphs, options.radii);
             let header: Vec<&str> = header.iter().map(String::as_str).collect();
             write_columns(out, &header, &rows)
         }
         GraphFormat::Csv => write_csv(&graphs, options.radii, out),
-        GraphFormat::Graphml => write_graphml(&language, length, table.letters(), out),
+        GraphFormat::Graphml => write_graphml(language, length, letters, out),
         GraphFormat::Json => {
             let orders = graphs.iter().map(Order::new);
             write_json(
                 out,
                 &GraphRecord {
                     schema: "reboundary-graph/1",
-                    title: table.title().into(),
+                    title: loaded.title.clone(),
+                    source: &loaded.completeness,
                     length,
                     radii: options.radii,
                     orders: orders.collect(),
@@ -90,6 +97,24 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
             )
         }
     })
+}
+
+/// What a reader must know about the counts below.
+fn write_standing(loaded: &Loaded, out: &mut dyn Write) -> io::Result<()> {
+    let standing = &loaded.completeness;
+    if let Some(trusted) = standing.trusted_to {
+        writeln!(
+            out,
+            "lower bounds: the factors of a finite text; up to length {trusted} every word was seen in both halves of it"
+        )?;
+    }
+    if !standing.bi_extendable {
+        writeln!(
+            out,
+            "some words have no extension on one side: the bound (6r-4) s(n)/p(n) does not apply"
+        )?;
+    }
+    Ok(())
 }
 
 fn rows(graphs: &[GraphCounts], radii: usize) -> (Vec<String>, Vec<Vec<String>>) {

@@ -2,6 +2,7 @@
 //!
 //! - [`arguments`]: commands and options.
 //! - [`fault`]: what can go wrong, and the exit code of each.
+//! - [`language_source`]: tables, files of words, reference files.
 //! - [`launch`]: starts and aims.
 //! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
@@ -15,6 +16,7 @@ mod diagonals;
 mod direction;
 pub mod fault;
 mod graph;
+pub mod language_source;
 pub mod launch;
 pub mod orbit_arguments;
 mod orbit_picture;

@@ -44,17 +44,18 @@ struct Definition {
 
 /// All definitions of a file, settings applied.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Names(Vec<Definition>);
+pub(crate) struct Names(Vec<Definition>);
 
 const SECTIONS: [&str; 2] = ["define", "parameters"];
-/// Keys whose strings are expressions.
-const NUMERIC: [&str; 8] = [
-    "corners", "triangle", "regular", "outline", "form", "holes", "stretch", "turn",
+/// Keys whose strings are expressions; the last two are those of reference files.
+const NUMERIC: [&str; 10] = [
+    "corners", "triangle", "regular", "outline", "form", "holes", "stretch", "turn", "lengths",
+    "shifts",
 ];
 
 impl Names {
     /// Reads both sections and applies the settings, each of the form `name=expression`.
-    pub(super) fn read(source: Source, document: &DeTable, settings: &[String]) -> Outcome<Names> {
+    pub(crate) fn read(source: Source, document: &DeTable, settings: &[String]) -> Outcome<Names> {
         let mut names = Names::default();
         for section in SECTIONS {
             names.read_section(source, document, section)?;
@@ -92,7 +93,7 @@ impl Names {
                 return source.fault(&key.span(), message, "keep one of the two");
             }
             if self.0.len() == MOST_NAMES {
-                let message = format!("a table file can have at most {MOST_NAMES} names");
+                let message = format!("a file can have at most {MOST_NAMES} names");
                 return source.fault(&key.span(), message, "remove names that are not needed");
             }
             let text = match value.get_ref() {
@@ -143,15 +144,12 @@ impl Names {
             .map(|d| format!("`{}`", d.name))
             .collect();
         let known = if parameters.is_empty() {
-            "the table file has no `[parameters]`".into()
+            "the file has no `[parameters]`".into()
         } else {
-            format!(
-                "the parameters of the table file are {}",
-                parameters.join(", ")
-            )
+            format!("the parameters of the file are {}", parameters.join(", "))
         };
         let Some(definition) = self.0.iter_mut().find(|d| d.name == name) else {
-            let message = format!("the table file has no parameter `{name}`");
+            let message = format!("the file has no parameter `{name}`");
             return Err(in_setting(setting, span, &message, &known));
         };
         if !definition.is_parameter {
@@ -173,7 +171,7 @@ impl Names {
     }
 
     /// What the file calls parameters.
-    pub(super) fn parameters(&self) -> Vec<Parameter> {
+    pub(crate) fn parameters(&self) -> Vec<Parameter> {
         let parameters = self.0.iter().filter(|d| d.is_parameter);
         parameters
             .map(|d| Parameter {
@@ -272,7 +270,7 @@ impl Names {
     }
 
     /// An evaluator in a field that knows the names that the file's numbers use.
-    pub(super) fn evaluator(
+    pub(crate) fn evaluator(
         &self,
         source: Source,
         document: &DeTable,

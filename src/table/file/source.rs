@@ -8,18 +8,18 @@ use std::ops::Range;
 use toml::Spanned;
 use toml::de::DeValue;
 
-pub(super) type Value<'i> = Spanned<DeValue<'i>>;
-pub(super) type Outcome<T> = Result<T, Box<Diagnostic>>;
+pub(crate) type Value<'i> = Spanned<DeValue<'i>>;
+pub(crate) type Outcome<T> = Result<T, Box<Diagnostic>>;
 
 /// The text that spans point into.
 #[derive(Clone, Copy)]
-pub(super) struct Source<'a> {
-    pub(super) file: &'a str,
-    pub(super) text: &'a str,
+pub(crate) struct Source<'a> {
+    pub(crate) file: &'a str,
+    pub(crate) text: &'a str,
 }
 
 impl Source<'_> {
-    pub(super) fn fault<T>(
+    pub(crate) fn fault<T>(
         self,
         span: &Range<usize>,
         message: impl Into<String>,
@@ -28,7 +28,7 @@ impl Source<'_> {
         Err(self.diagnostic(span, message, help))
     }
 
-    pub(super) fn diagnostic(
+    pub(crate) fn diagnostic(
         self,
         span: &Range<usize>,
         message: impl Into<String>,
@@ -47,7 +47,7 @@ impl Source<'_> {
 }
 
 /// What a value is, for messages.
-pub(super) fn kind(value: &DeValue) -> &'static str {
+pub(crate) fn kind(value: &DeValue) -> &'static str {
     match value {
         DeValue::String(_) => "a string",
         DeValue::Integer(_) => "an integer",
@@ -60,7 +60,7 @@ pub(super) fn kind(value: &DeValue) -> &'static str {
 }
 
 /// The exact number in a value.
-pub(super) fn number(
+pub(crate) fn number(
     source: Source,
     evaluator: &mut Evaluator,
     value: &Value,
@@ -114,7 +114,7 @@ pub(super) fn number(
 
 /// Where a part of a string's content stands in the file: exact when the string is written without
 /// escapes, the whole string otherwise.
-pub(super) fn place_in_string(
+pub(crate) fn place_in_string(
     text: &str,
     string: &Range<usize>,
     content: &str,
@@ -147,7 +147,7 @@ pub(super) fn place_in_string(
 }
 
 /// The items of an array.
-pub(super) fn array<'v, 'i>(
+pub(crate) fn array<'v, 'i>(
     source: Source,
     value: &'v Value<'i>,
     what: &str,
