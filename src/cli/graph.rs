@@ -1,13 +1,21 @@
 //! `reboundary graph`.
 
-use super::arguments::{GraphFormat, GraphOptions};
+use super::arguments::{BallKind, GraphFormat, GraphOptions};
 use super::fault::Fault;
+use super::graph_census::{self, CensusRecord};
+use super::graph_law::{self, LawRecord};
+use super::graph_structure::{self, StructureRecord};
 use super::language_source::{self, Completeness, Loaded};
 use super::output::{emit, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
+use crate::factor_graph::balls::{Census, census};
+use crate::factor_graph::canonical::{KINDS, Kind};
 use crate::factor_graph::census::{GraphCounts, count_graphs};
 use crate::factor_graph::criterion::{LineFigures, line_figures};
 use crate::factor_graph::export::write_graphml;
+use crate::factor_graph::listing;
+use crate::factor_graph::view::GraphView;
+use crate::run::files::ResultFolder;
 use serde::Serialize;
 use std::io::{self, Write};
 
@@ -16,6 +24,8 @@ struct Order<'a> {
     #[serde(flatten)]
     counts: &'a GraphCounts,
     growth: f64,
+    /// Total variation between the balls and those of the line: 1 − `path_share`.
+    distance_to_line: Vec<f64>,
     path_share: Vec<f64>,
     branch_free_share: Vec<f64>,
     bound: Vec<f64>,
@@ -36,6 +46,7 @@ impl Order<'_> {
         Order {
             counts,
             growth,
+            distance_to_line: path_share.iter().map(|share| 1.0 - share).collect(),
             path_share,
             branch_free_share,
             bound,
@@ -52,9 +63,20 @@ struct GraphRecord<'a> {
     length: usize,
     radii: usize,
     orders: Vec<Order<'a>>,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    census: Vec<CensusRecord>,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    law: Vec<LawRecord>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    structure: Option<StructureRecord>,
 }
 
 pub fn run(options: &GraphOptions) -> Result<(), Fault> {
+    check_sections(options)?;
+    let folder = match &options.drawings {
+        Some(path) => Some(ResultFolder::new(path, graph_census::MARK)?),
+        None => None,
+    };
     let control = interruptible_control();
     let quiet = options.common.quiet;
     let progress = Progress::new(&control, quiet);
@@ -71,32 +93,111 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
     let length = language.longest() - 1;
     progress.begin("factor graphs", None);
     let graphs = count_graphs(language, 1, options.radii);
+    let census = match options.census {
+        true => census(
+            &GraphView::new(language, length),
+            options.radii,
+            &kinds(&options.kind),
+        ),
+        false => Vec::new(),
+    };
+    let laws = match options.law {
+        true => graph_law::laws(options, &loaded, &control)?,
+        false => Vec::new(),
+    };
+    let structure = options
+        .structure
+        .then(|| graph_structure::structure(language, length));
     drop(progress);
+    let record = |c: &Census| CensusRecord::new(c, letters);
+    let spelled: Vec<CensusRecord> = census.iter().map(record).collect();
+    if let Some(folder) = folder {
+        graph_census::write_drawings(&census, &folder)?;
+        folder.write(graph_census::MARK, |out| {
+            graph_census::write_csv(&spelled, out)
+        })?;
+        folder.finish()?;
+    }
     emit(options.out.as_deref(), |out| match options.format {
         GraphFormat::Text => {
             writeln!(out, "{}", loaded.title)?;
             write_standing(&loaded, out)?;
             let (header, rows) = rows(&graphs, options.radii);
             let header: Vec<&str> = header.iter().map(String::as_str).collect();
-            write_columns(out, &header, &rows)
+            write_columns(out, &header, &rows)?;
+            graph_census::write_text(&spelled, out)?;
+            graph_law::write_text(&laws, out)?;
+            match &structure {
+                Some(record) => graph_structure::write_text(record, out),
+                None => Ok(()),
+            }
         }
+        GraphFormat::Csv if options.census => graph_census::write_csv(&spelled, out),
+        GraphFormat::Csv if options.law => graph_law::write_csv(&laws, out),
+        GraphFormat::Csv if options.structure => structure
+            .as_ref()
+            .map_or(Ok(()), |record| graph_structure::write_csv(record, out)),
         GraphFormat::Csv => write_csv(&graphs, options.radii, out),
         GraphFormat::Graphml => write_graphml(language, length, letters, out),
-        GraphFormat::Json => {
-            let orders = graphs.iter().map(Order::new);
-            write_json(
-                out,
-                &GraphRecord {
-                    schema: "reboundary-graph/1",
-                    title: loaded.title.clone(),
-                    source: &loaded.completeness,
-                    length,
-                    radii: options.radii,
-                    orders: orders.collect(),
-                },
-            )
-        }
+        GraphFormat::Dot => listing::write_dot(language, length, letters, out),
+        GraphFormat::Edges => listing::write_edges(language, length, letters, out),
+        GraphFormat::Adjacency => listing::write_adjacency(language, length, letters, out),
+        GraphFormat::Json => write_json(
+            out,
+            &GraphRecord {
+                schema: "reboundary-graph/1",
+                title: loaded.title.clone(),
+                source: &loaded.completeness,
+                length,
+                radii: options.radii,
+                orders: graphs.iter().map(Order::new).collect(),
+                census: spelled,
+                law: laws,
+                structure,
+            },
+        ),
     })
+}
+
+/// A CSV file has one header, and the formats of one graph have no room for more.
+fn check_sections(options: &GraphOptions) -> Result<(), Fault> {
+    let asked: Vec<&str> = [
+        ("--census", options.census),
+        ("--law", options.law),
+        ("--structure", options.structure),
+    ]
+    .into_iter()
+    .filter_map(|(name, asked)| asked.then_some(name))
+    .collect();
+    let most = match options.format {
+        GraphFormat::Text | GraphFormat::Json => 3,
+        GraphFormat::Csv => 1,
+        // The drawings are a result of their own.
+        _ => usize::from(options.drawings.is_some()),
+    };
+    if asked.len() <= most {
+        return Ok(());
+    }
+    let text = match options.format {
+        GraphFormat::Csv => {
+            "CSV holds one of --census, --law and --structure; ask for one of them, or for --format json"
+        }
+        _ => {
+            "this format holds one factor graph and nothing beside it; ask for --census, --law and --structure with --format text, json or csv"
+        }
+    };
+    Err(Fault::BadInput(text.into()))
+}
+
+/// The kinds asked for, all without a wish.
+fn kinds(wished: &[BallKind]) -> Vec<Kind> {
+    let kind = |wish: BallKind| match wish {
+        BallKind::Plain => Kind::Plain,
+        BallKind::Oriented => Kind::Oriented,
+        BallKind::Labelled => Kind::Labelled,
+    };
+    let named = |k: &Kind| wished.is_empty() || wished.iter().any(|w| kind(*w) == *k);
+    KINDS.into_iter().filter(named).collect()
 }
 
 /// What a reader must know about the counts below.

@@ -154,8 +154,27 @@ fn reference_fault(path: &Path, fault: &ReferenceFault) -> Fault {
     Fault::BadInput(format!("{file}: {fault}; {help}"))
 }
 
-/// Words from a file, their characters as letters in the order of characters.
-fn words_file(path: &Path, kind: &'static str, order: Option<usize>) -> Result<Loaded, Fault> {
+/// Long words in known letters; plain, or the output of `orbits`.
+pub fn read_words(path: &Path, letters: &[char]) -> Result<Vec<Vec<u8>>, Fault> {
+    let bad = |text: String| Fault::BadInput(format!("{}: {text}", path.display()));
+    let words = file_words(path, true)?;
+    let number = |c: char| {
+        let place = letters.iter().position(|l| *l == c);
+        place.map(|p| p as u8).ok_or_else(|| {
+            let listed: String = letters.iter().collect();
+            bad(format!(
+                "`{}` is no letter of the language; the letters are {listed}",
+                c.escape_debug()
+            ))
+        })
+    };
+    words
+        .iter()
+        .map(|word| word.chars().map(number).collect())
+        .collect()
+}
+
+fn file_words(path: &Path, of_orbits: bool) -> Result<Vec<String>, Fault> {
     let bad = |text: String| Fault::BadInput(format!("{}: {text}", path.display()));
     let bytes = std::fs::read(path).map_err(|e| bad(format!("cannot read this file: {e}")))?;
     let text = String::from_utf8(bytes).map_err(|e| {
@@ -163,11 +182,16 @@ fn words_file(path: &Path, kind: &'static str, order: Option<usize>) -> Result<L
         bad(format!("this is not a text file in UTF-8: byte {offset} fits no character; write one word a line"))
     })?;
     let text = text.strip_prefix('\u{feff}').unwrap_or(&text);
-    let words = if kind == "orbits" {
-        orbit_words(text).map_err(bad)?
-    } else {
-        plain_words(text).map_err(bad)?
-    };
+    match of_orbits {
+        true => orbit_words(text).map_err(bad),
+        false => plain_words(text).map_err(bad),
+    }
+}
+
+/// Words from a file, their characters as letters in the order of characters.
+fn words_file(path: &Path, kind: &'static str, order: Option<usize>) -> Result<Loaded, Fault> {
+    let bad = |text: String| Fault::BadInput(format!("{}: {text}", path.display()));
+    let words = file_words(path, kind == "orbits")?;
     let mut letters: Vec<char> = words.iter().flat_map(|w| w.chars()).collect();
     letters.sort_unstable();
     letters.dedup();
