@@ -77,12 +77,24 @@ impl From<ReferenceFileError> for Fault {
 
 impl From<io::Error> for Fault {
     fn from(error: io::Error) -> Fault {
-        if error.kind() == io::ErrorKind::BrokenPipe {
+        if is_closed_pipe(&error) {
             Fault::PipeClosed
         } else {
             Fault::Failed(format!("cannot write the output: {error}"))
         }
     }
+}
+
+/// A closed pipe, perhaps told by the CSV writer, which hides the kind.
+fn is_closed_pipe(error: &io::Error) -> bool {
+    let of_csv = || {
+        let inner = error.get_ref()?.downcast_ref::<csv::Error>()?;
+        match inner.kind() {
+            csv::ErrorKind::Io(inner) => Some(inner.kind()),
+            _ => None,
+        }
+    };
+    error.kind() == io::ErrorKind::BrokenPipe || of_csv() == Some(io::ErrorKind::BrokenPipe)
 }
 
 impl From<Stopped> for Fault {

@@ -3,7 +3,7 @@
 use super::fault::Fault;
 use super::output::write_columns;
 use crate::factor_graph::balls::{BallType, Census};
-use crate::factor_graph::canonical::Kind;
+use crate::factor_graph::canonical::{Form, Kind};
 use crate::figure::{Caption, SmallGraph, small_graphs_picture};
 use crate::run::files::ResultFolder;
 use serde::Serialize;
@@ -132,12 +132,7 @@ pub fn write_drawings(all: &[Census], folder: &ResultFolder) -> Result<(), Fault
     for census in all {
         let drawn = census.types.iter().take(DRAWN).map(|t| SmallGraph {
             vertices: t.form.vertices as usize,
-            arcs: t
-                .form
-                .arcs
-                .iter()
-                .map(|(from, to, _)| (*from as usize, *to as usize))
-                .collect(),
+            arcs: drawn_arcs(&t.form),
             directed: census.kind != Kind::Plain,
             text: format!(
                 "{} ({:.2} %)",
@@ -163,4 +158,47 @@ pub fn write_drawings(all: &[Census], folder: &ResultFolder) -> Result<(), Fault
         folder.write(&file, |out| out.write_all(svg.as_bytes()))?;
     }
     Ok(())
+}
+
+/// The arcs of a form. Those of a plain one get directions for the layout: the first half of the root's neighbours, and
+/// what is found through them, to its left.
+fn drawn_arcs(form: &Form) -> Vec<(usize, usize)> {
+    let arcs = form.arcs.iter();
+    let arcs: Vec<(usize, usize)> = arcs
+        .map(|(from, to, _)| (*from as usize, *to as usize))
+        .collect();
+    if form.kind != Kind::Plain {
+        return arcs;
+    }
+    let n = form.vertices as usize;
+    let at_root = arcs.iter().filter(|(from, to)| *from == 0 && *to > 0);
+    let half = at_root.count() / 2;
+    // (distance from the root, to the left)
+    let mut place = vec![None; n];
+    place[0] = Some((0usize, false));
+    let mut found = vec![0];
+    let mut at = 0;
+    while at < found.len() {
+        let v = found[at];
+        at += 1;
+        let (distance, left) = place[v].unwrap_or_default();
+        for &(a, b) in arcs.iter().filter(|(a, b)| *a == v || *b == v) {
+            let next = if a == v { b } else { a };
+            if place[next].is_none() {
+                let left = if v == 0 { found.len() <= half } else { left };
+                place[next] = Some((distance + 1, left));
+                found.push(next);
+            }
+        }
+    }
+    let turned = |&(a, b): &(usize, usize)| {
+        let ((da, left_a), (db, left_b)) =
+            (place[a].unwrap_or_default(), place[b].unwrap_or_default());
+        match (da < db, db < da) {
+            (true, _) if left_b => (b, a),
+            (_, true) if !left_a => (b, a),
+            _ => (a, b),
+        }
+    };
+    arcs.iter().map(turned).collect()
 }

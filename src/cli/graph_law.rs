@@ -151,20 +151,25 @@ pub fn write_text(all: &[LawRecord], out: &mut dyn Write) -> io::Result<()> {
         )?;
         let mut order: Vec<usize> = (0..law.blocks.len()).collect();
         order.sort_by(|a, b| law.shares[*b].total_cmp(&law.shares[*a]));
-        let cell = |value: Option<f64>| value.map_or(String::new(), |v| format!("{v:.6}"));
+        let mut columns = vec![("share", &law.shares)];
+        columns.extend(law.measures.as_ref().map(|m| ("measure", m)));
+        columns.extend(law.frequencies.as_ref().map(|f| ("frequency", f)));
         let rows: Vec<Vec<String>> = order
             .iter()
             .take(SHOWN)
             .map(|i| {
-                vec![
-                    law.blocks[*i].clone(),
-                    cell(Some(law.shares[*i])),
-                    cell(law.measures.as_ref().map(|m| m[*i])),
-                    cell(law.frequencies.as_ref().map(|f| f[*i])),
-                ]
+                let mut row = vec![law.blocks[*i].clone()];
+                row.extend(
+                    columns
+                        .iter()
+                        .map(|(_, values)| format!("{:.6}", values[*i])),
+                );
+                row
             })
             .collect();
-        write_columns(out, &["block", "share", "measure", "frequency"], &rows)?;
+        let mut header = vec!["block"];
+        header.extend(columns.iter().map(|(name, _)| *name));
+        write_columns(out, &header, &rows)?;
         if law.blocks.len() > SHOWN {
             writeln!(out, "and {} more blocks", law.blocks.len() - SHOWN)?;
         }

@@ -88,9 +88,11 @@ fn closed_walks(graph: &GraphView<'_>) -> Vec<u64> {
             if graph.is_special(forward) || graph.is_special(backward) {
                 return true;
             }
+            let last_backward = backward;
             forward = graph.target(graph.out_of(forward).start);
             backward = graph.source(graph.into(backward)[0]);
-            if forward == v || forward == backward {
+            // A cycle of even or of odd length that closes.
+            if forward == backward || forward == last_backward {
                 return true;
             }
         }
