@@ -14,6 +14,7 @@
 //! - [`orbit`]: single orbits, traced exactly;
 //! - [`certificate`]: claims about words that others can check;
 //! - [`complexity`]: how many words, and the generalized diagonals that make new ones;
+//! - [`reference`]: languages from short rules: substitutions, exchanges, patterns, forbidden words;
 //! - [`factor_graph`]: Rauzy graphs of any factorial language, and the line-limit criterion;
 //! - [`figure`]: pictures from plain numbers;
 //! - [`study`]: all of it on one table, into one folder;
@@ -47,6 +48,7 @@ pub mod figure;
 pub mod language;
 pub mod number;
 pub mod orbit;
+pub mod reference;
 pub mod run;
 pub mod study;
 pub mod sweep;

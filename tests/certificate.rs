@@ -181,7 +181,10 @@ fn orbits_through_corners_are_rejected() {
     // those of the word.
     let table = table("l-of-three-squares.toml");
     let good = language_certificate(&table, 2);
-    let at = lines(&good).iter().position(|line| line.contains("\"ae\"")).unwrap();
+    let at = lines(&good)
+        .iter()
+        .position(|line| line.contains("\"ae\""))
+        .unwrap();
     let through = |start: &str| {
         with_entry(&good, at, |entry| {
             let witness = entry.witness.as_mut().unwrap();
@@ -191,7 +194,10 @@ fn orbits_through_corners_are_rejected() {
     };
     check(&through("2/3")).unwrap();
     let rejected = check(&through("3/4")).unwrap_err();
-    assert!(rejected.to_string().contains("meets a corner"), "{rejected}");
+    assert!(
+        rejected.to_string().contains("meets a corner"),
+        "{rejected}"
+    );
     // Starts that are none.
     for start in ["0", "1", "-1/2", "3/2", "1/0", "x"] {
         assert!(check(&through(start)).is_err(), "{start}");

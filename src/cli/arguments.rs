@@ -2,6 +2,7 @@
 
 use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions};
 use super::ask_arguments::AskOptions;
+use super::language_source::LanguageSource;
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::run::budget::{self, Budget};
@@ -443,17 +444,36 @@ pub struct DiagonalsOptions {
 /// `graph`.
 #[derive(Debug, Args)]
 pub struct GraphOptions {
-    /// The table file
-    pub table: PathBuf,
+    /// The language.
+    #[command(flatten)]
+    pub source: LanguageSource,
     /// Parameters.
     #[command(flatten)]
     pub settings: Settings,
-    /// Largest order n of the factor graphs
-    #[arg(long, value_name = "N", default_value_t = 30, value_parser = parse_positive_length)]
-    pub length: usize,
+    #[doc = "Largest order n of the factor graphs [default: 30, or as far as the words of a file reach]"]
+    #[arg(long, value_name = "N", value_parser = parse_positive_length)]
+    pub length: Option<usize>,
     /// Largest radius of the ball census
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,
+    /// Count the words of order N by the isomorphism type of their balls
+    #[arg(long)]
+    pub census: bool,
+    /// What isomorphisms of balls keep; repeat for more [default: all three]
+    #[arg(long, value_enum, requires = "census")]
+    pub kind: Vec<BallKind>,
+    /// The law of the letters round a uniform vertex, for radii 0 to R, and how it settles
+    #[arg(long)]
+    pub law: bool,
+    /// Compare that law with the block frequencies of long words, one a line, such as orbits in one direction
+    #[arg(long, value_name = "FILE", requires = "law")]
+    pub frequencies: Option<PathBuf>,
+    /// Branches between special words, components, cycles, diameter, spectrum
+    #[arg(long)]
+    pub structure: bool,
+    /// Draw the commonest types of the census into this folder
+    #[arg(long, value_name = "DIR", requires = "census")]
+    pub drawings: Option<PathBuf>,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: GraphFormat,
@@ -484,8 +504,25 @@ pub enum GraphFormat {
     Json,
     /// Comma-separated values with a header
     Csv,
-    /// The factor graph of order N itself
+    /// The factor graph of order N itself, for graph programs
     Graphml,
+    /// The same for Graphviz
+    Dot,
+    /// Its arcs as CSV
+    Edges,
+    /// Its lists of successors as JSON
+    Adjacency,
+}
+
+/// What an isomorphism of balls keeps.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, ValueEnum)]
+pub enum BallKind {
+    /// Neither directions nor letters
+    Plain,
+    /// Directions
+    Oriented,
+    /// Directions and letters
+    Labelled,
 }
 
 /// `sweep`.

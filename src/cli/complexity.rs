@@ -72,7 +72,7 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
             }
         }
     }
-    work.end(&engine);
+    work.end(Some(engine.describe()));
     if options.stats && (done.is_none() || options.format != Format::Json) {
         work.stats.tell();
     }

@@ -67,7 +67,7 @@ pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
             }
         }
     }
-    work.end(&engine);
+    work.end(Some(engine.describe()));
     let in_json = options.format == Format::Json;
     if options.stats && (done.is_none() || !in_json) {
         work.stats.tell();

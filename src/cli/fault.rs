@@ -2,6 +2,7 @@
 
 use crate::language::store::{PatternFault, QueryFault, StoreFault};
 use crate::language::walk::GrowthFault;
+use crate::reference::file::ReferenceFileError;
 use crate::run::Stopped;
 use crate::run::checkpoint::CheckpointFault;
 use crate::run::files::OutputFault;
@@ -66,14 +67,35 @@ impl From<TableFileError> for Fault {
     }
 }
 
+impl From<ReferenceFileError> for Fault {
+    fn from(error: ReferenceFileError) -> Fault {
+        match error {
+            ReferenceFileError::Fault(diagnostic) => Fault::BadText(diagnostic),
+            other => Fault::BadInput(other.to_string()),
+        }
+    }
+}
+
 impl From<io::Error> for Fault {
     fn from(error: io::Error) -> Fault {
-        if error.kind() == io::ErrorKind::BrokenPipe {
+        if is_closed_pipe(&error) {
             Fault::PipeClosed
         } else {
             Fault::Failed(format!("cannot write the output: {error}"))
         }
     }
+}
+
+/// A closed pipe, perhaps told by the CSV writer, which hides the kind.
+fn is_closed_pipe(error: &io::Error) -> bool {
+    let of_csv = || {
+        let inner = error.get_ref()?.downcast_ref::<csv::Error>()?;
+        match inner.kind() {
+            csv::ErrorKind::Io(inner) => Some(inner.kind()),
+            _ => None,
+        }
+    };
+    error.kind() == io::ErrorKind::BrokenPipe || of_csv() == Some(io::ErrorKind::BrokenPipe)
 }
 
 impl From<Stopped> for Fault {

@@ -4,6 +4,7 @@
 //! - [`arguments`]: commands and options.
 //! - [`ask_arguments`]: options of the questions to a stored language.
 //! - [`fault`]: what can go wrong, and the exit code of each.
+//! - [`language_source`]: tables, files of words, reference files.
 //! - [`launch`]: starts and aims.
 //! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
 //! - [`output`]: where results are printed.
@@ -25,7 +26,11 @@ mod diagonals;
 mod direction;
 pub mod fault;
 mod graph;
+mod graph_census;
+mod graph_law;
+mod graph_structure;
 mod grown;
+pub mod language_source;
 pub mod launch;
 mod locate;
 mod measures;

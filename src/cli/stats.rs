@@ -5,7 +5,6 @@
 use crate::number::Tiers;
 use crate::run::checkpoint::Checkpoint;
 use crate::run::memory;
-use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
 use std::io::Write;
 use std::time::{Duration, Instant};
@@ -97,8 +96,8 @@ impl Stats {
     }
 
     /// The run ends.
-    pub fn finish(&mut self, engine: &AnyEngine, checkpoint: Option<&Checkpoint>) {
-        self.engine = engine.describe();
+    pub fn finish(&mut self, signs: Option<&'static str>, checkpoint: Option<&Checkpoint>) {
+        self.engine = signs.unwrap_or("nothing: no sign was asked for");
         self.recalled_parts = checkpoint.map_or(0, Checkpoint::recalled);
         self.seconds = self.begun.elapsed().as_secs_f64();
         self.peak_memory_bytes = memory::peak();

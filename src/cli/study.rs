@@ -95,7 +95,8 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
     };
     write(&results, &extras, &out, writing)?;
     work.stats.bytes_per_word = Some(BYTES_PER_WORD);
-    work.end(&AnyEngine::new(&loaded.table, 1, request.arithmetic));
+    let engine = AnyEngine::new(&loaded.table, 1, request.arithmetic);
+    work.end(Some(engine.describe()));
     if options.stats {
         work.stats.tell();
     }

@@ -54,7 +54,7 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
         }
     }
     work.stats.bytes_per_word = Some(BYTES_PER_WORD);
-    work.end(&engine);
+    work.end(Some(engine.describe()));
     if options.stats {
         work.stats.tell();
     }

@@ -10,7 +10,6 @@ use crate::run::budget::{Budget, Watch, stages};
 use crate::run::checkpoint::{Checkpoint, Identity};
 use crate::run::{Control, StopReason, memory};
 use crate::table::file::LoadedTable;
-use crate::unfold::engine::AnyEngine;
 use std::sync::Arc;
 
 /// A command at work.
@@ -116,14 +115,15 @@ impl Work {
         self.watch = None;
     }
 
-    /// The work ends: the progress goes, nobody watches any more, and the stats are complete.
-    pub fn end(&mut self, engine: &AnyEngine) {
+    /// The work ends: the progress goes, nobody watches any more, and the stats are complete. `signs` says how signs were
+    /// decided, if any were.
+    pub fn end(&mut self, signs: Option<&'static str>) {
         self.unwatch();
         self.progress.hide();
         if let Some(failure) = self.checkpoint.as_ref().and_then(Checkpoint::failure) {
             note(&format!("the checkpoint is not up to date: {failure}"));
         }
-        self.stats.finish(engine, self.checkpoint.as_ref());
+        self.stats.finish(signs, self.checkpoint.as_ref());
     }
 
     /// Says why the work was stopped and what there is of it, for example `the result is complete to n = 20 of 50`.

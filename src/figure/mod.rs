@@ -25,6 +25,7 @@ mod graph;
 mod plane;
 mod scale;
 mod shading;
+mod small_graphs;
 pub mod style;
 mod tree;
 
@@ -35,6 +36,7 @@ pub use graph::{GraphDrawing, circle_layout, graph_picture};
 pub use plane::{HoleShape, TableShape, orbit_picture, table_picture};
 pub use scale::Scale;
 pub use shading::shade_apart;
+pub use small_graphs::{SmallGraph, layered_layout, small_graphs_picture};
 pub use tree::{LABELLED_LEAVES, MOST_LEAVES, TreeDrawing, TreeMark, TreeNode, tree_picture};
 
 use thiserror::Error;

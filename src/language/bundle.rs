@@ -314,7 +314,9 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     if longest == 0 {
         return Ok((vec![head], tiers));
     }
-    let (mut seeds, split) = divide(engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers)?;
+    let (mut seeds, split) = divide(
+        engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers,
+    )?;
     if split >= longest {
         seeds.clear();
     }

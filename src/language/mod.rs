@@ -5,6 +5,7 @@
 //! - [`walk`]: the depth-first walk over all beams of a table, and the tree that it grows.
 //! - `bundle`: the same when a word has several beams: repeated letters, holes.
 //! - [`follow`]: one word through the table.
+//! - [`suffixes`]: the factors of long words, and how far they can be trusted.
 //! - [`beams`]: the exact beams of all words of one length.
 //! - [`stream`]: all words of one length in order, without keeping them.
 //! - [`store`]: a language in one file that answers questions.
@@ -20,6 +21,7 @@ pub mod follow;
 pub mod measure;
 pub mod store;
 pub mod stream;
+pub mod suffixes;
 pub mod tree;
 pub mod walk;
 

@@ -180,6 +180,11 @@ impl Language {
         &self.levels[length].suffix
     }
 
+    /// The last letters of a level, by word.
+    pub fn last_letters(&self, length: usize) -> &[u8] {
+        &self.levels[length].letter
+    }
+
     /// The range of a word's right extensions in the next level.
     ///
     /// # Panics

@@ -125,7 +125,9 @@ fn walk_kept<E: Engine, V: Visitor<E>>(
     }
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
-    let (mut seeds, split) = divide(engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers)?;
+    let (mut seeds, split) = divide(
+        engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers,
+    )?;
     if split >= longest {
         seeds.clear();
     }

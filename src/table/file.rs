@@ -61,11 +61,11 @@
 
 mod affine;
 mod faults;
-mod names;
+pub(crate) mod names;
 mod outline;
 mod read;
 mod rings;
-mod source;
+pub(crate) mod source;
 
 use super::Table;
 use super::diagnostic::Diagnostic;

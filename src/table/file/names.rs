@@ -45,16 +45,17 @@ struct Definition {
 
 /// All definitions of a file, settings applied.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Names {
+pub(crate) struct Names {
     own: Vec<Definition>,
     /// Settings of names that this file does not have: they are for its base.
     for_base: Vec<String>,
 }
 
 const SECTIONS: [&str; 2] = ["define", "parameters"];
-/// Keys whose strings are expressions.
-const NUMERIC: [&str; 8] = [
-    "corners", "triangle", "regular", "outline", "form", "holes", "stretch", "turn",
+/// Keys whose strings are expressions; the last two are those of reference files.
+const NUMERIC: [&str; 10] = [
+    "corners", "triangle", "regular", "outline", "form", "holes", "stretch", "turn", "lengths",
+    "shifts",
 ];
 
 impl Names {
@@ -62,7 +63,7 @@ impl Names {
     ///
     /// A setting of a name that the file does not have is kept for its base, if it has one. `outer` are the files that
     /// stand on this one, which have passed the settings on.
-    pub(super) fn read(
+    pub(crate) fn read(
         source: Source,
         document: &DeTable,
         settings: &[String],
@@ -105,7 +106,7 @@ impl Names {
                 return source.fault(&key.span(), message, "keep one of the two");
             }
             if self.own.len() == MOST_NAMES {
-                let message = format!("a table file can have at most {MOST_NAMES} names");
+                let message = format!("a file can have at most {MOST_NAMES} names");
                 return source.fault(&key.span(), message, "remove names that are not needed");
             }
             let text = match value.get_ref() {
@@ -327,7 +328,7 @@ impl Names {
     }
 
     /// An evaluator in a field that knows the names that the file's numbers use.
-    pub(super) fn evaluator(
+    pub(crate) fn evaluator(
         &self,
         source: Source,
         document: &DeTable,

@@ -9,18 +9,18 @@ use std::ops::Range;
 use toml::Spanned;
 use toml::de::DeValue;
 
-pub(super) type Value<'i> = Spanned<DeValue<'i>>;
-pub(super) type Outcome<T> = Result<T, Box<Diagnostic>>;
+pub(crate) type Value<'i> = Spanned<DeValue<'i>>;
+pub(crate) type Outcome<T> = Result<T, Box<Diagnostic>>;
 
 /// The text that spans point into.
 #[derive(Clone, Copy)]
-pub(super) struct Source<'a> {
-    pub(super) file: &'a str,
-    pub(super) text: &'a str,
+pub(crate) struct Source<'a> {
+    pub(crate) file: &'a str,
+    pub(crate) text: &'a str,
 }
 
 impl Source<'_> {
-    pub(super) fn fault<T>(
+    pub(crate) fn fault<T>(
         self,
         span: &Range<usize>,
         message: impl Into<String>,
@@ -44,7 +44,7 @@ impl Source<'_> {
         })
     }
 
-    pub(super) fn diagnostic(
+    pub(crate) fn diagnostic(
         self,
         span: &Range<usize>,
         message: impl Into<String>,
@@ -63,7 +63,7 @@ impl Source<'_> {
 }
 
 /// What a value is, for messages.
-pub(super) fn kind(value: &DeValue) -> &'static str {
+pub(crate) fn kind(value: &DeValue) -> &'static str {
     match value {
         DeValue::String(_) => "a string",
         DeValue::Integer(_) => "an integer",
@@ -76,7 +76,7 @@ pub(super) fn kind(value: &DeValue) -> &'static str {
 }
 
 /// The exact number in a value.
-pub(super) fn number(
+pub(crate) fn number(
     source: Source,
     evaluator: &mut Evaluator,
     value: &Value,
@@ -130,7 +130,7 @@ pub(super) fn number(
 
 /// Where a part of a string's content stands in the file: exact when the string is written without
 /// escapes, the whole string otherwise.
-pub(super) fn place_in_string(
+pub(crate) fn place_in_string(
     text: &str,
     string: &Range<usize>,
     content: &str,
@@ -163,7 +163,7 @@ pub(super) fn place_in_string(
 }
 
 /// The items of an array.
-pub(super) fn array<'v, 'i>(
+pub(crate) fn array<'v, 'i>(
     source: Source,
     value: &'v Value<'i>,
     what: &str,
