@@ -177,7 +177,10 @@ fn an_axis_in_a_hole_leaves_a_strip_beside_it() {
         .map(|w| {
             let (strip, axis) = (&w.closing.strip, w.closing.axis.clone().expect("odd"));
             let half = &strip.breadth * &Real::from(Rational::from((1, 2)));
-            [&(&strip.middle - &axis) - &half, &(&strip.middle - &axis) + &half]
+            [
+                &(&strip.middle - &axis) - &half,
+                &(&strip.middle - &axis) + &half,
+            ]
         })
         .collect();
     let expected = [[30, 225], [275, 500]].map(|ends| ends.map(|h| thousandths(3 * h)));

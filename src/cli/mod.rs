@@ -17,7 +17,10 @@ pub mod fault;
 mod graph;
 pub mod launch;
 pub mod orbit_arguments;
+#[cfg(feature = "parquet")]
+mod orbit_parquet;
 mod orbit_picture;
+mod orbit_rows;
 mod orbits;
 pub mod output;
 mod periodic;
