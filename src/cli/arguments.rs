@@ -357,18 +357,36 @@ pub struct DiagonalsOptions {
         conflicts_with = "length"
     )]
     pub distance: Option<String>,
+    /// Which rows text and CSV show; JSON holds the list and the counts
+    #[arg(long, value_enum, default_value_t)]
+    pub rows: DiagonalRows,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Refuse to start, or with --distance stop, when more memory is needed: bytes, or with K, M, G [default: 90% of what is free]
+    #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
+    pub budget_memory: Option<u64>,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Rows that `diagonals` shows.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum DiagonalRows {
+    /// The diagonals themselves
+    #[default]
+    List,
+    /// How many cross 0, 1, 2, ... sides, and how many at most so many
+    BySides,
+    /// How many have each length, how many are at most so long, N(L), and N(L)/L^2; needs --distance
+    ByLength,
 }
 
 /// `graph`.
@@ -391,6 +409,9 @@ pub struct GraphOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
+    #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
+    pub budget_memory: Option<u64>,
     /// Common options.
     #[command(flatten)]
     pub common: Common,

@@ -10,7 +10,9 @@ use crate::language::{measure, walk};
 use crate::number::{Enclosure, Real};
 use crate::orbit::ensemble::Sample;
 use crate::orbit::law::{Ensemble, Law};
-use crate::orbit::statistics::{Estimate, OrbitShares, PathMeter, Statistics, orbit_shares};
+use crate::orbit::statistics::{
+    Estimate, OrbitShares, PathMeter, Statistics, decimal_order, orbit_shares, power_of_ten,
+};
 use crate::orbit::trace::StartFault;
 use crate::orbit::{Start, TraceTables};
 use crate::run::Control;
@@ -82,7 +84,10 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
     }
     done?;
     match &options.statistics {
-        Some(path) => write_statistics(options, &table, &job.statistics, path, &control),
+        Some(path) => {
+            let found = (&job.statistics, job.meter.order());
+            write_statistics(options, &table, found, path, &control)
+        }
         None => Ok(()),
     }
 }
@@ -246,16 +251,53 @@ struct Compared {
     quantity: String,
     estimate: Estimate,
     exact: Enclosure,
+    /// Both are in units of ten to this power.
+    order: i32,
+}
+
+impl Compared {
+    /// A number of this row in the table's unit. The exponent is written when floating point might not reach.
+    fn in_unit(&self, number: f64) -> String {
+        match self.order {
+            -99..=99 => (number * 10f64.powi(self.order)).to_string(),
+            order => format!("{number}e{order}"),
+        }
+    }
+
+    fn exact_in_unit(&self) -> String {
+        match self.order {
+            0 => decimal(&self.exact),
+            -99..=99 => self.in_unit(self.exact.to_f64()),
+            order => format!("{}e{order}", decimal(&self.exact)),
+        }
+    }
+}
+
+/// π·area/perimeter in units of ten to a power.
+fn mean_chord(table: &Table, order: i32) -> Enclosure {
+    // Absolute bits suffice once the numbers are near 1; a thin table has a small area.
+    let squared = &squared_area(table, &facts(table)) / &power_of_ten(4 * order);
+    let small = decimal_order(&squared).min(0).unsigned_abs();
+    let bits = 160 + 8 * small;
+    let area = squared.enclosure_within(bits).sqrt();
+    let mut perimeter = Enclosure::zero(bits);
+    for side in 0..table.sides() {
+        let square = table.side_vector(side).squared_length(table.form());
+        let square = &square / &power_of_ten(2 * order);
+        perimeter.add_assign(&square.enclosure_within(bits).sqrt());
+    }
+    let chord = Enclosure::pi(bits).mul(&area).div(&perimeter);
+    chord.expect("a perimeter is positive")
 }
 
 fn write_statistics(
     options: &OrbitsOptions,
     table: &Table,
-    statistics: &Statistics,
+    (statistics, order): (&Statistics, i32),
     path: &Path,
     control: &Control,
 ) -> Result<(), Fault> {
-    let rows = compare(options, table, statistics, control)?;
+    let rows = compare(options, table, statistics, order, control)?;
     let z = |row: &Compared| row.estimate.z(row.exact.to_f64());
     write_whole(path, |out| {
         let mut csv = csv::Writer::from_writer(out);
@@ -263,9 +305,9 @@ fn write_statistics(
         for row in &rows {
             csv.write_record([
                 row.quantity.clone(),
-                row.estimate.mean.to_string(),
-                row.estimate.standard_error.to_string(),
-                decimal(&row.exact),
+                row.in_unit(row.estimate.mean),
+                row.in_unit(row.estimate.standard_error),
+                row.exact_in_unit(),
                 format!("{:.3}", z(row)),
             ])?;
         }
@@ -286,17 +328,14 @@ fn compare(
     options: &OrbitsOptions,
     table: &Table,
     statistics: &Statistics,
+    order: i32,
     control: &Control,
 ) -> Result<Vec<Compared>, Fault> {
-    let bits = 160;
-    let area = squared_area(table, &facts(table))
-        .enclosure_within(bits)
-        .sqrt();
-    let chord = Enclosure::pi(bits).mul(&area).div(&table.perimeter(bits));
     let mut rows = vec![Compared {
         quantity: "mean chord".into(),
         estimate: statistics.chord().expect("at least two orbits"),
-        exact: chord.expect("a perimeter is positive"),
+        exact: mean_chord(table, order),
+        order,
     }];
     let mesh = Mesh::new(table);
     let engine = AnyEngine::new(table, options.blocks, Arithmetic::Tiered);
@@ -318,6 +357,7 @@ fn compare(
                 exact: measure
                     .div(&measures.whole)
                     .expect("a perimeter is positive"),
+                order: 0,
             });
         }
     }

@@ -44,7 +44,7 @@ pub fn run(options: &WordsOptions) -> Result<(), Fault> {
 
 /// Words of all lengths up to one, counted by fans. When a word is a bundle of beams this is the number of
 /// beams: enough for the memory, and for the progress.
-fn total_words(
+pub(super) fn total_words(
     table: &Table,
     engine: &AnyEngine,
     mesh: &Mesh,
