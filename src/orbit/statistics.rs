@@ -263,6 +263,18 @@ pub fn decimal_order(square: &Real) -> i32 {
 mod tests {
     use super::*;
 
+    /// Shares 1 and 1/3: mean 2/3, sample variance 2/9, so the standard error of the mean is 1/3.
+    #[test]
+    fn the_standard_error_is_that_of_a_sample() {
+        let mut statistics = Statistics::default();
+        for word in [[0, 0, 0], [0, 1, 1]] {
+            statistics.add(orbit_shares(&word.map(LetterId), 1, 1.0));
+        }
+        let found = statistics.block(&[LetterId(0)]).expect("two orbits");
+        assert!((found.mean - 2.0 / 3.0).abs() < 1e-15);
+        assert!((found.standard_error - 1.0 / 3.0).abs() < 1e-15);
+    }
+
     #[test]
     fn orders_are_those_of_the_decimals() {
         for k in [-400, -77, -2, -1, 0, 1, 2, 3, 150, 1000] {
