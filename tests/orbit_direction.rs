@@ -399,3 +399,13 @@ fn directions_that_cannot_be_followed_are_refused() {
     let never = interval_exchange(&flow, Transversal::Side(SideId(0)), &Control::new());
     assert_eq!(never.err(), Some(ExchangeFault::NeverEntered));
 }
+
+/// A line from a corner passes the next one at 10⁻¹²: only an exact comparison tells that it goes on.
+#[test]
+fn lines_that_nearly_meet_a_corner_go_on() {
+    let aim = Vector::new(1_000_000_000_000i64.into(), 1.into());
+    let flow = Flow::new(&unit_square(), &aim).expect("a flow");
+    let found = saddles(&flow, 50, &Control::new()).expect("not stopped");
+    assert_eq!(found.saddles, []);
+    assert!(found.open > 0);
+}

@@ -400,3 +400,108 @@ fn bad_laws_get_pointed_messages() {
         assert!(err.contains(says), "{arguments:?}: {err}");
     }
 }
+
+/// A start that runs into a corner is drawn again: the orbit keeps its letters.
+#[test]
+fn random_starts_into_corners_are_drawn_again() {
+    let table = unit_square();
+    let tables = TraceTables::new(&table);
+    let one = Real::from(1);
+    let direction = |x: &Real| Law::Direction(Vector::new(x.clone(), one.clone()));
+    let mut met = 0;
+    for index in 0..40 {
+        // Where the first draw starts does not depend on the aim, but for the side.
+        let first = Ensemble::new(&tables, direction(&(&one / &Real::from(2))));
+        let drawn = first.sample(4, index, 1).expect("a sample").start;
+        let to_corner = &one - &drawn.fraction;
+        let law = Ensemble::new(&tables, direction(&to_corner));
+        let sample = law.sample(4, index, 12).expect("a sample");
+        assert_eq!(sample.word.len(), 12);
+        let straight = Start {
+            side: SideId(0),
+            fraction: drawn.fraction.clone(),
+            aim: Vector::new(to_corner.clone(), one.clone()),
+        };
+        let orbit = reboundary::orbit::trace::trace(&tables, straight, 12).expect("a good start");
+        assert_eq!(
+            orbit.end,
+            Some(reboundary::orbit::Step::Corner(
+                reboundary::table::CornerId(2)
+            ))
+        );
+        met += usize::from(
+            law.sample(4, index, 1).expect("a sample").start.fraction == drawn.fraction
+                && sample.start.fraction != drawn.fraction,
+        );
+    }
+    assert!(met >= 5, "only {met} starts were drawn again");
+}
+
+/// Fractions are odd multiples of 2⁻³², and aims are of unit length in the true plane, however wide the second unit.
+#[test]
+fn starts_are_dyadic_and_aims_of_unit_length() {
+    for places in [0u32, 3, 12, 40] {
+        let form = Real::from(rug::Integer::from(rug::Integer::u_pow_u(10, places)));
+        let corners =
+            [(0, 0), (5, 0), (5, 1), (0, 1)].map(|(x, y)| Vector::new(x.into(), y.into()));
+        let table = Table::new(
+            "wide",
+            corners.to_vec(),
+            form.clone(),
+            vec!['a', 'b', 'c', 'd'],
+        );
+        let table = table.expect("a table");
+        let tables = TraceTables::new(&table);
+        let ensemble = Ensemble::new(&tables, Law::Cosine);
+        for index in 0..50 {
+            let start = ensemble.sample(8, index, 1).expect("a sample").start;
+            let scaled = &start.fraction * &Real::from(rug::Integer::from(1) << 32);
+            let numerator = scaled.to_rational().expect("a rational");
+            assert!(numerator.is_integer() && numerator.numer().is_odd());
+            let squared = start.aim.squared_length(&form).to_f64();
+            assert!((squared - 1.0).abs() < 1e-7, "form 1e{places}: {squared}");
+        }
+    }
+}
+
+/// Tables of any size, and stretched one way: the z-scores are those of floating point that holds them.
+#[test]
+fn statistics_do_not_depend_on_the_size_of_the_table() {
+    let power = |places: i32| reboundary::orbit::statistics::power_of_ten(places);
+    let square = |x: &Real, y: &Real| {
+        let zero = Real::from(0);
+        let corners = [(&zero, &zero), (x, &zero), (x, y), (&zero, y)];
+        let corners = corners
+            .map(|(x, y)| Vector::new(x.clone(), y.clone()))
+            .to_vec();
+        Table::new("stretched", corners, 1.into(), vec!['a', 'b', 'c', 'd']).expect("a table")
+    };
+    let one = Real::from(1);
+    let expected = statistics(&square(&one, &one), 3, 60, 30, 1)
+        .chord()
+        .expect("many orbits");
+    for places in [-400, -200, -160, 160, 200, 400] {
+        let size = power(places);
+        let table = square(&size, &size);
+        assert_eq!(PathMeter::new(&table).order(), places);
+        let found = statistics(&table, 3, 60, 30, 1)
+            .chord()
+            .expect("many orbits");
+        assert!((found.mean / expected.mean - 1.0).abs() < 1e-12, "{places}");
+        // Stretched one way: the mean chord π·area/perimeter is π/2 of the short side, up to 1 ∓ 10⁻²⁰⁰. Few orbits run
+        // lengthwise, so the bound is loose.
+        for table in [square(&size, &one), square(&one, &size)] {
+            let meter = PathMeter::new(&table);
+            assert_eq!(meter.order(), places.max(0));
+            let found = statistics(&table, 3, 400, 20, 1)
+                .chord()
+                .expect("many orbits");
+            let short = 10f64.powi(places.min(0) - meter.order());
+            if places.abs() <= 200 {
+                let share = found.mean / short / std::f64::consts::FRAC_PI_2;
+                assert!((0.5..2.0).contains(&share), "{places}: {share}");
+                assert!(found.standard_error > 0.0);
+            }
+        }
+    }
+}

@@ -409,3 +409,17 @@ fn trace_writes_lines_pictures_and_random_starts() {
     ]);
     assert_eq!(again.trim(), sides);
 }
+
+/// A ray along the line of a side that it has not reached runs into the side's corner.
+#[test]
+fn a_ray_along_the_line_of_a_side_meets_its_corner() {
+    let table = support::l_of_three_squares();
+    let half = Real::from(Rational::from((1, 2)));
+    let (point, aim) = (
+        Vector::new(half.clone(), 1.into()),
+        Vector::new(1.into(), 0.into()),
+    );
+    // The corner at (1, 1), half a length of the aim away.
+    let expected = FirstHit::Corner(CornerId(3), half);
+    assert_eq!(first_hit(&table, &point, &aim), Ok(expected));
+}

@@ -14,6 +14,7 @@ use reboundary::table::{Ring, SideId, Table, Vector};
 use reboundary::unfold::Mesh;
 use reboundary::unfold::engine::{AnyEngine, Arithmetic};
 use rug::Rational;
+use rug::ops::Pow;
 use std::collections::BTreeSet;
 use support::*;
 
@@ -60,15 +61,16 @@ fn classes(found: &[PeriodicWord]) -> BTreeSet<Vec<u8>> {
 fn check_by_tracing(tables: &TraceTables, word: &PeriodicWord) {
     let start = word.start(tables.table());
     let mut tracer = Tracer::new(tables, start).expect("a start inside the first side");
+    let expected = word.word.repeat(word.turns());
     while let Step::Hit(_) = tracer.advance() {
         assert!(
-            tracer.word().len() <= word.word.len(),
+            tracer.word().len() <= expected.len(),
             "{:?} closes",
             word.word
         );
     }
-    assert_eq!(tracer.word(), word.word);
-    assert_eq!(tracer.advance(), Step::Period(word.word.len()));
+    assert_eq!(tracer.word(), expected);
+    assert_eq!(tracer.advance(), Step::Period(expected.len()));
 }
 
 /// A word is periodic only if all its powers are words of the language, and then (Galperin, Krüger,
@@ -402,6 +404,42 @@ fn traced_rational_directions_are_among_the_classes() {
             closed.len()
         );
     }
+}
+
+/// The strip of an odd word is that of the word doubled: its area is that over two turns.
+#[test]
+fn the_area_of_an_odd_word_is_over_two_turns() {
+    let found = periodic(&equilateral(), 3);
+    let fagnano = found
+        .iter()
+        .find(|w| w.is_odd())
+        .expect("the altitude feet");
+    let breadth = &fagnano.closing.strip.breadth;
+    assert_eq!(fagnano.area_over_root_form(), breadth + breadth);
+    let even = found.iter().find(|w| !w.is_odd());
+    assert!(even.is_none_or(|w| w.area_over_root_form() == w.closing.strip.breadth));
+}
+
+/// Sides that floating point takes for parallel: the orbits between them do not close.
+#[test]
+fn nearly_parallel_sides_give_no_strip() {
+    let tilt = Real::from(Rational::from((
+        rug::Integer::from(1),
+        rug::Integer::from(10).pow(20),
+    )));
+    let one = Real::from(1);
+    let corners = [
+        (0.into(), 0.into()),
+        (1.into(), 0.into()),
+        (one.clone(), one.clone()),
+        (0.into(), &one + &tilt),
+    ];
+    let corners = corners
+        .map(|(x, y): (Real, Real)| Vector::new(x, y))
+        .to_vec();
+    let table = table_of("tilted", corners, one);
+    let found = classes(&periodic(&table, 2));
+    assert_eq!(found, [vec![1, 3]].into_iter().collect());
 }
 
 proptest! {

@@ -421,6 +421,9 @@ pub struct DiagonalsOptions {
         conflicts_with = "length"
     )]
     pub distance: Option<String>,
+    /// Which rows text and CSV show; JSON holds the list and the counts
+    #[arg(long, value_enum, default_value_t)]
+    pub rows: DiagonalRows,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,
@@ -439,6 +442,18 @@ pub struct DiagonalsOptions {
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Rows that `diagonals` shows.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum DiagonalRows {
+    /// The diagonals themselves
+    #[default]
+    List,
+    /// How many cross 0, 1, 2, ... sides, and how many at most so many
+    BySides,
+    /// How many have each length, how many are at most so long, N(L), and N(L)/L^2; needs --distance
+    ByLength,
 }
 
 /// `graph`.

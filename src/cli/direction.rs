@@ -38,11 +38,11 @@ pub fn run(options: &DirectionOptions) -> Result<(), Fault> {
         Err(FlowFault::InfiniteGroup) => {
             let found = prefixes(&table, &aim, options.length, &control)?;
             drop(progress);
-            return emit_prefixes(options, &table, &aim, &found);
+            return emit_prefixes(options, &table, &aim, lifter.generator(), &found);
         }
         Err(other) => return Err(Fault::BadInput(other.to_string())),
     };
-    let results = Results::find(options, &flow, &control)?;
+    let results = Results::find(options, &flow, lifter.generator(), &control)?;
     drop(progress);
     let unknown = results.strips.is_none() && options.rows == DirectionRows::Strips;
     emit(options.out.as_deref(), |out| match options.format {
@@ -106,6 +106,8 @@ fn parse_transversal(table: &Table, flow: &Flow, text: &str) -> Result<Transvers
 }
 
 struct Results {
+    /// The generator of the table's field, as it is written.
+    generator: String,
     language: Language,
     length: usize,
     saddles: Saddles,
@@ -115,7 +117,12 @@ struct Results {
 }
 
 impl Results {
-    fn find(options: &DirectionOptions, flow: &Flow, control: &Control) -> Result<Results, Fault> {
+    fn find(
+        options: &DirectionOptions,
+        flow: &Flow,
+        generator: &str,
+        control: &Control,
+    ) -> Result<Results, Fault> {
         let table = flow.table();
         let transversal = parse_transversal(table, flow, &options.transversal)?;
         let exchange = match interval_exchange(flow, transversal, control) {
@@ -133,6 +140,7 @@ impl Results {
         let saddles = saddles(flow, options.reach, control)?;
         let strips = strips(flow, &saddles);
         Ok(Results {
+            generator: generator.into(),
             language,
             length: options.length,
             saddles,
@@ -183,7 +191,7 @@ impl Results {
             start_corner: s.start.0,
             end_corner: s.end.0,
             code: spell_code(table, &s.code),
-            displacement: ExactVector::new(&s.displacement),
+            displacement: ExactVector::in_terms_of(&self.generator, &s.displacement),
             length: root_decimal(&s.displacement.squared_length(table.form())),
         };
         self.saddles.saddles.iter().map(row).collect()
@@ -199,11 +207,14 @@ impl Results {
                 length: s.word.len(),
                 parity: if s.word.len() % 2 == 1 { "odd" } else { "even" },
                 orbit_length: root_decimal(&squared),
-                squared_orbit_length: Exact::new(&squared),
+                squared_orbit_length: Exact::in_terms_of(&self.generator, &squared),
                 width: root_decimal(&squared_width),
-                squared_width: Exact::new(&squared_width),
-                start: format!("{}@{}", side_name(table, s.start.side), s.start.fraction),
-                aim: ExactVector::new(&s.start.aim),
+                squared_width: Exact::in_terms_of(&self.generator, &squared_width),
+                start: {
+                    let fraction = s.start.fraction.display_in(&self.generator);
+                    format!("{}@{fraction}", side_name(table, s.start.side))
+                },
+                aim: ExactVector::in_terms_of(&self.generator, &s.start.aim),
                 copies: s.copies,
             }
         };
@@ -215,9 +226,9 @@ impl Results {
             interval: i,
             copy: interval.copy,
             code: spell_code(flow.table(), &interval.code),
-            left: Exact::new(&interval.left),
-            length: Exact::new(&interval.length),
-            image_left: Exact::new(&interval.image_left),
+            left: Exact::in_terms_of(&self.generator, &interval.left),
+            length: Exact::in_terms_of(&self.generator, &interval.length),
+            image_left: Exact::in_terms_of(&self.generator, &interval.image_left),
             image_place: interval.image_place,
         };
         self.exchange.iter().enumerate().map(row).collect()
@@ -228,8 +239,8 @@ impl Results {
         DirectionRecord {
             schema: "reboundary-direction/1",
             title: table.title().into(),
-            direction: ExactVector::new(flow.direction()),
-            form: Exact::new(table.form()),
+            direction: ExactVector::in_terms_of(&self.generator, flow.direction()),
+            form: Exact::in_terms_of(&self.generator, table.form()),
             copies: flow.copies(),
             length: self.length,
             by_length: self.complexity(),
@@ -474,6 +485,7 @@ fn emit_prefixes(
     options: &DirectionOptions,
     table: &Table,
     aim: &Vector,
+    generator: &str,
     found: &Prefixes,
 ) -> Result<(), Fault> {
     let spelled = |word: &Vec<LetterId>| -> String {
@@ -499,7 +511,7 @@ fn emit_prefixes(
                 &PrefixRecord {
                     schema: "reboundary-direction-prefixes/1",
                     title: table.title().into(),
-                    direction: ExactVector::new(aim),
+                    direction: ExactVector::in_terms_of(generator, aim),
                     length: options.length,
                     p: found.counts.clone(),
                     words: words().collect(),

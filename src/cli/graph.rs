@@ -8,7 +8,7 @@ use super::graph_structure::{self, StructureRecord};
 use super::language_source::{self, Completeness, Loaded};
 use super::output::{emit, write_columns, write_json};
 use super::stats::Stats;
-use super::work::Work;
+use super::work::{Work, time_only};
 use crate::factor_graph::balls::{Census, census};
 use crate::factor_graph::canonical::{KINDS, Kind};
 use crate::factor_graph::census::{GraphCounts, count_graphs};
@@ -93,7 +93,7 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
         Some(path) => Some(ResultFolder::new(path, graph_census::MARK)?),
         None => None,
     };
-    let mut work = Work::begin(options.limits.budget(), options.common.quiet)?;
+    let mut work = Work::begin(time_only(options.limits.budget_time), options.common.quiet)?;
     // A table's language can be had for shorter words first; the others are read at once.
     let orders = match options.source.table {
         Some(_) => {
@@ -104,15 +104,14 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
     };
     let asked = orders[orders.len() - 1];
     let mut done = None;
-    let mut stopped = false;
+    let mut stop = None;
     for order in orders {
         match stage(&mut work, options, order) {
             Ok(stage) => done = Some(stage),
-            Err(Fault::Stopped(_)) => {
-                stopped = true;
+            Err(fault) => {
+                stop = Some(fault);
                 break;
             }
-            Err(fault) => return Err(fault),
         }
     }
     work.stats.bytes_per_word = Some(BYTES_PER_WORD);
@@ -132,9 +131,10 @@ pub fn run(options: &GraphOptions) -> Result<(), Fault> {
         let asked = asked.unwrap_or(n);
         format!("the graphs are complete to order {n} of {asked}")
     };
-    match stopped {
-        true => Err(work.stopped(complete_to.map(what))),
-        false => Ok(()),
+    match stop {
+        Some(Fault::Stopped(_)) => Err(work.stopped(complete_to.map(what))),
+        Some(fault) => Err(fault),
+        None => Ok(()),
     }
 }
 
@@ -148,6 +148,7 @@ fn stage(work: &mut Work, options: &GraphOptions, order: Option<usize>) -> Resul
         &options.settings,
         options.exactness,
         order,
+        options.limits.budget_memory,
         options.common.quiet,
         &work.control,
         &work.progress,

@@ -4,12 +4,14 @@ use super::arguments::{Exactness, Settings};
 use super::fault::Fault;
 use super::output::read_table;
 use super::progress::Progress;
+use super::words::total_words;
 use crate::language::suffixes::{Evidence, TextFault, factors_of_words};
 use crate::language::tree::BYTES_PER_WORD;
 use crate::language::{Language, walk};
 use crate::number::Tiers;
 use crate::reference::{self, ReferenceFault};
 use crate::run::{Control, memory};
+use crate::study::results::check_memory;
 use crate::table::{MOST_SIDES, Table};
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
@@ -82,6 +84,7 @@ pub fn load(
     settings: &Settings,
     exactness: Exactness,
     order: Option<usize>,
+    budget_memory: Option<u64>,
     quiet: bool,
     control: &Control,
     progress: &Progress,
@@ -91,7 +94,10 @@ pub fn load(
         let loaded = read_table(path, settings, quiet)?;
         let mesh = Mesh::new(&loaded.table);
         let engine = AnyEngine::new(&loaded.table, longest, exactness.arithmetic());
-        progress.begin("language", None);
+        progress.begin("counting", None);
+        let words = total_words(&loaded.table, &engine, &mesh, longest, control)?;
+        check_memory(words, longest, budget_memory)?;
+        progress.begin("language", Some(words));
         let (language, tiers) = walk::grow(&engine, &mesh, longest, control)?;
         return Ok(Loaded {
             title: loaded.table.title().into(),

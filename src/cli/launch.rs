@@ -2,12 +2,17 @@
 //!
 //! Their numbers may need a larger field than the table's. A [`Launcher`] reads them one after the other; in the
 //! end it gives the table in the field that all of them need, and what brings each number there.
+//!
+//! What a command writes can be read here again. Numbers are written in powers of a generator of their field. When that
+//! is the table's own field, its generator is `t`, as `reboundary table` tells it, and `t` is read as that. The generator
+//! of a larger field is written out as `root(polynomial, value)`: see [`Lifter::generator`].
 
 use super::fault::Fault;
-use crate::number::{Field, Real};
+use crate::number::{Field, Real, poly};
 use crate::table::diagnostic::Diagnostic;
 use crate::table::expression::Evaluator;
 use crate::table::{SideId, Table, Vector};
+use rug::{Integer, Rational};
 use std::ops::Range;
 
 /// Reads starts and aims.
@@ -20,9 +25,15 @@ pub struct Launcher<'a> {
 pub struct Lifter {
     evaluator: Evaluator,
     field: Field,
+    generator: String,
 }
 
 impl Lifter {
+    /// The generator of the final field as a launcher for the same table reads it.
+    pub fn generator(&self) -> &str {
+        &self.generator
+    }
+
     /// A number that was read, in the final field.
     pub fn number(&self, number: &Real) -> Real {
         self.evaluator.lift(number).lifted_to(&self.field)
@@ -50,10 +61,11 @@ pub fn fault(option: &str, text: &str, span: Range<usize>, message: String, help
 impl<'a> Launcher<'a> {
     /// A launcher for a table.
     pub fn new(table: &'a Table) -> Launcher<'a> {
-        Launcher {
-            table,
-            evaluator: Evaluator::new(table.field().clone()),
+        let mut evaluator = Evaluator::new(table.field().clone());
+        if !table.field().is_rational() {
+            evaluator.define_number("t", &table.field().generator());
         }
+        Launcher { table, evaluator }
     }
 
     /// The table in the field of everything that was read, and what brings the numbers there.
@@ -61,6 +73,7 @@ impl<'a> Launcher<'a> {
         let field = self.evaluator.field().clone();
         let lifter = Lifter {
             evaluator: self.evaluator,
+            generator: generator(self.table.field(), &field),
             field: field.clone(),
         };
         let table = self.table.in_field(&field, |n| lifter.number(n));
@@ -212,6 +225,44 @@ pub fn side_name(table: &Table, side: SideId) -> String {
         Some(index) if sharing.len() > 1 => format!("{letter}{}", index + 1),
         _ => letter.to_string(),
     }
+}
+
+/// `t` for the table's own field, else the generator as a root.
+fn generator(own: &Field, field: &Field) -> String {
+    if field.is_rational() || field.same(own) {
+        return "t".into();
+    }
+    let minimal = field.minimal_polynomial();
+    let sturm = poly::sturm_sequence(minimal);
+    // Ends because the roots of an irreducible polynomial are apart from each other.
+    let mut places = 20;
+    loop {
+        let near = field.generator().decimal(places);
+        let value = decimal_value(&near);
+        // The generator is less than one unit of the last place away; the other roots must be more than two.
+        let unit = Rational::from((
+            Integer::from(2),
+            Integer::from(Integer::u_pow_u(10, places as u32)),
+        ));
+        let (low, high) = (
+            Rational::from(&value - &unit),
+            Rational::from(&value + &unit),
+        );
+        if poly::roots_between(&sturm, &low, &high) == 1 {
+            return format!("root({}, {near})", poly::display(minimal, "x"));
+        }
+        places *= 2;
+    }
+}
+
+/// The number that a decimal stands for.
+fn decimal_value(text: &str) -> Rational {
+    let (whole, part) = text.split_once('.').unwrap_or((text, ""));
+    let digits: Integer = format!("{whole}{part}").parse().expect("digits");
+    Rational::from((
+        digits,
+        Integer::from(Integer::u_pow_u(10, part.len() as u32)),
+    ))
 }
 
 /// Commas outside parentheses.

@@ -35,7 +35,10 @@ pub mod launch;
 mod locate;
 mod measures;
 pub mod orbit_arguments;
+#[cfg(feature = "parquet")]
+mod orbit_parquet;
 mod orbit_picture;
+mod orbit_rows;
 mod orbits;
 pub mod output;
 mod periodic;

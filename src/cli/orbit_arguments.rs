@@ -1,6 +1,7 @@
 //! Options of the commands about single directions and periodic orbits.
 
 use super::arguments::{Common, Exactness, Format, Settings, parse_hits, parse_positive_length};
+use crate::figure::png::WIDEST;
 use clap::{Args, ValueEnum};
 use std::path::PathBuf;
 
@@ -160,12 +161,15 @@ pub struct TraceOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
-    /// File for a picture (SVG) of the orbit in the table
+    /// File for a picture of the orbit in the table: its name ends in .svg or .png
     #[arg(long, value_name = "PATH")]
     pub picture: Option<PathBuf>,
-    /// File for a picture (SVG) of the orbit as a straight line through at most 30 unfolded copies
+    /// File (.svg or .png) for a picture of the orbit as a straight line through at most 30 unfolded copies
     #[arg(long, value_name = "PATH")]
     pub unfolding: Option<PathBuf>,
+    /// Width of PNG pictures in pixels
+    #[arg(long, value_name = "PIXELS", default_value_t = 1200, value_parser = parse_pixels)]
+    pub picture_width: u32,
     /// No notices
     #[arg(long)]
     pub quiet: bool,
@@ -183,6 +187,20 @@ pub enum TraceFormat {
     Jsonl,
     /// Comma-separated values with a header
     Csv,
+}
+
+/// Formats of `orbits`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum OrbitsFormat {
+    /// One word a line
+    #[default]
+    Text,
+    /// JSON Lines: one object an orbit
+    Json,
+    /// Comma-separated values with a header
+    Csv,
+    /// Apache Parquet, in a file; only when the program was built with it
+    Parquet,
 }
 
 /// `orbits`.
@@ -223,15 +241,22 @@ pub struct OrbitsOptions {
     /// Longest blocks of --statistics
     #[arg(long, value_name = "B", default_value_t = 3, value_parser = parse_blocks)]
     pub blocks: usize,
-    /// Text: one word a line; CSV and JSON Lines add the exact start
+    /// Text: one word a line; CSV, JSON Lines and Parquet add the exact start
     #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
+    pub format: OrbitsFormat,
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
+}
+
+fn parse_pixels(text: &str) -> Result<u32, String> {
+    match text.parse::<u32>() {
+        Ok(width) if (1..=WIDEST).contains(&width) => Ok(width),
+        _ => Err(format!("write a whole number from 1 to {WIDEST}")),
+    }
 }
 
 fn parse_grid(text: &str) -> Result<(u64, u64), String> {

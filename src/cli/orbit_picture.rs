@@ -1,12 +1,50 @@
 //! Pictures of orbits in their table.
 
 use super::fault::Fault;
-use crate::figure::{Caption, Corridor, corridor_picture, orbit_picture};
+use crate::figure::{Caption, Corridor, corridor_picture, orbit_picture, png};
 use crate::orbit::trace::State;
+use crate::run::files::{check_place, write_whole};
 use crate::study::pictures::shape;
 use crate::table::{SideId, Table, Vector};
 use crate::unfold::Isometry;
 use crate::unfold::isometry::side_reflections;
+use std::path::Path;
+
+/// Refuses a file for a picture that could not be written, or whose name does not say what it is to be.
+pub fn check_picture(file: &Path) -> Result<(), Fault> {
+    if kind(file).is_none() {
+        return Err(Fault::BadInput(format!(
+            "{} is to be a picture, but its name says not which: write a name that ends in .svg or .png",
+            file.display()
+        )));
+    }
+    Ok(check_place(file)?)
+}
+
+#[derive(Clone, Copy, PartialEq, Eq)]
+enum Kind {
+    Svg,
+    Png,
+}
+
+fn kind(file: &Path) -> Option<Kind> {
+    let ending = file.extension()?.to_str()?.to_ascii_lowercase();
+    match ending.as_str() {
+        "svg" => Some(Kind::Svg),
+        "png" => Some(Kind::Png),
+        _ => None,
+    }
+}
+
+/// Writes a picture, given as SVG, as what the file's name says; a PNG as wide as stated, in pixels.
+pub fn write_picture(file: &Path, svg: &str, width: u32) -> Result<(), Fault> {
+    if kind(file) != Some(Kind::Png) {
+        return Ok(write_whole(file, |out| out.write_all(svg.as_bytes()))?);
+    }
+    let bytes = png::from_svg(svg, width)
+        .map_err(|e| Fault::BadInput(format!("cannot write {}: {e}", file.display())))?;
+    Ok(write_whole(file, |out| out.write_all(&bytes))?)
+}
 
 /// An orbit through the given points, in order, as SVG.
 pub fn draw_orbit(

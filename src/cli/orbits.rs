@@ -1,16 +1,18 @@
 //! `reboundary orbits`.
 
-use super::arguments::Format;
 use super::fault::Fault;
 use super::launch::{Launcher, side_name};
-use super::orbit_arguments::OrbitsOptions;
+use super::orbit_arguments::{OrbitsFormat, OrbitsOptions};
+use super::orbit_rows::{Row, RowWriter, check_format};
 use super::output::{emit, note, read_table};
 use super::progress::{Progress, interruptible_control};
 use crate::language::{measure, walk};
-use crate::number::Enclosure;
+use crate::number::{Enclosure, Real};
 use crate::orbit::ensemble::Sample;
 use crate::orbit::law::{Ensemble, Law};
-use crate::orbit::statistics::{Estimate, OrbitShares, PathMeter, Statistics, orbit_shares};
+use crate::orbit::statistics::{
+    Estimate, OrbitShares, PathMeter, Statistics, decimal_order, orbit_shares, power_of_ten,
+};
 use crate::orbit::trace::StartFault;
 use crate::orbit::{Start, TraceTables};
 use crate::run::Control;
@@ -29,11 +31,12 @@ use std::path::Path;
 const BATCH_LETTERS: usize = 1 << 22;
 
 pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
+    check_format(options)?;
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     if let Some(file) = &options.statistics {
         check_place(file)?;
     }
-    let (table, law) = read_law(options, &loaded.table)?;
+    let (table, generator, law) = read_law(options, &loaded.table)?;
     let tables = TraceTables::new(&table);
     let ensemble = Ensemble::new(&tables, law);
     let count = match (options.count, ensemble.count()) {
@@ -57,6 +60,7 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
     let mut job = Job {
         options,
         table: &table,
+        generator,
         ensemble: &ensemble,
         meter: PathMeter::new(&table),
         count,
@@ -80,16 +84,22 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
     }
     done?;
     match &options.statistics {
-        Some(path) => write_statistics(options, &table, &job.statistics, path, &control),
+        Some(path) => {
+            let found = (&job.statistics, job.meter.order());
+            write_statistics(options, &table, found, path, &control)
+        }
         None => Ok(()),
     }
 }
 
-/// The law, and the table in the field that its starts need.
-fn read_law(options: &OrbitsOptions, table: &Table) -> Result<(Table, Law), Fault> {
+/// The table in the field that the starts of a law need, that field's generator as it is written, and the law.
+type ReadLaw = (Table, String, Law);
+
+fn read_law(options: &OrbitsOptions, table: &Table) -> Result<ReadLaw, Fault> {
     let mut launcher = Launcher::new(table);
+    let own = |law: Law| Ok((table.clone(), "t".into(), law));
     if let Some((places, directions)) = options.grid {
-        return Ok((table.clone(), Law::Grid { places, directions }));
+        return own(Law::Grid { places, directions });
     }
     if let Some(path) = &options.starts {
         return read_starts(launcher, path);
@@ -98,18 +108,20 @@ fn read_law(options: &OrbitsOptions, table: &Table) -> Result<(Table, Law), Faul
         let (side, fraction) = launcher.side_start(start)?;
         let (table, lifter) = launcher.finish();
         let fraction = lifter.number(&fraction);
-        return Ok((table, Law::Point { side, fraction }));
+        let generator = lifter.generator().to_string();
+        return Ok((table, generator, Law::Point { side, fraction }));
     }
     let aim = match (&options.aim, &options.heading) {
         (Some(aim), _) => launcher.aim(aim)?,
         (None, Some(heading)) => launcher.heading(heading)?,
-        (None, None) => return Ok((table.clone(), Law::Cosine)),
+        (None, None) => return own(Law::Cosine),
     };
     let (table, lifter) = launcher.finish();
-    Ok((table, Law::Direction(lifter.vector(&aim))))
+    let aim = lifter.vector(&aim);
+    Ok((table, lifter.generator().to_string(), Law::Direction(aim)))
 }
 
-fn read_starts(mut launcher: Launcher<'_>, path: &Path) -> Result<(Table, Law), Fault> {
+fn read_starts(mut launcher: Launcher<'_>, path: &Path) -> Result<ReadLaw, Fault> {
     let place = |row: usize, text: String| {
         Fault::BadInput(format!("{}, row {row}: {text}", path.display()))
     };
@@ -142,7 +154,7 @@ fn read_starts(mut launcher: Launcher<'_>, path: &Path) -> Result<(Table, Law), 
         read.push((side, fraction, aim));
     }
     let (table, lifter) = launcher.finish();
-    let starts = read
+    let starts: Vec<Start> = read
         .into_iter()
         .map(|(side, fraction, aim)| Start {
             side,
@@ -150,12 +162,13 @@ fn read_starts(mut launcher: Launcher<'_>, path: &Path) -> Result<(Table, Law), 
             aim: lifter.vector(&aim),
         })
         .collect();
-    Ok((table, Law::List(starts)))
+    Ok((table, lifter.generator().to_string(), Law::List(starts)))
 }
 
 struct Job<'a> {
     options: &'a OrbitsOptions,
     table: &'a Table,
+    generator: String,
     ensemble: &'a Ensemble<'a>,
     meter: PathMeter,
     count: u64,
@@ -166,22 +179,20 @@ struct Job<'a> {
 
 impl Job<'_> {
     fn write_all(&mut self, out: &mut dyn Write) -> io::Result<()> {
-        if self.options.format == Format::Csv {
-            writeln!(out, "orbit,side,fraction,aim_x,aim_y,word")?;
-        }
+        let mut writer = RowWriter::new(self.options.format, out)?;
         let most = (BATCH_LETTERS / self.options.hits).clamp(1, 4096) as u64;
         let mut first = 0;
         while first < self.count {
             let batch = most.min(self.count - first);
-            let rows: Vec<Result<Row, StartFault>> = (first..first + batch)
+            let rows: Vec<Result<Traced, StartFault>> = (first..first + batch)
                 .into_par_iter()
-                .map(|index| self.row(index))
+                .map(|index| self.trace(index))
                 .collect();
             for (index, row) in (first..).zip(rows) {
                 match row {
-                    Ok(row) => {
-                        writeln!(out, "{}", row.text)?;
-                        if let Some(shares) = row.shares {
+                    Ok(traced) => {
+                        writer.write(&traced.row)?;
+                        if let Some(shares) = traced.shares {
                             self.statistics.add(shares);
                         }
                     }
@@ -196,10 +207,10 @@ impl Job<'_> {
                 return Err(io::Error::other("stopped"));
             }
         }
-        Ok(())
+        writer.finish()
     }
 
-    fn row(&self, index: u64) -> Result<Row, StartFault> {
+    fn trace(&self, index: u64) -> Result<Traced, StartFault> {
         let options = self.options;
         let sample = self.ensemble.sample(options.seed, index, options.hits)?;
         let shares = options.statistics.is_some().then(|| {
@@ -207,34 +218,32 @@ impl Job<'_> {
             let word = sample.word.iter().map(|s| self.table.letter_id(*s));
             orbit_shares(&word.collect::<Vec<_>>(), options.blocks, length)
         });
-        Ok(Row {
-            text: row(self.table, index, &sample, options.format),
+        Ok(Traced {
+            row: self.row(index, &sample),
             shares,
         })
     }
-}
 
-struct Row {
-    text: String,
-    shares: Option<OrbitShares>,
-}
-
-fn row(table: &Table, index: u64, sample: &Sample, format: Format) -> String {
-    let word = spell_code(table, &sample.word);
-    let side = side_name(table, sample.start.side);
-    let (fraction, aim) = (&sample.start.fraction, &sample.start.aim);
-    match format {
-        Format::Text => word,
-        Format::Csv => format!("{index},{side},{fraction},{},{},{word}", aim.x, aim.y),
-        Format::Json => serde_json::json!({
-            "orbit": index,
-            "side": side,
-            "fraction": fraction.to_string(),
-            "aim": [aim.x.to_string(), aim.y.to_string()],
-            "word": word,
-        })
-        .to_string(),
+    fn row(&self, index: u64, sample: &Sample) -> Row {
+        let word = spell_code(self.table, &sample.word);
+        if self.options.format == OrbitsFormat::Text {
+            return Row::of_word(word);
+        }
+        let exact = |number: &Real| number.display_in(&self.generator);
+        Row {
+            orbit: index,
+            side: side_name(self.table, sample.start.side),
+            fraction: exact(&sample.start.fraction),
+            aim: [exact(&sample.start.aim.x), exact(&sample.start.aim.y)],
+            word,
+        }
     }
+}
+
+/// An orbit, ready to be written and counted.
+struct Traced {
+    row: Row,
+    shares: Option<OrbitShares>,
 }
 
 /// One row of the statistics.
@@ -242,16 +251,53 @@ struct Compared {
     quantity: String,
     estimate: Estimate,
     exact: Enclosure,
+    /// Both are in units of ten to this power.
+    order: i32,
+}
+
+impl Compared {
+    /// A number of this row in the table's unit. The exponent is written when floating point might not reach.
+    fn in_unit(&self, number: f64) -> String {
+        match self.order {
+            -99..=99 => (number * 10f64.powi(self.order)).to_string(),
+            order => format!("{number}e{order}"),
+        }
+    }
+
+    fn exact_in_unit(&self) -> String {
+        match self.order {
+            0 => decimal(&self.exact),
+            -99..=99 => self.in_unit(self.exact.to_f64()),
+            order => format!("{}e{order}", decimal(&self.exact)),
+        }
+    }
+}
+
+/// π·area/perimeter in units of ten to a power.
+fn mean_chord(table: &Table, order: i32) -> Enclosure {
+    // Absolute bits suffice once the numbers are near 1; a thin table has a small area.
+    let squared = &squared_area(table, &facts(table)) / &power_of_ten(4 * order);
+    let small = decimal_order(&squared).min(0).unsigned_abs();
+    let bits = 160 + 8 * small;
+    let area = squared.enclosure_within(bits).sqrt();
+    let mut perimeter = Enclosure::zero(bits);
+    for side in 0..table.sides() {
+        let square = table.side_vector(side).squared_length(table.form());
+        let square = &square / &power_of_ten(2 * order);
+        perimeter.add_assign(&square.enclosure_within(bits).sqrt());
+    }
+    let chord = Enclosure::pi(bits).mul(&area).div(&perimeter);
+    chord.expect("a perimeter is positive")
 }
 
 fn write_statistics(
     options: &OrbitsOptions,
     table: &Table,
-    statistics: &Statistics,
+    (statistics, order): (&Statistics, i32),
     path: &Path,
     control: &Control,
 ) -> Result<(), Fault> {
-    let rows = compare(options, table, statistics, control)?;
+    let rows = compare(options, table, statistics, order, control)?;
     let z = |row: &Compared| row.estimate.z(row.exact.to_f64());
     write_whole(path, |out| {
         let mut csv = csv::Writer::from_writer(out);
@@ -259,9 +305,9 @@ fn write_statistics(
         for row in &rows {
             csv.write_record([
                 row.quantity.clone(),
-                row.estimate.mean.to_string(),
-                row.estimate.standard_error.to_string(),
-                decimal(&row.exact),
+                row.in_unit(row.estimate.mean),
+                row.in_unit(row.estimate.standard_error),
+                row.exact_in_unit(),
                 format!("{:.3}", z(row)),
             ])?;
         }
@@ -282,17 +328,14 @@ fn compare(
     options: &OrbitsOptions,
     table: &Table,
     statistics: &Statistics,
+    order: i32,
     control: &Control,
 ) -> Result<Vec<Compared>, Fault> {
-    let bits = 160;
-    let area = squared_area(table, &facts(table))
-        .enclosure_within(bits)
-        .sqrt();
-    let chord = Enclosure::pi(bits).mul(&area).div(&table.perimeter(bits));
     let mut rows = vec![Compared {
         quantity: "mean chord".into(),
         estimate: statistics.chord().expect("at least two orbits"),
-        exact: chord.expect("a perimeter is positive"),
+        exact: mean_chord(table, order),
+        order,
     }];
     let mesh = Mesh::new(table);
     let engine = AnyEngine::new(table, options.blocks, Arithmetic::Tiered);
@@ -314,6 +357,7 @@ fn compare(
                 exact: measure
                     .div(&measures.whole)
                     .expect("a perimeter is positive"),
+                order: 0,
             });
         }
     }

@@ -5,7 +5,7 @@ use super::fault::Fault;
 use super::launch::side_name;
 use super::orbit_arguments::PeriodicOptions;
 use super::orbit_picture::draw_orbit;
-use super::output::{emit, note, read_table, write_columns, write_json};
+use super::output::{emit, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
 use crate::orbit::periodic::{PeriodicWord, Wanted, letter_class, periodic_words};
 use crate::orbit::{Step, TraceTables, Tracer};
@@ -45,9 +45,6 @@ pub fn run(options: &PeriodicOptions) -> Result<(), Fault> {
         draw_all(table, &found, &folder)?;
         folder.write(MARK, |out| write_csv(table, &found, out))?;
         folder.finish()?;
-    }
-    if table.holes() > 0 && !options.common.quiet {
-        note("on a table with holes, orbits whose word of sides is a square may be missing");
     }
     emit(options.out.as_deref(), |out| match options.format {
         Format::Text => write_text(table, &found, out),
@@ -89,11 +86,14 @@ struct Listed {
     /// Translation of an even word, glide of an odd one; also the direction of the orbit.
     displacement: ExactVector,
     squared_orbit_length: Exact,
-    /// Length of the orbit for one turn of the word.
+    /// Length of the orbit from `start` until it closes.
     orbit_length: String,
+    /// Hits until the orbit from `start` closes: the letters of the word, or twice as many for an odd word in a strip
+    /// beside its axis, where a hole is in the way.
+    hits: usize,
     /// The strip of parallel orbits; for an odd word that of the word doubled.
     strip: StripRecord,
-    /// The axis of an odd word, the middle of the strip of an even one.
+    /// The middle of the strip; for an odd word that is the axis, unless a hole is in the way.
     start: Launch,
 }
 
@@ -103,7 +103,7 @@ struct PeriodicRecord {
     title: String,
     length: usize,
     stable_only: bool,
-    /// False on tables with holes, where a word of sides that is a square may be missing.
+    /// No word is missing up to the length.
     complete: bool,
     /// g of the plane form: second coordinates are in units of √g.
     form: Exact,
@@ -112,7 +112,7 @@ struct PeriodicRecord {
 }
 
 fn listed(table: &Table, word: &PeriodicWord) -> Listed {
-    let (start, squared) = (word.start(table), word.squared_length(table));
+    let (start, squared) = (word.start(table), word.squared_orbit_length(table));
     let squared_width = word.squared_width(table);
     Listed {
         word: spell_code(table, &word.word),
@@ -122,6 +122,7 @@ fn listed(table: &Table, word: &PeriodicWord) -> Listed {
         displacement: ExactVector::new(&word.closing.displacement),
         orbit_length: root_decimal(&squared),
         squared_orbit_length: Exact::new(&squared),
+        hits: word.turns() * word.word.len(),
         strip: StripRecord {
             width: root_decimal(&squared_width),
             squared_width: Exact::new(&squared_width),
@@ -157,7 +158,7 @@ fn record(table: &Table, found: &[PeriodicWord], options: &PeriodicOptions) -> P
         title: table.title().into(),
         length: options.length,
         stable_only: options.stable_only,
-        complete: table.holes() == 0,
+        complete: true,
         form: Exact::new(table.form()),
         by_length,
         words: found.iter().map(|w| listed(table, w)).collect(),
@@ -174,6 +175,7 @@ fn write_text(table: &Table, found: &[PeriodicWord], out: &mut dyn Write) -> io:
                 row.word,
                 row.parity.into(),
                 if row.stable { "yes" } else { "no" }.into(),
+                row.hits.to_string(),
                 row.orbit_length,
                 row.strip.width,
                 format!("{}@{}", row.start.side, row.start.fraction.exact),
@@ -182,7 +184,7 @@ fn write_text(table: &Table, found: &[PeriodicWord], out: &mut dyn Write) -> io:
         })
         .collect();
     let header = [
-        "letters", "word", "parity", "stable", "length", "width", "start", "aim",
+        "letters", "word", "parity", "stable", "hits", "length", "width", "start", "aim",
     ];
     write_columns(out, &header, &rows)
 }
@@ -194,6 +196,7 @@ fn write_csv(table: &Table, found: &[PeriodicWord], out: &mut dyn Write) -> io::
         "word",
         "parity",
         "stable",
+        "hits",
         "squared_orbit_length",
         "orbit_length",
         "squared_width",
@@ -211,6 +214,7 @@ fn write_csv(table: &Table, found: &[PeriodicWord], out: &mut dyn Write) -> io::
             row.word,
             row.parity.into(),
             row.stable.to_string(),
+            row.hits.to_string(),
             row.squared_orbit_length.exact,
             row.orbit_length,
             row.strip.squared_width.exact,
@@ -232,11 +236,11 @@ fn draw_all(table: &Table, found: &[PeriodicWord], folder: &ResultFolder) -> Res
         let spelled = spell_code(table, &word.word);
         let title = format!("Periodic orbit {spelled}");
         let description = format!(
-            "One turn of a periodic orbit with {} hits, length {:.6}.",
-            word.word.len(),
-            word.squared_length(table).to_f64().sqrt()
+            "A periodic orbit with {} hits, length {:.6}.",
+            word.turns() * word.word.len(),
+            word.squared_orbit_length(table).to_f64().sqrt()
         );
-        let svg = draw_orbit(table, &one_turn(&tables, word)?, &title, &description)?;
+        let svg = draw_orbit(table, &closed_orbit(&tables, word)?, &title, &description)?;
         // Long words would not fit in a file name.
         let short: String = spelled.chars().take(40).collect();
         let name = format!("{:04}-{short}.svg", i + 1);
@@ -245,8 +249,8 @@ fn draw_all(table: &Table, found: &[PeriodicWord], folder: &ResultFolder) -> Res
     Ok(())
 }
 
-/// The points of one turn, the first again at the end, found by following the orbit; that also checks the word.
-fn one_turn(tables: &TraceTables, word: &PeriodicWord) -> Result<Vec<Vector>, Fault> {
+/// The points of the orbit, the first again at the end, found by following it; that also checks the word.
+fn closed_orbit(tables: &TraceTables, word: &PeriodicWord) -> Result<Vec<Vector>, Fault> {
     let start = word.start(tables.table());
     let mut tracer =
         Tracer::new(tables, start).map_err(|f| Fault::Failed(format!("a periodic word: {f}")))?;
@@ -255,7 +259,7 @@ fn one_turn(tables: &TraceTables, word: &PeriodicWord) -> Result<Vec<Vector>, Fa
     while let Step::Hit(_) = tracer.advance() {
         points.push(tracer.state().point);
     }
-    if tracer.word() != word.word {
+    if tracer.word() != word.word.repeat(word.turns()) {
         return Err(Fault::Failed(format!(
             "the orbit of the periodic word {} does not follow it",
             spell_code(tables.table(), &word.word)

@@ -240,7 +240,7 @@ impl Found {
             diagonals: self
                 .diagonals
                 .iter()
-                .map(|d| listed(&self.table, d))
+                .map(|d| listed(&self.table, "t", d))
                 .collect(),
         }
     }

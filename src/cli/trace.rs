@@ -3,15 +3,15 @@
 use super::fault::Fault;
 use super::launch::{Launcher, fault, side_name};
 use super::orbit_arguments::{TraceFormat, TraceOptions};
-use super::orbit_picture::{draw_orbit, draw_unfolding};
+use super::orbit_picture::{check_picture, draw_orbit, draw_unfolding, write_picture};
 use super::output::{emit, note, read_table, write_json};
+use super::progress::interruptible_control;
 use super::trace_record::{record, write_csv, write_lines};
 use crate::number::Real;
 use crate::orbit::ensemble::{StartLaw, random_start};
 use crate::orbit::launch::{FirstHit, PointFault, backward, first_hit};
-use crate::orbit::path::{Limits, Path, PathEnd, follow};
+use crate::orbit::path::{Limits, Path, PathEnd, follow_until};
 use crate::orbit::{Start, TraceTables};
-use crate::run::files::{check_place, write_whole};
 use crate::study::folder::spell_code;
 use crate::table::{SideId, Table, Vector};
 
@@ -19,6 +19,8 @@ use crate::table::{SideId, Table, Vector};
 pub struct Traced {
     /// The table, in the field of start and aim.
     pub table: Table,
+    /// The generator of that field, as it is written.
+    pub generator: String,
     /// The point inside the table that the orbit started from, when it did.
     pub from: Option<Vector>,
     /// Followed back in time.
@@ -39,7 +41,7 @@ impl Traced {
 
 pub fn run(options: &TraceOptions) -> Result<(), Fault> {
     for file in options.picture.iter().chain(&options.unfolding) {
-        check_place(file)?;
+        check_picture(file)?;
     }
     let traced = trace(options)?;
     emit(options.out.as_deref(), |out| match options.format {
@@ -52,6 +54,12 @@ pub fn run(options: &TraceOptions) -> Result<(), Fault> {
     if !options.quiet {
         describe(&traced).iter().for_each(|text| note(text));
     }
+    if traced.end == PathEnd::Stopped {
+        let letters = traced.path.as_ref().map_or(0, |p| p.word.len());
+        return Err(Fault::Stopped(format!(
+            "a signal came after {letters} letters; the orbit up to there was written"
+        )));
+    }
     Ok(())
 }
 
@@ -63,7 +71,7 @@ enum Launch {
 
 fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
     let loaded = read_table(&options.table, &options.settings, options.quiet)?;
-    let (table, launch, distance) = launch(options, &loaded.table)?;
+    let (table, generator, launch, distance) = launch(options, &loaded.table)?;
     let tables = TraceTables::new(&table);
     let refused = |text: String| Fault::BadInput(text);
     let (start, from, gone) = match launch {
@@ -91,6 +99,7 @@ fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
                     let end = PathEnd::Corner(corner);
                     return Ok(Traced {
                         table,
+                        generator,
                         from: Some(point),
                         backward: options.backward,
                         path: None,
@@ -113,6 +122,7 @@ fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
     if limits.squared_distance.as_ref().is_some_and(too_far) {
         return Ok(Traced {
             table,
+            generator,
             from,
             backward: options.backward,
             path: None,
@@ -122,8 +132,11 @@ fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
     let wants_states = options.format != TraceFormat::Text
         || options.picture.is_some()
         || options.unfolding.is_some();
-    let path = follow(&tables, start, &limits, wants_states).map_err(|f| refused(f.to_string()))?;
+    let control = interruptible_control();
+    let path = follow_until(&tables, start, &limits, wants_states, &control)
+        .map_err(|f| refused(f.to_string()))?;
     Ok(Traced {
+        generator,
         from,
         backward: options.backward,
         end: path.end,
@@ -132,8 +145,11 @@ fn trace(options: &TraceOptions) -> Result<Traced, Fault> {
     })
 }
 
-/// Reads where to start, and the greatest distance; the table comes back in the field that they need.
-fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Option<Real>), Fault> {
+/// The table in the field that start, aim and distance need, that field's generator as it is written, and all three.
+type Launched = (Table, String, Launch, Option<Real>);
+
+/// Reads where to start, and the greatest distance.
+fn launch(options: &TraceOptions, table: &Table) -> Result<Launched, Fault> {
     let mut launcher = Launcher::new(table);
     let distance = match &options.distance {
         Some(text) => Some(launcher.positive("--distance", text)?),
@@ -152,7 +168,8 @@ fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Optio
         }
         let (table, lifter) = launcher.finish();
         let distance = distance.map(|d| lifter.number(&d));
-        return Ok((table, Launch::Side(start), distance));
+        let generator = lifter.generator().to_string();
+        return Ok((table, generator, Launch::Side(start), distance));
     }
     let start = match &options.start {
         Some(text) => Some(launcher.side_start(text)?),
@@ -178,7 +195,8 @@ fn launch(options: &TraceOptions, table: &Table) -> Result<(Table, Launch, Optio
         (None, Some(point)) => Launch::Inside(lifter.vector(&point), aim),
         (None, None) => unreachable!("the parser asks for a start, a point or a seed"),
     };
-    Ok((table, launch, distance.map(|d| lifter.number(&d))))
+    let distance = distance.map(|d| lifter.number(&d));
+    Ok((table, lifter.generator().to_string(), launch, distance))
 }
 
 fn point_fault(table: &Table, text: &str, refused: PointFault) -> Fault {
@@ -217,7 +235,7 @@ fn describe(traced: &Traced) -> Vec<String> {
         PathEnd::Distance => notes.push(format!(
             "the next hit is farther than the distance allows; the word has {letters} letters"
         )),
-        PathEnd::Letters => {}
+        PathEnd::Letters | PathEnd::Stopped => {}
     }
     notes
 }
@@ -232,11 +250,11 @@ fn draw(options: &TraceOptions, traced: &Traced) -> Result<(), Fault> {
     if let Some(file) = &options.picture {
         let description = format!("An orbit with {} hits.", path.word.len());
         let svg = draw_orbit(&traced.table, &points, &title, &description)?;
-        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
+        write_picture(file, &svg, options.picture_width)?;
     }
     if let Some(file) = &options.unfolding {
         let svg = draw_unfolding(&traced.table, &path.word, &path.states)?;
-        write_whole(file, |out| out.write_all(svg.as_bytes()))?;
+        write_picture(file, &svg, options.picture_width)?;
     }
     Ok(())
 }

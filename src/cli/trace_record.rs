@@ -1,5 +1,6 @@
 //! What `trace` writes beside the word.
 
+use super::launch::side_name;
 use super::trace::Traced;
 use crate::orbit::path::PathEnd;
 use crate::orbit::trace::State;
@@ -12,9 +13,20 @@ use std::io::{self, Write};
 #[serde(tag = "kind", rename_all = "snake_case")]
 enum End {
     Hits,
-    Distance { hits: usize },
-    Corner { corner: u8, after_hits: usize },
-    Period { hits: usize },
+    Distance {
+        hits: usize,
+    },
+    Corner {
+        corner: u8,
+        after_hits: usize,
+    },
+    Period {
+        hits: usize,
+    },
+    /// A signal came.
+    Stopped {
+        hits: usize,
+    },
 }
 
 #[derive(Serialize)]
@@ -38,18 +50,20 @@ pub struct TraceRecord {
     end: End,
     /// Hits after which the orbit closed exactly, when it did.
     period: Option<usize>,
+    /// What exact numbers are written in powers of: `t`, the generator of the table's field, or a root.
+    generator: String,
     /// g of the plane form: second coordinates are in units of √g.
     form: Exact,
     hits: Vec<Hit>,
 }
 
-fn hit(table: &Table, number: usize, state: &State) -> Hit {
+fn hit(table: &Table, generator: &str, number: usize, state: &State) -> Hit {
     Hit {
         hit: number,
-        side: table.letter(state.side).to_string(),
-        fraction: Exact::new(&state.fraction),
-        point: ExactVector::new(&state.point),
-        direction: ExactVector::new(&state.direction),
+        side: side_name(table, state.side),
+        fraction: Exact::in_terms_of(generator, &state.fraction),
+        point: ExactVector::in_terms_of(generator, &state.point),
+        direction: ExactVector::in_terms_of(generator, &state.direction),
     }
 }
 
@@ -60,7 +74,7 @@ fn states(traced: &Traced) -> &[State] {
 fn hits(traced: &Traced) -> impl Iterator<Item = Hit> + '_ {
     (1..)
         .zip(states(traced))
-        .map(|(number, state)| hit(&traced.table, number, state))
+        .map(|(number, state)| hit(&traced.table, &traced.generator, number, state))
 }
 
 /// Gathers the JSON of a trace.
@@ -73,18 +87,21 @@ pub fn record(traced: &Traced) -> TraceRecord {
         title: traced.table.title().into(),
         word: traced.word(),
         backward: traced.backward,
-        from: traced.from.as_ref().map(ExactVector::new),
+        from: (traced.from.as_ref())
+            .map(|point| ExactVector::in_terms_of(&traced.generator, point)),
         end: match (traced.end, period) {
             (PathEnd::Corner(corner), _) => End::Corner {
                 corner: corner.0,
                 after_hits: letters,
             },
+            (PathEnd::Stopped, _) => End::Stopped { hits: letters },
             (PathEnd::Distance, _) => End::Distance { hits: letters },
             (PathEnd::Letters, Some(hits)) => End::Period { hits },
             (PathEnd::Letters, None) => End::Hits,
         },
         period,
-        form: Exact::new(traced.table.form()),
+        generator: traced.generator.clone(),
+        form: Exact::in_terms_of(&traced.generator, traced.table.form()),
         hits: hits(traced).collect(),
     }
 }

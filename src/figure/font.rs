@@ -8,7 +8,7 @@ use super::FigureError;
 use plotters::style::{FontDesc, FontFamily, FontStyle, register_font};
 use std::sync::OnceLock;
 
-static BYTES: &[u8] = include_bytes!("font/dejavu-sans-subset.ttf");
+pub(super) static BYTES: &[u8] = include_bytes!("font/dejavu-sans-subset.ttf");
 
 /// Family list written to the SVG; also the name under which the font is registered.
 pub(crate) const FAMILY: &str = "DejaVu Sans, Verdana, Helvetica, Arial, sans-serif";

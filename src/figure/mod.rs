@@ -1,4 +1,4 @@
-//! Pictures: charts, tables, corridors, partitions into cells, orbits and small graphs, as SVG text.
+//! Pictures: charts, tables, corridors, partitions into cells, orbits and small graphs, as SVG text; and [`png`] of them.
 //!
 //! This room takes plain numbers and words and knows nothing of the rest of the crate. Every picture
 //! is a pure function of its input: the same input gives the same bytes on every machine with the same
@@ -23,6 +23,7 @@ mod font;
 mod geometry;
 mod graph;
 mod plane;
+pub mod png;
 mod scale;
 mod shading;
 mod small_graphs;
@@ -110,6 +111,22 @@ pub enum FigureError {
     BadWidth {
         /// The width given.
         width: f64,
+    },
+    /// A PNG of no, or too many, pixels.
+    #[error(
+        "a picture {width} pixels wide cannot be drawn: the width must be at least 1 and at most {widest}, and the whole no more than 2^26 pixels"
+    )]
+    BadPixels {
+        /// The width asked for.
+        width: u32,
+        /// The greatest width.
+        widest: u32,
+    },
+    /// A text is no picture of this room.
+    #[error("the text is not a picture of this program: {reason}")]
+    NotAPicture {
+        /// What is wrong with it.
+        reason: String,
     },
     /// The built-in font could not be used.
     #[error("the built-in font failed: {reason}")]

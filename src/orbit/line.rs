@@ -275,3 +275,44 @@ pub fn point_on(table: &Table, side: usize, fraction: &Real) -> Vector {
         .corner(side)
         .plus(&table.side_vector(side).times(fraction))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The bound after n bounces is that of the module, computed anew, and decides exactly outside of it.
+    #[test]
+    fn bounds_grow_as_derived() {
+        let corners = [(0, 0), (7, 1), (3, 5)].map(|(x, y)| Vector::new(x.into(), y.into()));
+        let table =
+            Table::new("t", corners.to_vec(), 3.into(), vec!['a', 'b', 'c']).expect("a table");
+        let tables = LineTables::new(&table);
+        let start = point_on(&table, 0, &Real::from(rug::Rational::from((1, 3))));
+        let exact = ExactLine::new(&start, &Vector::new(1.into(), 2.into()));
+        let mut line = FloatLine::from_wide(&WideLine::from_exact(&exact), &tables);
+        let (unit, tabulated, reach) = (2f64.powi(-53), 2f64.powi(-48), tables.reach);
+        let (mut a, mut m) = (2.0 * tabulated, 4.0 * tabulated * reach);
+        for n in 0..5000 {
+            line.bounce(&tables, n % 3);
+            a += 4.0 * unit + 2.0 * tabulated;
+            m += reach * (a + 8.0 * tabulated + 16.0 * unit);
+            assert!(
+                line.direction_error >= 0.999 * a && line.moment_error >= 0.999 * m,
+                "{n}"
+            );
+        }
+        // The corner's value is placed just inside and just outside of the bound.
+        let bound = reach * (a + 4.0 * tabulated) + 1.01 * m;
+        let v = tables.float_corners[1];
+        let at = line.d[0] * v[1] - line.d[1] * v[0];
+        for (share, decided) in [
+            (0.99, None),
+            (-0.99, None),
+            (1.01, Some(Sign::Positive)),
+            (-1.01, Some(Sign::Negative)),
+        ] {
+            line.moment = at - share * bound;
+            assert_eq!(line.side_of(&tables, 1), decided, "{share}");
+        }
+    }
+}

@@ -2,6 +2,7 @@
 
 use super::trace::{Start, StartFault, State, Step, TraceTables, Tracer};
 use crate::number::Real;
+use crate::run::Control;
 use crate::table::{CornerId, SideId};
 
 /// When to stop.
@@ -24,6 +25,8 @@ pub enum PathEnd {
     Distance,
     /// The orbit runs into a corner.
     Corner(CornerId),
+    /// The control asked to stop.
+    Stopped,
 }
 
 /// A followed orbit.
@@ -50,6 +53,21 @@ pub fn follow(
     limits: &Limits,
     wants_states: bool,
 ) -> Result<Path, StartFault> {
+    follow_until(tables, start, limits, wants_states, &Control::new())
+}
+
+/// The same, until a control asks to stop: what was followed before is complete, and ends with
+/// [`PathEnd::Stopped`].
+///
+/// # Errors
+/// Those of [`Tracer::new`].
+pub fn follow_until(
+    tables: &TraceTables,
+    start: Start,
+    limits: &Limits,
+    wants_states: bool,
+    control: &Control,
+) -> Result<Path, StartFault> {
     let form = tables.table().form();
     let squared = start.aim.squared_length(form);
     // The way in lengths of the aim: every direction of the orbit has that length.
@@ -73,6 +91,10 @@ pub fn follow(
         most.is_some_and(|most| gone * gone > *most)
     };
     while path.word.len() < limits.letters {
+        if control.tick(1).is_err() {
+            path.end = PathEnd::Stopped;
+            break;
+        }
         if path.period.is_none() {
             match tracer.advance() {
                 Step::Hit(side) => path.word.push(side),

@@ -13,8 +13,19 @@
 //!   close after two turns; their strip reaches as far to both sides as the nearest corner image allows,
 //!   because P reflects the corner images of the first turn in the axis to those of the second.
 //!
-//! A turn of a power u^m with m > 1 adds nothing: if the product for u^m is a translation by t ≠ 0, the one for
-//! u is no rotation (its power would fix a point), so u is periodic itself, in the same strip.
+//! **Odd words on a table with holes.** A word of sides is then a bundle of beams, and P depends on the word alone. A line
+//! parallel to the axis, at signed distance h from it, comes back after one turn at −h, so it closes after two turns
+//! with the code ww exactly when h is in some beam's interval of distances and −h in some beam's. A simple polygon has one
+//! beam for w, an interval with h and −h holds 0, and so the axis is there too. With holes h and −h may lie in two
+//! beams, on two sides of a hole that stands in the way of the axis. So the search keeps, for every odd word, the
+//! intervals of all its beams, and pairs them afterwards: beams i ≠ j give the strip I(i) ∩ −I(j), which is the same set of
+//! orbits as its mirror image I(j) ∩ −I(i) one turn later. Beams share no line, so at most one of them holds the axis.
+//! No word longer than w has to be looked at.
+//!
+//! A turn of a power u^m with m > 1 adds nothing else. Let the product for u^m be a translation by t ≠ 0, or a glide
+//! along t, that keeps a line L. The product Q for u is then no rotation (its power would fix a point). If Q is a
+//! translation it is one along t and keeps L. If Q is a glide, L is its axis when m is odd; when m is even Q² keeps L, so
+//! L closes after two turns of u.
 //!
 //! **The search** walks all beams, so it is complete. A class under cyclic shift is met at its least rotation
 //! only: every prefix of a least rotation is a *prenecklace* (no cyclic shift of it can begin with a smaller
@@ -27,15 +38,16 @@
 //! Vorobets, Russian Math. Surveys 47 (1992)). For then P is a translation whatever the angles are.
 //!
 //! **Words of sides.** All of this is about words of sides. When sides share a letter, several of them may have one
-//! class of letters: [`letter_class`]. On a table with holes a line and its mirror image in the axis of an odd word may
-//! pass a hole on different sides; then the word doubled can close though the axis runs into the hole. Such orbits,
-//! whose word of sides is a square, are not found, so on tables with holes the list may be incomplete.
+//! class of letters: [`letter_class`].
+//! On a table with holes one word may have several strips; each is an entry of its own, and a strip that is another one
+//! run backward is left out.
 //!
 //! Cost: one beam step for each prenecklace of the language, roughly p(1) + … + p(n) divided by n; an exact
 //! test for the words whose angles may close, linear in n for a finite reflection group and quadratic
 //! otherwise.
 
 mod closing;
+mod holes;
 
 pub use closing::{Closing, Strip};
 
@@ -47,10 +59,10 @@ use crate::table::{LetterId, SideId, Table, Vector};
 use crate::unfold::beam::{self, Front, Spread};
 use crate::unfold::engine::{AnyEngine, Engine, Trail};
 use crate::unfold::{Mesh, with_engine};
-use closing::Closer;
+use closing::{Closer, Gliding, Returned};
 use rayon::prelude::*;
 
-/// A class of periodic words under cyclic shift and reversal.
+/// A class of periodic words under cyclic shift and reversal; on a table with holes one of its strips.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct PeriodicWord {
     /// The least word of the class, in the order of the sides.
@@ -67,7 +79,15 @@ impl PeriodicWord {
         self.word.len() % 2 == 1
     }
 
-    /// The start of one of its orbits: the axis of an odd word, the middle of the strip of an even one.
+    /// Turns of the word after which the orbit of [`PeriodicWord::start`] closes: one, or two for an odd word in a
+    /// strip beside its axis (only on a table with holes).
+    pub fn turns(&self) -> usize {
+        let beside = |axis: &Real| *axis != self.closing.strip.middle;
+        1 + usize::from(self.closing.axis.as_ref().is_some_and(beside))
+    }
+
+    /// The start of one of its orbits: the middle of its strip. That is the axis of an odd word, unless a hole is in
+    /// the way.
     pub fn start(&self, table: &Table) -> Start {
         let side = self.word[0].0 as usize;
         let origin = table.corner(0);
@@ -83,7 +103,12 @@ impl PeriodicWord {
         }
     }
 
-    /// The square of the orbit's length for one turn of the word.
+    /// The square of the length of the orbit of [`PeriodicWord::start`], until it closes.
+    pub fn squared_orbit_length(&self, table: &Table) -> Real {
+        &self.squared_length(table) * &Real::from((self.turns() * self.turns()) as i64)
+    }
+
+    /// The square of the way for one turn of the word.
     pub fn squared_length(&self, table: &Table) -> Real {
         self.closing.displacement.squared_length(table.form())
     }
@@ -141,10 +166,18 @@ pub fn periodic_words(
             wanted,
             control,
             closer: Closer::new(table),
+            holes: table.holes() > 0,
         };
         search.run()?
     });
-    found.sort_by(|a, b| (a.word.len(), &a.word).cmp(&(b.word.len(), &b.word)));
+    found.sort_by(|a, b| {
+        let place = |w: &PeriodicWord| (w.closing.strip.middle.clone(), w.turns());
+        let key = |w: &PeriodicWord| (w.word.len(), w.word.clone());
+        key(a).cmp(&key(b)).then_with(|| place(a).cmp(&place(b)))
+    });
+    if table.holes() > 0 {
+        return Ok(holes::without_reversals(table, found));
+    }
     Ok(found)
 }
 
@@ -179,6 +212,8 @@ struct Search<'a, E: Engine> {
     wanted: Wanted,
     control: &'a Control,
     closer: Closer,
+    /// Words may have several beams.
+    holes: bool,
 }
 
 /// What one walker keeps.
@@ -186,12 +221,27 @@ struct Walker<E: Engine> {
     trail: Trail<E::Exact>,
     out: Spread<E>,
     word: Vec<SideId>,
-    found: Vec<PeriodicWord>,
+    found: Found,
+}
+
+/// What walkers bring back.
+#[derive(Default)]
+struct Found {
+    words: Vec<PeriodicWord>,
+    /// On a table with holes: how the beams of odd words lie beside their axes.
+    glidings: Vec<(Vec<SideId>, Gliding)>,
+}
+
+impl Found {
+    fn append(&mut self, mut other: Found) {
+        self.words.append(&mut other.words);
+        self.glidings.append(&mut other.glidings);
+    }
 }
 
 impl<E: Engine> Search<'_, E> {
     fn run(&self) -> Result<Vec<PeriodicWord>, Stopped> {
-        let mut found = Vec::new();
+        let mut found = Found::default();
         let mut seeds: Vec<Seed<E>> = (0..self.mesh.side_count())
             .map(|side| {
                 let side = SideId(side as u8);
@@ -219,17 +269,18 @@ impl<E: Engine> Search<'_, E> {
                         cell: child.cell.to_vec(),
                     })
                 });
-                found.append(&mut walker.found);
+                found.append(walker.found);
             }
             seeds = longer;
             letters += 1;
         }
-        let parts: Vec<Vec<PeriodicWord>> = seeds
+        let parts: Vec<Found> = seeds
             .par_iter()
             .map(|seed| self.walk(seed))
             .collect::<Result<_, Stopped>>()?;
-        found.extend(parts.into_iter().flatten());
-        Ok(found)
+        parts.into_iter().for_each(|part| found.append(part));
+        found.words.extend(holes::beside_axes(found.glidings));
+        Ok(found.words)
     }
 
     fn walker(&self, word: &[SideId]) -> Walker<E> {
@@ -241,12 +292,12 @@ impl<E: Engine> Search<'_, E> {
             trail,
             out: Spread::default(),
             word: word.to_vec(),
-            found: Vec::new(),
+            found: Found::default(),
         }
     }
 
     /// Everything below a seed, depth first.
-    fn walk(&self, seed: &Seed<E>) -> Result<Vec<PeriodicWord>, Stopped> {
+    fn walk(&self, seed: &Seed<E>) -> Result<Found, Stopped> {
         let mut walker = self.walker(&seed.word);
         let mut points: Vec<E::Point> = seed.cell.clone();
         let mut stack = vec![Node {
@@ -353,15 +404,26 @@ impl<E: Engine> Search<'_, E> {
         if !self.closer.may_close(word) || least_rotation_of_reversed(word) < *word {
             return;
         }
-        let closing = self.closer.close(
+        let returned = self.closer.close(
             self.engine,
             &mut walker.trail,
             word.len() % 2 == 1,
             pose,
             (&cell[..lefts], &cell[lefts..]),
         );
+        let closing = match returned {
+            None => return,
+            Some(Returned::Closed(closing)) => Some(closing),
+            Some(Returned::Gliding(gliding)) => {
+                let closing = gliding.axis_closing();
+                if self.holes {
+                    walker.found.glidings.push((word.clone(), gliding));
+                }
+                closing
+            }
+        };
         if let Some(closing) = closing {
-            walker.found.push(PeriodicWord {
+            walker.found.words.push(PeriodicWord {
                 word: word.clone(),
                 closing,
                 stable,

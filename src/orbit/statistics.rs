@@ -5,7 +5,9 @@
 //! other, orbits do not. So one number is taken from each orbit (the share of its places that show the block, or its mean
 //! chord), and the standard error of their mean is that of independent numbers.
 
-use crate::table::{LetterId, SideId, Table};
+use crate::number::{Real, Sign};
+use crate::table::{LetterId, SideId, Table, Vector};
+use rug::{Integer, Rational};
 use std::collections::BTreeMap;
 
 /// Sums over orbits of a number per orbit.
@@ -124,54 +126,164 @@ impl Statistics {
 }
 
 /// A table in floating point, for measuring paths whose sides are known.
+///
+/// Lengths are in units of a power of ten near the table's size, which divides its coordinates exactly before they are
+/// rounded; the two axes are rounded apart, so a table may be of any size, and much longer one way than the other.
 #[derive(Debug)]
 pub struct PathMeter {
+    /// Where each side begins.
     corners: Vec<[f64; 2]>,
-    /// Where each side ends.
-    ends: Vec<usize>,
-    root_form: f64,
+    /// Unit vectors along the sides.
+    along: Vec<[f64; 2]>,
+    lengths: Vec<f64>,
+    form: Real,
+    order: i32,
 }
 
 impl PathMeter {
     /// Prepares a table.
     pub fn new(table: &Table) -> PathMeter {
-        let root_form = table.form().to_f64().sqrt();
+        let (form, origin) = (table.form(), table.corner(0));
+        let from_origin: Vec<Vector> = (0..table.sides())
+            .map(|i| table.corner(i).minus(origin))
+            .collect();
+        let largest = |part: &dyn Fn(&Vector) -> Real| {
+            let squares = from_origin.iter().map(part);
+            squares.max().expect("a table has corners")
+        };
+        let wide = decimal_order(&largest(&|v| v.x.pow(2)));
+        let high = decimal_order(&largest(&|v| v.y.pow(2) * form));
+        let order = wide.max(high);
+        let place = |v: &Vector| {
+            [
+                signed_root(&v.x.pow(2), v.x.sign(), order),
+                signed_root(&(v.y.pow(2) * form), v.y.sign(), order),
+            ]
+        };
+        let vectors: Vec<[f64; 2]> = (0..table.sides())
+            .map(|side| place(&table.side_vector(side)))
+            .collect();
         PathMeter {
-            corners: table
-                .corners()
-                .iter()
-                .map(|c| [c.x.to_f64(), c.y.to_f64() * root_form])
-                .collect(),
-            ends: (0..table.sides()).map(|side| table.after(side)).collect(),
-            root_form,
+            corners: from_origin.iter().map(place).collect(),
+            along: vectors.iter().map(|v| unit(*v)).collect(),
+            lengths: vectors.iter().map(|v| v[0].hypot(v[1])).collect(),
+            form: form.clone(),
+            order,
         }
     }
 
-    /// The length of the path through the sides of a word from a start, in floating point: errors grow linearly with
-    /// the hits, far below any sampling error.
+    /// The unit of lengths is ten to this power.
+    pub fn order(&self) -> i32 {
+        self.order
+    }
+
+    /// The length of the path through the sides of a word from a start, in this meter's unit, in floating point: errors grow
+    /// linearly with the hits, far below any sampling error.
     pub fn path_length(&self, start: &super::Start, word: &[SideId]) -> f64 {
-        let ends = |side: SideId| {
-            let a = self.corners[side.0 as usize];
-            (a, self.corners[self.ends[side.0 as usize]])
-        };
-        let (a, b) = ends(start.side);
-        let t = start.fraction.to_f64();
-        let mut p = [a[0] + t * (b[0] - a[0]), a[1] + t * (b[1] - a[1])];
-        let aim = [start.aim.x.to_f64(), start.aim.y.to_f64() * self.root_form];
-        let size = aim[0].hypot(aim[1]);
-        let mut d = [aim[0] / size, aim[1] / size];
+        let first = start.side.0 as usize;
+        let ([x, y], [u, v]) = (self.corners[first], self.along[first]);
+        let way = start.fraction.to_f64() * self.lengths[first];
+        let mut p = [x + way * u, y + way * v];
+        let (x, y) = (&start.aim.x, &start.aim.y);
+        let whole = start.aim.squared_length(&self.form);
+        let share = |square: Real, sign: Sign| signed_root(&(&square / &whole), sign, 0);
+        let mut d = unit([
+            share(x.pow(2), x.sign()),
+            share(y.pow(2) * &self.form, y.sign()),
+        ]);
         let mut length = 0.0;
         for side in word.iter().skip(1) {
-            let (a, b) = ends(*side);
-            let u = [b[0] - a[0], b[1] - a[1]];
+            let side = side.0 as usize;
+            let (a, u) = (self.corners[side], self.along[side]);
             let way = ((a[0] - p[0]) * u[1] - (a[1] - p[1]) * u[0]) / (d[0] * u[1] - d[1] * u[0]);
             length += way;
             p = [p[0] + way * d[0], p[1] + way * d[1]];
-            let along = 2.0 * (d[0] * u[0] + d[1] * u[1]) / (u[0] * u[0] + u[1] * u[1]);
-            d = [along * u[0] - d[0], along * u[1] - d[1]];
-            let size = d[0].hypot(d[1]);
-            d = [d[0] / size, d[1] / size];
+            let along = 2.0 * (d[0] * u[0] + d[1] * u[1]);
+            d = unit([along * u[0] - d[0], along * u[1] - d[1]]);
         }
         length
+    }
+}
+
+fn unit(v: [f64; 2]) -> [f64; 2] {
+    let size = v[0].hypot(v[1]);
+    [v[0] / size, v[1] / size]
+}
+
+/// The root of a square, with a sign, in units of ten to the power `order`. No square is rounded outside of the range of
+/// floating point.
+fn signed_root(square: &Real, sign: Sign, order: i32) -> f64 {
+    if sign == Sign::Zero {
+        return 0.0;
+    }
+    let own = decimal_order(square);
+    let root = (square / &power_of_ten(2 * own)).to_f64().sqrt() * 10f64.powi(own - order);
+    match sign {
+        Sign::Negative => -root,
+        _ => root,
+    }
+}
+
+/// Ten to a power.
+pub fn power_of_ten(exponent: i32) -> Real {
+    let power = Integer::from(Integer::u_pow_u(10, exponent.unsigned_abs()));
+    Real::from(match exponent {
+        0.. => Rational::from(power),
+        _ => Rational::from((Integer::from(1), power)),
+    })
+}
+
+/// The k with 10^k ≤ √square < 10^(k+1), for a positive number.
+///
+/// # Panics
+/// If the number is not positive.
+pub fn decimal_order(square: &Real) -> i32 {
+    assert_eq!(square.sign(), Sign::Positive, "a square of a length");
+    let reaches = |k: i32| *square >= power_of_ten(2 * k);
+    // Doubled until k lies between the two ends, then halved.
+    let (mut low, mut high) = (-1, 1);
+    while !reaches(low) {
+        (low, high) = (2 * low, low);
+    }
+    while reaches(high) {
+        (low, high) = (high, 2 * high);
+    }
+    while high - low > 1 {
+        let middle = low + (high - low) / 2;
+        if reaches(middle) {
+            low = middle;
+        } else {
+            high = middle;
+        }
+    }
+    low
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// Shares 1 and 1/3: mean 2/3, sample variance 2/9, so the standard error of the mean is 1/3.
+    #[test]
+    fn the_standard_error_is_that_of_a_sample() {
+        let mut statistics = Statistics::default();
+        for word in [[0, 0, 0], [0, 1, 1]] {
+            statistics.add(orbit_shares(&word.map(LetterId), 1, 1.0));
+        }
+        let found = statistics.block(&[LetterId(0)]).expect("two orbits");
+        assert!((found.mean - 2.0 / 3.0).abs() < 1e-15);
+        assert!((found.standard_error - 1.0 / 3.0).abs() < 1e-15);
+    }
+
+    #[test]
+    fn orders_are_those_of_the_decimals() {
+        for k in [-400, -77, -2, -1, 0, 1, 2, 3, 150, 1000] {
+            let square = power_of_ten(2 * k);
+            let less = &square * &Real::from(Rational::from((999_999, 1_000_000)));
+            assert_eq!(decimal_order(&square), k);
+            assert_eq!(decimal_order(&(&square * &Real::from(99))), k);
+            assert_eq!(decimal_order(&less), k - 1);
+            assert!((signed_root(&square, Sign::Negative, k) + 1.0).abs() < 1e-15);
+        }
     }
 }

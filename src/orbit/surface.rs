@@ -153,3 +153,33 @@ impl SurfaceLine {
         height == self.first
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::table::Table;
+
+    /// The bound after n crossings is (2n + 3)·2⁻⁵²·R.
+    #[test]
+    fn bounds_grow_as_derived() {
+        let corners =
+            [(0, 0), (3, 0), (3, 1), (0, 1)].map(|(x, y)| Vector::new(x.into(), y.into()));
+        let table =
+            Table::new("t", corners.to_vec(), 1.into(), vec!['a', 'b', 'c', 'd']).expect("a table");
+        let group = FiniteGroup::generate(&table);
+        let direction = Vector::new(1.into(), 2.into());
+        let mut line = SurfaceLine::new(&group, 4, &direction, &Real::from(-1));
+        // The greatest height or shift: the direction across the shift by twice the table's width, 2·6.
+        let largest = 12.0;
+        for n in 0..10_000u32 {
+            let expected = f64::from(2 * n + 3) * f64::EPSILON * largest;
+            assert!(
+                line.bound >= expected && line.bound <= 1.01 * expected,
+                "{n}"
+            );
+            line.cross(SideId((n % 4) as u8));
+        }
+        line.renew();
+        assert!(line.bound <= 1.01 * 3.0 * f64::EPSILON * largest);
+    }
+}

@@ -220,23 +220,26 @@ fn write_measures(results: &Results, out: &mut dyn Write) -> io::Result<()> {
     csv.flush()
 }
 
+/// The columns of a list of generalized diagonals.
+pub const DIAGONAL_COLUMNS: [&str; 9] = [
+    "crossings",
+    "start_corner",
+    "end_corner",
+    "code",
+    "x",
+    "y",
+    "x_decimal",
+    "y_decimal",
+    "length",
+];
+
 /// Writes generalized diagonals as CSV: ends, code, exact displacement and length.
 ///
 /// # Errors
 /// Those of the writer.
 pub fn write_diagonals(table: &Table, listed: &[Diagonal], out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
-    csv.write_record([
-        "crossings",
-        "start_corner",
-        "end_corner",
-        "code",
-        "x",
-        "y",
-        "x_decimal",
-        "y_decimal",
-        "length",
-    ])?;
+    csv.write_record(DIAGONAL_COLUMNS)?;
     for diagonal in listed {
         let vector = ExactVector::new(&diagonal.displacement);
         csv.write_record([

@@ -212,6 +212,17 @@ impl Evaluator {
         })
     }
 
+    /// Gives a name to a number that this evaluator returned, or to an element of the field that it started in. An older
+    /// value of the name is forgotten.
+    ///
+    /// # Panics
+    /// If it cannot be a name: see [`name_fault`].
+    pub fn define_number(&mut self, name: &str, number: &Real) {
+        assert_eq!(name_fault(name), None);
+        let value = Value::Number(number.clone());
+        self.names.insert(name.to_string(), value);
+    }
+
     /// The cosine of `turns` full turns, growing the field if need be.
     ///
     /// # Errors

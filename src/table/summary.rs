@@ -26,8 +26,13 @@ pub struct Exact {
 impl Exact {
     /// Writes a number.
     pub fn new(value: &Real) -> Exact {
+        Exact::in_terms_of("t", value)
+    }
+
+    /// Writes a number in the powers of a generator that is called, or written as, `generator`.
+    pub fn in_terms_of(generator: &str, value: &Real) -> Exact {
         Exact {
-            exact: value.display_in("t"),
+            exact: value.display_in(generator),
             decimal: decimal(|bits| value.enclosure_within(bits)),
         }
     }
@@ -45,9 +50,14 @@ pub struct ExactVector {
 impl ExactVector {
     /// Writes a vector.
     pub fn new(value: &Vector) -> ExactVector {
+        ExactVector::in_terms_of("t", value)
+    }
+
+    /// Writes a vector as [`Exact::in_terms_of`] writes its coordinates.
+    pub fn in_terms_of(generator: &str, value: &Vector) -> ExactVector {
         ExactVector {
-            x: Exact::new(&value.x),
-            y: Exact::new(&value.y),
+            x: Exact::in_terms_of(generator, &value.x),
+            y: Exact::in_terms_of(generator, &value.y),
         }
     }
 }

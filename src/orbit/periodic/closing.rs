@@ -32,8 +32,73 @@ pub struct Closing {
     /// an odd one.
     pub displacement: Vector,
     /// The lines in this direction that close: all of the strip after one turn of an even word; for an odd
-    /// word the middle after one turn, the others after two.
+    /// word the axis after one turn, the others after two.
     pub strip: Strip,
+    /// The moment of the axis of an odd word: the middle of the strip, or outside of it, when it does not close.
+    pub axis: Option<Real>,
+}
+
+/// What the return to the first side says about a beam.
+pub enum Returned {
+    /// An even word closes.
+    Closed(Closing),
+    /// An odd word has an axis, and lines of the beam are parallel to it.
+    Gliding(Gliding),
+}
+
+/// How the lines of a beam of an odd word that are parallel to its axis lie.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub struct Gliding {
+    /// The glide.
+    pub glide: Vector,
+    /// The moment of the axis.
+    pub axis: Real,
+    /// The least moment of the lines, less that of the axis.
+    pub low: Real,
+    /// The greatest, less that of the axis; more than `low`.
+    pub high: Real,
+}
+
+impl Gliding {
+    /// The closing round the axis, when it is in the beam.
+    pub fn axis_closing(&self) -> Option<Closing> {
+        let (up, down) = (self.high.clone(), -&self.low);
+        let reach = if up < down { up } else { down };
+        (reach.sign() == Sign::Positive).then(|| Closing {
+            displacement: self.glide.clone(),
+            strip: Strip {
+                middle: self.axis.clone(),
+                breadth: reach * Real::from(2),
+            },
+            axis: Some(self.axis.clone()),
+        })
+    }
+
+    /// The closing of the lines of this beam that are lines of another one of the same word after one turn, and back
+    /// in this one after two. Of the two mirror images the one on the left of the axis is given.
+    pub fn beside(&self, other: &Gliding) -> Option<Closing> {
+        let (turned_low, turned_high) = (-&other.high, -&other.low);
+        let low = self.low.clone().max(turned_low);
+        let high = self.high.clone().min(turned_high);
+        let breadth = &high - &low;
+        if breadth.sign() != Sign::Positive {
+            return None;
+        }
+        let middle = (low + high) * Real::from(Rational::from((1, 2)));
+        let left = if middle.sign() == Sign::Negative {
+            -middle
+        } else {
+            middle
+        };
+        Some(Closing {
+            displacement: self.glide.clone(),
+            strip: Strip {
+                middle: &self.axis + &left,
+                breadth,
+            },
+            axis: Some(self.axis.clone()),
+        })
+    }
 }
 
 /// Tests words of one table.
@@ -71,8 +136,8 @@ impl Closer {
         (turns - turns.round()).abs() * PI <= 1e-13 * word.len() as f64
     }
 
-    /// The closing of the word on the trail, whose return has the cell of the given left and right corner
-    /// images and enters the copy `pose`. `None` when no line of the beam closes.
+    /// What the return of the word on the trail says, whose cell has the given left and right corner
+    /// images and enters the copy `pose`. `None` when no line of the beam is parallel to the translation or the glide.
     pub fn close<E: Engine>(
         &self,
         engine: &E,
@@ -80,7 +145,7 @@ impl Closer {
         odd: bool,
         pose: &E::Pose,
         (lefts, rights): (&[E::Point], &[E::Point]),
-    ) -> Option<Closing> {
+    ) -> Option<Returned> {
         let origin = engine.place(&engine.home(None), CornerId(0));
         let mut at = |point: &E::Point| engine.displacement(trail, &origin, point);
         let images = [0, 1, 2].map(|i| at(&engine.place(pose, CornerId(i))));
@@ -93,30 +158,28 @@ impl Closer {
         let mut moments = |points: &[E::Point]| -> Vec<Real> {
             points.iter().map(|p| displacement.cross(&at(p))).collect()
         };
-        let above = least(moments(lefts));
-        let below = least(moments(rights).iter().map(|m| -m).collect());
-        let half = Real::from(Rational::from((1, 2)));
-        let strip = match axis {
-            None => {
-                // From the greatest moment on the right, −below, to the least on the left.
-                let breadth = &above + &below;
-                Strip {
-                    middle: (&above - &below) * half,
+        // From the greatest moment on the right to the least on the left.
+        let high = least(moments(lefts));
+        let low = -least(moments(rights).iter().map(|m| -m).collect());
+        let breadth = &high - &low;
+        if breadth.sign() != Sign::Positive {
+            return None;
+        }
+        Some(match axis {
+            None => Returned::Closed(Closing {
+                displacement,
+                strip: Strip {
+                    middle: (&high + &low) * Real::from(Rational::from((1, 2))),
                     breadth,
-                }
-            }
-            Some(moment) => {
-                let (up, down) = (&above - &moment, &below + &moment);
-                let reach = if up < down { up } else { down };
-                Strip {
-                    middle: moment,
-                    breadth: reach * Real::from(2),
-                }
-            }
-        };
-        (strip.breadth.sign() == Sign::Positive).then_some(Closing {
-            displacement,
-            strip,
+                },
+                axis: None,
+            }),
+            Some(axis) => Returned::Gliding(Gliding {
+                glide: displacement,
+                low: low - &axis,
+                high: high - &axis,
+                axis,
+            }),
         })
     }
 

@@ -41,7 +41,7 @@ const KEYS: [&str; 15] = [
 
 /// A file that is being read.
 #[derive(Clone, Debug)]
-pub(super) struct Link {
+pub(crate) struct Link {
     /// Where it is.
     pub(super) place: PathBuf,
     /// Its name as given.
