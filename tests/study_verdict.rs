@@ -5,6 +5,7 @@ mod support;
 use reboundary::factor_graph::census::count_graphs;
 use reboundary::factor_graph::criterion::{LineFigures, line_figures};
 use reboundary::run::Control;
+use reboundary::study::growth::GrowthFigures;
 use reboundary::study::results::{Request, Results, compute};
 use reboundary::study::statement::{Standing, Statement};
 use reboundary::study::verdict::{Coding, Evidence, verdict};
@@ -149,6 +150,7 @@ struct Honest {
     coding: Coding,
     p: Vec<u64>,
     line: Vec<LineFigures>,
+    growth: GrowthFigures,
 }
 
 impl Honest {
@@ -157,6 +159,7 @@ impl Honest {
         Honest {
             facts: facts(table),
             coding: Coding::of(table),
+            growth: GrowthFigures::new(&language.complexity(), None, None),
             p: language.complexity(),
             line: count_graphs(&language, 1, 3)
                 .iter()
@@ -175,6 +178,7 @@ impl Honest {
             bi_extendable: true,
             reversal_fault: None,
             line: &self.line,
+            growth: &self.growth,
         }
     }
 }

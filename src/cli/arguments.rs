@@ -3,8 +3,10 @@
 use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions};
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
+use crate::complexity::claim::{self, Claim};
 use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
+use crate::table::diagnostic::Diagnostic;
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::{Path, PathBuf};
@@ -119,6 +121,21 @@ impl Exactness {
         } else {
             Arithmetic::Tiered
         }
+    }
+}
+
+/// Stated bounds.
+#[derive(Clone, Debug, Args)]
+pub struct Claims {
+    /// Check a stated bound exactly, such as "p(n) <= 0.07*n^3 for n >= 10"; of p, s, b, N and n; may be repeated
+    #[arg(long = "claim", value_name = "CLAIM", allow_hyphen_values = true)]
+    pub claim: Vec<String>,
+}
+
+impl Claims {
+    /// The claims as they are understood.
+    pub fn parse(&self) -> Result<Vec<Claim>, Box<Diagnostic>> {
+        self.claim.iter().map(|text| claim::parse(text)).collect()
     }
 }
 
@@ -249,6 +266,9 @@ pub struct StudyOptions {
     /// Largest radius of the ball census
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,
+    /// Claims.
+    #[command(flatten)]
+    pub claims: Claims,
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
     #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
@@ -331,6 +351,9 @@ pub struct ComplexityOptions {
     /// How to count [default: both; beams when sides share letters or the table has holes]
     #[arg(long, value_enum)]
     pub route: Option<Route>,
+    /// Claims.
+    #[command(flatten)]
+    pub claims: Claims,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,

@@ -5,6 +5,7 @@ use super::fault::Fault;
 use super::output::{emit, note, read_table, write_columns, write_json};
 use super::progress::{Progress, interruptible_control};
 use super::stats::Stats;
+use crate::complexity::claim::Claim;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::language::walk;
@@ -12,6 +13,7 @@ use crate::number::Tiers;
 use crate::run::budget::{Budget, stages};
 use crate::run::checkpoint::{Checkpoint, Identity, Ledger, Unkept};
 use crate::run::{Control, StopReason, Stopped, memory};
+use crate::study::claims::{ClaimRecord, judge};
 use crate::table::Table;
 use crate::table::file::LoadedTable;
 use crate::unfold::Mesh;
@@ -33,6 +35,8 @@ struct ComplexityRecord {
     diagonals: Option<Vec<u64>>,
     /// Null unless both routes ran.
     routes_agree: Option<bool>,
+    /// Stated bounds, checked.
+    claims: Vec<ClaimRecord>,
     complete: bool,
     complete_to: usize,
     #[serde(skip_serializing_if = "Option::is_none")]
@@ -49,6 +53,7 @@ struct Stage {
 }
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
+    let claims = options.claims.parse()?;
     let control = interruptible_control();
     let budget = options.limits.budget();
     let watch = budget.watch(&control);
@@ -103,12 +108,16 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
     let complete_to = done.as_ref().map(|stage| stage.length);
     if let Some(stage) = done {
         let told = (options.stats && options.format == Format::Json).then_some(stats);
-        let record = record(table, options.length, route, stage, told);
+        let record = record(table, options.length, route, stage, &claims, told);
         emit(options.out.as_deref(), |out| match options.format {
             Format::Text => write_text(&record, out),
             Format::Json => write_json(out, &record),
             Format::Csv => write_csv(&record, out),
         })?;
+        if options.format == Format::Csv {
+            // Rows of numbers have no place for them.
+            write_claims(&record, &mut io::stderr())?;
+        }
     }
     if let Some(n) = disagreement {
         return Err(Fault::Failed(format!(
@@ -244,9 +253,15 @@ fn record(
     length: usize,
     route: Route,
     stage: Stage,
+    claims: &[Claim],
     stats: Option<Stats>,
 ) -> ComplexityRecord {
     let counts = Counts::from_p(stage.p);
+    let diagonals = stage.diagonals.as_deref();
+    let claims = claims
+        .iter()
+        .map(|claim| judge(claim, &counts, diagonals))
+        .collect();
     ComplexityRecord {
         schema: "reboundary-complexity/1",
         title: table.title().into(),
@@ -257,6 +272,7 @@ fn record(
         second_difference: counts.second_difference,
         diagonals: stage.diagonals,
         routes_agree: stage.disagreement.map(|d| d.is_none()),
+        claims,
         complete: stage.length == length,
         complete_to: stage.length,
         stats,
@@ -318,12 +334,22 @@ fn write_text(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> 
         Some(false) => writeln!(out, "the routes DISAGREE")?,
         None => {}
     }
+    write_claims(record, out)?;
     if !record.complete {
         writeln!(
             out,
             "stopped: complete to n = {} of {}",
             record.complete_to, record.length
         )?;
+    }
+    Ok(())
+}
+
+/// One line for each claim: its standing, the claim, the grounds.
+fn write_claims(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> {
+    for claim in &record.claims {
+        let label = claim.standing.label();
+        writeln!(out, "{label}: {} ({})", claim.claim, claim.grounds)?;
     }
     Ok(())
 }

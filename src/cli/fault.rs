@@ -65,6 +65,12 @@ impl From<TableFileError> for Fault {
     }
 }
 
+impl From<Box<Diagnostic>> for Fault {
+    fn from(diagnostic: Box<Diagnostic>) -> Fault {
+        Fault::BadText(diagnostic)
+    }
+}
+
 impl From<io::Error> for Fault {
     fn from(error: io::Error) -> Fault {
         if error.kind() == io::ErrorKind::BrokenPipe {

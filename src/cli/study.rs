@@ -11,6 +11,7 @@ use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 
 pub fn run(options: &StudyOptions) -> Result<(), Fault> {
+    let claims = options.claims.parse()?;
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let out = options
         .out
@@ -36,7 +37,7 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
     };
     let control = interruptible_control();
     let progress = Progress::new(&control, options.common.quiet);
-    let results = compute(&loaded.table, &request, &control, |stage| {
+    let mut results = compute(&loaded.table, &request, &control, |stage| {
         let (name, steps) = match stage {
             Stage::Fans => ("generalized diagonals", None),
             Stage::Beams { words } => ("language", Some(words)),
@@ -45,6 +46,7 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         };
         progress.begin(name, steps);
     })?;
+    results.judge_claims(&claims);
     progress.begin("writing", None);
     let command = command(options, &results);
     let extras = Extras {
@@ -74,6 +76,9 @@ fn command(options: &StudyOptions, results: &Results) -> String {
     );
     if let Some(order) = options.graph_order {
         command.push_str(&format!(" --graph-order {order}"));
+    }
+    for claim in &options.claims.claim {
+        command.push_str(&format!(" --claim '{claim}'"));
     }
     for setting in &options.settings.set {
         let plain = |c: char| c.is_ascii_alphanumeric() || "=/.+-_".contains(c);

@@ -3,15 +3,23 @@
 //! - [`results`]: the computation, stage by stage, on the rooms below.
 //! - [`statement`]: a statement and its standing.
 //! - [`verdict`]: what follows from it, with the standing of every statement.
+//! - [`theorem`]: by what a statement is proved, and what data cannot tell.
+//! - [`growth`]: exponents, limits and generalized diagonals in the verdict.
+//! - [`trend`]: what the ratio p(n+1)/p(n) suggests.
+//! - [`claims`]: stated bounds, checked.
 //! - [`pictures`]: the figures of a study.
 //! - [`record`]: the file `study.json`.
 //! - [`report`]: the file `report.html`.
 //! - [`folder`]: all files of a study.
 
+pub mod claims;
 pub mod folder;
+pub mod growth;
 pub mod pictures;
 pub mod record;
 pub mod report;
 pub mod results;
 pub mod statement;
+pub mod theorem;
+pub mod trend;
 pub mod verdict;

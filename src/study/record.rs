@@ -2,6 +2,8 @@
 //!
 //! The record has no times and no paths, so the same input gives the same bytes.
 
+use super::claims::ClaimRecord;
+use super::growth::GrowthFigures;
 use super::results::{Results, StageTiers};
 use super::statement::Statement;
 use crate::complexity::growth::CubicRange;
@@ -36,6 +38,10 @@ pub struct Record<'a> {
     pub stop: &'static str,
     /// Counts.
     pub complexity: Complexity<'a>,
+    /// Exponents, limits and windows, with their uncertainty.
+    pub growth: &'a GrowthFigures,
+    /// Stated bounds.
+    pub claims: &'a [ClaimRecord],
     /// The measure check.
     pub measure: MeasureRecord,
     /// Words of the shown length with their measures.
@@ -201,6 +207,8 @@ pub fn record<'a>(
                 results.length,
             ),
         },
+        growth: &results.growth,
+        claims: &results.claims,
         measure: MeasureRecord {
             whole: decimal(&results.measures.whole),
             places: MEASURE_PLACES,

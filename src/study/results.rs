@@ -3,8 +3,12 @@
 //! Stages, each on the room that owns it: facts; generalized diagonals and p by fans (cheap, and it tells how
 //! much memory the rest needs); the language by beams; measures; factor graphs; the verdict.
 
+use super::claims::{ClaimRecord, judge};
+use super::growth::GrowthFigures;
 use super::statement::Statement;
 use super::verdict::{Coding, Evidence, verdict};
+use crate::complexity::claim::Claim;
+use crate::complexity::constant::known_constant;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
@@ -72,6 +76,10 @@ pub struct Results {
     pub graphs: Vec<GraphCounts>,
     /// Line figures of the same orders.
     pub line: Vec<LineFigures>,
+    /// Estimates of the growth.
+    pub growth: GrowthFigures,
+    /// Stated bounds, as far as [`Results::judge_claims`] was asked.
+    pub claims: Vec<ClaimRecord>,
     /// What follows.
     pub statements: Vec<Statement>,
     /// Decisions by tier: fans, beams.
@@ -177,6 +185,7 @@ pub fn compute(
     let disagreement = p_by_diagonals
         .as_ref()
         .and_then(|other| first_disagreement(&counts.p, other));
+    let growth = GrowthFigures::new(&counts.p, Some(&diagonals), known_constant(table, &facts));
     let statements = verdict(&Evidence {
         facts: &facts,
         coding: Coding::of(table),
@@ -186,6 +195,7 @@ pub fn compute(
         bi_extendable: language.is_bi_extendable(),
         reversal_fault: language.first_without_reversal().map(|(n, _)| n),
         line: &line,
+        growth: &growth,
     });
     Ok(Results {
         table: table.clone(),
@@ -196,6 +206,8 @@ pub fn compute(
         shown_length,
         graphs,
         line,
+        growth,
+        claims: Vec::new(),
         statements,
         tiers: StageTiers {
             fans: fan_tiers,
@@ -207,6 +219,17 @@ pub fn compute(
         diagonals,
         p_by_diagonals,
     })
+}
+
+impl Results {
+    /// Checks stated bounds and adds them to the verdict.
+    pub fn judge_claims(&mut self, claims: &[Claim]) {
+        for claim in claims {
+            let record = judge(claim, &self.counts, Some(&self.diagonals));
+            self.statements.push(record.statement());
+            self.claims.push(record);
+        }
+    }
 }
 
 /// The longest length whose words, with all shorter ones, number at most `most`; at least 2.
