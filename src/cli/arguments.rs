@@ -4,6 +4,7 @@ use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions}
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::complexity::claim::{self, Claim};
+use crate::figure::PictureSize;
 use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
 use crate::table::diagnostic::Diagnostic;
@@ -252,15 +253,16 @@ pub(super) fn parse_bytes(text: &str) -> Result<u64, String> {
 /// `study`.
 #[derive(Debug, Args)]
 pub struct StudyOptions {
-    /// The table file
-    pub table: PathBuf,
+    /// Table files, or folders of them; more than one table is studied in parallel, with an index that compares them
+    #[arg(required = true, value_name = "TABLE")]
+    pub tables: Vec<PathBuf>,
     /// Parameters.
     #[command(flatten)]
     pub settings: Settings,
     #[doc = "Longest words [default: as far as a million words in all, at most 60]"]
     #[arg(long, value_name = "N", value_parser = parse_study_length)]
     pub length: Option<usize>,
-    /// Folder for the results [default: NAME-study for a table file NAME.toml]
+    /// Folder for the results [default: NAME-study for a table file NAME.toml; studies for more than one]
     #[arg(long, value_name = "DIR")]
     pub out: Option<PathBuf>,
     /// Largest radius of the ball census
@@ -269,6 +271,12 @@ pub struct StudyOptions {
     /// Claims.
     #[command(flatten)]
     pub claims: Claims,
+    /// Write the tables as LaTeX with booktabs rules too (tables.tex)
+    #[arg(long, value_enum, default_value_t)]
+    pub format: StudyFormat,
+    /// Printed size of the picture files: pixels, a column of 88 mm or a page of 180 mm
+    #[arg(long, value_enum, default_value_t, value_name = "SIZE")]
+    pub pictures: Pictures,
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
     #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
@@ -281,6 +289,39 @@ pub struct StudyOptions {
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Formats of `study`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum StudyFormat {
+    /// The page, JSON and CSV
+    #[default]
+    Html,
+    /// The same, and the tables as LaTeX
+    Latex,
+}
+
+/// Sizes of the pictures of `study`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Pictures {
+    /// In pixels
+    #[default]
+    Screen,
+    /// For one of two columns
+    Column,
+    /// For the width of a page
+    Page,
+}
+
+impl Pictures {
+    /// As the figures take it.
+    pub fn size(self) -> PictureSize {
+        match self {
+            Pictures::Screen => PictureSize::Screen,
+            Pictures::Column => PictureSize::Column,
+            Pictures::Page => PictureSize::Page,
+        }
+    }
 }
 
 fn parse_radii(text: &str) -> Result<usize, String> {

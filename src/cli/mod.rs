@@ -32,6 +32,7 @@ mod periodic;
 pub mod progress;
 mod special;
 mod stats;
+mod studies;
 mod study;
 mod sweep;
 mod table;

@@ -19,23 +19,27 @@ mod canvas;
 mod cells;
 mod chart;
 mod corridor;
+mod dark;
 mod font;
 mod geometry;
 mod graph;
 mod plane;
 mod scale;
 mod shading;
+mod size;
 pub mod style;
 mod tree;
 
 pub use cells::{CellShape, Cells, cells_picture};
 pub use chart::{Chart, Mark, Series, draw_chart};
 pub use corridor::{Corridor, corridor_picture};
+pub use dark::{dark_inks, dark_rules};
 pub use graph::{GraphDrawing, circle_layout, graph_picture};
 pub use plane::{HoleShape, TableShape, orbit_picture, table_picture};
 pub use scale::Scale;
 pub use shading::shade_apart;
 pub use tree::{LABELLED_LEAVES, MOST_LEAVES, TreeDrawing, TreeMark, TreeNode, tree_picture};
+pub use size::{PictureSize, sized};
 
 use thiserror::Error;
 

@@ -9,16 +9,23 @@
 //! - [`claims`]: stated bounds, checked.
 //! - [`pictures`]: the figures of a study.
 //! - [`record`]: the file `study.json`.
-//! - [`report`]: the file `report.html`.
+//! - [`report`], [`report_growth`]: the file `report.html`; [`html`]: pieces of a page; [`sources`]: the bibliography.
+//! - [`latex`]: the file `tables.tex`.
+//! - [`collection`]: an index of many studies.
 //! - [`folder`]: all files of a study.
 
 pub mod claims;
+pub mod collection;
 pub mod folder;
 pub mod growth;
+pub mod html;
+pub mod latex;
 pub mod pictures;
 pub mod record;
 pub mod report;
+pub mod report_growth;
 pub mod results;
+pub mod sources;
 pub mod statement;
 pub mod theorem;
 pub mod trend;
