@@ -365,6 +365,7 @@ fn the_report_is_a_finished_document() {
         "SHA-256 of the table file",
         "checked exactly",
         "2/(3π²)",
+        "figure-diagonals",
     ] {
         assert!(report.contains(part), "{part}");
     }

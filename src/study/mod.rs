@@ -7,7 +7,7 @@
 //! - [`growth`]: exponents, limits and generalized diagonals in the verdict.
 //! - [`trend`]: what the ratio p(n+1)/p(n) suggests.
 //! - [`claims`]: stated bounds, checked.
-//! - [`pictures`]: the figures of a study.
+//! - [`pictures`], [`growth_pictures`]: the figures of a study.
 //! - [`record`]: the file `study.json`.
 //! - [`report`], [`report_growth`]: the file `report.html`; [`html`]: pieces of a page; [`sources`]: the bibliography.
 //! - [`latex`]: the file `tables.tex`.
@@ -18,6 +18,7 @@ pub mod claims;
 pub mod collection;
 pub mod folder;
 pub mod growth;
+pub mod growth_pictures;
 pub mod html;
 pub mod latex;
 pub mod pictures;

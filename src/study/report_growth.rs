@@ -111,6 +111,7 @@ pub(super) fn growth_section(page: &mut String, results: &Results, pictures: &[P
     figure(page, pictures, "quotient.svg");
     estimates(page, results);
     figure(page, pictures, "ratio.svg");
+    figure(page, pictures, "diagonals.svg");
     if !results.growth.windows.is_empty() {
         let header = strings([
             "from n",
