@@ -38,8 +38,8 @@ pub use graph::{GraphDrawing, circle_layout, graph_picture};
 pub use plane::{HoleShape, TableShape, orbit_picture, table_picture};
 pub use scale::Scale;
 pub use shading::shade_apart;
-pub use tree::{LABELLED_LEAVES, MOST_LEAVES, TreeDrawing, TreeMark, TreeNode, tree_picture};
 pub use size::{PictureSize, sized};
+pub use tree::{LABELLED_LEAVES, MOST_LEAVES, TreeDrawing, TreeMark, TreeNode, tree_picture};
 
 use thiserror::Error;
 
