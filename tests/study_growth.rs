@@ -312,6 +312,18 @@ fn claims_agree_with_whole_number_arithmetic() {
             let found = check(&parse(text).expect("a claim"), &sequences);
             assert_eq!(found, Checked::HoldsTo { last, whole: false }, "{text}");
         }
+        // At equality each comparison has its own answer.
+        for (sign, holds) in [
+            ("<=", true),
+            (">=", true),
+            ("=", true),
+            ("<", false),
+            (">", false),
+            ("!=", false),
+        ] {
+            let found = check(&parse(&format!("n {sign} n")).expect("a claim"), &sequences);
+            assert_eq!(matches!(found, Checked::HoldsTo { .. }), holds, "{sign}");
+        }
         let whole = check(
             &parse("p(n) > 1 for 3 <= n < 9").expect("a claim"),
             &sequences,

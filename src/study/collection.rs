@@ -158,19 +158,34 @@ fn write_json(folder: &Path, members: &[Member], complete: bool) -> Result<(), O
     })
 }
 
-/// The names of all statements, in the order of the alphabet.
+/// The statements that a comparison begins with.
+const FIRST: [&str; 6] = [
+    "line_limit",
+    "ratio_criterion",
+    "cubic_bounds",
+    "growth_exponent",
+    "limit_constant",
+    "diagonals_quadratic",
+];
+
+/// The names of all statements: claims, then the most telling ones, then the rest in the order of the alphabet.
 fn statement_names(members: &[Member]) -> Vec<&str> {
     let mut names: Vec<&str> = members
         .iter()
         .filter_map(|m| m.study.as_ref())
         .flat_map(|s| s.standings.keys().map(String::as_str))
         .collect();
-    names.sort_unstable();
+    let rank = |name: &str| match FIRST.iter().position(|first| *first == name) {
+        _ if name.starts_with("claim_") => 0,
+        Some(place) => 1 + place,
+        None => 1 + FIRST.len(),
+    };
+    names.sort_unstable_by_key(|name| (rank(name), *name));
     names.dedup();
     names
 }
 
-/// A standing as one word or two: `proved`, `proved false`.
+/// A standing in a few words: `proved`, `proved, does not hold`.
 fn standing_text(held: &Held) -> String {
     match (held.standing, held.holds) {
         (Standing::Proved | Standing::Trend, Some(false)) => {
@@ -283,7 +298,8 @@ fn in_url(folder: &str) -> String {
 fn page(members: &[Member]) -> String {
     let done = members.iter().filter(|m| m.study.is_some()).count();
     let mut page = format!(
-        "<header>\n<h1>{done} tables side by side</h1>\n<p class=\"lead\">Studies by {} {}; each title opens a study.</p>\n</header>\n",
+        "<header>\n<h1>Studies side by side: {done} of {}</h1>\n<p class=\"lead\">Studies by {} {}; each title opens a study.</p>\n</header>\n",
+        members.len(),
         env!("CARGO_PKG_NAME"),
         env!("CARGO_PKG_VERSION")
     );
@@ -319,7 +335,7 @@ fn studied(members: &[Member]) -> impl Iterator<Item = (&Member, &Found)> {
 
 fn counts(page: &mut String, members: &[Member]) {
     heading(page, "counts", "Counts and estimates");
-    page.push_str("<p>N is the length of the longest words of a study, M the longest that all studies reach. The uncertainties are those of the studies: spreads of fits, no confidence intervals.</p>\n");
+    page.push_str("<p>N is the length of the longest words of a study; p is shown there and at the longest length that all studies reach. The uncertainties are those of the studies: spreads of fits, no confidence intervals.</p>\n");
     let common = common_length(members);
     let m = common.map_or("M".into(), |m| m.to_string());
     let table = DataTable {

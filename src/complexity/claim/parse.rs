@@ -48,7 +48,7 @@ pub fn parse(text: &str) -> Parsed<Claim> {
             text,
             place.clone(),
             "the claim should end here".into(),
-            "write `for` and a range after the comparison, and nothing after that",
+            "write `*` between factors; after the comparison only `for` and a range may follow",
         )),
     }
 }
