@@ -6,12 +6,13 @@
 //! are compared too, since its answers are only probably right. The comparison is fair in that both run the same
 //! compiled walking code; it favours the twin in that the twin does no bookkeeping of paths or tiers.
 //!
-//! Also: the exponent of time against n, the speed-up by threads, and what sampling finds in the same time.
+//! Also: the exponent of time against n, the speed-up by threads, fans in leaps against fans in steps, the peak memory
+//! of each route in a process of its own, and what sampling finds in the same time.
 //!
 //! Run: `cargo bench --bench engine --features fast-gmp-build`, or with a word to select tables.
 
 use rand::{RngExt, SeedableRng};
-use reboundary::complexity::diagonals::count_with;
+use reboundary::complexity::diagonals::{self, count_with};
 use reboundary::language::walk::{Visit, Visitor, walk_beams};
 use reboundary::number::{Enclosure, Sign, Tiers};
 use reboundary::run::Control;
@@ -153,20 +154,33 @@ fn beams<E: Engine>(engine: &E, mesh: &Mesh, n: usize, control: &Control) -> (Ve
 }
 
 /// The best of a few runs: the least disturbed one.
-fn best<T>(mut work: impl FnMut() -> T) -> (Duration, T) {
-    let mut least: Option<(Duration, T)> = None;
-    let begun = Instant::now();
-    let mut runs = 0;
-    while runs < 2 || (runs < 9 && begun.elapsed() < Duration::from_millis(1500)) {
+fn best<T>(work: impl FnMut() -> T) -> (Duration, T) {
+    best_pair(work, || ()).0
+}
+
+/// The best of a few runs of each of two works, by turns, so that what disturbs one disturbs the other as well.
+fn best_pair<A, B>(
+    mut first: impl FnMut() -> A,
+    mut second: impl FnMut() -> B,
+) -> ((Duration, A), (Duration, B)) {
+    fn run<T>(work: &mut impl FnMut() -> T, least: &mut Option<(Duration, T)>) {
         let start = Instant::now();
         let result = work();
         let time = start.elapsed();
         if least.as_ref().is_none_or(|(t, _)| time < *t) {
-            least = Some((time, result));
+            *least = Some((time, result));
         }
+    }
+    let (mut a, mut b) = (None, None);
+    let begun = Instant::now();
+    let mut runs = 0;
+    while runs < 2 || (runs < 25 && begun.elapsed() < Duration::from_millis(2500)) {
+        run(&mut first, &mut a);
+        run(&mut second, &mut b);
         runs += 1;
     }
-    least.expect("at least two runs")
+    let ran = "at least two runs";
+    (a.expect(ran), b.expect(ran))
 }
 
 struct Case {
@@ -252,13 +266,15 @@ fn ratio_rows(case: &Case, control: &Control) {
         };
         // A fan step takes up to two decisions; both walks take the same steps, counted as decisions / 2.
         let n = case.fans_to;
-        let e = with_engine!(&exact, engine => best(|| fans(engine, &mesh, n, control)));
-        let t = best(|| fans(&twin, &mesh, n, control));
+        let (e, t) = with_engine!(&exact, engine => {
+            best_pair(|| fans(engine, &mesh, n, control), || fans(&twin, &mesh, n, control))
+        });
         let steps = e.1.1.total() / 2;
         row("fans", n, case.targets.0, e, t, steps);
         let n = case.beams_to;
-        let e = with_engine!(&exact, engine => best(|| beams(engine, &mesh, n, control)));
-        let t = best(|| beams(&twin, &mesh, n, control));
+        let (e, t) = with_engine!(&exact, engine => {
+            best_pair(|| beams(engine, &mesh, n, control), || beams(&twin, &mesh, n, control))
+        });
         let steps = e.1.0.iter().sum();
         row("beams", n, case.targets.1, e, t, steps);
     });
@@ -279,13 +295,101 @@ fn scaling(case: &Case, control: &Control) {
             .build()
             .expect("threads")
     };
-    let (one, two) = (pool(1).install(|| time(n)), pool(2).install(|| time(n)));
+    let exact = AnyEngine::new(&table, n, Arithmetic::Tiered);
+    let (one, two) = (pool(1), pool(2));
+    let ((one, _), (two, _)) = with_engine!(&exact, engine => best_pair(
+        || one.install(|| fans(engine, &mesh, n, control)),
+        || two.install(|| fans(engine, &mesh, n, control)),
+    ));
     println!(
         "{:<26} fans  time ~ n^{exponent:.2} between n={} and n={n}; two threads {:.2} times one",
         case.file,
         n / 2,
         one.as_secs_f64() / two.as_secs_f64()
     );
+}
+
+/// Fans step by step and in leaps, for doubling n: times and fitted exponents. Both give the same counts.
+fn leaps(file: &str, longest: usize, control: &Control) {
+    let table = table(file);
+    let mesh = Mesh::new(&table);
+    let one = rayon::ThreadPoolBuilder::new()
+        .num_threads(1)
+        .build()
+        .expect("a thread");
+    let mut before: Option<(f64, f64)> = None;
+    for n in [longest / 8, longest / 4, longest / 2, longest] {
+        let exact = AnyEngine::new(&table, n, Arithmetic::Tiered);
+        let (steps, leaps) = one.install(|| {
+            with_engine!(&exact, engine => {
+                let (steps, leaps) = best_pair(
+                    || fans(engine, &mesh, n, control),
+                    || diagonals::count(&exact, &mesh, n, control).expect("nobody stops a bench"),
+                );
+                assert_eq!(steps.1.0, leaps.1.0);
+                (steps.0.as_secs_f64(), leaps.0.as_secs_f64())
+            })
+        });
+        let exponents = before.map_or(String::new(), |(s, l)| {
+            format!(
+                "time ~ n^{:.2} and n^{:.2}",
+                (steps / s).log2(),
+                (leaps / l).log2()
+            )
+        });
+        println!(
+            "{file:<26} fans  n={n:<5} in steps {steps:>9.4} s, in leaps {leaps:>9.4} s, ratio {:>5.2}  {exponents}",
+            steps / leaps
+        );
+        before = Some((steps, leaps));
+    }
+}
+
+/// The variable that asks a child process for one route: table, route, n.
+const PEAK: &str = "REBOUNDARY_BENCH_PEAK";
+
+/// Peak memory of a route, in a process of its own.
+fn peak_of(file: &str, route: &str, n: usize) {
+    let this = std::env::current_exe().expect("a path");
+    let mut child = std::process::Command::new(this);
+    let output = child.env(PEAK, format!("{file} {route} {n}")).output();
+    let output = output.expect("the bench starts itself");
+    print!("{}", String::from_utf8_lossy(&output.stdout));
+}
+
+/// The child's part.
+fn peak_here(asked: &str, control: &Control) {
+    let [file, route, n] = asked.split(' ').collect::<Vec<_>>()[..] else {
+        panic!("{PEAK} holds a table, a route and n")
+    };
+    let n: usize = n.parse().expect("a number");
+    let table = table(file);
+    let mesh = Mesh::new(&table);
+    let engine = AnyEngine::new(&table, n, Arithmetic::Tiered);
+    let words = match route {
+        "fans" => with_engine!(&engine, engine => fans(engine, &mesh, n, control))
+            .0
+            .len() as u64,
+        "leaps" => diagonals::count(&engine, &mesh, n, control)
+            .expect("not stopped")
+            .0
+            .len() as u64,
+        "beams" => with_engine!(&engine, engine => beams(engine, &mesh, n, control))
+            .0
+            .iter()
+            .sum(),
+        "tree" => {
+            let grown = reboundary::language::walk::grow(&engine, &mesh, n, control);
+            grown.expect("not stopped").0.complexity().iter().sum()
+        }
+        other => panic!("no route {other}"),
+    };
+    let counted = match route {
+        "fans" | "leaps" => String::new(),
+        _ => format!(" for {words} words"),
+    };
+    let peak = peak_memory().unwrap_or("unknown".into());
+    println!("{file:<26} {route:<5} n={n:<5} peak memory {peak}{counted}");
 }
 
 /// What a user would write without this program: random orbits in floating point, words in a hash set.
@@ -372,6 +476,9 @@ fn peak_memory() -> Option<String> {
 }
 
 fn main() {
+    if let Ok(asked) = std::env::var(PEAK) {
+        return peak_here(&asked, &Control::new());
+    }
     let wanted = std::env::args().skip(1).find(|a| !a.starts_with('-'));
     let control = Control::new();
     let chosen: Vec<&Case> = CASES
@@ -388,11 +495,28 @@ fn main() {
     for case in &chosen {
         scaling(case, &control);
     }
+    for (file, longest) in [
+        ("right-isosceles", 2000),
+        ("regular-pentagon", 400),
+        ("heptagonal-triangle", 1600),
+        ("regular-15-gon", 100),
+    ] {
+        if chosen.iter().any(|case| case.file == file) {
+            leaps(file, longest, &control);
+        }
+    }
+    for case in &chosen {
+        for n in [case.beams_to / 2, case.beams_to] {
+            peak_of(case.file, "beams", n);
+            peak_of(case.file, "tree", n);
+        }
+        for n in [case.fans_to / 2, case.fans_to] {
+            peak_of(case.file, "fans", n);
+            peak_of(case.file, "leaps", n);
+        }
+    }
     if wanted.is_none() {
         sampling("right-isosceles", 60, &control);
         sampling("irrational-quadrilateral", 30, &control);
-    }
-    if let Some(peak) = peak_memory() {
-        println!("peak memory of this run: {peak}");
     }
 }

@@ -174,6 +174,14 @@ fn places_that_are_not_ours_are_left_alone() {
         ),
         (vec!["study", "empty"], "holds no table file"),
         (
+            vec!["study", &square, &square, "--budget-time", "5m"],
+            "--budget-time is for the study of one table",
+        ),
+        (
+            vec!["study", &square, &square, "--checkpoint", "kept"],
+            "--checkpoint is for the study of one table",
+        ),
+        (
             vec!["study", &square, "--claim", "p(n) <= 0.07 n^3"],
             "--claim:1:14",
         ),

@@ -1,6 +1,7 @@
 //! Commands and options.
 
 use super::analysis_arguments::{CompareOptions, MeasuresOptions, SpecialOptions};
+use super::ask_arguments::AskOptions;
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
 use crate::complexity::claim::{self, Claim};
@@ -34,6 +35,8 @@ pub enum Command {
     Table(TableOptions),
     /// All words of one length, one a line
     Words(WordsOptions),
+    /// Questions to a stored language: words, continuations, counts, patterns, special words
+    Ask(AskOptions),
     /// The complexity p(n) and its differences, by one route or by both
     Complexity(ComplexityOptions),
     /// Generalized diagonals with ends, code and exact displacement
@@ -73,6 +76,7 @@ impl Command {
             Command::Certify(options) => Some(&options.file),
             Command::Table(options) => options.out.as_deref(),
             Command::Words(options) => options.out.as_deref(),
+            Command::Ask(options) => options.out.as_deref(),
             Command::Complexity(options) => options.out.as_deref(),
             Command::Diagonals(options) => options.out.as_deref(),
             Command::Graph(options) => options.out.as_deref(),
@@ -159,6 +163,17 @@ impl Limits {
             memory: self.budget_memory,
         }
     }
+}
+
+/// Options about keeping the results of finished parts.
+#[derive(Clone, Debug, Args)]
+pub struct Keeping {
+    /// Keep the results of finished parts in this folder
+    #[arg(long, value_name = "DIR")]
+    pub checkpoint: Option<PathBuf>,
+    /// Continue from the checkpoint, if it holds anything
+    #[arg(long, requires = "checkpoint")]
+    pub resume: bool,
 }
 
 fn parse_time(text: &str) -> Result<Duration, String> {
@@ -280,9 +295,18 @@ pub struct StudyOptions {
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
     #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
+    /// Stop after this time and write what is complete, of shorter words: seconds, or with s, m, h, such as 30s, 5m or 2h
+    #[arg(long, value_name = "TIME", value_parser = parse_time)]
+    pub budget_time: Option<Duration>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
     pub budget_memory: Option<u64>,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
+    /// Tell steps, decisions by tier, time and memory on standard error
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
@@ -361,21 +385,44 @@ pub struct WordsOptions {
     /// Length of the words
     #[arg(long, value_name = "N", value_parser = parse_length)]
     pub length: usize,
-    /// Text: one word a line; CSV and JSON add the certified measure of each word
+    /// How the words are written
     #[arg(long, value_enum, default_value_t)]
-    pub format: Format,
+    pub format: WordsFormat,
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Stop after this time and write what is complete, of shorter words: seconds, or with s, m, h, such as 30s, 5m or 2h
+    #[arg(long, value_name = "TIME", value_parser = parse_time)]
+    pub budget_time: Option<Duration>,
     /// Refuse to start when more memory would be needed: bytes, or with K, M, G [default: 90% of what is free]
     #[arg(long, value_name = "BYTES", value_parser = parse_bytes)]
     pub budget_memory: Option<u64>,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
+    /// Tell steps, decisions by tier, time and memory on standard error
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Formats of `words`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum WordsFormat {
+    /// One word a line
+    #[default]
+    Text,
+    /// One JSON object a line: the word and its certified measure
+    Json,
+    /// The words with their certified measures
+    Csv,
+    /// All words up to this length in one file for `ask`; needs --out
+    Stored,
 }
 
 /// `complexity`.
@@ -404,12 +451,9 @@ pub struct ComplexityOptions {
     /// Budget.
     #[command(flatten)]
     pub limits: Limits,
-    /// Keep the results of finished parts in this folder
-    #[arg(long, value_name = "DIR")]
-    pub checkpoint: Option<PathBuf>,
-    /// Continue from the checkpoint, if it holds anything
-    #[arg(long, requires = "checkpoint")]
-    pub resume: bool,
+    /// Checkpoint.
+    #[command(flatten)]
+    pub keeping: Keeping,
     /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
     #[arg(long)]
     pub stats: bool,
@@ -446,6 +490,12 @@ pub struct DiagonalsOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Budget.
+    #[command(flatten)]
+    pub limits: Limits,
+    /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,
@@ -474,6 +524,12 @@ pub struct GraphOptions {
     /// File for the output [default: standard output]
     #[arg(long, value_name = "PATH")]
     pub out: Option<PathBuf>,
+    /// Budget.
+    #[command(flatten)]
+    pub limits: Limits,
+    /// Tell steps, decisions by tier, time and memory: on standard error, or as an object in JSON
+    #[arg(long)]
+    pub stats: bool,
     /// Common options.
     #[command(flatten)]
     pub common: Common,

@@ -2,20 +2,17 @@
 
 use super::arguments::{ComplexityOptions, Format, Route};
 use super::fault::Fault;
-use super::output::{emit, note, read_table, write_columns, write_json};
-use super::progress::{Progress, interruptible_control};
+use super::output::{emit, read_table, write_columns, write_json};
 use super::stats::Stats;
+use super::work::{Work, options_line};
 use crate::complexity::claim::Claim;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::language::walk;
-use crate::number::Tiers;
-use crate::run::budget::{Budget, stages};
-use crate::run::checkpoint::{Checkpoint, Identity, Ledger, Unkept};
-use crate::run::{Control, StopReason, Stopped, memory};
+use crate::run::Stopped;
+use crate::run::checkpoint::ledger;
 use crate::study::claims::{ClaimRecord, judge};
 use crate::table::Table;
-use crate::table::file::LoadedTable;
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
@@ -23,7 +20,7 @@ use std::io::{self, Write};
 
 /// The JSON object of the command.
 #[derive(Debug, Serialize)]
-struct ComplexityRecord {
+struct ComplexityRecord<'a> {
     schema: &'static str,
     title: String,
     length: usize,
@@ -40,7 +37,7 @@ struct ComplexityRecord {
     complete: bool,
     complete_to: usize,
     #[serde(skip_serializing_if = "Option::is_none")]
-    stats: Option<Stats>,
+    stats: Option<&'a Stats>,
 }
 
 /// What one stage found.
@@ -54,38 +51,25 @@ struct Stage {
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
     let claims = options.claims.parse()?;
-    let control = interruptible_control();
-    let budget = options.limits.budget();
-    let watch = budget.watch(&control);
-    if budget.memory.is_some() && memory::resident().is_none() {
-        return Err(Fault::BadInput(
-            "this system does not tell how much memory is used: leave out --budget-memory".into(),
-        ));
-    }
-    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
+    let quiet = options.common.quiet;
+    let mut work = Work::begin(options.limits.budget(), quiet)?;
+    let loaded = read_table(&options.table, &options.settings, quiet)?;
     let table = &loaded.table;
     let route = route(table, options.route)?;
-    let checkpoint = open_checkpoint(options, &loaded, route)?;
-    let mut stats = Stats::new();
-    let progress = Progress::new(&control, options.common.quiet);
-    let lengths = match budget == Budget::default() {
-        true => vec![options.length],
-        false => stages(options.length),
-    };
+    let asked = format!("--length {} --route {}", options.length, name(route));
+    let line = options_line(&asked, &options.settings.set, options.exactness.exact_only);
+    work.open(&options.keeping, &loaded, &line, quiet)?;
     let engine = AnyEngine::new(table, options.length, options.exactness.arithmetic());
     let walks = Walks {
         engine: &engine,
         mesh: &Mesh::new(table),
         sides: table.sides() as u64,
         route,
-        control: &control,
-        progress: &progress,
-        checkpoint: checkpoint.as_ref(),
     };
     let mut done = None;
     let mut stopped = false;
-    for length in lengths {
-        match walks.stage(length, &mut stats) {
+    for length in work.lengths(options.length) {
+        match walks.stage(length, &mut work) {
             Ok(stage) => done = Some(stage),
             Err(Stopped) => {
                 stopped = true;
@@ -93,13 +77,9 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
             }
         }
     }
-    drop((progress, watch));
-    if let Some(failure) = checkpoint.as_ref().and_then(Checkpoint::failure) {
-        note(&format!("the checkpoint is not up to date: {failure}"));
-    }
-    stats.finish(&engine, checkpoint.as_ref());
+    work.end(&engine);
     if options.stats && (done.is_none() || options.format != Format::Json) {
-        stats.tell();
+        work.stats.tell();
     }
     let disagreement = match done {
         Some(ref stage) => stage.disagreement.flatten(),
@@ -107,7 +87,8 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
     };
     let complete_to = done.as_ref().map(|stage| stage.length);
     if let Some(stage) = done {
-        let told = (options.stats && options.format == Format::Json).then_some(stats);
+        let told = options.stats && options.format == Format::Json;
+        let told = told.then_some(&work.stats);
         let record = record(table, options.length, route, stage, &claims, told);
         emit(options.out.as_deref(), |out| match options.format {
             Format::Text => write_text(&record, out),
@@ -124,8 +105,9 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
             "the two routes to p(n) differ, first at n = {n}; please report this table as a fault of the program"
         )));
     }
+    let what = |n| format!("the result is complete to n = {n} of {}", options.length);
     match stopped {
-        true => Err(stop(&control, complete_to, options)),
+        true => Err(work.stopped(complete_to.map(what))),
         false => Ok(()),
     }
 }
@@ -136,22 +118,19 @@ struct Walks<'a> {
     mesh: &'a Mesh,
     sides: u64,
     route: Route,
-    control: &'a Control,
-    progress: &'a Progress,
-    checkpoint: Option<&'a Checkpoint>,
 }
 
 impl Walks<'_> {
     /// Counts up to a length by the routes asked for.
-    fn stage(&self, length: usize, stats: &mut Stats) -> Result<Stage, Stopped> {
-        let (engine, mesh, control) = (self.engine, self.mesh, self.control);
+    fn stage(&self, length: usize, work: &mut Work) -> Result<Stage, Stopped> {
+        let (engine, mesh) = (self.engine, self.mesh);
         let mut found = None;
         if self.route != Route::Beams {
-            self.progress.begin("generalized diagonals", None);
             let most = length.saturating_sub(2);
-            let count =
-                |ledger: &dyn Ledger| diagonals::count_kept(engine, mesh, most, control, ledger);
-            found = Some(self.walk("diagonals", length, stats, count)?);
+            found = Some(work.walk("diagonals", length, None, |control, checkpoint| {
+                let ledger = ledger(checkpoint, "diagonals", length);
+                diagonals::count_kept(engine, mesh, most, control, &*ledger)
+            })?);
         }
         let by_diagonals = found
             .as_ref()
@@ -159,10 +138,10 @@ impl Walks<'_> {
         let mut by_beams = None;
         if self.route != Route::Diagonals {
             let words = by_diagonals.as_ref().map(|p| p.iter().sum());
-            self.progress.begin("beams", words);
-            let count =
-                |ledger: &dyn Ledger| walk::count_kept(engine, mesh, length, control, ledger);
-            by_beams = Some(self.walk("beams", length, stats, count)?);
+            by_beams = Some(work.walk("beams", length, words, |control, checkpoint| {
+                let ledger = ledger(checkpoint, "beams", length);
+                walk::count_kept(engine, mesh, length, control, &*ledger)
+            })?);
         }
         let disagreement = match (&by_beams, &by_diagonals) {
             (Some(a), Some(b)) => Some(first_disagreement(a, b)),
@@ -175,87 +154,16 @@ impl Walks<'_> {
             disagreement,
         })
     }
-
-    /// One walk, with its parts kept when there is a checkpoint.
-    fn walk(
-        &self,
-        name: &'static str,
-        length: usize,
-        stats: &mut Stats,
-        count: impl FnOnce(&dyn Ledger) -> Result<(Vec<u64>, Tiers), Stopped>,
-    ) -> Result<Vec<u64>, Stopped> {
-        let timer = stats.begin(name, length, self.control.done());
-        let counted = match self.checkpoint {
-            Some(checkpoint) => count(&checkpoint.walk(name, length)),
-            None => count(&Unkept),
-        };
-        let tiers = counted.as_ref().ok().map(|(_, tiers)| *tiers);
-        stats.end(timer, self.control.done(), tiers);
-        Ok(counted?.0)
-    }
 }
 
-/// The checkpoint asked for. Threads, budgets and formats do not change what the parts are.
-fn open_checkpoint(
-    options: &ComplexityOptions,
-    loaded: &LoadedTable,
-    route: Route,
-) -> Result<Option<Checkpoint>, Fault> {
-    let Some(folder) = &options.checkpoint else {
-        return Ok(None);
-    };
-    let mut table = loaded.text.clone();
-    for base in &loaded.bases {
-        table += &format!("\n[base {}]\n{}", base.name, base.text);
-    }
-    let mut line = format!("--length {} --route {}", options.length, name(route));
-    for setting in &options.settings.set {
-        line += &format!(" --set {setting}");
-    }
-    if options.exactness.exact_only {
-        line += " --exact-only";
-    }
-    let identity = Identity {
-        version: env!("CARGO_PKG_VERSION").into(),
-        table,
-        options: line,
-    };
-    let checkpoint = Checkpoint::open(folder, &identity, options.resume)?;
-    if checkpoint.rejected() > 0 && !options.common.quiet {
-        note(&format!(
-            "{} lines of the checkpoint are torn or altered; their parts are computed again",
-            checkpoint.rejected()
-        ));
-    }
-    Ok(Some(checkpoint))
-}
-
-/// Says why the work was stopped and what there is of it.
-fn stop(control: &Control, complete_to: Option<usize>, options: &ComplexityOptions) -> Fault {
-    let why = match control.reason() {
-        Some(StopReason::Time) => "the time allowed was over",
-        Some(StopReason::Memory) => "more memory was used than allowed",
-        Some(StopReason::Signal) | None => "a signal came",
-    };
-    let what = match complete_to {
-        Some(n) => format!("the result is complete to n = {n} of {}", options.length),
-        None => "nothing was written".into(),
-    };
-    let next = match options.checkpoint {
-        Some(_) => "; finished parts are kept, and --resume continues",
-        None => "",
-    };
-    Fault::Stopped(format!("{why} before the work was complete; {what}{next}"))
-}
-
-fn record(
+fn record<'a>(
     table: &Table,
     length: usize,
     route: Route,
     stage: Stage,
     claims: &[Claim],
-    stats: Option<Stats>,
-) -> ComplexityRecord {
+    stats: Option<&'a Stats>,
+) -> ComplexityRecord<'a> {
     let counts = Counts::from_p(stage.p);
     let diagonals = stage.diagonals.as_deref();
     let claims = claims
@@ -306,7 +214,7 @@ fn route(table: &Table, asked: Option<Route>) -> Result<Route, Fault> {
     }
 }
 
-fn rows(record: &ComplexityRecord) -> Vec<Vec<String>> {
+fn rows(record: &ComplexityRecord<'_>) -> Vec<Vec<String>> {
     (0..record.p.len())
         .map(|n| {
             let cell = |values: &[i64]| values.get(n).map_or(String::new(), i64::to_string);
@@ -322,7 +230,7 @@ fn rows(record: &ComplexityRecord) -> Vec<Vec<String>> {
         .collect()
 }
 
-fn write_text(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> {
+fn write_text(record: &ComplexityRecord<'_>, out: &mut dyn Write) -> io::Result<()> {
     writeln!(out, "{}", record.title)?;
     write_columns(out, &["n", "p(n)", "s(n)", "b(n)", "N(n)"], &rows(record))?;
     match record.routes_agree {
@@ -346,7 +254,7 @@ fn write_text(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> 
 }
 
 /// One line for each claim: its standing, the claim, the grounds.
-fn write_claims(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> {
+fn write_claims(record: &ComplexityRecord<'_>, out: &mut dyn Write) -> io::Result<()> {
     for claim in &record.claims {
         let label = claim.standing.label();
         writeln!(out, "{label}: {} ({})", claim.claim, claim.grounds)?;
@@ -354,7 +262,7 @@ fn write_claims(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()
     Ok(())
 }
 
-fn write_csv(record: &ComplexityRecord, out: &mut dyn Write) -> io::Result<()> {
+fn write_csv(record: &ComplexityRecord<'_>, out: &mut dyn Write) -> io::Result<()> {
     let mut csv = csv::Writer::from_writer(out);
     csv.write_record(["n", "p", "s", "b", "diagonals"])?;
     for row in rows(record) {

@@ -4,10 +4,12 @@ use super::arguments::{DiagonalsOptions, Format};
 use super::fault::Fault;
 use super::launch::Launcher;
 use super::output::{emit, read_table, write_columns, write_json};
-use super::progress::{Progress, interruptible_control};
+use super::stats::Stats;
+use super::work::Work;
 use crate::complexity::by_distance::{DistanceFault, list_within};
 use crate::complexity::diagonals::{Diagonal, list};
 use crate::number::Real;
+use crate::run::{Control, Stopped};
 use crate::study::folder::{spell_code, write_diagonals};
 use crate::table::Table;
 use crate::table::facts::{Angle, facts, squared_area};
@@ -30,14 +32,18 @@ pub(super) struct Listed {
 }
 
 #[derive(Serialize)]
-struct DiagonalsRecord {
+struct DiagonalsRecord<'a> {
     schema: &'static str,
     title: String,
     /// The most sides crossed.
     length: usize,
+    complete: bool,
+    complete_to: usize,
     /// N(0), N(1), …
     by_crossings: Vec<u64>,
     diagonals: Vec<Listed>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    stats: Option<&'a Stats>,
 }
 
 pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
@@ -45,19 +51,55 @@ pub fn run(options: &DiagonalsOptions) -> Result<(), Fault> {
     if let Some(distance) = &options.distance {
         return within(options, &loaded.table, distance);
     }
+    let mut work = Work::begin(options.limits.budget(), options.common.quiet)?;
     let table = &loaded.table;
     let mesh = Mesh::new(table);
     let engine = AnyEngine::new(table, options.length, options.exactness.arithmetic());
-    let control = interruptible_control();
-    let progress = Progress::new(&control, options.common.quiet);
-    progress.begin("generalized diagonals", None);
-    let (found, _) = list(&engine, &mesh, options.length, &control)?;
-    drop(progress);
-    emit(options.out.as_deref(), |out| match options.format {
-        Format::Text => write_text(table, &found, out),
-        Format::Csv => write_diagonals(table, &found, out),
-        Format::Json => write_json(out, &record(table, &found, options.length)),
-    })
+    let mut done = None;
+    let mut stopped = false;
+    for length in work.lengths(options.length) {
+        let walk = |control: &Control, _: Option<&_>| list(&engine, &mesh, length, control);
+        match work.walk("diagonals", length, None, walk) {
+            Ok(found) => done = Some((length, found)),
+            Err(Stopped) => {
+                stopped = true;
+                break;
+            }
+        }
+    }
+    work.end(&engine);
+    let in_json = options.format == Format::Json;
+    if options.stats && (done.is_none() || !in_json) {
+        work.stats.tell();
+    }
+    let complete_to = done.as_ref().map(|(length, _)| *length);
+    if let Some((complete_to, found)) = done {
+        emit(options.out.as_deref(), |out| match options.format {
+            Format::Text => write_text(table, &found, out),
+            Format::Csv => write_diagonals(table, &found, out),
+            Format::Json => {
+                let told = options.stats.then_some(&work.stats);
+                let record = record(table, &found, options.length, complete_to);
+                write_json(
+                    out,
+                    &DiagonalsRecord {
+                        stats: told,
+                        ..record
+                    },
+                )
+            }
+        })?;
+    }
+    let what = |n| {
+        format!(
+            "all that cross at most {n} sides are there, not those with {}",
+            options.length
+        )
+    };
+    match stopped {
+        true => Err(work.stopped(complete_to.map(what))),
+        false => Ok(()),
+    }
 }
 
 fn within(options: &DiagonalsOptions, table: &Table, text: &str) -> Result<(), Fault> {
@@ -65,21 +107,25 @@ fn within(options: &DiagonalsOptions, table: &Table, text: &str) -> Result<(), F
     let distance = launcher.positive("--distance", text)?;
     let (table, lifter) = launcher.finish();
     let distance = lifter.number(&distance);
-    let control = interruptible_control();
-    let progress = Progress::new(&control, options.common.quiet);
-    progress.begin("generalized diagonals", None);
+    if options.stats {
+        return Err(Fault::BadInput(
+            "--stats does not go with --distance: leave one of them out".into(),
+        ));
+    }
+    let work = Work::begin(options.limits.budget(), options.common.quiet)?;
+    work.progress.begin("diagonals", None);
     let found = list_within(
         &table,
         &Mesh::new(&table),
         &(&distance * &distance),
         options.exactness.arithmetic(),
-        &control,
+        &work.control,
     );
     let found = found.map_err(|fault| match fault {
-        DistanceFault::Stopped(stopped) => stopped.into(),
+        DistanceFault::Stopped(_) => work.stopped(None),
         DistanceFault::TooFar => Fault::BadInput(fault.to_string()),
     })?;
-    drop(progress);
+    drop(work);
     emit(options.out.as_deref(), |out| match options.format {
         Format::Text => write_text(&table, &found, out),
         Format::Csv => write_diagonals(&table, &found, out),
@@ -99,8 +145,13 @@ pub(super) fn listed(table: &Table, diagonal: &Diagonal) -> Listed {
     }
 }
 
-fn record(table: &Table, found: &[Diagonal], length: usize) -> DiagonalsRecord {
-    let mut by_crossings = vec![0; length + 1];
+fn record(
+    table: &Table,
+    found: &[Diagonal],
+    length: usize,
+    complete_to: usize,
+) -> DiagonalsRecord<'static> {
+    let mut by_crossings = vec![0; complete_to + 1];
     for diagonal in found {
         by_crossings[diagonal.code.len()] += 1;
     }
@@ -108,8 +159,11 @@ fn record(table: &Table, found: &[Diagonal], length: usize) -> DiagonalsRecord {
         schema: "reboundary-diagonals/1",
         title: table.title().into(),
         length,
+        complete: complete_to == length,
+        complete_to,
         by_crossings,
         diagonals: found.iter().map(|d| listed(table, d)).collect(),
+        stats: None,
     }
 }
 

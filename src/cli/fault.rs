@@ -1,5 +1,6 @@
 //! What can go wrong, and the exit code that says so.
 
+use crate::language::store::{PatternFault, QueryFault, StoreFault};
 use crate::language::walk::GrowthFault;
 use crate::run::Stopped;
 use crate::run::checkpoint::CheckpointFault;
@@ -128,5 +129,33 @@ impl From<FolderFault> for Fault {
             FolderFault::Output(output) => output.into(),
             FolderFault::Figure(_) => Fault::Failed(error.to_string()),
         }
+    }
+}
+
+impl From<StoreFault> for Fault {
+    fn from(error: StoreFault) -> Fault {
+        match error {
+            StoreFault::Growth(growth) => growth.into(),
+            StoreFault::Output(output) => output.into(),
+            StoreFault::OutOfOrder { .. } | StoreFault::NotProlongable { .. } => {
+                Fault::Failed(error.to_string())
+            }
+            _ => Fault::BadInput(error.to_string()),
+        }
+    }
+}
+
+impl From<QueryFault> for Fault {
+    fn from(error: QueryFault) -> Fault {
+        match error {
+            QueryFault::Language(_) => Fault::Failed(error.to_string()),
+            _ => Fault::BadInput(error.to_string()),
+        }
+    }
+}
+
+impl From<PatternFault> for Fault {
+    fn from(error: PatternFault) -> Fault {
+        Fault::BadInput(error.to_string())
     }
 }

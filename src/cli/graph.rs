@@ -3,15 +3,19 @@
 use super::arguments::{GraphFormat, GraphOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table, write_columns, write_json};
-use super::progress::{Progress, interruptible_control};
+use super::stats::Stats;
+use super::work::Work;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
 use crate::factor_graph::criterion::{LineFigures, line_figures};
 use crate::factor_graph::export::write_graphml;
-use crate::language::walk;
+use crate::language::Language;
+use crate::language::tree::BYTES_PER_WORD;
+use crate::language::walk::{self, GrowthFault};
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
 use std::io::{self, Write};
+use std::time::Instant;
 
 #[derive(Serialize)]
 struct Order<'a> {
@@ -52,44 +56,88 @@ struct GraphRecord<'a> {
     title: String,
     length: usize,
     radii: usize,
+    complete: bool,
+    complete_to: usize,
     orders: Vec<Order<'a>>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    stats: Option<&'a Stats>,
 }
 
 pub fn run(options: &GraphOptions) -> Result<(), Fault> {
+    let mut work = Work::begin(options.limits.budget(), options.common.quiet)?;
     let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
     let table = &loaded.table;
-    let (mesh, length) = (Mesh::new(table), options.length);
-    let engine = AnyEngine::new(table, length + 1, options.exactness.arithmetic());
-    let control = interruptible_control();
-    let progress = Progress::new(&control, options.common.quiet);
-    progress.begin("language", None);
-    let (language, _) = walk::grow(&engine, &mesh, length + 1, &control)?;
-    progress.begin("factor graphs", None);
-    let graphs = count_graphs(&language, 1, options.radii);
-    drop(progress);
-    emit(options.out.as_deref(), |out| match options.format {
-        GraphFormat::Text => {
-            writeln!(out, "{}", table.title())?;
-            let (header, rows) = rows(&graphs, options.radii);
-            let header: Vec<&str> = header.iter().map(String::as_str).collect();
-            write_columns(out, &header, &rows)
+    let mesh = Mesh::new(table);
+    let engine = AnyEngine::new(table, options.length + 1, options.exactness.arithmetic());
+    let mut done = None;
+    let mut stopped = false;
+    for order in work.lengths(options.length) {
+        match stage(&mut work, (&engine, &mesh), order, options.radii) {
+            Ok(stage) => done = Some((order, stage)),
+            Err(GrowthFault::Stopped(_)) => {
+                stopped = true;
+                break;
+            }
+            Err(fault) => return Err(fault.into()),
         }
-        GraphFormat::Csv => write_csv(&graphs, options.radii, out),
-        GraphFormat::Graphml => write_graphml(&language, length, table.letters(), out),
-        GraphFormat::Json => {
-            let orders = graphs.iter().map(Order::new);
-            write_json(
-                out,
-                &GraphRecord {
+    }
+    work.stats.bytes_per_word = Some(BYTES_PER_WORD);
+    work.end(&engine);
+    let in_json = options.format == GraphFormat::Json;
+    if options.stats && (done.is_none() || !in_json) {
+        work.stats.tell();
+    }
+    let complete_to = done.as_ref().map(|(order, _)| *order);
+    if let Some((order, (language, graphs))) = done {
+        let told = (options.stats && in_json).then_some(&work.stats);
+        emit(options.out.as_deref(), |out| match options.format {
+            GraphFormat::Text => {
+                writeln!(out, "{}", table.title())?;
+                let (header, rows) = rows(&graphs, options.radii);
+                let header: Vec<&str> = header.iter().map(String::as_str).collect();
+                write_columns(out, &header, &rows)
+            }
+            GraphFormat::Csv => write_csv(&graphs, options.radii, out),
+            GraphFormat::Graphml => write_graphml(&language, order, table.letters(), out),
+            GraphFormat::Json => {
+                let record = GraphRecord {
                     schema: "reboundary-graph/1",
                     title: table.title().into(),
-                    length,
+                    length: options.length,
                     radii: options.radii,
-                    orders: orders.collect(),
-                },
-            )
-        }
-    })
+                    complete: order == options.length,
+                    complete_to: order,
+                    orders: graphs.iter().map(Order::new).collect(),
+                    stats: told,
+                };
+                write_json(out, &record)
+            }
+        })?;
+    }
+    let what = |n| format!("the graphs are complete to order {n} of {}", options.length);
+    match stopped {
+        true => Err(work.stopped(complete_to.map(what))),
+        false => Ok(()),
+    }
+}
+
+/// The language and its graphs up to an order.
+fn stage(
+    work: &mut Work,
+    (engine, mesh): (&AnyEngine, &Mesh),
+    order: usize,
+    radii: usize,
+) -> Result<(Language, Vec<GraphCounts>), GrowthFault> {
+    let language = work.walk("language", order + 1, None, |control, _| {
+        walk::grow(engine, mesh, order + 1, control)
+    })?;
+    work.progress.begin("factor graphs", None);
+    let begun = Instant::now();
+    let graphs = count_graphs(&language, 1, radii);
+    work.control.tick(0)?;
+    work.stats
+        .add("factor graphs", order, begun.elapsed(), 0, None);
+    Ok((language, graphs))
 }
 
 fn rows(graphs: &[GraphCounts], radii: usize) -> (Vec<String>, Vec<Vec<String>>) {

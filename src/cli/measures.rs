@@ -462,9 +462,13 @@ fn distribution_picture(found: &Found) -> Result<String, FigureError> {
     draw_chart(&chart, &caption)
 }
 
+/// The longest blocks in the picture: more curves are not told apart.
+const MOST_CURVES: usize = 6;
+
 /// Distances of block frequencies by length of the words, for blocks of each length.
 fn blocks_picture(found: &Found) -> Result<String, FigureError> {
     let longest = found.blocks.iter().map(|row| row.block).max().unwrap_or(0);
+    let longest = longest.min(MOST_CURVES);
     let mut series = Vec::new();
     for m in 1..=longest {
         let rows = || found.blocks.iter().filter(|row| row.block == m);
@@ -497,7 +501,8 @@ fn blocks_picture(found: &Found) -> Result<String, FigureError> {
         y_scale: Scale::Log,
         series,
         note: Some(
-            "Blocks of length m in the words of length n, each word counted once, beside their measures."
+            "Blocks of length m in the words of length n, each word counted once, beside their measures. \
+             Distances of 0 have no place on this axis."
                 .into(),
         ),
         ..Chart::default()

@@ -2,6 +2,7 @@
 //!
 //! - [`analysis_arguments`]: options of the commands that analyse languages.
 //! - [`arguments`]: commands and options.
+//! - [`ask_arguments`]: options of the questions to a stored language.
 //! - [`fault`]: what can go wrong, and the exit code of each.
 //! - [`launch`]: starts and aims.
 //! - [`orbit_arguments`]: options of the commands about directions and periodic orbits.
@@ -9,10 +10,14 @@
 //! - [`progress`]: the bar on a terminal, and Ctrl-C.
 //! - [`word_arguments`]: options of the commands about single words and certificates.
 //! - `stats`: what a run took.
+//! - `work`: limits, stages and checkpoints of long commands.
 //! - one module for each command.
 
 pub mod analysis_arguments;
 pub mod arguments;
+mod ask;
+mod ask_answers;
+pub mod ask_arguments;
 mod certify;
 mod compare;
 mod complexity;
@@ -32,6 +37,7 @@ mod periodic;
 pub mod progress;
 mod special;
 mod stats;
+mod store;
 mod studies;
 mod study;
 mod sweep;
@@ -42,6 +48,7 @@ pub mod word_arguments;
 mod word_picture;
 mod word_record;
 mod words;
+mod work;
 
 use arguments::{Arguments, Command, Common};
 use clap::Parser;
@@ -85,6 +92,7 @@ fn run(arguments: Arguments) -> Result<(), Fault> {
         Command::Study(options) => with_threads(&options.common, || study::run(options)),
         Command::Table(options) => table::run(options),
         Command::Words(options) => with_threads(&options.common, || words::run(options)),
+        Command::Ask(options) => ask::run(options),
         Command::Complexity(options) => with_threads(&options.common, || complexity::run(options)),
         Command::Diagonals(options) => with_threads(&options.common, || diagonals::run(options)),
         Command::Graph(options) => with_threads(&options.common, || graph::run(options)),

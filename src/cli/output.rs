@@ -3,13 +3,14 @@
 use super::arguments::Settings;
 use super::fault::Fault;
 use crate::run::files::write_whole;
-use crate::table::file::{LoadedTable, load_with};
+use crate::table::file::{LoadedTable, load_with, rehearse};
 use std::io::{self, BufWriter, Write};
 use std::path::Path;
 
 /// Reads a table with its settings and tells its notices.
 pub fn read_table(path: &Path, settings: &Settings, quiet: bool) -> Result<LoadedTable, Fault> {
     let loaded = load_with(path, &settings.set)?;
+    rehearse(&loaded)?;
     if !quiet {
         for notice in &loaded.notices {
             note(notice);

@@ -75,8 +75,9 @@ impl Progress {
     }
 }
 
-impl Drop for Progress {
-    fn drop(&mut self) {
+impl Progress {
+    /// Ends the display.
+    pub fn hide(&mut self) {
         if let Some(bar) = &self.bar {
             bar.finish_and_clear();
         }
@@ -84,5 +85,11 @@ impl Drop for Progress {
             // The watcher only draws; if it panicked there is nothing to save.
             let _ = watcher.join();
         }
+    }
+}
+
+impl Drop for Progress {
+    fn drop(&mut self) {
+        self.hide();
     }
 }

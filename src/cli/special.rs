@@ -365,7 +365,13 @@ fn write_text(found: &Found, rows: SpecialRows, out: &mut dyn Write) -> io::Resu
             write_columns(out, &header, &cells)
         }
         SpecialRows::Bispecial => {
-            let (header, cells) = found.bispecial_cells();
+            // People are shown the ends alone.
+            let (header, mut cells) = found.bispecial_cells();
+            for (row, cells) in found.bispecial_rows().iter().zip(&mut cells) {
+                let made_by = row.diagonals.iter().map(|d| &found.diagonals[*d]);
+                let ends = made_by.map(|d| format!("{}-{}", d.start.0, d.end.0));
+                cells[6] = ends.collect::<Vec<String>>().join(" ");
+            }
             write_columns(out, &header, &cells)
         }
         SpecialRows::Right => write_tree(found, &found.right, out),
@@ -456,7 +462,7 @@ fn picture(found: &Found, end: End) -> Result<String, Fault> {
             here.push(nodes.len());
             nodes.push(TreeNode {
                 parent: special.parent.map(|p| above[p]),
-                label: letter.map_or(String::new(), |l| {
+                label: letter.map_or("ε".into(), |l| {
                     found.table.letters()[*l as usize].to_string()
                 }),
                 mark: match bispecial.map(Bispecial::strength) {

@@ -1,6 +1,6 @@
 //! What a run took: steps, decisions by tier, time of each walk, memory.
 //!
-//! Everything is of this run: parts recalled from a checkpoint took no steps.
+//! Steps and times are of this run: parts recalled from a checkpoint took none. Decisions tell of all parts.
 
 use crate::number::Tiers;
 use crate::run::checkpoint::Checkpoint;
@@ -8,7 +8,7 @@ use crate::run::memory;
 use crate::unfold::engine::AnyEngine;
 use serde::Serialize;
 use std::io::Write;
-use std::time::Instant;
+use std::time::{Duration, Instant};
 
 /// The `stats` object of JSON output.
 #[derive(Debug, Serialize)]
@@ -16,6 +16,9 @@ pub struct Stats {
     /// How signs are decided.
     engine: &'static str,
     walks: Vec<WalkStats>,
+    /// What a stored word takes, when words are stored.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub bytes_per_word: Option<u64>,
     /// Parts whose results came from a checkpoint.
     recalled_parts: usize,
     /// Of the whole run, reading and preparing included.
@@ -32,7 +35,7 @@ struct WalkStats {
     length: usize,
     /// Steps of fans, or beams visited.
     steps: u64,
-    /// Orientations by the tier that decided; null when the walk was stopped.
+    /// Orientations by the tier that decided; null when the walk was stopped or decided none.
     decisions: Option<Tiers>,
     seconds: f64,
 }
@@ -51,6 +54,7 @@ impl Stats {
         Stats {
             engine: "",
             walks: Vec::new(),
+            bytes_per_word: None,
             recalled_parts: 0,
             seconds: 0.0,
             peak_memory_bytes: None,
@@ -70,12 +74,25 @@ impl Stats {
 
     /// It ends; without tiers when it was stopped.
     pub fn end(&mut self, begun: Begun, done: u64, tiers: Option<Tiers>) {
+        let steps = done - begun.done;
+        self.add(begun.walk, begun.length, begun.at.elapsed(), steps, tiers);
+    }
+
+    /// A walk that took so long and so many steps.
+    pub fn add(
+        &mut self,
+        walk: &'static str,
+        length: usize,
+        time: Duration,
+        steps: u64,
+        decisions: Option<Tiers>,
+    ) {
         self.walks.push(WalkStats {
-            walk: begun.walk,
-            length: begun.length,
-            steps: done - begun.done,
-            decisions: tiers,
-            seconds: begun.at.elapsed().as_secs_f64(),
+            walk,
+            length,
+            steps,
+            decisions,
+            seconds: time.as_secs_f64(),
         });
     }
 
@@ -93,6 +110,7 @@ impl Stats {
         for walk in &self.walks {
             let name = match walk.walk {
                 "diagonals" => "steps of fans",
+                "factor graphs" => "steps",
                 _ => "beams",
             };
             text += &format!(
@@ -104,8 +122,11 @@ impl Stats {
                     "decisions: {} by floating point, {} by machine integers, {} by symmetry, {} by enclosures, {} by big integers\n",
                     tiers.float, tiers.integer, tiers.symmetry, tiers.enclosure, tiers.big
                 ),
-                None => "stopped\n".into(),
+                None => "no decisions told\n".into(),
             };
+        }
+        if let Some(bytes) = self.bytes_per_word {
+            text += &format!("stats: the tree of words takes {bytes} bytes a word\n");
         }
         if self.recalled_parts > 0 {
             text += &format!("stats: {} parts from the checkpoint\n", self.recalled_parts);

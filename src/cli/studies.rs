@@ -5,12 +5,15 @@
 
 use super::arguments::StudyOptions;
 use super::fault::Fault;
-use super::output::emit;
+use super::output::{emit, read_table};
 use super::progress::{Progress, interruptible_control};
-use super::study::{Work, study};
+use super::study::{Input, request};
 use crate::complexity::claim::Claim;
-use crate::run::memory;
+use crate::run::files::ResultFolder;
+use crate::run::{Control, memory};
 use crate::study::collection::{Found, Member, prepare, write_index};
+use crate::study::folder::MARK;
+use crate::study::results::compute;
 use rayon::prelude::*;
 use std::collections::BTreeSet;
 use std::fs;
@@ -21,7 +24,7 @@ use std::sync::atomic::{AtomicUsize, Ordering};
 const DEFAULT_FOLDER: &str = "studies";
 
 /// The table files meant: those named, and those in the folders named.
-pub fn files(options: &StudyOptions) -> Result<Vec<PathBuf>, Fault> {
+fn files(options: &StudyOptions) -> Result<Vec<PathBuf>, Fault> {
     let mut all = Vec::new();
     for path in &options.tables {
         if !path.is_dir() {
@@ -68,7 +71,19 @@ fn subfolders(files: &[PathBuf]) -> Vec<String> {
 }
 
 /// Runs the studies.
-pub fn run(options: &StudyOptions, files: &[PathBuf], claims: &[Claim]) -> Result<(), Fault> {
+pub fn run(options: &StudyOptions, claims: &[Claim]) -> Result<(), Fault> {
+    for (given, name) in [
+        (options.budget_time.is_some(), "--budget-time"),
+        (options.keeping.checkpoint.is_some(), "--checkpoint"),
+        (options.stats, "--stats"),
+    ] {
+        if given {
+            return Err(Fault::BadInput(format!(
+                "{name} is for the study of one table; leave it out, or name one table file"
+            )));
+        }
+    }
+    let files = &files(options)?[..];
     let default = PathBuf::from(DEFAULT_FOLDER);
     let folder = options.out.as_ref().unwrap_or(&default);
     prepare(folder)?;
@@ -79,7 +94,7 @@ pub fn run(options: &StudyOptions, files: &[PathBuf], claims: &[Claim]) -> Resul
     let allowed = options
         .budget_memory
         .or_else(|| memory::available().map(|free| free / 10 * 9));
-    let work = Work {
+    let work = Shared {
         options,
         claims,
         memory: allowed.map(|bytes| bytes / side_by_side),
@@ -101,9 +116,39 @@ pub fn run(options: &StudyOptions, files: &[PathBuf], claims: &[Claim]) -> Resul
     conclude(options, folder, files, names, finished)
 }
 
+/// What the studies share.
+struct Shared<'a> {
+    options: &'a StudyOptions,
+    claims: &'a [Claim],
+    /// Bytes that one study may take; `None` when the system does not tell what is free.
+    memory: Option<u64>,
+    control: &'a Control,
+}
+
+impl Shared<'_> {
+    /// Studies one table into a folder.
+    fn study(&self, table: &Path, out: &Path) -> Result<Found, Fault> {
+        let options = self.options;
+        let loaded = read_table(table, &options.settings, options.common.quiet)?;
+        drop(ResultFolder::new(out, MARK)?);
+        let request = request(options, self.memory);
+        let mut results = compute(&loaded.table, &request, self.control, |_| {})?;
+        results.judge_claims(self.claims);
+        let input = Input {
+            options,
+            table,
+            loaded: &loaded,
+            notices: &loaded.notices,
+            stop: "complete",
+        };
+        input.write(&results, out, self.control)?;
+        Ok(Found::of(&results))
+    }
+}
+
 /// Studies the tables, so many at a time; the next table begins when one ends. Results are in the order of the files.
 fn one_each(
-    work: &Work<'_>,
+    work: &Shared<'_>,
     folder: &Path,
     files: &[PathBuf],
     names: &[String],
@@ -120,7 +165,7 @@ fn one_each(
                     return mine;
                 }
                 let out = folder.join(&names[i]);
-                let result = study(work, &files[i], &out, |_| {}).map(|r| Found::of(&r));
+                let result = work.study(&files[i], &out);
                 mine.push((i, result));
             }
         })

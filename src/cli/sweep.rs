@@ -82,21 +82,24 @@ fn report(options: &SweepOptions, outcome: Outcome) -> Result<(), Fault> {
         && outcome.without_table == members
     {
         return Err(Fault::BadInput(format!(
-            "none of the {members} members is a table; the first: {fault}"
+            "none of the {members} members gives a table; the first: {fault}"
         )));
     }
     if !options.common.quiet {
         if outcome.without_table > 0 {
-            note(&format!(
-                "{} of {members} members are no table; their rows say why",
-                outcome.without_table
-            ));
+            note(&match outcome.without_table {
+                1 => format!("1 of {members} members gives no table; its row says why"),
+                without => {
+                    format!("{without} of {members} members give no table; their rows say why")
+                }
+            });
         }
         let kept = match outcome.kept {
             0 => String::new(),
             kept => format!(", {kept} of them from before"),
         };
-        writeln!(io::stdout(), "{folder}: {members} members{kept}")?;
+        let plural = if members == 1 { "" } else { "s" };
+        writeln!(io::stdout(), "{folder}: {members} member{plural}{kept}")?;
     }
     Ok(())
 }

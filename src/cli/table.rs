@@ -31,8 +31,12 @@ pub fn run(options: &TableOptions) -> Result<(), Fault> {
     })
 }
 
+/// Integers up to this length need no decimal beside them.
+const READABLE: usize = 24;
+
 fn exact(value: &Exact) -> String {
-    if value.exact.contains('t') || value.exact.contains('/') {
+    let plain = !value.exact.contains('t') && !value.exact.contains('/');
+    if !plain || value.exact.len() > READABLE {
         format!("{} = {}", value.exact, value.decimal)
     } else {
         value.exact.clone()

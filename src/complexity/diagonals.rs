@@ -5,15 +5,19 @@
 //! sequence of sides that it crosses. Segments along a side are not counted.
 //!
 //! Cost of finding all that cross at most n sides: about one fan step for each word of length n, so about
-//! p(n) steps, in memory O(n).
+//! p(n) steps, in memory O(n). Counting takes fewer where `leaps` can be taken.
 
+use super::counts::p_from_diagonals;
+use super::leaps;
 use crate::number::Tiers;
 use crate::run::checkpoint::{Ledger, Unkept};
 use crate::run::control::STEPS_PER_TICK;
+use crate::run::parts::{self, Kept};
 use crate::run::{Control, Stopped};
 use crate::table::{CornerId, SideId, Vector};
-use crate::unfold::engine::{AnyEngine, Engine, Trail};
+use crate::unfold::engine::{AnyEngine, Engine, Leaping, Trail};
 use crate::unfold::fan::{self, Fan, Step};
+use crate::unfold::grove::Grove;
 use crate::unfold::mesh::{Exit, Mesh, Wedge};
 use crate::unfold::with_engine;
 use rayon::prelude::*;
@@ -32,14 +36,14 @@ pub struct Diagonal {
 }
 
 /// A fan on its own, with the path that led to it.
-struct Seed<E: Engine> {
-    corner: CornerId,
-    path: Vec<SideId>,
-    fan: Fan<E>,
+pub(super) struct Seed<E: Engine> {
+    pub(super) corner: CornerId,
+    pub(super) path: Vec<SideId>,
+    pub(super) fan: Fan<E>,
 }
 
 /// Hears of each generalized diagonal.
-trait Listener<E: Engine>: Send {
+pub(super) trait Listener<E: Engine>: Send {
     fn found(
         &mut self,
         engine: &E,
@@ -63,7 +67,7 @@ pub fn count(
     count_kept(engine, mesh, most, control, &Unkept)
 }
 
-/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of the other parts alone.
+/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of all parts.
 ///
 /// # Errors
 /// When the control asks to stop.
@@ -74,10 +78,83 @@ pub fn count_kept(
     control: &Control,
     ledger: &dyn Ledger,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
-    with_engine!(engine, engine => count_parts(engine, mesh, most, control, ledger))
+    with_engine!(engine, engine => {
+        let depth = match engine.can_leap() {
+            true => leaping_depth(engine, mesh, most, control)?,
+            false => None,
+        };
+        match depth {
+            Some(depth) => count_leaping(engine, mesh, most, depth, control, ledger),
+            None => count_plain(engine, mesh, most, control, ledger),
+        }
+    })
 }
 
-/// The same on a given engine.
+/// The same in leaps of a given depth, at least 1 and at most `most`; [`count`] chooses the depth itself.
+///
+/// # Errors
+/// When the control asks to stop.
+///
+/// # Panics
+/// If the engine cannot leap.
+pub fn count_leaping<E: Leaping>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    depth: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let grove = Grove::grow(engine, mesh, depth, control)?;
+    let walk = |seed: &Seed<E>, counter: &mut Counter| {
+        leaps::walk_seed(engine, mesh, &grove, most, control, seed, counter)
+    };
+    count_parts(engine, mesh, most, control, ledger, walk)
+}
+
+/// How far to leap on a walk of so many crossings; `None` when leaps would not pay.
+///
+/// Trees of depth m have about p(m) places. They should stay near the processor's caches, hence [`MOST_PLACES`], and
+/// growing them costs Σ p(k) steps for k ≤ m, about (m/n)³·m/4 of the walk's own p(n) when p grows like n³; with
+/// m ≤ n/12 that is a hundredth of the walk for the lengths in question.
+///
+/// # Errors
+/// When the control asks to stop.
+fn leaping_depth<E: Engine>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+) -> Result<Option<usize>, Stopped> {
+    let mut depth = most / 12;
+    if depth < LEAST_DEPTH {
+        return Ok(None);
+    }
+    // Look at doubling lengths, so that not much more is counted than needed.
+    let mut looked = LEAST_DEPTH;
+    loop {
+        let reach = looked.min(depth);
+        let (found, _) = count_with(engine, mesh, reach, control)?;
+        let p = p_from_diagonals(mesh.side_count() as u64, &found, reach);
+        if let Some(over) = p.iter().position(|words| *words > MOST_PLACES) {
+            depth = over - 1;
+            return Ok(Some(depth).filter(|depth| *depth >= LEAST_DEPTH));
+        }
+        if reach == depth {
+            return Ok(Some(depth));
+        }
+        looked *= 2;
+    }
+}
+
+/// Shorter leaps save little.
+const LEAST_DEPTH: usize = 6;
+/// About 130 bytes each, with branches, tips and sides: a grove of at most 17 megabytes, or twice that while it grows.
+/// Measured: for p(2000) of the right isosceles triangle 2^15, 2^16 and 2^17 take the same time within a tenth, with
+/// fewer questions and more cache misses; for the heptagonal triangle 2^17 is the fastest of them.
+const MOST_PLACES: u64 = 1 << 17;
+
+/// The same on a given engine, always step by step.
 ///
 /// # Errors
 /// When the control asks to stop.
@@ -87,7 +164,20 @@ pub fn count_with<E: Engine>(
     most: usize,
     control: &Control,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
-    count_parts(engine, mesh, most, control, &Unkept)
+    count_plain(engine, mesh, most, control, &Unkept)
+}
+
+fn count_plain<E: Engine>(
+    engine: &E,
+    mesh: &Mesh,
+    most: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<u64>, Tiers), Stopped> {
+    let walk = |seed: &Seed<E>, counter: &mut Counter| {
+        walk_seed(engine, mesh, most, control, seed, counter)
+    };
+    count_parts(engine, mesh, most, control, ledger, walk)
 }
 
 fn count_parts<E: Engine>(
@@ -96,11 +186,15 @@ fn count_parts<E: Engine>(
     most: usize,
     control: &Control,
     ledger: &dyn Ledger,
+    walk: impl Fn(&Seed<E>, &mut Counter) -> Result<Tiers, Stopped> + Sync,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
     let new = || Counter(vec![0; most + 1]);
-    let recall = |part| ledger.recall(part).map(Counter);
-    let keep = |part, counter: &Counter| ledger.keep(part, &counter.0);
-    let (counters, tiers) = walk_fans(engine, mesh, most, control, new, (recall, keep))?;
+    let recall = |part| {
+        // A checkpoint's version, table and options agree, so the length does too.
+        parts::recall::<Counter>(ledger, part).filter(|(counter, _)| counter.0.len() == most + 1)
+    };
+    let keep = |part, counter: &Counter, tiers| parts::keep(ledger, part, counter, tiers);
+    let (counters, tiers) = walk_fans(engine, mesh, most, control, new, (recall, keep), walk)?;
     let mut n = vec![0; most + 1];
     for counter in counters {
         for (sum, part) in n.iter_mut().zip(&counter.0) {
@@ -124,8 +218,10 @@ pub fn list(
     control: &Control,
 ) -> Result<(Vec<Diagonal>, Tiers), Stopped> {
     let (lists, tiers) = with_engine!(engine, engine => {
-        let no_ledger = (|_| None, |_, _: &Collector| {});
-        let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default, no_ledger)?;
+        let no_ledger = (|_| None, |_, _: &Collector, _| {});
+        let (lists, tiers) = walk_fans(engine, mesh, most, control, Collector::default, no_ledger, |seed, found| {
+            walk_seed(engine, mesh, most, control, seed, found)
+        })?;
         (lists, tiers)
     });
     let mut all: Vec<Diagonal> = lists.into_iter().flat_map(|c| c.0).collect();
@@ -136,6 +232,17 @@ pub fn list(
 }
 
 struct Counter(Vec<u64>);
+
+impl Kept for Counter {
+    fn write(&self, out: &mut Vec<u64>) -> bool {
+        out.extend(&self.0);
+        true
+    }
+
+    fn read(numbers: &mut &[u64]) -> Option<Counter> {
+        Some(Counter(std::mem::take(numbers).to_vec()))
+    }
+}
 
 impl<E: Engine> Listener<E> for Counter {
     #[inline(always)]
@@ -185,9 +292,10 @@ fn walk_fans<E: Engine, L: Listener<E>>(
     control: &Control,
     new_listener: impl Fn() -> L + Sync,
     (recall, keep): (
-        impl Fn(usize) -> Option<L> + Sync,
-        impl Fn(usize, &L) + Sync,
+        impl Fn(usize) -> Option<(L, Tiers)> + Sync,
+        impl Fn(usize, &L, Tiers) + Sync,
     ),
+    walk: impl Fn(&Seed<E>, &mut L) -> Result<Tiers, Stopped> + Sync,
 ) -> Result<(Vec<L>, Tiers), Stopped> {
     assert!(
         most <= engine.deepest(),
@@ -233,12 +341,12 @@ fn walk_fans<E: Engine, L: Listener<E>>(
         .par_iter()
         .enumerate()
         .map(|(part, seed)| {
-            if let Some(listener) = recall(part) {
-                return Ok((listener, Tiers::default()));
+            if let Some(known) = recall(part) {
+                return Ok(known);
             }
             let mut listener = new_listener();
-            let tiers = walk_seed(engine, mesh, most, control, seed, &mut listener)?;
-            keep(part, &listener);
+            let tiers = walk(seed, &mut listener)?;
+            keep(part, &listener, tiers);
             Ok((listener, tiers))
         })
         .collect::<Result<_, Stopped>>()?;
@@ -250,7 +358,7 @@ fn walk_fans<E: Engine, L: Listener<E>>(
     Ok((listeners, tiers))
 }
 
-fn trail_of<E: Engine>(engine: &E, seed: &Seed<E>) -> Trail<E::Exact> {
+pub(super) fn trail_of<E: Engine>(engine: &E, seed: &Seed<E>) -> Trail<E::Exact> {
     let mut trail = engine.trail(Some(seed.corner));
     for (crossing, side) in seed.path.iter().enumerate() {
         trail.cross(crossing, *side);

@@ -63,18 +63,18 @@ const ROW: f64 = 30.0;
 /// Height of the rows together when they are too many for labels.
 const DENSE_HEIGHT: f64 = 1100.0;
 /// Half the width and height of a node's box.
-const HALF: Point = [14.0, 12.5];
+const HALF: Point = [14.0, 11.5];
 const MARGIN: f64 = 18.0;
 /// Between the left edge and the root.
 const LEFT: f64 = 46.0;
 /// Between the last column and the right edge.
 const RIGHT: f64 = 72.0;
 /// Between the top and the first row: the numbers of the columns stand there.
-const TOP: f64 = 62.0;
+const TOP: f64 = 74.0;
 /// Columns are at most so far apart.
 const WIDEST_STEP: f64 = 150.0;
-/// Narrowest columns in which notes are shown.
-const NOTE_STEP: f64 = 74.0;
+/// What a column needs beside a box and its note: the gap between them, and some of the edge.
+const NOTE_GAP: f64 = 20.0;
 /// Narrowest canvas: the legend needs it.
 const NARROWEST: f64 = 620.0;
 
@@ -154,7 +154,9 @@ pub(crate) fn compose_tree(tree: &TreeDrawing) -> Result<(Canvas, Point), Figure
     };
     let mut canvas = Canvas::default();
     draw_columns(&mut canvas, &tree.axis, depth, step, bottom);
-    let shows_note = |node: &TreeNode| labelled && step >= NOTE_STEP && !node.note.is_empty();
+    let note_widths = tree.nodes.iter().map(|n| text_width(&n.note, SMALL_TEXT));
+    let notes_fit = step >= 2.0 * HALF[0] + note_widths.fold(0.0, f64::max) + NOTE_GAP;
+    let shows_note = |node: &TreeNode| labelled && notes_fit && !node.note.is_empty();
     for (i, node) in tree.nodes.iter().enumerate() {
         let Some(parent) = node.parent else {
             continue;
@@ -239,8 +241,8 @@ fn look(mark: TreeMark) -> (Ink, Ink, f64) {
 fn draw_marker(canvas: &mut Canvas, at: Point, mark: TreeMark, r: f64) {
     let (marker, size, colour) = match mark {
         TreeMark::Plain => (Marker::Disc, 0.6 * r, GREY),
-        TreeMark::Framed => (Marker::Ring, r, GREY),
-        TreeMark::Filled => (Marker::Square, r, ink(1)),
+        TreeMark::Framed => (Marker::Ring, r - 0.5, GREY),
+        TreeMark::Filled => (Marker::Square, 1.15 * r, ink(1)),
         TreeMark::Falling => (Marker::Triangle, r, ink(0)),
     };
     canvas.marker(at, marker, size, colour);

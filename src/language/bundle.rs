@@ -17,7 +17,7 @@
 //! one letter a level is one bundle.
 
 use super::tree::WordId;
-use super::walk::{Part, SUBTREES, Visit, Visitor, sides_by_letter};
+use super::walk::{Part, SUBTREES, Visit, Visitor, joined, sides_by_letter, walk_seeds};
 use crate::number::Tiers;
 use crate::run::control::STEPS_PER_TICK;
 use crate::run::{Control, Stopped};
@@ -25,7 +25,6 @@ use crate::table::{LetterId, SideId};
 use crate::unfold::Mesh;
 use crate::unfold::beam::{self, Front, Spread};
 use crate::unfold::engine::{Engine, Trail};
-use rayon::prelude::*;
 
 /// One beam of a word.
 struct Strand<E: Engine> {
@@ -57,9 +56,18 @@ impl<E: Engine> Bundle<E> {
 }
 
 /// A bundle that can be followed on its own: with the sides crossed by each of its beams.
-struct Seed<E: Engine> {
+pub(super) struct Seed<E: Engine> {
     bundle: Bundle<E>,
     paths: Vec<Vec<SideId>>,
+}
+
+impl<E: Engine> Seed<E> {
+    /// The letters of its word, those of any of its beams.
+    pub(super) fn word(&self, mesh: &Mesh) -> Vec<u8> {
+        let start = self.bundle.strands[0].start;
+        let sides = [start].into_iter().chain(self.paths[0].iter().copied());
+        sides.map(|side| mesh.letter(side).0).collect()
+    }
 }
 
 /// Lanes with trails of their own; more beams than that share them.
@@ -297,8 +305,8 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
     (recall, keep): (
-        impl Fn(usize) -> Option<V> + Sync,
-        impl Fn(usize, &V) + Sync,
+        impl Fn(usize) -> Option<(V, Tiers)> + Sync,
+        impl Fn(usize, &V, Tiers) + Sync,
     ),
 ) -> Result<(Vec<V>, Tiers), Stopped> {
     let mut tiers = Tiers::default();
@@ -306,35 +314,25 @@ pub(super) fn walk<E: Engine, V: Visitor<E>>(
     if longest == 0 {
         return Ok((vec![head], tiers));
     }
-    let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
-    let mut visitors = vec![head];
-    if split < longest {
-        let walked = seeds
-            .par_iter()
-            .enumerate()
-            .map(|(part, seed)| {
-                if let Some(visitor) = recall(part) {
-                    return Ok((visitor, Tiers::default()));
-                }
-                let mut visitor = new_visitor(Part::Subtree);
-                let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
-                keep(part, &visitor);
-                Ok((visitor, tiers))
-            })
-            .collect::<Result<Vec<(V, Tiers)>, Stopped>>()?;
-        for (visitor, part) in walked {
-            tiers.absorb(part);
-            visitors.push(visitor);
-        }
+    let (mut seeds, split) = divide(
+        engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers,
+    )?;
+    if split >= longest {
+        seeds.clear();
     }
-    Ok((visitors, tiers))
+    let walk = |seed: &Seed<E>, visitor: &mut V| {
+        walk_subtree(engine, mesh, longest, control, seed, visitor)
+    };
+    let subtrees = walk_seeds(&seeds, &new_visitor, walk, (recall, keep))?;
+    Ok(joined(head, tiers, subtrees))
 }
 
 /// Follows all words level by level until there are enough. Returns them with their length.
-fn divide<E: Engine, V: Visitor<E>>(
+pub(super) fn divide<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
+    enough: usize,
     control: &Control,
     visitor: &mut V,
     tiers: &mut Tiers,
@@ -352,7 +350,7 @@ fn divide<E: Engine, V: Visitor<E>>(
     let mut length = 1;
     let mut out = Spread::default();
     // One bundle alone may have very many beams, and then there is nothing to divide.
-    while length < longest && seeds.len() < SUBTREES && length < MOST_LEVELS {
+    while length < longest && seeds.len() < enough && length < MOST_LEVELS {
         let mut next = Vec::new();
         for (parent, seed) in (0..).zip(&seeds) {
             control.tick(seed.bundle.strands.len() as u64)?;
@@ -394,7 +392,8 @@ fn renumbered<E: Engine>(mut bundle: Bundle<E>) -> Bundle<E> {
     bundle
 }
 
-fn walk_subtree<E: Engine, V: Visitor<E>>(
+/// Walks the words below a seed, depth first.
+pub(super) fn walk_subtree<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,

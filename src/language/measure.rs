@@ -11,9 +11,11 @@
 //! and nothing in it counts words: the check shares only the cells with the walk.
 
 use super::beams::WordBeam;
-use super::walk::{GrowthFault, Part, Visit, Visitor, walk_beams};
-use crate::number::{Enclosure, Real};
+use super::walk::{GrowthFault, Part, Visit, Visitor, walk_in_ledger};
+use crate::number::{Enclosure, Real, Tiers};
 use crate::run::Control;
+use crate::run::checkpoint::{Ledger, Unkept};
+use crate::run::parts::{Kept, read_enclosure, take, write_enclosure};
 use crate::table::Table;
 use crate::unfold::engine::{AnyEngine, Engine, Trail};
 use crate::unfold::{Mesh, with_engine};
@@ -178,6 +180,8 @@ pub struct Measures {
     pub levels: Vec<LevelSum>,
     /// Measures of the words of the kept length, in their order.
     pub kept: Vec<Enclosure>,
+    /// How the orientations on the way were decided.
+    pub tiers: Tiers,
 }
 
 /// Bits of the bounds for a table of perimeter about 1. A sum must be known to about 100 places after the
@@ -211,10 +215,25 @@ pub fn measure(
     kept: usize,
     control: &Control,
 ) -> Result<Measures, GrowthFault> {
+    measure_kept(table, engine, mesh, (longest, kept), control, &Unkept)
+}
+
+/// The same, with the longest length and the kept one; parts that the ledger knows are taken from there.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn measure_kept(
+    table: &Table,
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    (longest, kept): (usize, usize),
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<Measures, GrowthFault> {
     let precision = precision_for(table);
-    let parts: Vec<Sums> = with_engine!(engine, engine => {
+    let (parts, tiers) = with_engine!(engine, engine => {
         let new = |part| Sums::new(part, kept, precision);
-        walk_beams(engine, mesh, longest, control, new)?.0
+        walk_in_ledger(engine, mesh, longest, control, new, ledger)?
     });
     let whole = table.perimeter(precision).mul_integer(&Integer::from(2));
     let mut sums = vec![Enclosure::zero(precision); longest];
@@ -238,6 +257,7 @@ pub fn measure(
         whole,
         levels,
         kept: kept_measures,
+        tiers,
     })
 }
 
@@ -262,6 +282,33 @@ impl Sums {
             current: Vec::new(),
             kept_measures: Vec::new(),
         }
+    }
+}
+
+/// The kept length and the precision, the number of sums and the sums, the number of kept measures and these.
+impl Kept for Sums {
+    fn write(&self, out: &mut Vec<u64>) -> bool {
+        out.extend([self.kept as u64, u64::from(self.precision)]);
+        [&self.sums, &self.kept_measures].into_iter().all(|list| {
+            out.push(list.len() as u64);
+            list.iter().all(|enclosure| write_enclosure(enclosure, out))
+        })
+    }
+
+    fn read(numbers: &mut &[u64]) -> Option<Sums> {
+        let kept = usize::try_from(take(numbers)?).ok()?;
+        let precision = u32::try_from(take(numbers)?).ok()?;
+        let mut list = || -> Option<Vec<Enclosure>> {
+            (0..take(numbers)?)
+                .map(|_| read_enclosure(numbers))
+                .collect()
+        };
+        let (sums, kept_measures) = (list()?, list()?);
+        Some(Sums {
+            sums,
+            kept_measures,
+            ..Sums::new(Part::Subtree, kept, precision)
+        })
     }
 }
 

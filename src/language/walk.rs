@@ -15,6 +15,7 @@ use super::tree::{Language, LanguageFault, WordId};
 use crate::number::Tiers;
 use crate::run::checkpoint::{Ledger, Unkept};
 use crate::run::control::STEPS_PER_TICK;
+use crate::run::parts::{self, Kept, take};
 use crate::run::{Control, Stopped};
 use crate::table::{LetterId, SideId};
 use crate::unfold::beam::{self, Front, Spread};
@@ -65,11 +66,19 @@ pub enum Part {
 }
 
 /// A beam with everything it needs to be followed on its own.
-struct Seed<E: Engine> {
+pub(super) struct Seed<E: Engine> {
     start: SideId,
     path: Vec<SideId>,
     front: Front<E>,
     cell: Vec<E::Point>,
+}
+
+impl<E: Engine> Seed<E> {
+    /// The letters of its word.
+    pub(super) fn word(&self, mesh: &Mesh) -> Vec<u8> {
+        let sides = [self.start].into_iter().chain(self.path.iter().copied());
+        sides.map(|side| mesh.letter(side).0).collect()
+    }
 }
 
 /// Subtrees to aim for when the work is divided.
@@ -90,7 +99,7 @@ pub fn walk_beams<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
 ) -> Result<(Vec<V>, Tiers), Stopped> {
-    let no_ledger = (|_| None, |_, _: &V| {});
+    let no_ledger = (|_| None, |_, _: &V, _| {});
     walk_kept(engine, mesh, longest, control, new_visitor, no_ledger)
 }
 
@@ -103,8 +112,8 @@ fn walk_kept<E: Engine, V: Visitor<E>>(
     control: &Control,
     new_visitor: impl Fn(Part) -> V + Sync,
     (recall, keep): (
-        impl Fn(usize) -> Option<V> + Sync,
-        impl Fn(usize, &V) + Sync,
+        impl Fn(usize) -> Option<(V, Tiers)> + Sync,
+        impl Fn(usize, &V, Tiers) + Sync,
     ),
 ) -> Result<(Vec<V>, Tiers), Stopped> {
     assert!(
@@ -116,30 +125,63 @@ fn walk_kept<E: Engine, V: Visitor<E>>(
     }
     let mut tiers = Tiers::default();
     let mut head = new_visitor(Part::Head);
-    let (seeds, split) = divide(engine, mesh, longest, control, &mut head, &mut tiers)?;
-    let walked: Vec<(V, Tiers)> = if split >= longest {
-        Vec::new()
-    } else {
-        seeds
-            .par_iter()
-            .enumerate()
-            .map(|(part, seed)| {
-                if let Some(visitor) = recall(part) {
-                    return Ok((visitor, Tiers::default()));
-                }
-                let mut visitor = new_visitor(Part::Subtree);
-                let tiers = walk_subtree(engine, mesh, longest, control, seed, &mut visitor)?;
-                keep(part, &visitor);
-                Ok((visitor, tiers))
-            })
-            .collect::<Result<_, Stopped>>()?
+    let (mut seeds, split) = divide(
+        engine, mesh, longest, SUBTREES, control, &mut head, &mut tiers,
+    )?;
+    if split >= longest {
+        seeds.clear();
+    }
+    let walk = |seed: &Seed<E>, visitor: &mut V| {
+        walk_subtree(engine, mesh, longest, control, seed, visitor)
     };
+    let subtrees = walk_seeds(&seeds, &new_visitor, walk, (recall, keep))?;
+    Ok(joined(head, tiers, subtrees))
+}
+
+/// Walks the subtree of each seed, or recalls it, on any number of threads.
+pub(super) fn walk_seeds<S: Sync, V: Send>(
+    seeds: &[S],
+    new_visitor: &(impl Fn(Part) -> V + Sync),
+    walk: impl Fn(&S, &mut V) -> Result<Tiers, Stopped> + Sync,
+    (recall, keep): (
+        impl Fn(usize) -> Option<(V, Tiers)> + Sync,
+        impl Fn(usize, &V, Tiers) + Sync,
+    ),
+) -> Result<Vec<(V, Tiers)>, Stopped> {
+    let subtree = |(part, seed): (usize, &S)| {
+        if let Some(known) = recall(part) {
+            return Ok(known);
+        }
+        let mut visitor = new_visitor(Part::Subtree);
+        let tiers = walk(seed, &mut visitor)?;
+        keep(part, &visitor, tiers);
+        Ok((visitor, tiers))
+    };
+    seeds.par_iter().enumerate().map(subtree).collect()
+}
+
+/// The visitors of the head and of the subtrees in order, with the sum of the tiers.
+pub(super) fn joined<V>(head: V, mut tiers: Tiers, subtrees: Vec<(V, Tiers)>) -> (Vec<V>, Tiers) {
     let mut visitors = vec![head];
-    for (visitor, part) in walked {
+    for (visitor, part) in subtrees {
         tiers.absorb(part);
         visitors.push(visitor);
     }
-    Ok((visitors, tiers))
+    (visitors, tiers)
+}
+
+/// The walk whose subtrees a ledger knows or keeps.
+pub(super) fn walk_in_ledger<E: Engine, V: Visitor<E> + Kept>(
+    engine: &E,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    new_visitor: impl Fn(Part) -> V + Sync,
+    ledger: &dyn Ledger,
+) -> Result<(Vec<V>, Tiers), Stopped> {
+    let recall = |part| parts::recall(ledger, part);
+    let keep = |part, visitor: &V, tiers| parts::keep(ledger, part, visitor, tiers);
+    walk_kept(engine, mesh, longest, control, new_visitor, (recall, keep))
 }
 
 /// All sides in the order of their letters.
@@ -151,10 +193,11 @@ pub(super) fn sides_by_letter(mesh: &Mesh) -> Vec<SideId> {
 
 /// Follows all beams level by level until there are enough, showing them to the visitor. Returns them with
 /// their word length.
-fn divide<E: Engine, V: Visitor<E>>(
+pub(super) fn divide<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
+    enough: usize,
     control: &Control,
     visitor: &mut V,
     tiers: &mut Tiers,
@@ -189,7 +232,7 @@ fn divide<E: Engine, V: Visitor<E>>(
         });
     }
     let mut out = Spread::default();
-    while length < longest && seeds.len() < SUBTREES {
+    while length < longest && seeds.len() < enough {
         control.tick(seeds.len() as u64)?;
         let mut longer = Vec::new();
         for (parent, seed) in (0..).zip(&seeds) {
@@ -246,7 +289,8 @@ struct Waiting<E: Engine> {
     cut: bool,
 }
 
-fn walk_subtree<E: Engine, V: Visitor<E>>(
+/// Walks the words below a seed, depth first.
+pub(super) fn walk_subtree<E: Engine, V: Visitor<E>>(
     engine: &E,
     mesh: &Mesh,
     longest: usize,
@@ -339,7 +383,52 @@ fn push_pieces<E: Engine>(
 /// Collects letters and parents per length: entry n − 1 for length n.
 #[derive(Default)]
 struct Grower {
-    levels: Vec<(Vec<u8>, Vec<WordId>)>,
+    levels: Vec<GrownLevel>,
+}
+
+/// Levels are kept as their sizes, and for each word its letter and how much its parent's number is above that of the
+/// word before, in 16 bits, four words in one number.
+impl Kept for Grower {
+    fn write(&self, out: &mut Vec<u64>) -> bool {
+        out.push(self.levels.len() as u64);
+        for (letters, parents) in &self.levels {
+            out.push(letters.len() as u64);
+            let mut before = 0;
+            for (letters, parents) in letters.chunks(4).zip(parents.chunks(4)) {
+                let mut packed = 0;
+                for (place, (letter, parent)) in letters.iter().zip(parents).enumerate() {
+                    let Ok(rise) = u8::try_from(parent - before) else {
+                        // Words without extensions; a billiard has none.
+                        return false;
+                    };
+                    before = *parent;
+                    packed |= u64::from(u16::from_le_bytes([*letter, rise])) << (16 * place);
+                }
+                out.push(packed);
+            }
+        }
+        true
+    }
+
+    fn read(numbers: &mut &[u64]) -> Option<Grower> {
+        let mut levels = Vec::new();
+        for _ in 0..take(numbers)? {
+            let size = usize::try_from(take(numbers)?).ok()?;
+            let (packed, rest) = numbers.split_at_checked(size.div_ceil(4))?;
+            *numbers = rest;
+            let mut level = GrownLevel::default();
+            let mut parent = 0;
+            for place in 0..size {
+                let bits = (packed[place / 4] >> (16 * (place % 4))) as u16;
+                let [letter, rise] = bits.to_le_bytes();
+                parent += WordId::from(rise);
+                level.0.push(letter);
+                level.1.push(parent);
+            }
+            levels.push(level);
+        }
+        Some(Grower { levels })
+    }
 }
 
 impl<E: Engine> Visitor<E> for Grower {
@@ -380,7 +469,21 @@ pub fn grow(
     longest: usize,
     control: &Control,
 ) -> Result<(Language, Tiers), GrowthFault> {
-    with_engine!(engine, engine => grow_with(engine, mesh, longest, control))
+    grow_kept(engine, mesh, longest, control, &Unkept)
+}
+
+/// The same; parts that the ledger knows are taken from there. The tiers tell of all parts.
+///
+/// # Errors
+/// As [`grow`].
+pub fn grow_kept(
+    engine: &AnyEngine,
+    mesh: &Mesh,
+    longest: usize,
+    control: &Control,
+    ledger: &dyn Ledger,
+) -> Result<(Language, Tiers), GrowthFault> {
+    with_engine!(engine, engine => grow_with(engine, mesh, longest, control, ledger))
 }
 
 fn grow_with<E: Engine>(
@@ -388,8 +491,16 @@ fn grow_with<E: Engine>(
     mesh: &Mesh,
     longest: usize,
     control: &Control,
+    ledger: &dyn Ledger,
 ) -> Result<(Language, Tiers), GrowthFault> {
-    let (growers, tiers) = walk_beams(engine, mesh, longest, control, |_| Grower::default())?;
+    let (growers, tiers) = walk_in_ledger(
+        engine,
+        mesh,
+        longest,
+        control,
+        |_| Grower::default(),
+        ledger,
+    )?;
     let levels = join(growers.into_iter().map(|g| g.levels).collect())?;
     Ok((Language::from_levels(mesh.letter_count(), levels)?, tiers))
 }
@@ -426,6 +537,17 @@ fn join(parts: Vec<Vec<GrownLevel>>) -> Result<Vec<GrownLevel>, LanguageFault> {
 #[derive(Default)]
 struct Counter(Vec<u64>);
 
+impl Kept for Counter {
+    fn write(&self, out: &mut Vec<u64>) -> bool {
+        out.extend(&self.0);
+        true
+    }
+
+    fn read(numbers: &mut &[u64]) -> Option<Counter> {
+        Some(Counter(std::mem::take(numbers).to_vec()))
+    }
+}
+
 impl<E: Engine> Visitor<E> for Counter {
     #[inline]
     fn visit(&mut self, visit: &Visit<'_, E>, _: &mut Trail<E::Exact>) {
@@ -451,7 +573,7 @@ pub fn count(
     count_kept(engine, mesh, longest, control, &Unkept)
 }
 
-/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of the other parts alone.
+/// The same; the counts of parts that the ledger knows are taken from there. The tiers tell of all parts.
 ///
 /// # Errors
 /// When the control asks to stop.
@@ -463,10 +585,8 @@ pub fn count_kept(
     ledger: &dyn Ledger,
 ) -> Result<(Vec<u64>, Tiers), Stopped> {
     let new = |_| Counter::default();
-    let recall = |part| ledger.recall(part).map(Counter);
-    let keep = |part, counter: &Counter| ledger.keep(part, &counter.0);
     let (counters, tiers) = with_engine!(engine, engine => {
-        walk_kept(engine, mesh, longest, control, new, (recall, keep))?
+        walk_in_ledger(engine, mesh, longest, control, new, ledger)?
     });
     let mut p = vec![0; longest + 1];
     p[0] = 1;

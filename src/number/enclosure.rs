@@ -320,6 +320,40 @@ impl Enclosure {
     }
 }
 
+/// Values from here on are written with a power of ten.
+const LONG: f64 = 1e15;
+/// Nonzero values below are written with a power of ten.
+const SHORT: f64 = 1e-3;
+
+impl Enclosure {
+    /// The enclosed number for readers: to `places` places after the point when it is zero or of ordinary size (from
+    /// 0.001 to 10¹⁵), otherwise with `places + 1` digits and a power of ten, such as `1.4142e-300`. `None` when the
+    /// interval is too wide for that.
+    ///
+    /// The text differs from the exact number by less than one unit in the last digit.
+    pub fn readable(&self, places: usize) -> Option<String> {
+        let [lo, hi] = [&self.lo, &self.hi].map(|bound| bound.clone().abs());
+        let (least, most) = if lo <= hi { (lo, hi) } else { (hi, lo) };
+        if most == 0 || (most >= SHORT && least < LONG) {
+            return self.decimal(places);
+        }
+        if self.contains_zero() {
+            return None;
+        }
+        // A width of at most a tenth of a unit in the last digit, and rounding by half of one.
+        let mut needed = least.clone();
+        needed >>= 4 * (places as u32 + 2);
+        if self.width() > needed {
+            return None;
+        }
+        let (negative, digits, exponent) = self.lo.to_sign_string_exp(10, Some(places + 1));
+        let sign = if negative { "-" } else { "" };
+        let (first, rest) = digits.split_at(1);
+        let point = if rest.is_empty() { "" } else { "." };
+        Some(format!("{sign}{first}{point}{rest}e{}", exponent? - 1))
+    }
+}
+
 /// `value / 10^digits` written out.
 fn fixed_point(value: &Integer, digits: usize) -> String {
     let magnitude = value.clone().abs().to_string();
@@ -411,8 +445,11 @@ mod tests {
             "0.69314718055994530941723212145817656807550013436026"
         );
         assert!(Enclosure::zero(53).ln().is_none());
-        let logarithm = Enclosure::from_rational(&ratio(1, 3), 60).ln().unwrap();
-        assert!(logarithm.hi() < &0.0 && logarithm.width() > 0);
+        // Of a point: still an interval, and the 50 places lie within it.
+        let few_bits = Enclosure::from_rational(&ratio(2, 1), 60).ln().unwrap();
+        let (lower, upper) = few_bits.decimal_bounds(50);
+        let places = "0.69314718055994530941723212145817656807550013436026";
+        assert!(*lower < *places && *upper > *places, "{lower} {upper}");
     }
 
     #[test]

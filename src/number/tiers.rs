@@ -62,6 +62,28 @@ impl Tiers {
         self.big += other.big;
     }
 
+    /// The counts in a list, for keeping.
+    pub fn to_counts(self) -> [u64; 5] {
+        [
+            self.float,
+            self.integer,
+            self.symmetry,
+            self.enclosure,
+            self.big,
+        ]
+    }
+
+    /// From such a list.
+    pub fn from_counts([float, integer, symmetry, enclosure, big]: [u64; 5]) -> Tiers {
+        Tiers {
+            float,
+            integer,
+            symmetry,
+            enclosure,
+            big,
+        }
+    }
+
     /// All decisions.
     pub fn total(&self) -> u64 {
         self.float + self.integer + self.symmetry + self.enclosure + self.big

@@ -24,6 +24,10 @@ pub trait Ledger: Sync {
     fn recall(&self, part: usize) -> Option<Vec<u64>>;
     /// Called once for each part that was not recalled, when it is finished.
     fn keep(&self, part: usize, counts: &[u64]);
+    /// False when [`Ledger::keep`] does nothing, so that there is no need to prepare for it.
+    fn keeps(&self) -> bool {
+        true
+    }
 }
 
 /// Knows nothing and keeps nothing.
@@ -36,6 +40,22 @@ impl Ledger for Unkept {
     }
 
     fn keep(&self, _: usize, _: &[u64]) {}
+
+    fn keeps(&self) -> bool {
+        false
+    }
+}
+
+/// The parts of one walk in a checkpoint, when there is one.
+pub fn ledger<'a>(
+    checkpoint: Option<&'a Checkpoint>,
+    walk: &'static str,
+    length: usize,
+) -> Box<dyn Ledger + 'a> {
+    match checkpoint {
+        Some(checkpoint) => Box::new(checkpoint.walk(walk, length)),
+        None => Box::new(Unkept),
+    }
 }
 
 /// What a checkpoint is of. Its parts are of no use to anything else.

@@ -55,6 +55,8 @@ pub struct Extras<'a> {
     pub picture_size: PictureSize,
     /// Write the tables as LaTeX too.
     pub latex: bool,
+    /// Why the study is not longer: `complete`, or `time`, `memory` or `signal` when it was stopped.
+    pub stop: &'static str,
 }
 
 /// Why a study's folder was not written.
@@ -127,7 +129,7 @@ pub fn write(
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
         parameters: extras.parameters.to_vec(),
     };
-    let record = record(results, extras.table_file, options, extras.bases, hashes);
+    let record = record(results, extras, options, hashes);
     folder.write("report.html", |out| {
         let page = report(results, &record, &drawn, &listed, extras);
         out.write_all(page.as_bytes())

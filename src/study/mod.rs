@@ -8,6 +8,7 @@
 //! - [`trend`]: what the ratio p(n+1)/p(n) suggests.
 //! - [`claims`]: stated bounds, checked.
 //! - [`pictures`], [`growth_pictures`]: the figures of a study.
+//! - [`sheet`]: a table at a size that can be drawn.
 //! - [`record`]: the file `study.json`.
 //! - [`report`], [`report_growth`]: the file `report.html`; [`html`]: pieces of a page; [`sources`]: the bibliography.
 //! - [`latex`]: the file `tables.tex`.
@@ -26,6 +27,7 @@ pub mod record;
 pub mod report;
 pub mod report_growth;
 pub mod results;
+pub mod sheet;
 pub mod sources;
 pub mod statement;
 pub mod theorem;

@@ -3,6 +3,7 @@
 //! Nothing here decides anything: coordinates are rounded for drawing only.
 
 use super::results::Results;
+use super::sheet::Sheet;
 use crate::complexity::growth::cubic_range;
 use crate::figure::{
     Caption, CellShape, Cells, Chart, Corridor, FigureError, HoleShape, Mark, Scale, Series,
@@ -53,7 +54,10 @@ pub fn pictures(
     cells: &[WordBeam],
     corridor: &WordBeam,
 ) -> Result<Vec<Picture>, FigureError> {
-    let table = &results.table;
+    let sheet = Sheet::new(&results.table);
+    let table = &sheet.table;
+    let cells = &sheet.beams(cells);
+    let corridor = &sheet.beams(std::slice::from_ref(corridor))[0];
     let mut all = vec![picture(
         "table.svg",
         "The table",

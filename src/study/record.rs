@@ -3,6 +3,7 @@
 //! The record has no times and no paths, so the same input gives the same bytes.
 
 use super::claims::ClaimRecord;
+use super::folder::Extras;
 use super::growth::GrowthFigures;
 use super::results::{Results, StageTiers};
 use super::statement::Statement;
@@ -12,7 +13,7 @@ use crate::factor_graph::criterion::LineFigures;
 use crate::factor_graph::export::spell;
 use crate::language::WordId;
 use crate::number::Enclosure;
-use crate::table::file::{BaseFile, Parameter};
+use crate::table::file::Parameter;
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
 use sha2::{Digest, Sha256};
@@ -205,9 +206,8 @@ pub fn width(value: &Enclosure) -> String {
 /// Gathers the record of a study.
 pub fn record<'a>(
     results: &'a Results,
-    table_file: &'a str,
+    extras: &Extras<'a>,
     options: Options,
-    bases: &'a [BaseFile],
     hashes: Hashes,
 ) -> Record<'a> {
     let n = results.shown_length;
@@ -215,11 +215,13 @@ pub fn record<'a>(
         schema: SCHEMA,
         program: Program::this(),
         options,
-        table_file,
-        base_files: bases.iter().map(|base| base.text.as_str()).collect(),
+        table_file: extras.table_file,
+        base_files: (extras.bases.iter())
+            .map(|base| base.text.as_str())
+            .collect(),
         hashes,
         table: summary(&results.table, &results.facts),
-        stop: "complete",
+        stop: extras.stop,
         complexity: Complexity {
             p: &results.counts.p,
             first_difference: &results.counts.first_difference,

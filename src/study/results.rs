@@ -18,6 +18,7 @@ use crate::language::measure::{self, Measures};
 use crate::language::tree::BYTES_PER_WORD;
 use crate::language::walk::{self, GrowthFault};
 use crate::number::Tiers;
+use crate::run::checkpoint::{Checkpoint, ledger};
 use crate::run::{Control, Stopped, memory};
 use crate::table::Table;
 use crate::table::facts::{Facts, facts};
@@ -149,6 +150,36 @@ pub fn compute(
     table: &Table,
     request: &Request,
     control: &Control,
+    begin: impl FnMut(Stage),
+) -> Result<Results, StudyFault> {
+    compute_kept(table, request, control, None, begin)
+}
+
+/// The longest words of a study that names no length.
+///
+/// # Errors
+/// When the control asks to stop.
+pub fn default_length(
+    table: &Table,
+    arithmetic: Arithmetic,
+    control: &Control,
+) -> Result<usize, Stopped> {
+    let engine = AnyEngine::new(table, DEFAULT_LENGTH, arithmetic);
+    let (mesh, most) = (Mesh::new(table), DEFAULT_LENGTH - 2);
+    let (diagonals, _) = diagonals::count(&engine, &mesh, most, control)?;
+    let p = p_from_diagonals(table.sides() as u64, &diagonals, DEFAULT_LENGTH);
+    Ok(affordable(&p, DEFAULT_WORDS))
+}
+
+/// The same, with the parts of its walks in a checkpoint.
+///
+/// # Errors
+/// As [`compute`].
+pub fn compute_kept(
+    table: &Table,
+    request: &Request,
+    control: &Control,
+    checkpoint: Option<&Checkpoint>,
     mut begin: impl FnMut(Stage),
 ) -> Result<Results, StudyFault> {
     let facts = facts(table);
@@ -157,8 +188,9 @@ pub fn compute(
     let engine = AnyEngine::new(table, horizon, request.arithmetic);
 
     begin(Stage::Fans);
-    let (mut diagonals, fan_tiers) =
-        diagonals::count(&engine, &mesh, horizon.saturating_sub(2), control)?;
+    let fans = ledger(checkpoint, "diagonals", horizon);
+    let most = horizon.saturating_sub(2);
+    let (mut diagonals, fan_tiers) = diagonals::count_kept(&engine, &mesh, most, control, &*fans)?;
     // Generalized diagonals count beams. They count words when each word is one beam, and bound them otherwise.
     let mut beams = p_from_diagonals(table.sides() as u64, &diagonals, horizon);
     let length = request
@@ -171,12 +203,15 @@ pub fn compute(
     check_memory(words, length, request.memory)?;
 
     begin(Stage::Beams { words });
-    let (language, beam_tiers) = walk::grow(&engine, &mesh, length, control)?;
+    let grown = ledger(checkpoint, "language", length);
+    let (language, beam_tiers) = walk::grow_kept(&engine, &mesh, length, control, &*grown)?;
     let counts = Counts::from_p(language.complexity());
     let shown_length = shown_length(&counts.p);
 
     begin(Stage::Measures { words });
-    let measures = measure::measure(table, &engine, &mesh, length, shown_length, control)?;
+    let measured = ledger(checkpoint, "measures", length);
+    let lengths = (length, shown_length);
+    let measures = measure::measure_kept(table, &engine, &mesh, lengths, control, &*measured)?;
 
     begin(Stage::Graphs);
     let graphs = count_graphs(&language, 1, request.radii);

@@ -12,7 +12,7 @@ use crate::figure::FigureError;
 use crate::language::walk::GrowthFault;
 use crate::run::Control;
 use crate::run::files::{OutputFault, write_whole};
-use crate::table::file::parse;
+use crate::table::file::{bases, parse};
 use rayon::prelude::*;
 use serde::{Deserialize, Serialize};
 use std::fs;
@@ -125,10 +125,11 @@ pub fn sweep(folder: &Path, family: &Family<'_>, control: &Control) -> Result<Ou
         .map(|values| settings_of(family, values))
         .collect();
     prepare(folder)?;
+    let texts = all_texts(family);
     let kept = AtomicUsize::new(0);
     let finish = |settings: &Vec<Setting>| -> Result<Option<Row>, SweepFault> {
         let path = folder.join("members").join(file_name(settings));
-        if let Some(row) = earlier(&path, family, settings) {
+        if let Some(row) = earlier(&path, family, &texts, settings) {
             kept.fetch_add(1, Ordering::Relaxed);
             return Ok(Some(row));
         }
@@ -149,7 +150,7 @@ pub fn sweep(folder: &Path, family: &Family<'_>, control: &Control) -> Result<Ou
         let finished = Finished {
             version: VERSION.into(),
             request: family.request,
-            table_text: family.text.into(),
+            table_text: texts.clone(),
             row,
         };
         write_whole(&path, |out| write_json(out, &finished))?;
@@ -207,12 +208,21 @@ fn prepare(folder: &Path) -> Result<(), SweepFault> {
     Ok(())
 }
 
+/// The text of the table file and those that it stands on.
+fn all_texts(family: &Family<'_>) -> String {
+    let mut texts = family.text.to_string();
+    for base in bases(family.file, family.text) {
+        texts += &format!("\n[base {}]\n{}", base.name, base.text);
+    }
+    texts
+}
+
 /// The row of an earlier sweep, when it was made from the same.
-fn earlier(path: &Path, family: &Family<'_>, settings: &[Setting]) -> Option<Row> {
+fn earlier(path: &Path, family: &Family<'_>, texts: &str, settings: &[Setting]) -> Option<Row> {
     let finished: Finished = serde_json::from_str(&fs::read_to_string(path).ok()?).ok()?;
     let same = finished.version == VERSION
         && finished.request == family.request
-        && finished.table_text == family.text
+        && finished.table_text == texts
         && finished.row.settings == settings;
     same.then_some(finished.row)
 }

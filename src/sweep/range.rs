@@ -45,11 +45,21 @@ pub enum RangeFault {
         /// The text.
         text: String,
     },
+    /// What follows the last slash is no number.
+    #[error(
+        "`{count}` is no whole number: what follows the last `/` of a range is the count of its values, so write start..end/count, such as 1/10..9/10/17 for 17 values"
+    )]
+    CountNotWhole {
+        /// What stands there.
+        count: String,
+    },
     /// The count is out of bounds.
-    #[error("{count} values are asked for, and a range has 2 to {MOST_VALUES}")]
+    #[error(
+        "{count} values are asked for, and a range has from 2 to {MOST_VALUES}: write start..end/count, such as 1/10..9/10/17"
+    )]
     BadCount {
-        /// The count.
-        count: usize,
+        /// The count, as written.
+        count: String,
     },
     /// An expression is wrong.
     #[error("`{text}`: {message}; {help}")]
@@ -163,10 +173,22 @@ fn list_items(list: &str) -> Vec<&str> {
 fn range_of(whole: &str, start: &str, rest: &str) -> Result<Vec<Value>, RangeFault> {
     let no_count = || RangeFault::NoCount { text: whole.into() };
     let (end, count) = rest.rsplit_once('/').ok_or_else(no_count)?;
-    let count: usize = count.trim().parse().map_err(|_| no_count())?;
-    if !(2..=MOST_VALUES).contains(&count) {
-        return Err(RangeFault::BadCount { count });
+    let written = count.trim();
+    if written.is_empty() {
+        return Err(no_count());
     }
+    if !written.bytes().all(|digit| digit.is_ascii_digit()) {
+        return Err(RangeFault::CountNotWhole {
+            count: written.into(),
+        });
+    }
+    // Digits that are no such number are too many.
+    let count: Option<usize> = written.parse().ok();
+    let Some(count) = count.filter(|count| (2..=MOST_VALUES).contains(count)) else {
+        return Err(RangeFault::BadCount {
+            count: written.into(),
+        });
+    };
     let rational = |text: &str| {
         let value = evaluate(text)?.to_rational();
         value.ok_or_else(|| RangeFault::IrrationalEnd { text: text.into() })
@@ -256,8 +278,24 @@ mod tests {
         assert!(matches!(fault("1/10..9/10/17"), NoName { .. }));
         assert!(matches!(fault("t="), NoName { .. }));
         assert!(matches!(fault("t=1..2"), NoCount { .. }));
-        assert!(matches!(fault("t=1..2/x"), NoCount { .. }));
-        assert!(matches!(fault("t=1..2/1"), BadCount { count: 1 }));
+        assert!(matches!(fault("t=1..2/"), NoCount { .. }));
+        for (text, count) in [
+            ("t=1..2/x", "x"),
+            ("t=1..2/-3", "-3"),
+            ("t=1..5/2.5", "2.5"),
+        ] {
+            let said = fault(text).to_string();
+            assert!(
+                said.starts_with(&format!("`{count}` is no whole number")),
+                "{said}"
+            );
+            assert!(said.contains("1/10..9/10/17"), "{said}");
+        }
+        assert!(matches!(fault("t=1..2/1"), BadCount { .. }));
+        assert!(matches!(
+            fault("t=1..2/99999999999999999999999"),
+            BadCount { .. }
+        ));
         assert!(matches!(fault("t=1..1/3"), NoExtent { .. }));
         assert!(matches!(fault("t=sqrt(2)..2/3"), IrrationalEnd { .. }));
         assert!(matches!(fault("t={}"), EmptyList));

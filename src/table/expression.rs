@@ -47,8 +47,7 @@ pub const LARGEST_EXPONENT: u32 = 1000;
 pub const MOST_BITS: usize = 65_536;
 
 /// The most work of one expression, or of one table file and the files that it stands on together, in units of
-/// [`effort`]: half a minute of an ordinary machine, for which
-/// the documents promise one minute.
+/// [`effort`]: about half a minute on an ordinary machine. The documents promise a minute.
 pub const MOST_WORK: u64 = 26_000_000_000;
 
 /// What is wrong with an expression.

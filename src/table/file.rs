@@ -22,7 +22,8 @@
 //!
 //! Exactly one of `corners`, `triangle`, `regular`, `outline` and `base` is there. An outline starts at the origin and must
 //! lead back there exactly. A base keeps its letters and its holes, unless the file names other `sides` for the
-//! outline; its parameters have the values that its own file gives them. A number is a string that holds an exact
+//! outline; its parameters have the values that its own file gives them, unless a setting reaches them: a setting `name=expression`
+//! is for the first file on the way to the last base that gives the name a meaning. A number is a string that holds an exact
 //! [expression](super::expression), or a plain integer. Floating-point numbers are refused, because what
 //! is written is not what would be read.
 //!
@@ -34,6 +35,27 @@
 //! the program counts through, it counts the corners of the outline counterclockwise, then those of each hole
 //! clockwise; the first corner of each ring stays the first. Sides without a letter get the first letters of the
 //! alphabet that the file does not name.
+//!
+//! **Bounds.** What a file may cost is bounded for any input:
+//!
+//! | what | at most |
+//! |------|---------|
+//! | bytes of a file | 1 MiB ([`LARGEST_FILE`]) |
+//! | files that stand on each other | 16 |
+//! | names in `define` and `parameters` | 64 ([`MOST_NAMES`]) |
+//! | corners, those of holes included | 255 ([`MOST_SIDES`](super::MOST_SIDES)) |
+//! | bytes of an expression | 4096 ([`LONGEST_EXPRESSION`](super::expression::LONGEST_EXPRESSION)) |
+//! | nesting of an expression | 64 ([`DEEPEST_NESTING`](super::expression::DEEPEST_NESTING)) |
+//! | digits of a number | 1000 ([`MOST_DIGITS`](super::expression::MOST_DIGITS)) |
+//! | exponents | 1000 up or down ([`LARGEST_EXPONENT`](super::expression::LARGEST_EXPONENT)) |
+//! | bits of an exact number | 65536 ([`MOST_BITS`](super::expression::MOST_BITS)) |
+//! | degree of the field | 64 ([`LARGEST_DEGREE`](crate::number::field::LARGEST_DEGREE)) |
+//! | work, its bases included | [`MOST_WORK`] units |
+//!
+//! The last one bounds the time: see [`effort`]. It covers reading the numbers, growing and factoring for their field, and
+//! checking the corners. [`rehearse`] bounds what every command does first in the same way: cutting into triangles,
+//! the smaller field of walks, the facts. On an ordinary machine each is over in a minute; being a count and no clock, it
+//! refuses the same files everywhere. A refusal points at the part that was too much.
 //!
 //! Every fault is a [`Diagnostic`] that points at its place. Corners and sides are counted from 0.
 
@@ -50,7 +72,7 @@ use super::diagnostic::Diagnostic;
 use super::expression::MOST_WORK;
 use crate::number::effort::{self, Exhausted};
 pub use names::{MOST_NAMES, Parameter};
-use read::Chain;
+use read::{Chain, Link};
 use std::io::Read;
 use std::path::Path;
 use thiserror::Error;
@@ -71,7 +93,7 @@ pub struct LoadedTable {
     pub stem: String,
     /// The name of the file as given.
     pub file_name: String,
-    /// Its parameters, as set.
+    /// Its parameters, as set, and after them those of the files that it stands on which a setting can reach.
     pub parameters: Vec<Parameter>,
     /// The files that it stands on, the nearest first.
     pub bases: Vec<BaseFile>,
@@ -156,8 +178,17 @@ fn bounded(
         .unwrap_or_else(|Exhausted| Err(TableFileError::TooMuchWork { file: file.into() }))
 }
 
-/// Reads a table that other files, which are being read, stand on.
-fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
+/// Does what every command does with a table before its own work, within another budget of [`MOST_WORK`], and forgets
+/// the results: after it a table is known to be ready for use in bounded time.
+///
+/// # Errors
+/// A diagnostic when that is too much.
+pub fn rehearse(loaded: &LoadedTable) -> Result<(), TableFileError> {
+    read::rehearse(&loaded.file_name, &loaded.text, &loaded.table).map_err(TableFileError::Fault)
+}
+
+/// The text of a file, checked for size and encoding.
+fn read_text(path: &Path) -> Result<String, TableFileError> {
     let file = path.display().to_string();
     let unreadable = |reason| TableFileError::Unreadable {
         file: file.clone(),
@@ -172,10 +203,22 @@ fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTabl
     if bytes.len() > LARGEST_FILE {
         return Err(TableFileError::TooLarge { file });
     }
-    let text = String::from_utf8(bytes).map_err(|e| TableFileError::NotText {
+    String::from_utf8(bytes).map_err(|e| TableFileError::NotText {
         file: file.clone(),
         offset: e.utf8_error().valid_up_to(),
-    })?;
+    })
+}
+
+/// The files that a table file stands on, the nearest first, as far as its chain of `base` can be followed. No number
+/// is read, so this says nothing about whether they give a table.
+pub fn bases(file_name: &str, text: &str) -> Vec<BaseFile> {
+    affine::named_bases(file_name, text)
+}
+
+/// Reads a table that other files, which are being read, stand on.
+fn load_in(path: &Path, settings: &[String], chain: &Chain) -> Result<LoadedTable, TableFileError> {
+    let file = path.display().to_string();
+    let text = read_text(path)?;
     parse_in(&file, &text, settings, chain)
 }
 
@@ -225,7 +268,11 @@ fn parse_in(
     );
     let mut chain = chain.clone();
     let place = Path::new(file_name).canonicalize();
-    chain.push((place.unwrap_or_default(), file_name.to_string()));
+    chain.push(Link {
+        place: place.unwrap_or_default(),
+        name: file_name.to_string(),
+        parameters: Vec::new(),
+    });
     let read::Reading {
         table,
         parameters,

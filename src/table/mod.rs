@@ -354,6 +354,17 @@ impl Table {
         }
     }
 
+    /// The same table with each coordinate multiplied by a positive number and the form by a third: the same
+    /// figure up to its size when the form's factor times the square of the second is the square of the first.
+    pub fn in_units(&self, units: &[Real; 2], form: &Real) -> Table {
+        let scaled = |c: &Vector| Vector::new(&c.x * &units[0], &c.y * &units[1]);
+        Table {
+            corners: self.corners.iter().map(scaled).collect(),
+            form: &self.form * form,
+            ..self.clone()
+        }
+    }
+
     /// An enclosure of the length of a vector of this table's plane.
     pub fn length(&self, vector: &Vector, precision: u32) -> Enclosure {
         vector

@@ -14,12 +14,12 @@ use std::collections::BTreeMap;
 /// Places after the point in the decimals of a summary.
 const PLACES: usize = 20;
 
-/// An exact number with its decimal value (less than one unit off in the last place).
+/// An exact number with its decimal value (less than one unit off in the last digit).
 #[derive(Clone, Debug, PartialEq, Eq, Serialize)]
 pub struct Exact {
     /// In the powers of the field's generator `t`.
     pub exact: String,
-    /// To 20 places.
+    /// To 20 places; very small and very large values with 21 digits and a power of ten.
     pub decimal: String,
 }
 
@@ -28,7 +28,7 @@ impl Exact {
     pub fn new(value: &Real) -> Exact {
         Exact {
             exact: value.display_in("t"),
-            decimal: value.decimal(PLACES),
+            decimal: decimal(|bits| value.enclosure_within(bits)),
         }
     }
 }
@@ -61,7 +61,7 @@ pub struct SideSummary {
     pub corners: [usize; 2],
     /// The square of its length.
     pub squared_length: Exact,
-    /// Its length, to 20 places.
+    /// Its length, as a decimal.
     pub length: String,
 }
 
@@ -72,7 +72,7 @@ pub struct FieldSummary {
     pub degree: usize,
     /// Minimal polynomial of the generator t.
     pub minimal_polynomial: String,
-    /// The generator, to 20 places.
+    /// The generator, as a decimal.
     pub generator: String,
     /// The discriminant of the minimal polynomial: the field's own, times a square that is not determined.
     pub polynomial_discriminant: String,
@@ -84,7 +84,7 @@ impl FieldSummary {
         FieldSummary {
             degree: field.degree(),
             minimal_polynomial: poly::display(field.minimal_polynomial(), "t"),
-            generator: field.generator().decimal(PLACES),
+            generator: decimal(|bits| field.generator().enclosure_within(bits)),
             polynomial_discriminant: polynomial_discriminant(field).to_string(),
         }
     }
@@ -168,11 +168,11 @@ pub struct TableSummary {
     pub symmetries: Vec<SymmetrySummary>,
     /// The square of the area.
     pub squared_area: Exact,
-    /// The area, to 20 places.
+    /// The area, as a decimal.
     pub area: String,
-    /// The perimeter, to 20 places.
+    /// The perimeter, as a decimal.
     pub perimeter: String,
-    /// π·area/perimeter, to 20 places.
+    /// π·area/perimeter, as a decimal.
     pub mean_chord: String,
 }
 
@@ -264,7 +264,7 @@ fn symmetry_summary(symmetry: &Symmetry, letters: &[char]) -> SymmetrySummary {
     }
 }
 
-/// The square root of a nonnegative number, to 20 places.
+/// The square root of a nonnegative number, as in [`Exact::decimal`].
 pub fn root_decimal(square: &Real) -> String {
     decimal(|bits| square.enclosure_within(bits).sqrt())
 }
@@ -274,7 +274,7 @@ pub fn root_decimal(square: &Real) -> String {
 fn decimal(enclose: impl Fn(u32) -> crate::number::Enclosure) -> String {
     let mut bits = 160;
     loop {
-        if let Some(text) = enclose(bits).decimal(PLACES) {
+        if let Some(text) = enclose(bits).readable(PLACES) {
             return text;
         }
         bits *= 2;

@@ -163,6 +163,44 @@ impl<E: Engine> Spread<E> {
     }
 }
 
+/// A cell that one corner cut: its corner images, and how many of them are left ones.
+pub type CutCell<E> = (Vec<<E as Engine>::Point>, usize);
+
+/// What meeting one corner image does to a beam: all its lines have it on one side, or it cuts the cell, and the
+/// parts have it on the right and on the left.
+pub enum Meeting<E: Engine> {
+    /// Negative: all lines have the apex on their right.
+    Whole(Sign),
+    /// The part with the apex on its right, then the one with the apex on its left.
+    Cut(CutCell<E>, CutCell<E>),
+}
+
+/// Meets one corner image; [`spread`] does this for all of a copy at once, without allocating.
+pub fn meet<E: Engine>(
+    engine: &E,
+    trail: &mut Trail<E::Exact>,
+    (cell, lefts): (&[E::Point], usize),
+    apex: &E::Point,
+) -> Meeting<E> {
+    if let Some(sign) = side_of_apex(engine, trail, cell, lefts, apex) {
+        return Meeting::Whole(match sign {
+            Sign::Positive => Sign::Positive,
+            _ => Sign::Negative,
+        });
+    }
+    let mut points = cell.to_vec();
+    let part = Open {
+        gate: GateId(0),
+        lefts,
+        start: 0,
+        end: cell.len(),
+        cut: false,
+    };
+    let (right, left) = cut(engine, trail, &mut points, &part, apex);
+    let taken = |part: Open| (points[part.start..part.end].to_vec(), part.lefts);
+    Meeting::Cut(taken(right), taken(left))
+}
+
 /// The side on which every line of the cell has the apex, or `None` when the apex cuts the cell.
 #[inline(always)]
 fn side_of_apex<E: Engine>(

@@ -38,6 +38,21 @@ impl<X: ExactTrail> Trail<X> {
         &self.path
     }
 
+    /// Records several crossings, of which the first has this number; later ones are forgotten.
+    ///
+    /// # Panics
+    /// If an earlier crossing is missing.
+    #[inline]
+    pub fn cross_all(&mut self, crossing: usize, sides: &[SideId]) {
+        assert!(
+            crossing <= self.path.len(),
+            "crossings are recorded in order"
+        );
+        self.path.truncate(crossing);
+        self.path.extend_from_slice(sides);
+        self.exact.keep(crossing);
+    }
+
     /// The path and the exact part, to be used together.
     pub(super) fn split(&mut self) -> (&[SideId], &mut X) {
         (&self.path, &mut self.exact)
@@ -62,11 +77,16 @@ impl<X: ExactTrail> Trail<X> {
 
 /// The exact part of a trail: results for a prefix of the path.
 pub trait ExactTrail: Send {
+    /// False when no decision looks at the path.
+    const NEEDS_PATH: bool = true;
+
     /// Forgets what depends on crossings after the first `crossings`.
     fn keep(&mut self, crossings: usize);
 }
 
 impl ExactTrail for () {
+    const NEEDS_PATH: bool = false;
+
     #[inline(always)]
     fn keep(&mut self, _: usize) {}
 }
@@ -134,6 +154,41 @@ pub trait Engine: Sync {
     fn deepest(&self) -> usize;
 }
 
+/// An engine that goes many crossings at once, along a path that it knows from a copy of the same parity.
+///
+/// Positions ahead are kept as seen from the unreflected copy; the linear part of the present copy turns them.
+pub trait Leaping: Engine {
+    /// A vector from the unreflected copy.
+    type Ahead: Copy + Send + Sync + std::fmt::Debug;
+
+    /// False when linear parts are not tabulated; then nothing else here may be called.
+    fn can_leap(&self) -> bool;
+
+    /// A corner image of a walk that began in [`Engine::home`] without an origin.
+    fn point_ahead(&self, point: &Self::Point) -> Self::Ahead;
+
+    /// A copy of such a walk: its linear part and its translation.
+    fn pose_ahead(&self, pose: &Self::Pose) -> (u16, Self::Ahead);
+
+    /// A corner image as many crossings ahead as it was from home.
+    fn place_ahead(
+        &self,
+        pose: &Self::Pose,
+        ahead: &Self::Ahead,
+        crossings: u32,
+        corner: CornerId,
+    ) -> Self::Point;
+
+    /// A copy as many crossings ahead as it was from home.
+    fn leap(
+        &self,
+        pose: &Self::Pose,
+        element: u16,
+        ahead: &Self::Ahead,
+        crossings: u32,
+    ) -> Self::Pose;
+}
+
 /// Which tiers may decide.
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub enum Arithmetic {
@@ -148,7 +203,7 @@ pub enum Arithmetic {
 #[derive(Debug)]
 pub enum AnyEngine {
     /// Finite group over the rationals, if need be in a frame.
-    Lattice(Framed<Lattice>),
+    Lattice(Box<Framed<Lattice>>),
     /// Everything else.
     Filtered(Box<Framed<Filtered>>),
 }
@@ -158,7 +213,10 @@ pub enum AnyEngine {
 macro_rules! with_engine {
     ($any:expr, $engine:ident => $body:expr) => {
         match $any {
-            $crate::unfold::engine::AnyEngine::Lattice($engine) => $body,
+            $crate::unfold::engine::AnyEngine::Lattice($engine) => {
+                let $engine = &**$engine;
+                $body
+            }
             $crate::unfold::engine::AnyEngine::Filtered($engine) => {
                 let $engine = &**$engine;
                 $body
@@ -196,7 +254,7 @@ impl AnyEngine {
         if let Some(group) = &group
             && let Some(lattice) = Lattice::new(table, group, deepest)
         {
-            return AnyEngine::Lattice(Framed::new(lattice, frame));
+            return AnyEngine::Lattice(Box::new(Framed::new(lattice, frame)));
         }
         let engine = Filtered::new(table, group.as_ref(), deepest);
         AnyEngine::Filtered(Box::new(Framed::new(engine, frame)))

@@ -57,10 +57,16 @@ struct FiniteTables {
     degree: usize,
     /// Reduction: θ^(d+i) in the powers below d, row i.
     reduction: Vec<Vec<i128>>,
+    /// The same in half the width, when it fits.
+    narrow_reduction: Option<Vec<Vec<i64>>>,
+    /// While the differences of coordinates stay below this, an orientation is exact in `i64`: see [`narrow_bound`].
+    narrow_below: u64,
     /// Enclosures of θ^i: value and a bound on its error.
     powers: Vec<(f64, f64)>,
     scale: Integer,
     next: Vec<u16>,
+    /// After so many crossings, and one image more, no coordinate has left the `i64`.
+    deepest: usize,
     /// Rows of 2d numbers: x coordinates, then y coordinates.
     shift: Vec<i64>,
     image: Vec<i64>,
@@ -73,12 +79,21 @@ pub struct ExactPath {
     elements: Vec<u16>,
     translations: Vec<i64>,
     row: usize,
+    scratch: Scratch,
     big: BigPath,
     wide: WidePath,
 }
 
+/// Room for one orientation, kept so that asking often does not allocate.
+#[derive(Debug, Default)]
+struct Scratch {
+    /// b − a, then v − a.
+    differences: [Vec<i64>; 2],
+    product: Vec<i64>,
+}
+
 impl ExactTrail for ExactPath {
-    #[inline]
+    #[inline(always)]
     fn keep(&mut self, crossings: usize) {
         if self.elements.len() > crossings + 1 {
             self.elements.truncate(crossings + 1);
@@ -121,6 +136,7 @@ impl ExactTables {
             elements: Vec::new(),
             translations: Vec::new(),
             row: self.finite.as_ref().map_or(0, |f| 2 * f.degree),
+            scratch: Scratch::default(),
             big: BigPath::default(),
             wide: WidePath::default(),
         }
@@ -257,7 +273,7 @@ impl FiniteTables {
             }
             Some(flat)
         };
-        let reduction = (degree..2 * degree - 1)
+        let reduction: Vec<Vec<i128>> = (degree..2 * degree - 1)
             .map(|i| {
                 let power = field.generator().pow(i as u32).lifted_to(field);
                 power.coordinates().iter().map(Integer::to_i128).collect()
@@ -270,19 +286,26 @@ impl FiniteTables {
                 (value, value.abs() * 2f64.powi(-50))
             })
             .collect();
+        let (shift, image) = (rows(&group.shift)?, rows(&group.image)?);
+        let largest = |row: &[i64]| row.iter().map(|c| c.unsigned_abs()).max().unwrap_or(0);
+        // The start is an image, and so is the end.
+        let room = (i64::MAX as u64).checked_sub(largest(&image).checked_mul(2)?)?;
         Some(FiniteTables {
             k: table.sides(),
             degree,
+            deepest: (room / largest(&shift).max(1)) as usize,
+            narrow_below: narrow_bound(&reduction),
+            narrow_reduction: narrowed(&reduction),
             reduction,
             powers,
-            shift: rows(&group.shift)?,
-            image: rows(&group.image)?,
+            shift,
+            image,
             next: group.next.clone(),
             scale,
         })
     }
 
-    /// Extends the machine-integer poses to a crossing; `None` on overflow.
+    /// Extends the machine-integer poses to a crossing; `None` when coordinates might not fit.
     fn reach(&self, path: &mut ExactPath, sides: &[SideId], crossings: usize) -> Option<()> {
         let row = path.row;
         if path.elements.is_empty() {
@@ -296,15 +319,16 @@ impl FiniteTables {
                 None => path.translations.extend(std::iter::repeat_n(0, row)),
             }
         }
+        if crossings > self.deepest {
+            return None;
+        }
         while path.elements.len() <= crossings {
             let here = path.elements.len() - 1;
             let at = path.elements[here] as usize * self.k + sides[here].0 as usize;
-            for c in 0..row {
-                let sum = path.translations[here * row + c].checked_add(self.shift[at * row + c]);
-                let Some(sum) = sum else {
-                    path.translations.truncate((here + 1) * row);
-                    return None;
-                };
+            let shift = &self.shift[at * row..(at + 1) * row];
+            let from = here * row;
+            for (c, step) in shift.iter().enumerate() {
+                let sum = path.translations[from + c] + step;
                 path.translations.push(sum);
             }
             path.elements.push(self.next[at]);
@@ -341,6 +365,79 @@ impl FiniteTables {
         tables: &ExactTables,
         path: &mut ExactPath,
         sides: &[SideId],
+        points: (Option<ImageName>, ImageName, ImageName),
+    ) -> Option<Sign> {
+        let mut scratch = std::mem::take(&mut path.scratch);
+        let narrow = self.narrow_turn(tables, path, &mut scratch, sides, points);
+        path.scratch = scratch;
+        match narrow {
+            Some(sign) => Some(sign),
+            None => self.wide_integer_turn(tables, path, sides, points),
+        }
+    }
+
+    /// The orientation in `i64`, when the differences are small enough for all of it to fit.
+    fn narrow_turn(
+        &self,
+        tables: &ExactTables,
+        path: &mut ExactPath,
+        scratch: &mut Scratch,
+        sides: &[SideId],
+        (a, b, v): (Option<ImageName>, ImageName, ImageName),
+    ) -> Option<Sign> {
+        let d = self.degree;
+        let reduction = self.narrow_reduction.as_ref()?;
+        let latest = b.crossings.max(v.crossings);
+        let latest = a.map_or(latest, |a| a.crossings.max(latest));
+        self.reach(path, sides, latest as usize)?;
+        let mut largest = 0;
+        for (point, difference) in [b, v].into_iter().zip(&mut scratch.differences) {
+            difference.clear();
+            for c in 0..2 * d {
+                let from = match a {
+                    Some(a) => self.coordinate(path, a, c)?,
+                    None => 0,
+                };
+                let value = self.coordinate(path, point, c)?.checked_sub(from)?;
+                largest = largest.max(value.unsigned_abs());
+                difference.push(value);
+            }
+        }
+        if largest >= self.narrow_below {
+            return None;
+        }
+        let [b, v] = &scratch.differences;
+        let product = &mut scratch.product;
+        product.clear();
+        product.resize(2 * d - 1, 0);
+        for i in 0..d {
+            for j in 0..d {
+                product[i + j] += b[i] * v[d + j] - b[d + i] * v[j];
+            }
+        }
+        let (low, high) = product.split_at_mut(d);
+        for (top, row) in high.iter().zip(reduction) {
+            for (sum, weight) in low.iter_mut().zip(row) {
+                *sum += top * weight;
+            }
+        }
+        Some(self.sign(tables, low))
+    }
+
+    /// One coordinate of a corner image whose crossing is reached.
+    #[inline]
+    fn coordinate(&self, path: &ExactPath, name: ImageName, c: usize) -> Option<i64> {
+        let (crossings, row) = (name.crossings as usize, path.row);
+        let at = (path.elements[crossings] as usize * self.k + name.corner.0 as usize) * row;
+        path.translations[crossings * row + c].checked_add(self.image[at + c])
+    }
+
+    /// The orientation in `i128`, when nothing overflows.
+    fn wide_integer_turn(
+        &self,
+        tables: &ExactTables,
+        path: &mut ExactPath,
+        sides: &[SideId],
         (a, b, v): (Option<ImageName>, ImageName, ImageName),
     ) -> Option<Sign> {
         let d = self.degree;
@@ -372,15 +469,16 @@ impl FiniteTables {
     }
 
     /// The sign of Σ c_i θ^i.
-    fn sign(&self, tables: &ExactTables, coordinates: &[i128]) -> Sign {
-        if coordinates.iter().all(|c| *c == 0) {
+    fn sign<C: Copy + Into<i128>>(&self, tables: &ExactTables, coordinates: &[C]) -> Sign {
+        let coordinates = || coordinates.iter().map(|c| (*c).into());
+        if coordinates().all(|c: i128| c == 0) {
             return Sign::Zero;
         }
         // Floating point: each term c·θ^i is off by at most |c|·(error of θ^i) plus two roundings, and
         // each of the d additions by one rounding of a sum of magnitude at most Σ|c·θ^i|.
         let (mut sum, mut slack, mut magnitude) = (0.0, 0.0, 0.0);
-        for (c, (power, error)) in coordinates.iter().zip(&self.powers) {
-            let c = *c as f64;
+        for (c, (power, error)) in coordinates().zip(&self.powers) {
+            let c = c as f64;
             sum += c * power;
             slack += c.abs() * error;
             magnitude += (c * power).abs();
@@ -392,7 +490,30 @@ impl FiniteTables {
         if sum < -bound {
             return Sign::Negative;
         }
-        let coordinates = coordinates.iter().map(|c| Integer::from(*c)).collect();
+        let coordinates = coordinates().map(Integer::from).collect();
         Real::from_coordinates(&tables.field, coordinates, Integer::from(1)).sign()
     }
+}
+
+/// Below this bound M of all differences, an orientation is exact in `i64`.
+///
+/// A coefficient of the product is a sum of at most d terms b_x·v_y − b_y·v_x, so at most 2d·M². The reduction
+/// adds to each of the d low coefficients the d − 1 high ones times their weights, so a reduced coefficient, and
+/// every sum on the way, is at most 2d·M²·(1 + W), W the largest sum of absolute weights of one column. The
+/// bound keeps this below 2^62.
+fn narrow_bound(reduction: &[Vec<i128>]) -> u64 {
+    let degree = reduction.len() + 1;
+    let column = |c: usize| -> f64 { reduction.iter().map(|row| row[c].abs() as f64).sum() };
+    let weights = (0..degree)
+        .filter(|_| !reduction.is_empty())
+        .map(column)
+        .fold(0.0, f64::max);
+    // Half of the root leaves room for the rounding of this computation.
+    (2f64.powi(62) / (2.0 * degree as f64 * (1.0 + weights))).sqrt() as u64 / 2
+}
+
+/// The reduction in half the width, when it fits.
+fn narrowed(reduction: &[Vec<i128>]) -> Option<Vec<Vec<i64>>> {
+    let narrow = |row: &Vec<i128>| row.iter().map(|w| i64::try_from(*w).ok()).collect();
+    reduction.iter().map(narrow).collect()
 }

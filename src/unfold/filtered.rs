@@ -14,6 +14,12 @@
 //! - a corner image w·v + t has an error at most p_n, one more such term.
 //!
 //! Where the group is tabulated the rotations are not products, so δ_n = η: the same bounds hold.
+//! A leap over m crossings adds w·τ to the translation, w tabulated and τ a translation of a walk of m crossings
+//! itself; a corner image ahead is w·v + t in the same way. Leaps of m₁ + m₂ + … = n crossings give an error of at
+//! most Σ e_{m_j} ≤ 2·e_n (each has its own start, whose error is less than one step's), Σ 2R·(2m_j + 1)·2η ≤ 2·e_n
+//! for w, and u·X_n for each sum, at most 2·e_n for n of them. One more such term gives a corner image. So with a
+//! tabulated group all errors are taken [`LEAPS`] times.
+//!
 //! A cross product of two differences, each of magnitude at most D = 2X_n + f with error at most
 //! f = 2p_n + 2u·X_n, is off by at most 4Df + 2f² + 8u·D². The table `bound[n]` holds this, inflated by
 //! one part in 1000 for the rounding of the bound's own computation. v is the latest of the three
@@ -21,7 +27,7 @@
 //!
 //! **The exact route** is [`exact_path`](super::exact_path); zeros always end there.
 
-use super::engine::{Engine, Trail};
+use super::engine::{Engine, Leaping, Trail};
 use super::exact_path::{ExactPath, ExactTables, ImageName};
 use super::group::FiniteGroup;
 use super::isometry::side_reflections;
@@ -31,6 +37,8 @@ use crate::table::{CornerId, SideId, Table, Vector};
 /// Relative error of tabulated numbers: `Real::to_f64` is within 2 units in the last place, and the
 /// factor √g with its product adds at most 3 more; 2^−48 is 32 units.
 const TABULATED: f64 = 1.0 / (1u64 << 48) as f64;
+/// The errors of a walk in leaps against those of one in steps.
+const LEAPS: f64 = 8.0;
 /// Half a unit in the last place of 1.
 const UNIT: f64 = f64::EPSILON / 2.0;
 
@@ -56,6 +64,10 @@ enum Linear {
         steps: Vec<(u16, [f64; 2])>,
         /// `image[g·k + i]`.
         image: Vec<[f64; 2]>,
+        /// The rotation of each element.
+        rotation: Vec<[f64; 2]>,
+        /// `products[g·order + h]`.
+        products: Vec<u16>,
     },
     /// A product of rotations: the reflections as (w, c).
     Product {
@@ -99,6 +111,8 @@ impl Filtered {
                     .zip(group.shift.iter().map(round))
                     .collect(),
                 image: group.image.iter().map(round).collect(),
+                rotation: group.rotation.iter().map(round).collect(),
+                products: group.products(),
             },
             None => Linear::Product {
                 reflections: side_reflections(table)
@@ -116,7 +130,11 @@ impl Filtered {
             k,
             linear,
             corners,
-            bound: error_bounds(reach * 1.001, deepest),
+            bound: error_bounds(
+                reach * 1.001,
+                deepest,
+                if group.is_some() { LEAPS } else { 1.0 },
+            ),
             exact: ExactTables::new(table, group),
         }
     }
@@ -157,7 +175,7 @@ fn modulus(v: &Vector, form: &Real) -> f64 {
 }
 
 /// The table of the module's formula: entry n for a latest point after n crossings.
-fn error_bounds(reach: f64, deepest: usize) -> Vec<f64> {
+fn error_bounds(reach: f64, deepest: usize, times: f64) -> Vec<f64> {
     let mut translation_error = 2.0 * reach * TABULATED;
     (0..=deepest + 1)
         .map(|n| {
@@ -167,7 +185,7 @@ fn error_bounds(reach: f64, deepest: usize) -> Vec<f64> {
             let growth = 2.0 * reach * rotation_error
                 + 4.0 * reach * (TABULATED + 2.0 * UNIT)
                 + UNIT * (extent + 4.0 * reach);
-            let point_error = translation_error + growth;
+            let point_error = times * (translation_error + growth);
             translation_error += growth;
             let f = 2.0 * point_error + 2.0 * UNIT * extent;
             let size = 2.0 * extent + f;
@@ -340,5 +358,80 @@ impl Filtered {
         let sign = self.exact.turn(path, sides, &mut tiers, points);
         trail.tiers = tiers;
         sign
+    }
+}
+
+impl Leaping for Filtered {
+    type Ahead = [f64; 2];
+
+    fn can_leap(&self) -> bool {
+        match &self.linear {
+            Linear::Tabulated { products, .. } => !products.is_empty(),
+            Linear::Product { .. } => false,
+        }
+    }
+
+    fn point_ahead(&self, point: &FilteredPoint) -> [f64; 2] {
+        point.at
+    }
+
+    fn pose_ahead(&self, pose: &FilteredPose) -> (u16, [f64; 2]) {
+        (pose.element, pose.t)
+    }
+
+    #[inline(always)]
+    fn place_ahead(
+        &self,
+        pose: &FilteredPose,
+        ahead: &[f64; 2],
+        crossings: u32,
+        corner: CornerId,
+    ) -> FilteredPoint {
+        FilteredPoint {
+            at: plus(pose.t, self.turned_ahead(pose, ahead)),
+            name: ImageName {
+                crossings: pose.crossings + crossings,
+                corner,
+            },
+        }
+    }
+
+    #[inline(always)]
+    fn leap(
+        &self,
+        pose: &FilteredPose,
+        element: u16,
+        ahead: &[f64; 2],
+        crossings: u32,
+    ) -> FilteredPose {
+        let Linear::Tabulated {
+            mirrored,
+            rotation,
+            products,
+            ..
+        } = &self.linear
+        else {
+            unreachable!("only tabulated groups leap")
+        };
+        let element = products[pose.element as usize * rotation.len() + element as usize];
+        FilteredPose {
+            w: pose.w,
+            t: plus(pose.t, self.turned_ahead(pose, ahead)),
+            element,
+            mirrored: mirrored[element as usize],
+            crossings: pose.crossings + crossings,
+        }
+    }
+}
+
+impl Filtered {
+    #[inline(always)]
+    fn turned_ahead(&self, pose: &FilteredPose, ahead: &[f64; 2]) -> [f64; 2] {
+        match &self.linear {
+            Linear::Tabulated { rotation, .. } => {
+                turned(rotation[pose.element as usize], pose.mirrored, *ahead)
+            }
+            Linear::Product { .. } => unreachable!("only tabulated groups leap"),
+        }
     }
 }

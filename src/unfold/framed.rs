@@ -3,7 +3,7 @@
 //! Orientations are those of the inner engine, since they do not depend on the frame (see
 //! [`frame`](crate::table::frame)). Vectors and distances are brought back.
 
-use super::engine::{Engine, Trail};
+use super::engine::{Engine, Leaping, Trail};
 use crate::number::{Enclosure, Sign};
 use crate::table::frame::Frame;
 use crate::table::{CornerId, SideId, Vector};
@@ -107,5 +107,37 @@ impl<E: Engine> Engine for Framed<E> {
 
     fn deepest(&self) -> usize {
         self.inner.deepest()
+    }
+}
+
+impl<E: Leaping> Leaping for Framed<E> {
+    type Ahead = E::Ahead;
+
+    fn can_leap(&self) -> bool {
+        self.inner.can_leap()
+    }
+
+    fn point_ahead(&self, point: &E::Point) -> E::Ahead {
+        self.inner.point_ahead(point)
+    }
+
+    fn pose_ahead(&self, pose: &E::Pose) -> (u16, E::Ahead) {
+        self.inner.pose_ahead(pose)
+    }
+
+    #[inline(always)]
+    fn place_ahead(
+        &self,
+        pose: &E::Pose,
+        ahead: &E::Ahead,
+        crossings: u32,
+        corner: CornerId,
+    ) -> E::Point {
+        self.inner.place_ahead(pose, ahead, crossings, corner)
+    }
+
+    #[inline(always)]
+    fn leap(&self, pose: &E::Pose, element: u16, ahead: &E::Ahead, crossings: u32) -> E::Pose {
+        self.inner.leap(pose, element, ahead, crossings)
     }
 }

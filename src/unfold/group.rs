@@ -11,11 +11,16 @@ use crate::table::{Table, Vector};
 use rug::Integer;
 use std::collections::HashMap;
 
+/// Larger groups have no table of products.
+pub const LARGEST_MULTIPLIED: usize = 512;
+
 /// The group with its action on the corners and side reflections of one table.
 #[derive(Debug)]
 pub struct FiniteGroup {
     /// Parity of each element; element 0 is the identity.
     pub mirrored: Vec<bool>,
+    /// Each element is z ↦ w·z, or z ↦ w·z̄ when it is mirrored.
+    pub rotation: Vec<Vector>,
     /// `next[g·k + s]`: the element A·S.
     pub next: Vec<u16>,
     /// `shift[g·k + s]`: the vector A·c.
@@ -68,6 +73,7 @@ impl FiniteGroup {
         debug_assert_eq!(next.len(), elements.len() * k);
         FiniteGroup {
             mirrored: elements.iter().map(|g| g.mirrored).collect(),
+            rotation: elements.iter().map(|g| g.w.clone()).collect(),
             next,
             shift: act(&shifts),
             image: act(table.corners()),
@@ -77,6 +83,33 @@ impl FiniteGroup {
     /// The order.
     pub fn order(&self) -> usize {
         self.mirrored.len()
+    }
+
+    /// `products[g·order + h]`: the element A_g·A_h. Empty for groups of more than [`LARGEST_MULTIPLIED`] elements.
+    pub fn products(&self) -> Vec<u16> {
+        let order = self.order();
+        if order > LARGEST_MULTIPLIED {
+            return Vec::new();
+        }
+        let k = self.next.len() / order;
+        let mut products = vec![0; order * order];
+        for g in 0..order {
+            products[g * order] = g as u16;
+        }
+        // Elements are numbered as they are found, each as next[h·k + s] of an earlier one.
+        let mut known = 1;
+        for at in 0..order * k {
+            let (h, found) = (at / k, self.next[at] as usize);
+            if found < known {
+                continue;
+            }
+            for g in 0..order {
+                let before = products[g * order + h] as usize;
+                products[g * order + found] = self.next[before * k + at % k];
+            }
+            known += 1;
+        }
+        products
     }
 
     /// The least positive integer whose product with every tabulated vector has integer coordinates.

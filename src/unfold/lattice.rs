@@ -5,7 +5,7 @@
 //! of coordinates stays below 2^30, a product below 2^60 and the cross product below 2^61: plain `i64`
 //! arithmetic is exact and needs no filter.
 
-use super::engine::{Engine, Trail};
+use super::engine::{Engine, Leaping, Trail};
 use super::group::{FiniteGroup, scaled_coordinates};
 use crate::number::{Enclosure, Real, Sign};
 use crate::table::{CornerId, SideId, Table, Vector};
@@ -22,6 +22,12 @@ pub struct Lattice {
     /// `steps[g·k + s]`: the element beyond side s, and the translation added.
     steps: Vec<(u16, [i64; 2])>,
     image: Vec<[i64; 2]>,
+    /// `turns[g]`: rows of `stretch` times the matrix of an element.
+    turns: Vec<[[i64; 2]; 2]>,
+    /// The common denominator of the matrices. Every coordinate seen from the unreflected copy is a multiple of it.
+    stretch: i64,
+    order: usize,
+    products: Vec<u16>,
     scale: Integer,
     form: Real,
     deepest: usize,
@@ -39,7 +45,8 @@ impl Lattice {
     /// could leave the safe range within `deepest` crossings.
     pub fn new(table: &Table, group: &FiniteGroup, deepest: usize) -> Option<Lattice> {
         let k = table.sides();
-        let scale = group.common_denominator();
+        let (turns, stretch) = matrices(group, table.form())?;
+        let scale = group.common_denominator() * stretch;
         let integral = |v: &Vector| -> Option<[i64; 2]> {
             v.x.to_rational()?;
             v.y.to_rational()?;
@@ -65,6 +72,10 @@ impl Lattice {
             mirrored: group.mirrored.clone(),
             steps: group.next.iter().copied().zip(shift).collect(),
             image,
+            turns,
+            stretch,
+            order: group.order(),
+            products: group.products(),
             scale,
             form: table.form().clone(),
             deepest,
@@ -74,6 +85,31 @@ impl Lattice {
     fn exact(&self, value: i64) -> Real {
         Real::from(Rational::from((Integer::from(value), self.scale.clone())))
     }
+}
+
+/// The matrices of a group in whole numbers, with their common denominator.
+fn matrices(group: &FiniteGroup, form: &Real) -> Option<(Vec<[[i64; 2]; 2]>, i64)> {
+    let entries: Vec<[Rational; 4]> = (group.rotation.iter().zip(&group.mirrored))
+        .map(|(w, mirrored)| {
+            let (x, y) = (w.x.to_rational()?, w.y.to_rational()?);
+            let form_y = &y * form.to_rational()?;
+            // (x + y·√−g)(u + v·√−g), with −v for v when mirrored.
+            Some(match mirrored {
+                false => [x.clone(), -form_y, y, x],
+                true => [x.clone(), form_y, y, -x],
+            })
+        })
+        .collect::<Option<_>>()?;
+    let mut stretch = Integer::from(1);
+    for entry in entries.iter().flatten() {
+        stretch.lcm_mut(entry.denom());
+    }
+    let whole = |entry: &Rational| Rational::from(entry * &stretch).numer().to_i64();
+    let turns = entries
+        .iter()
+        .map(|[a, b, c, d]| Some([[whole(a)?, whole(b)?], [whole(c)?, whole(d)?]]))
+        .collect::<Option<_>>()?;
+    Some((turns, stretch.to_i64()?))
 }
 
 #[inline(always)]
@@ -160,5 +196,45 @@ impl Engine for Lattice {
 
     fn deepest(&self) -> usize {
         self.deepest
+    }
+}
+
+impl Lattice {
+    #[inline(always)]
+    fn turned(&self, element: u16, v: &[i64; 2]) -> [i64; 2] {
+        let [x, y] = &self.turns[element as usize];
+        [x[0] * v[0] + x[1] * v[1], y[0] * v[0] + y[1] * v[1]]
+    }
+}
+
+impl Leaping for Lattice {
+    type Ahead = [i64; 2];
+
+    fn can_leap(&self) -> bool {
+        !self.products.is_empty()
+    }
+
+    fn point_ahead(&self, point: &[i64; 2]) -> [i64; 2] {
+        debug_assert!(point.iter().all(|c| c % self.stretch == 0));
+        point.map(|c| c / self.stretch)
+    }
+
+    fn pose_ahead(&self, pose: &LatticePose) -> (u16, [i64; 2]) {
+        (pose.element, self.point_ahead(&pose.t))
+    }
+
+    #[inline(always)]
+    fn place_ahead(&self, pose: &LatticePose, ahead: &[i64; 2], _: u32, _: CornerId) -> [i64; 2] {
+        let v = self.turned(pose.element, ahead);
+        [pose.t[0] + v[0], pose.t[1] + v[1]]
+    }
+
+    #[inline(always)]
+    fn leap(&self, pose: &LatticePose, element: u16, ahead: &[i64; 2], _: u32) -> LatticePose {
+        let shift = self.turned(pose.element, ahead);
+        LatticePose {
+            element: self.products[pose.element as usize * self.order + element as usize],
+            t: [pose.t[0] + shift[0], pose.t[1] + shift[1]],
+        }
     }
 }

@@ -12,6 +12,7 @@
 //! - [`wide_path`]: enclosed positions along a path, for distances.
 //! - [`beam`]: all lines with one itinerary, as the cyclic list of corner images that bound them.
 //! - [`fan`]: all rays from one corner with one itinerary.
+//! - [`grove`]: all beams of a few crossings, as trees that a fan leaps through.
 
 pub mod beam;
 pub mod big_path;
@@ -21,6 +22,7 @@ pub mod fan;
 pub mod filtered;
 pub mod framed;
 pub mod group;
+pub mod grove;
 pub mod half_turn;
 pub mod isometry;
 pub mod lattice;
@@ -28,6 +30,6 @@ pub mod mesh;
 pub mod symmetry;
 pub mod wide_path;
 
-pub use engine::{Engine, Trail, with_engine};
+pub use engine::{Engine, Leaping, Trail, with_engine};
 pub use isometry::Isometry;
 pub use mesh::Mesh;

@@ -43,12 +43,32 @@ fn regular(branches: usize, depth: usize) -> TreeDrawing {
     }
 }
 
+/// The same with wide notes.
+fn with_wide_notes(mut tree: TreeDrawing) -> TreeDrawing {
+    tree.nodes.iter_mut().for_each(|n| n.note = "+181".into());
+    tree
+}
+
 #[test]
 fn text_of_trees_is_free() {
-    for (branches, depth) in [(1, 0), (1, 1), (2, 5), (1, 12), (1, 30), (3, 3), (2, 7)] {
+    for (branches, depth) in [
+        (1, 0),
+        (1, 1),
+        (2, 5),
+        (1, 7),
+        (1, 9),
+        (1, 10),
+        (1, 12),
+        (1, 30),
+        (3, 3),
+        (2, 7),
+    ] {
         let (canvas, size) = compose_tree(&regular(branches, depth)).expect("a tree");
         assert_text_is_free(&format!("{branches}^{depth}"), &canvas, size);
         assert!(size[0] <= super::super::style::WIDTH + 1.0);
+        let wide = with_wide_notes(regular(branches, depth));
+        let (canvas, size) = compose_tree(&wide).expect("a tree");
+        assert_text_is_free(&format!("{branches}^{depth}, wide"), &canvas, size);
     }
 }
 

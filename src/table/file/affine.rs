@@ -59,6 +59,7 @@ pub(super) fn base(sheet: Sheet<'_>, value: &Value, chain: &Chain) -> Outcome<Dr
         form,
         form_span: None,
         bases: bases_of(&base),
+        base_parameters: base.parameters,
     })
 }
 
@@ -70,6 +71,36 @@ fn bases_of(base: &LoadedTable) -> Vec<BaseFile> {
     }];
     bases.extend(base.bases.iter().cloned());
     bases
+}
+
+/// The files that a text stands on, the nearest first, as far as they can be followed without reading any number.
+pub(super) fn named_bases(file: &str, text: &str) -> Vec<BaseFile> {
+    let mut found: Vec<BaseFile> = Vec::new();
+    let (mut file, mut text) = (file.to_string(), text.to_string());
+    while found.len() < LONGEST_CHAIN {
+        let Ok(document) = DeTable::parse(&text) else {
+            break;
+        };
+        let named = document
+            .get_ref()
+            .get("base")
+            .and_then(|value| value.get_ref().as_str().map(str::to_owned));
+        let Some(named) = named else { break };
+        let path = Path::new(&file)
+            .parent()
+            .unwrap_or(Path::new(""))
+            .join(named);
+        let Ok(next) = super::read_text(&path) else {
+            break;
+        };
+        file = path.display().to_string();
+        text.clone_from(&next);
+        found.push(BaseFile {
+            name: file.clone(),
+            text: next,
+        });
+    }
+    found
 }
 
 fn base_file(sheet: Sheet<'_>, value: &Value, chain: &Chain) -> Outcome<LoadedTable> {
@@ -92,8 +123,8 @@ fn base_file(sheet: Sheet<'_>, value: &Value, chain: &Chain) -> Outcome<LoadedTa
             return source.fault(&value.span(), message, help);
         }
     };
-    if let Some(at) = chain.iter().position(|(known, _)| *known == place) {
-        let mut names: Vec<&str> = chain[at..].iter().map(|(_, name)| name.as_str()).collect();
+    if let Some(at) = chain.iter().position(|link| link.place == place) {
+        let mut names: Vec<&str> = chain[at..].iter().map(|link| link.name.as_str()).collect();
         names.push(names[0]);
         let message = format!("this table stands on itself: {}", names.join(" → "));
         let help = "let one of these files give its corners";
@@ -103,10 +134,13 @@ fn base_file(sheet: Sheet<'_>, value: &Value, chain: &Chain) -> Outcome<LoadedTa
         let message = format!("more than {LONGEST_CHAIN} tables stand on each other");
         return source.fault(&value.span(), message, "give the corners of this table");
     }
-    match load_in(&path, &[], chain) {
+    match load_in(&path, sheet.names.for_base(), chain) {
         Ok(loaded) => Ok(loaded),
         Err(TableFileError::Fault(mut fault)) => {
-            fault.message = format!("in the base table of {}: {}", source.file, fault.message);
+            // A fault in a setting stands on the command line.
+            if fault.file != "--set" {
+                fault.message = format!("in the base table of {}: {}", source.file, fault.message);
+            }
             Err(fault)
         }
         Err(other) => {

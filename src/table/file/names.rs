@@ -3,6 +3,7 @@
 //! Names may stand in any order; a definition that leads back to itself is refused. A name that the table does
 //! not use is checked as well, but in a field of its own, so that it makes no number of the table longer.
 
+use super::read::Link;
 use super::source::{Outcome, Source, kind, place_in_string};
 use crate::number::Field;
 use crate::table::diagnostic::Diagnostic;
@@ -44,7 +45,11 @@ struct Definition {
 
 /// All definitions of a file, settings applied.
 #[derive(Clone, Debug, Default)]
-pub(super) struct Names(Vec<Definition>);
+pub(super) struct Names {
+    own: Vec<Definition>,
+    /// Settings of names that this file does not have: they are for its base.
+    for_base: Vec<String>,
+}
 
 const SECTIONS: [&str; 2] = ["define", "parameters"];
 /// Keys whose strings are expressions.
@@ -54,14 +59,22 @@ const NUMERIC: [&str; 8] = [
 
 impl Names {
     /// Reads both sections and applies the settings, each of the form `name=expression`.
-    pub(super) fn read(source: Source, document: &DeTable, settings: &[String]) -> Outcome<Names> {
+    ///
+    /// A setting of a name that the file does not have is kept for its base, if it has one. `outer` are the files that
+    /// stand on this one, which have passed the settings on.
+    pub(super) fn read(
+        source: Source,
+        document: &DeTable,
+        settings: &[String],
+        outer: &[Link],
+    ) -> Outcome<Names> {
         let mut names = Names::default();
         for section in SECTIONS {
             names.read_section(source, document, section)?;
         }
         let mut set = BTreeSet::new();
         for setting in settings {
-            names.apply(setting, &mut set)?;
+            names.apply(setting, &mut set, document.contains_key("base"), outer)?;
         }
         names.check_cycles(source)?;
         names.check_unused(source, document)?;
@@ -87,11 +100,11 @@ impl Names {
             if let Some((message, help)) = name_fault(name) {
                 return source.fault(&key.span(), message, help);
             }
-            if self.0.iter().any(|known| known.name == name) {
+            if self.own.iter().any(|known| known.name == name) {
                 let message = format!("`{name}` stands in `[define]` and in `[parameters]`");
                 return source.fault(&key.span(), message, "keep one of the two");
             }
-            if self.0.len() == MOST_NAMES {
+            if self.own.len() == MOST_NAMES {
                 let message = format!("a table file can have at most {MOST_NAMES} names");
                 return source.fault(&key.span(), message, "remove names that are not needed");
             }
@@ -109,7 +122,7 @@ impl Names {
                     return source.fault(&value.span(), message, help);
                 }
             };
-            self.0.push(Definition {
+            self.own.push(Definition {
                 name: name.to_string(),
                 text,
                 origin: Origin::File(value.span()),
@@ -119,7 +132,13 @@ impl Names {
         Ok(())
     }
 
-    fn apply(&mut self, setting: &str, set: &mut BTreeSet<String>) -> Outcome<()> {
+    fn apply(
+        &mut self,
+        setting: &str,
+        set: &mut BTreeSet<String>,
+        has_base: bool,
+        outer: &[Link],
+    ) -> Outcome<()> {
         let help = "write NAME=VALUE, such as t=2/5";
         let Some(at) = setting.find('=') else {
             let message = "this setting has no `=` between its name and its value";
@@ -136,22 +155,19 @@ impl Names {
         }
         let start = setting[..at].find(name).unwrap_or(0);
         let span = start..start + name.len();
-        let parameters: Vec<String> = self
-            .0
-            .iter()
-            .filter(|d| d.is_parameter)
-            .map(|d| format!("`{}`", d.name))
-            .collect();
-        let known = if parameters.is_empty() {
-            "the table file has no `[parameters]`".into()
-        } else {
-            format!(
-                "the parameters of the table file are {}",
-                parameters.join(", ")
-            )
-        };
-        let Some(definition) = self.0.iter_mut().find(|d| d.name == name) else {
-            let message = format!("the table file has no parameter `{name}`");
+        if has_base && self.find(name).is_none() {
+            self.for_base.push(setting.to_string());
+            return Ok(());
+        }
+        let known = self.known(outer);
+        let Some(definition) = self.own.iter_mut().find(|d| d.name == name) else {
+            let message = match outer.len() {
+                0 => format!("the table file has no parameter `{name}`"),
+                1 => format!("neither the table file nor its base has a parameter `{name}`"),
+                _ => format!(
+                    "neither the table file nor those that it stands on have a parameter `{name}`"
+                ),
+            };
             return Err(in_setting(setting, span, &message, &known));
         };
         if !definition.is_parameter {
@@ -172,9 +188,48 @@ impl Names {
         Ok(())
     }
 
+    /// Which parameters there are to set, in this file and in those that stand on it.
+    fn known(&self, outer: &[Link]) -> String {
+        let own: Vec<String> = self.parameters().into_iter().map(|p| p.name).collect();
+        let list = |names: &[String]| {
+            let quoted: Vec<String> = names.iter().map(|name| format!("`{name}`")).collect();
+            quoted.join(", ")
+        };
+        if outer.is_empty() {
+            return match own.is_empty() {
+                true => "the table file has no `[parameters]`".into(),
+                false => format!("the parameters of the table file are {}", list(&own)),
+            };
+        }
+        let mut files: Vec<(&str, Vec<String>)> = outer
+            .iter()
+            .map(|link| (link.name.as_str(), link.parameters.clone()))
+            .collect();
+        files.push(("its base", own));
+        files[0].0 = "the table file";
+        let told: Vec<String> = files
+            .iter()
+            .map(|(file, names)| match names.is_empty() {
+                true => format!("{file} has no `[parameters]`"),
+                false => format!("the parameters of {file} are {}", list(names)),
+            })
+            .collect();
+        told.join("; ")
+    }
+
+    /// The settings for the base.
+    pub(super) fn for_base(&self) -> &[String] {
+        &self.for_base
+    }
+
+    /// True when the file gives a name a meaning, so that a setting of it does not reach the base.
+    pub(super) fn has(&self, name: &str) -> bool {
+        self.find(name).is_some()
+    }
+
     /// What the file calls parameters.
     pub(super) fn parameters(&self) -> Vec<Parameter> {
-        let parameters = self.0.iter().filter(|d| d.is_parameter);
+        let parameters = self.own.iter().filter(|d| d.is_parameter);
         parameters
             .map(|d| Parameter {
                 name: d.name.clone(),
@@ -185,12 +240,12 @@ impl Names {
     }
 
     fn find(&self, name: &str) -> Option<usize> {
-        self.0.iter().position(|d| d.name == name)
+        self.own.iter().position(|d| d.name == name)
     }
 
     /// The definitions that one uses. A text that is no expression uses none; evaluating it tells the fault.
     fn uses(&self, definition: usize) -> Vec<usize> {
-        let names = names_in(&self.0[definition].text).unwrap_or_default();
+        let names = names_in(&self.own[definition].text).unwrap_or_default();
         names
             .iter()
             .filter_map(|(name, _)| self.find(name))
@@ -198,18 +253,18 @@ impl Names {
     }
 
     fn check_cycles(&self, source: Source) -> Outcome<()> {
-        let is_set = |d: &usize| matches!(self.0[*d].origin, Origin::Setting(..));
-        let (set, others): (Vec<usize>, Vec<usize>) = (0..self.0.len()).partition(is_set);
+        let is_set = |d: &usize| matches!(self.own[*d].origin, Origin::Setting(..));
+        let (set, others): (Vec<usize>, Vec<usize>) = (0..self.own.len()).partition(is_set);
         for start in set.into_iter().chain(others) {
             let mut way = vec![start];
             if self.leads_back(&mut way, &mut BTreeSet::new()) {
-                let names: Vec<&str> = way.iter().map(|&d| self.0[d].name.as_str()).collect();
+                let names: Vec<&str> = way.iter().map(|&d| self.own[d].name.as_str()).collect();
                 let message = format!(
                     "the definition of `{}` leads back to itself: {}",
                     names[0],
                     names.join(" → ")
                 );
-                let whole = 0..self.0[start].text.len();
+                let whole = 0..self.own[start].text.len();
                 let fault = ExpressionFault {
                     span: whole,
                     message,
@@ -254,7 +309,7 @@ impl Names {
         for used in self.uses(definition) {
             self.install(source, evaluator, used, done)?;
         }
-        let Definition { name, text, .. } = &self.0[definition];
+        let Definition { name, text, .. } = &self.own[definition];
         evaluator.define(name, text).map_err(|fault| {
             let what = format!("the value of `{name}`: ");
             self.diagnostic(source, definition, &fault, &what)
@@ -289,7 +344,7 @@ impl Names {
     fn check_unused(&self, source: Source, document: &DeTable) -> Outcome<()> {
         let used = self.used_by(document);
         let mut shared = (Evaluator::default(), BTreeSet::new());
-        for definition in (0..self.0.len()).filter(|d| !used.contains(d)) {
+        for definition in (0..self.own.len()).filter(|d| !used.contains(d)) {
             let (evaluator, done) = &mut shared;
             if self.install(source, evaluator, definition, done).is_err() {
                 // Perhaps only all of them together need too large a field.
@@ -308,7 +363,7 @@ impl Names {
         fault: &ExpressionFault,
         what: &str,
     ) -> Box<Diagnostic> {
-        let Definition { text, origin, .. } = &self.0[definition];
+        let Definition { text, origin, .. } = &self.own[definition];
         let message = format!("{what}{}", fault.message);
         match origin {
             Origin::File(span) => {

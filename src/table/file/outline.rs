@@ -56,6 +56,7 @@ pub(super) fn outline(sheet: Sheet<'_>, key: Range<usize>, value: &Value) -> Out
         form,
         form_span: None,
         bases: Vec::new(),
+        base_parameters: Vec::new(),
     })
 }
 

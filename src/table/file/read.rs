@@ -39,8 +39,19 @@ const KEYS: [&str; 15] = [
     "parameters",
 ];
 
-/// The files that are being read, the outermost first: where they are, and their names as given.
-pub(super) type Chain = Vec<(PathBuf, String)>;
+/// A file that is being read.
+#[derive(Clone, Debug)]
+pub(super) struct Link {
+    /// Where it is.
+    pub(super) place: PathBuf,
+    /// Its name as given.
+    pub(super) name: String,
+    /// The names of its parameters, once they are read.
+    pub(super) parameters: Vec<String>,
+}
+
+/// The files that are being read, the outermost first.
+pub(super) type Chain = Vec<Link>;
 
 /// A parsed file with its names.
 #[derive(Clone, Copy)]
@@ -65,6 +76,8 @@ pub(super) struct Drawn {
     pub(super) form_span: Option<Range<usize>>,
     /// The files that it stands on, the nearest first.
     pub(super) bases: Vec<BaseFile>,
+    /// The parameters of those files that settings can reach.
+    pub(super) base_parameters: Vec<Parameter>,
 }
 
 /// What a file gives.
@@ -91,25 +104,30 @@ pub(super) fn table(
     let document = document.into_inner();
     check_keys(source, &document)?;
     let title = title(source, &document, stem)?;
-    let names = Names::read(source, &document, settings)?;
+    let (own, outer) = chain.split_last().expect("the file that is read");
+    let names = Names::read(source, &document, settings, outer)?;
+    let mut chain = outer.to_vec();
+    chain.push(Link {
+        parameters: names.parameters().into_iter().map(|p| p.name).collect(),
+        ..own.clone()
+    });
     let sheet = Sheet {
         source,
         document: &document,
         names: &names,
     };
     let shape = shape_key(&document);
-    let mut drawn = source.affordable(&shape, "reading this shape", || draw(sheet, chain))?;
+    let mut drawn = source.affordable(&shape, "reading this shape", || draw(sheet, &chain))?;
     let bases = std::mem::take(&mut drawn.bases);
+    let mut parameters = names.parameters();
+    let reached = std::mem::take(&mut drawn.base_parameters);
+    parameters.extend(reached.into_iter().filter(|p| !names.has(&p.name)));
     let table = source.affordable(&shape, "checking these corners", || {
         complete(sheet, &title, drawn)
     })?;
-    source.affordable(&shape, "proving the facts about this table", || {
-        rehearse(&table);
-        Ok(())
-    })?;
     Ok(Reading {
         table,
-        parameters: names.parameters(),
+        parameters,
         bases,
     })
 }
@@ -124,11 +142,15 @@ fn shape_key(document: &DeTable) -> Range<usize> {
         .unwrap_or(0..0)
 }
 
-/// What every command does with a table before its own work. Done once while the budget of the file runs, it tells
-/// that a table that was read is ready for use in a time that is bounded too.
-fn rehearse(table: &Table) {
-    triangulate(table);
-    summary(table, &facts(table));
+/// See [`super::rehearse`].
+pub(super) fn rehearse(file: &str, text: &str, table: &Table) -> Outcome<()> {
+    let source = Source { file, text };
+    let shape = DeTable::parse(text).map_or(0..0, |document| shape_key(document.get_ref()));
+    source.affordable(&shape, "proving the facts about this table", || {
+        triangulate(table);
+        summary(table, &facts(table));
+        Ok(())
+    })
 }
 
 /// Reads the one shape of the file.
@@ -301,6 +323,7 @@ fn corners(sheet: Sheet<'_>, key: Range<usize>, value: &Value) -> Outcome<Drawn>
         form,
         form_span: document.get("form").map(Value::span),
         bases: Vec::new(),
+        base_parameters: Vec::new(),
     })
 }
 
@@ -332,6 +355,7 @@ fn shaped(
         form: shape.form,
         form_span: None,
         bases: Vec::new(),
+        base_parameters: Vec::new(),
     })
 }
 
