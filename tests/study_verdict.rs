@@ -5,11 +5,12 @@ mod support;
 use reboundary::factor_graph::census::count_graphs;
 use reboundary::factor_graph::criterion::{LineFigures, line_figures};
 use reboundary::run::Control;
+use reboundary::study::growth::GrowthFigures;
 use reboundary::study::results::{Request, Results, compute};
 use reboundary::study::statement::{Standing, Statement};
 use reboundary::study::verdict::{Coding, Evidence, verdict};
 use reboundary::table::Table;
-use reboundary::table::facts::{Facts, facts};
+use reboundary::table::facts::{Facts, ReflectionGroup, facts};
 use reboundary::unfold::engine::Arithmetic;
 use support::{
     crooked, equilateral, half_equilateral, integer_table, irrational_kite, irrational_l,
@@ -34,7 +35,12 @@ fn find<'a>(statements: &'a [Statement], id: &str) -> &'a Statement {
     statement
 }
 
-const CONVEX_RATIONAL: [&str; 3] = ["cubic_bounds", "ratio_criterion", "line_limit"];
+const CONVEX_RATIONAL: [&str; 4] = [
+    "cubic_bounds",
+    "growth_exponent",
+    "ratio_criterion",
+    "line_limit",
+];
 /// Proved not to hold by the cubic lower bound.
 const TOO_FAST: [&str; 2] = ["sufficient_small", "sufficient_bounds"];
 const CHECKS: [&str; 4] = ["routes_agree", "measure_sum", "branch_bound", "reversible"];
@@ -107,16 +113,38 @@ fn theorems_are_used_exactly_where_they_hold() {
         for id in EVERY_TABLE {
             assert_eq!(standing(id), Standing::Proved, "{}: {id}", table.title());
         }
+        let rational = matches!(results.facts.group, ReflectionGroup::Finite { .. });
+        let quadratic = standing("diagonals_quadratic") == Standing::Proved;
+        assert_eq!(quadratic, rational, "{}", table.title());
         // Nothing else is proved.
         let may_be_proved = |s: &Statement| {
             EVERY_TABLE.contains(&s.id)
                 || (convex_rational
                     && (CONVEX_RATIONAL.contains(&s.id) || TOO_FAST.contains(&s.id)))
-                || (tiles && s.id == "sufficient_asymptotic")
+                || (tiles && ["sufficient_asymptotic", "limit_constant"].contains(&s.id))
+                || (rational && s.id == "diagonals_quadratic")
         };
         for statement in &results.statements {
             assert_ne!(statement.standing, Standing::Violated, "{statement:?}");
             assert!(!statement.grounds.is_empty(), "{statement:?}");
+            // What is proved names its theorem and how each hypothesis was checked; what is open says what data cannot tell.
+            let open = [Standing::Trend, Standing::NotDecided].contains(&statement.standing);
+            assert_eq!(
+                statement.theorem.is_some(),
+                statement.standing == Standing::Proved
+            );
+            if open && !["routes_agree", "constant_reproduced"].contains(&statement.id) {
+                assert!(statement.cannot_decide.is_some(), "{statement:?}");
+            }
+            if let Some(theorem) = &statement.theorem {
+                assert!(!theorem.hypotheses.is_empty() && !theorem.source.is_empty());
+                assert!(
+                    theorem
+                        .hypotheses
+                        .iter()
+                        .all(|h| !h.asks.is_empty() && !h.checked.is_empty())
+                );
+            }
             if statement.standing == Standing::Proved {
                 assert!(may_be_proved(statement), "{}: {statement:?}", table.title());
             }
@@ -149,6 +177,7 @@ struct Honest {
     coding: Coding,
     p: Vec<u64>,
     line: Vec<LineFigures>,
+    growth: GrowthFigures,
 }
 
 impl Honest {
@@ -157,6 +186,7 @@ impl Honest {
         Honest {
             facts: facts(table),
             coding: Coding::of(table),
+            growth: GrowthFigures::new(&language.complexity(), None, None),
             p: language.complexity(),
             line: count_graphs(&language, 1, 3)
                 .iter()
@@ -175,6 +205,7 @@ impl Honest {
             bi_extendable: true,
             reversal_fault: None,
             line: &self.line,
+            growth: &self.growth,
         }
     }
 }

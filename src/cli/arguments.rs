@@ -5,8 +5,11 @@ use super::ask_arguments::AskOptions;
 use super::language_source::LanguageSource;
 use super::orbit_arguments::{DirectionOptions, OrbitsOptions, PeriodicOptions, TraceOptions};
 use super::word_arguments::{CertifyOptions, LocateOptions, VerifyOptions};
+use crate::complexity::claim::{self, Claim};
+use crate::figure::PictureSize;
 use crate::run::budget::{self, Budget};
 use crate::study::results::{DEFAULT_LENGTH, DEFAULT_RADII, LONGEST};
+use crate::table::diagnostic::Diagnostic;
 use crate::unfold::engine::Arithmetic;
 use clap::{Args, Parser, Subcommand, ValueEnum};
 use std::path::{Path, PathBuf};
@@ -124,6 +127,21 @@ impl Exactness {
         } else {
             Arithmetic::Tiered
         }
+    }
+}
+
+/// Stated bounds.
+#[derive(Clone, Debug, Args)]
+pub struct Claims {
+    /// Check a stated bound exactly, such as "p(n) <= 0.07*n^3 for n >= 10"; of p, s, b, N and n; may be repeated
+    #[arg(long = "claim", value_name = "CLAIM", allow_hyphen_values = true)]
+    pub claim: Vec<String>,
+}
+
+impl Claims {
+    /// The claims as they are understood.
+    pub fn parse(&self) -> Result<Vec<Claim>, Box<Diagnostic>> {
+        self.claim.iter().map(|text| claim::parse(text)).collect()
     }
 }
 
@@ -251,20 +269,30 @@ pub(super) fn parse_bytes(text: &str) -> Result<u64, String> {
 /// `study`.
 #[derive(Debug, Args)]
 pub struct StudyOptions {
-    /// The table file
-    pub table: PathBuf,
+    /// Table files, or folders of them; more than one table is studied in parallel, with an index that compares them
+    #[arg(required = true, value_name = "TABLE")]
+    pub tables: Vec<PathBuf>,
     /// Parameters.
     #[command(flatten)]
     pub settings: Settings,
     #[doc = "Longest words [default: as far as a million words in all, at most 60]"]
     #[arg(long, value_name = "N", value_parser = parse_study_length)]
     pub length: Option<usize>,
-    /// Folder for the results [default: NAME-study for a table file NAME.toml]
+    /// Folder for the results [default: NAME-study for a table file NAME.toml; studies for more than one]
     #[arg(long, value_name = "DIR")]
     pub out: Option<PathBuf>,
     /// Largest radius of the ball census
     #[arg(long, value_name = "R", default_value_t = DEFAULT_RADII, value_parser = parse_radii)]
     pub radii: usize,
+    /// Claims.
+    #[command(flatten)]
+    pub claims: Claims,
+    /// Write the tables as LaTeX with booktabs rules too (tables.tex)
+    #[arg(long, value_enum, default_value_t)]
+    pub format: StudyFormat,
+    /// Printed size of the picture files: pixels, a column of 88 mm or a page of 180 mm
+    #[arg(long, value_enum, default_value_t, value_name = "SIZE")]
+    pub pictures: Pictures,
     /// Order of the factor graph written as GraphML [default: the largest with at most 2000 vertices]
     #[arg(long, value_name = "N", value_parser = parse_graph_order)]
     pub graph_order: Option<usize>,
@@ -286,6 +314,39 @@ pub struct StudyOptions {
     /// Arithmetic.
     #[command(flatten)]
     pub exactness: Exactness,
+}
+
+/// Formats of `study`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum StudyFormat {
+    /// The page, JSON and CSV
+    #[default]
+    Html,
+    /// The same, and the tables as LaTeX
+    Latex,
+}
+
+/// Sizes of the pictures of `study`.
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, ValueEnum)]
+pub enum Pictures {
+    /// In pixels
+    #[default]
+    Screen,
+    /// For one of two columns
+    Column,
+    /// For the width of a page
+    Page,
+}
+
+impl Pictures {
+    /// As the figures take it.
+    pub fn size(self) -> PictureSize {
+        match self {
+            Pictures::Screen => PictureSize::Screen,
+            Pictures::Column => PictureSize::Column,
+            Pictures::Page => PictureSize::Page,
+        }
+    }
 }
 
 fn parse_radii(text: &str) -> Result<usize, String> {
@@ -379,6 +440,9 @@ pub struct ComplexityOptions {
     /// How to count [default: both; beams when sides share letters or the table has holes]
     #[arg(long, value_enum)]
     pub route: Option<Route>,
+    /// Claims.
+    #[command(flatten)]
+    pub claims: Claims,
     /// Output format
     #[arg(long, value_enum, default_value_t)]
     pub format: Format,

@@ -5,11 +5,13 @@ use super::fault::Fault;
 use super::output::{emit, read_table, write_columns, write_json};
 use super::stats::Stats;
 use super::work::{Work, options_line};
+use crate::complexity::claim::Claim;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::language::walk;
 use crate::run::Stopped;
 use crate::run::checkpoint::ledger;
+use crate::study::claims::{ClaimRecord, judge};
 use crate::table::Table;
 use crate::unfold::Mesh;
 use crate::unfold::engine::AnyEngine;
@@ -30,6 +32,8 @@ struct ComplexityRecord<'a> {
     diagonals: Option<Vec<u64>>,
     /// Null unless both routes ran.
     routes_agree: Option<bool>,
+    /// Stated bounds, checked.
+    claims: Vec<ClaimRecord>,
     complete: bool,
     complete_to: usize,
     #[serde(skip_serializing_if = "Option::is_none")]
@@ -46,6 +50,7 @@ struct Stage {
 }
 
 pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
+    let claims = options.claims.parse()?;
     let quiet = options.common.quiet;
     let mut work = Work::begin(options.limits.budget(), quiet)?;
     let loaded = read_table(&options.table, &options.settings, quiet)?;
@@ -84,12 +89,16 @@ pub fn run(options: &ComplexityOptions) -> Result<(), Fault> {
     if let Some(stage) = done {
         let told = options.stats && options.format == Format::Json;
         let told = told.then_some(&work.stats);
-        let record = record(table, options.length, route, stage, told);
+        let record = record(table, options.length, route, stage, &claims, told);
         emit(options.out.as_deref(), |out| match options.format {
             Format::Text => write_text(&record, out),
             Format::Json => write_json(out, &record),
             Format::Csv => write_csv(&record, out),
         })?;
+        if options.format == Format::Csv {
+            // Rows of numbers have no place for them.
+            write_claims(&record, &mut io::stderr())?;
+        }
     }
     if let Some(n) = disagreement {
         return Err(Fault::Failed(format!(
@@ -152,9 +161,15 @@ fn record<'a>(
     length: usize,
     route: Route,
     stage: Stage,
+    claims: &[Claim],
     stats: Option<&'a Stats>,
 ) -> ComplexityRecord<'a> {
     let counts = Counts::from_p(stage.p);
+    let diagonals = stage.diagonals.as_deref();
+    let claims = claims
+        .iter()
+        .map(|claim| judge(claim, &counts, diagonals))
+        .collect();
     ComplexityRecord {
         schema: "reboundary-complexity/1",
         title: table.title().into(),
@@ -165,6 +180,7 @@ fn record<'a>(
         second_difference: counts.second_difference,
         diagonals: stage.diagonals,
         routes_agree: stage.disagreement.map(|d| d.is_none()),
+        claims,
         complete: stage.length == length,
         complete_to: stage.length,
         stats,
@@ -226,12 +242,22 @@ fn write_text(record: &ComplexityRecord<'_>, out: &mut dyn Write) -> io::Result<
         Some(false) => writeln!(out, "the routes DISAGREE")?,
         None => {}
     }
+    write_claims(record, out)?;
     if !record.complete {
         writeln!(
             out,
             "stopped: complete to n = {} of {}",
             record.complete_to, record.length
         )?;
+    }
+    Ok(())
+}
+
+/// One line for each claim: its standing, the claim, the grounds.
+fn write_claims(record: &ComplexityRecord<'_>, out: &mut dyn Write) -> io::Result<()> {
+    for claim in &record.claims {
+        let label = claim.standing.label();
+        writeln!(out, "{label}: {} ({})", claim.claim, claim.grounds)?;
     }
     Ok(())
 }

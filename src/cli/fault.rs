@@ -76,6 +76,12 @@ impl From<ReferenceFileError> for Fault {
     }
 }
 
+impl From<Box<Diagnostic>> for Fault {
+    fn from(diagnostic: Box<Diagnostic>) -> Fault {
+        Fault::BadText(diagnostic)
+    }
+}
+
 impl From<io::Error> for Fault {
     fn from(error: io::Error) -> Fault {
         if is_closed_pipe(&error) {

@@ -46,6 +46,7 @@ pub mod progress;
 mod special;
 mod stats;
 mod store;
+mod studies;
 mod study;
 mod sweep;
 mod table;

@@ -1,9 +1,11 @@
 //! `reboundary study`.
 
-use super::arguments::{SHORTEST_STUDY, StudyOptions};
+use super::arguments::{Pictures, SHORTEST_STUDY, StudyFormat, StudyOptions};
 use super::fault::Fault;
 use super::output::{emit, read_table};
+use super::studies;
 use super::work::{Work, options_line, time_only};
+use crate::complexity::claim::Claim;
 use crate::language::tree::BYTES_PER_WORD;
 use crate::language::walk::GrowthFault;
 use crate::run::files::ResultFolder;
@@ -13,19 +15,14 @@ use crate::study::results::{
     DEFAULT_LENGTH, Request, Results, Stage, StudyFault, compute_kept, default_length,
 };
 use crate::table::Table;
+use crate::table::file::LoadedTable;
 use crate::unfold::engine::AnyEngine;
 use std::io::{self, Write};
 use std::path::{Path, PathBuf};
 use std::time::Instant;
 
 pub fn run(options: &StudyOptions) -> Result<(), Fault> {
-    let loaded = read_table(&options.table, &options.settings, options.common.quiet)?;
-    let out = options
-        .out
-        .clone()
-        .unwrap_or_else(|| PathBuf::from(format!("{}-study", loaded.stem)));
-    // A place that cannot be used is refused before the work, not after it.
-    drop(ResultFolder::new(&out, MARK)?);
+    let claims = options.claims.parse()?;
     if let (Some(order), Some(length)) = (options.graph_order, options.length)
         && order >= length
     {
@@ -34,17 +31,24 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
             order + 1
         )));
     }
+    match &options.tables[..] {
+        [table] if !table.is_dir() => one(options, table, &claims),
+        _ => studies::run(options, &claims),
+    }
+}
+
+fn one(options: &StudyOptions, table: &Path, claims: &[Claim]) -> Result<(), Fault> {
+    let loaded = read_table(table, &options.settings, options.common.quiet)?;
+    let out = options
+        .out
+        .clone()
+        .unwrap_or_else(|| PathBuf::from(format!("{}-study", loaded.stem)));
+    // A place that cannot be used is refused before the work, not after it.
+    drop(ResultFolder::new(&out, MARK)?);
     let quiet = options.common.quiet;
     let mut work = Work::begin(time_only(options.budget_time), quiet)?;
     work.open(&options.keeping, &loaded, &checkpoint_line(options), quiet)?;
-    let request = Request {
-        length: options.length.or(options
-            .graph_order
-            .map(|order| (order + 1).max(SHORTEST_STUDY))),
-        radii: options.radii,
-        arithmetic: options.exactness.arithmetic(),
-        memory: options.budget_memory,
-    };
+    let request = request(options, options.budget_memory);
     let mut done = None;
     let mut stopped = false;
     for request in requests(&request, &work, &loaded.table)? {
@@ -57,34 +61,23 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
             Err(fault) => return Err(fault.into()),
         }
     }
-    let Some(results) = done else {
+    let Some(mut results) = done else {
         return Err(work.stopped(None));
     };
+    results.judge_claims(claims);
     work.progress.begin("writing", None);
-    let command = command(options, &results);
     let mut notices = loaded.notices.clone();
-    // The order asked for may be beyond a shorter study.
-    let graph_order = options.graph_order.filter(|order| *order < results.length);
     if stopped {
         notices.push(format!(
             "the work was stopped before it was complete: this is the study of the words up to length {}",
             results.length
         ));
     }
-    let extras = Extras {
-        table_file: &loaded.text,
-        notices: &notices,
-        parameters: &loaded.parameters,
-        bases: &loaded.bases,
-        command: &command,
-        graph_order,
-        arithmetic: request.arithmetic,
-        stop: match work.control.reason() {
-            _ if !stopped => "complete",
-            Some(StopReason::Time) => "time",
-            Some(StopReason::Memory) => "memory",
-            Some(StopReason::Signal) | None => "signal",
-        },
+    let stop = match work.control.reason() {
+        _ if !stopped => "complete",
+        Some(StopReason::Time) => "time",
+        Some(StopReason::Memory) => "memory",
+        Some(StopReason::Signal) | None => "signal",
     };
     work.unwatch();
     // A limit that was reached does not keep what is complete from being written; a signal while it is written does.
@@ -93,7 +86,14 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
         Some(reason) if stopped || reason == StopReason::Time => &fresh,
         _ => &*work.control,
     };
-    write(&results, &extras, &out, writing)?;
+    let input = Input {
+        options,
+        table,
+        loaded: &loaded,
+        notices: &notices,
+        stop,
+    };
+    input.write(&results, &out, writing)?;
     work.stats.bytes_per_word = Some(BYTES_PER_WORD);
     let engine = AnyEngine::new(&loaded.table, 1, request.arithmetic);
     work.end(Some(engine.describe()));
@@ -111,6 +111,49 @@ pub fn run(options: &StudyOptions) -> Result<(), Fault> {
             results.length
         )))),
         false => Ok(()),
+    }
+}
+
+/// What is asked of each table.
+pub fn request(options: &StudyOptions, memory: Option<u64>) -> Request {
+    Request {
+        length: options.length.or(options
+            .graph_order
+            .map(|order| (order + 1).max(SHORTEST_STUDY))),
+        radii: options.radii,
+        arithmetic: options.exactness.arithmetic(),
+        memory,
+    }
+}
+
+/// What a study's folder says of its input.
+pub struct Input<'a> {
+    pub options: &'a StudyOptions,
+    pub table: &'a Path,
+    pub loaded: &'a LoadedTable,
+    pub notices: &'a [String],
+    /// `complete`, or why the study is not longer.
+    pub stop: &'static str,
+}
+
+impl Input<'_> {
+    /// Writes the folder.
+    pub fn write(&self, results: &Results, out: &Path, control: &Control) -> Result<(), Fault> {
+        let (options, loaded) = (self.options, self.loaded);
+        let extras = Extras {
+            table_file: &loaded.text,
+            notices: self.notices,
+            parameters: &loaded.parameters,
+            bases: &loaded.bases,
+            command: &command(options, self.table, results),
+            // The order asked for may be beyond a shorter study.
+            graph_order: options.graph_order.filter(|order| *order < results.length),
+            arithmetic: options.exactness.arithmetic(),
+            picture_size: options.pictures.size(),
+            latex: options.format == StudyFormat::Latex,
+            stop: self.stop,
+        };
+        Ok(write(results, &extras, out, control)?)
     }
 }
 
@@ -192,18 +235,17 @@ fn checkpoint_line(options: &StudyOptions) -> String {
 }
 
 /// The command that reproduces the study, without folders and threads.
-fn command(options: &StudyOptions, results: &Results) -> String {
-    let name = options
-        .table
-        .file_name()
-        .unwrap_or_default()
-        .to_string_lossy();
+fn command(options: &StudyOptions, table: &Path, results: &Results) -> String {
+    let name = table.file_name().unwrap_or_default().to_string_lossy();
     let mut command = format!(
         "reboundary study {name} --length {} --radii {}",
         results.length, options.radii
     );
     if let Some(order) = options.graph_order {
         command.push_str(&format!(" --graph-order {order}"));
+    }
+    for claim in &options.claims.claim {
+        command.push_str(&format!(" --claim '{claim}'"));
     }
     for setting in &options.settings.set {
         let plain = |c: char| c.is_ascii_alphanumeric() || "=/.+-_".contains(c);
@@ -216,6 +258,14 @@ fn command(options: &StudyOptions, results: &Results) -> String {
     }
     if options.exactness.exact_only {
         command.push_str(" --exact-only");
+    }
+    match options.pictures {
+        Pictures::Screen => {}
+        Pictures::Column => command.push_str(" --pictures column"),
+        Pictures::Page => command.push_str(" --pictures page"),
+    }
+    if options.format == StudyFormat::Latex {
+        command.push_str(" --format latex");
     }
     command
 }

@@ -1,15 +1,16 @@
 //! All files of a study.
 //!
-//! `report.html`, `study.json`, `complexity.csv`, `factor-graphs.csv`, `measures.csv`, `diagonals.csv`,
+//! `report.html`, `study.json`, `complexity.csv`, `growth.csv`, `factor-graphs.csv`, `measures.csv`, `diagonals.csv`,
 //! `words.txt` (L_N, one word a line), `factor-graph.graphml` and the pictures. The folder appears whole.
 
-use super::pictures::{Picture, pictures, telling_beam};
-use super::record::{Options, decimal, record};
+use super::latex::write_latex;
+use super::pictures::{pictures, telling_beam};
+use super::record::{Hashes, Options, decimal, record};
 use super::report::report;
 use super::results::Results;
 use crate::complexity::diagonals::{self, Diagonal};
 use crate::factor_graph::export::{spell, write_graphml};
-use crate::figure::FigureError;
+use crate::figure::{FigureError, PictureSize, sized};
 use crate::language::WordId;
 use crate::language::beams::beams_of_length;
 use crate::run::files::{OutputFault, ResultFolder};
@@ -50,6 +51,10 @@ pub struct Extras<'a> {
     pub graph_order: Option<usize>,
     /// Which tiers may decide.
     pub arithmetic: Arithmetic,
+    /// Size of the pictures in their own files.
+    pub picture_size: PictureSize,
+    /// Write the tables as LaTeX too.
+    pub latex: bool,
     /// Why the study is not longer: `complete`, or `time`, `memory` or `signal` when it was stopped.
     pub stop: &'static str,
 }
@@ -101,11 +106,19 @@ pub fn write(
         .unwrap_or_else(|| default_graph_order(&results.counts.p));
 
     for picture in &drawn {
-        folder.write(picture.file, |out| out.write_all(picture.svg.as_bytes()))?;
+        let svg = sized(&picture.svg, extras.picture_size);
+        folder.write(picture.file, |out| out.write_all(svg.as_bytes()))?;
     }
     write_tables(results, &folder, &listed)?;
     control.tick(0)?;
-    folder.write("words.txt", |out| write_words(results, out))?;
+    let mut words = Vec::new();
+    write_words(results, &mut words).expect("memory takes what it is given");
+    let hashes = Hashes::of(extras.table_file, &words);
+    folder.write("words.txt", |out| out.write_all(&words))?;
+    drop(words);
+    if extras.latex {
+        folder.write("tables.tex", |out| write_latex(results, out))?;
+    }
     folder.write("factor-graph.graphml", |out| {
         write_graphml(&results.language, order, table.letters(), out)
     })?;
@@ -116,7 +129,7 @@ pub fn write(
         exact_only: extras.arithmetic == Arithmetic::BigOnly,
         parameters: extras.parameters.to_vec(),
     };
-    let record = record(results, extras, options);
+    let record = record(results, extras, options, hashes);
     folder.write("report.html", |out| {
         let page = report(results, &record, &drawn, &listed, extras);
         out.write_all(page.as_bytes())
@@ -146,6 +159,7 @@ fn write_tables(
 ) -> Result<(), OutputFault> {
     folder.write("complexity.csv", |out| write_complexity(results, out))?;
     folder.write("factor-graphs.csv", |out| write_graphs(results, out))?;
+    folder.write("growth.csv", |out| write_growth(results, out))?;
     folder.write("measures.csv", |out| write_measures(results, out))?;
     folder.write("diagonals.csv", |out| {
         write_diagonals(&results.table, listed, out)
@@ -173,6 +187,54 @@ fn write_complexity(results: &Results, out: &mut dyn Write) -> io::Result<()> {
                 .as_ref()
                 .map_or(String::new(), |p| p[n].to_string()),
         ])?;
+    }
+    csv.flush()
+}
+
+/// Names of the columns of the dyadic windows.
+pub(super) const WINDOW_COLUMNS: [&str; 11] = [
+    "from",
+    "to",
+    "smallest_quotient",
+    "smallest_at",
+    "largest_quotient",
+    "largest_at",
+    "exponent",
+    "residual",
+    "curvature",
+    "smallest_diagonals",
+    "largest_diagonals",
+];
+
+/// The dyadic windows of the growth, the last first, as cells.
+pub(super) fn window_rows(results: &Results) -> impl Iterator<Item = Vec<String>> + '_ {
+    results.growth.windows.iter().map(|w| {
+        let q = &w.quotient;
+        let (low, high) = match w.diagonals_over_square {
+            Some((low, high)) => (format!("{low:.6}"), format!("{high:.6}")),
+            None => Default::default(),
+        };
+        vec![
+            q.from.to_string(),
+            q.to.to_string(),
+            format!("{:.6}", q.smallest),
+            q.smallest_at.to_string(),
+            format!("{:.6}", q.largest),
+            q.largest_at.to_string(),
+            format!("{:.4}", w.exponent),
+            format!("{:.1e}", w.residual),
+            w.curvature.map_or(String::new(), |c| format!("{c:.6}")),
+            low,
+            high,
+        ]
+    })
+}
+
+fn write_growth(results: &Results, out: &mut dyn Write) -> io::Result<()> {
+    let mut csv = csv::Writer::from_writer(out);
+    csv.write_record(WINDOW_COLUMNS)?;
+    for row in window_rows(results) {
+        csv.write_record(row)?;
     }
     csv.flush()
 }
@@ -273,9 +335,4 @@ fn write_words(results: &Results, out: &mut dyn Write) -> io::Result<()> {
         )?;
     }
     Ok(())
-}
-
-/// Finds a picture by its file name.
-pub(super) fn find<'a>(pictures: &'a [Picture], file: &str) -> Option<&'a Picture> {
-    pictures.iter().find(|p| p.file == file)
 }

@@ -4,7 +4,7 @@
 
 use super::results::Results;
 use super::sheet::Sheet;
-use crate::complexity::growth::{cubic_range, over_cube};
+use crate::complexity::growth::cubic_range;
 use crate::figure::{
     Caption, CellShape, Cells, Chart, Corridor, FigureError, HoleShape, Mark, Scale, Series,
     TableShape, cells_picture, corridor_picture, draw_chart, shade_apart, table_picture,
@@ -28,7 +28,7 @@ pub struct Picture {
     pub svg: String,
 }
 
-fn picture(
+pub(super) fn picture(
     file: &'static str,
     title: impl Into<String>,
     text: impl Into<String>,
@@ -88,7 +88,7 @@ pub fn pictures(
     Ok(all)
 }
 
-fn series(
+pub(super) fn series(
     name: impl Into<String>,
     points: Vec<(f64, f64)>,
     mark: Mark,
@@ -145,17 +145,6 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
         series: curves,
         ..Chart::default()
     };
-    let quotient = Chart {
-        x_label: "length n".into(),
-        y_label: "p(n)/n³".into(),
-        series: vec![series(
-            "p(n)/n³",
-            (from..=last).map(|n| (n as f64, over_cube(p, n))).collect(),
-            Mark::LineDots,
-            Some(0),
-        )],
-        ..Chart::default()
-    };
     let ratio = Chart {
         x_label: "length n".into(),
         y_label: "p(n+1)/p(n) − 1".into(),
@@ -185,20 +174,14 @@ fn growth_pictures(results: &Results) -> Result<Vec<Picture>, FigureError> {
         picture("growth.svg", "Growth of the complexity", text, |c| {
             draw_chart(&growth, c)
         })?,
-        picture(
-            "quotient.svg",
-            "The quotient p(n)/n³",
-            format!(
-                "p(n)/n³ for {from} ≤ n ≤ {last}. It stays between positive bounds exactly when p grows like n³."
-            ),
-            |c| draw_chart(&quotient, c),
-        )?,
+        super::growth_pictures::quotient(results, from)?,
         picture(
             "ratio.svg",
             "The ratio p(n+1)/p(n)",
             "p(n+1)/p(n) − 1 = s(n)/p(n) on logarithmic axes, beside 3/n, which it follows when p(n) is close to a multiple of n³. For a language of subexponential complexity it tends to 0 exactly when the factor graphs converge locally to the line.",
             |c| draw_chart(&ratio, c),
         )?,
+        super::growth_pictures::diagonals(results)?,
     ])
 }
 

@@ -2,7 +2,9 @@
 //!
 //! The record has no times and no paths, so the same input gives the same bytes.
 
+use super::claims::ClaimRecord;
 use super::folder::Extras;
+use super::growth::GrowthFigures;
 use super::results::{Results, StageTiers};
 use super::statement::Statement;
 use crate::complexity::growth::CubicRange;
@@ -14,6 +16,7 @@ use crate::number::Enclosure;
 use crate::table::file::Parameter;
 use crate::table::summary::{TableSummary, summary};
 use serde::Serialize;
+use sha2::{Digest, Sha256};
 
 /// The version of this record's layout. It changes whenever a field changes its meaning or goes away.
 pub const SCHEMA: &str = "reboundary-study/1";
@@ -31,12 +34,18 @@ pub struct Record<'a> {
     pub table_file: &'a str,
     /// The texts of the files that it stands on, the nearest first.
     pub base_files: Vec<&'a str>,
+    /// What the files were, for comparison.
+    pub hashes: Hashes,
     /// The table and its facts.
     pub table: TableSummary,
     /// Why the study ended: always `complete` in a finished folder.
     pub stop: &'static str,
     /// Counts.
     pub complexity: Complexity<'a>,
+    /// Exponents, limits and windows, with their uncertainty.
+    pub growth: &'a GrowthFigures,
+    /// Stated bounds.
+    pub claims: &'a [ClaimRecord],
     /// The measure check.
     pub measure: MeasureRecord,
     /// Words of the shown length with their measures.
@@ -83,6 +92,30 @@ pub struct Options {
     pub exact_only: bool,
     /// The parameters of the table file, as set.
     pub parameters: Vec<Parameter>,
+}
+
+/// SHA-256 sums (FIPS 180-4), in hexadecimal digits.
+#[derive(Clone, Debug, Serialize)]
+pub struct Hashes {
+    /// Of the table file.
+    pub table_file: String,
+    /// Of `words.txt`.
+    pub words: String,
+}
+
+impl Hashes {
+    /// Those of the text of the table file and the bytes of the list of words.
+    pub fn of(table_file: &str, words: &[u8]) -> Hashes {
+        Hashes {
+            table_file: sha256(table_file.as_bytes()),
+            words: sha256(words),
+        }
+    }
+}
+
+fn sha256(bytes: &[u8]) -> String {
+    let sum = Sha256::digest(bytes);
+    sum.iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
 /// Counts.
@@ -171,7 +204,12 @@ pub fn width(value: &Enclosure) -> String {
 }
 
 /// Gathers the record of a study.
-pub fn record<'a>(results: &'a Results, extras: &Extras<'a>, options: Options) -> Record<'a> {
+pub fn record<'a>(
+    results: &'a Results,
+    extras: &Extras<'a>,
+    options: Options,
+    hashes: Hashes,
+) -> Record<'a> {
     let n = results.shown_length;
     Record {
         schema: SCHEMA,
@@ -181,6 +219,7 @@ pub fn record<'a>(results: &'a Results, extras: &Extras<'a>, options: Options) -
         base_files: (extras.bases.iter())
             .map(|base| base.text.as_str())
             .collect(),
+        hashes,
         table: summary(&results.table, &results.facts),
         stop: extras.stop,
         complexity: Complexity {
@@ -199,6 +238,8 @@ pub fn record<'a>(results: &'a Results, extras: &Extras<'a>, options: Options) -
                 results.length,
             ),
         },
+        growth: &results.growth,
+        claims: &results.claims,
         measure: MeasureRecord {
             whole: decimal(&results.measures.whole),
             places: MEASURE_PLACES,
@@ -234,5 +275,19 @@ pub fn record<'a>(results: &'a Results, extras: &Extras<'a>, options: Options) -
             engine: results.engine,
             decisions: results.tiers,
         },
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::sha256;
+
+    /// FIPS 180-2, appendix B.1.
+    #[test]
+    fn sha256_of_abc_fips_180() {
+        assert_eq!(
+            sha256(b"abc"),
+            "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad"
+        );
     }
 }

@@ -1,34 +1,21 @@
 //! `report.html`: the study as one self-contained page.
 //!
 //! The summary of standings comes first; tables scroll inside themselves on a narrow screen; pictures are
-//! inline SVG. No script, no network, no time stamps: the same study gives the same bytes.
+//! inline SVG. One inline script sorts tables and saves them as CSV; without it everything is still there. No network, no time
+//! stamps: the same study gives the same bytes.
 
-use super::folder::{Extras, find, spell_code};
+use super::folder::{Extras, spell_code};
+use super::html::{DataTable, contents, escape, figure as draw_figure, frame, heading, strings};
 use super::pictures::Picture;
 use super::record::Record;
+use super::report_growth::{growth_section, standings};
 use super::results::Results;
+use super::sources::BIBLIOGRAPHY;
 use crate::complexity::diagonals::Diagonal;
 use crate::table::summary::{Exact, TableSummary, root_decimal};
 
-const STYLE: &str = include_str!("report.css");
-
 /// Rows of generalized diagonals in the page; the file has more.
 const SHOWN_DIAGONALS: usize = 60;
-
-/// Escapes text for HTML.
-pub fn escape(text: &str) -> String {
-    let mut escaped = String::with_capacity(text.len());
-    for c in text.chars() {
-        match c {
-            '&' => escaped.push_str("&amp;"),
-            '<' => escaped.push_str("&lt;"),
-            '>' => escaped.push_str("&gt;"),
-            '"' => escaped.push_str("&quot;"),
-            _ => escaped.push(c),
-        }
-    }
-    escaped
-}
 
 /// The page.
 pub fn report(
@@ -38,13 +25,11 @@ pub fn report(
     diagonals: &[Diagonal],
     extras: &Extras<'_>,
 ) -> String {
-    let title = escape(results.table.title());
+    let title = results.table.title();
     let mut page = format!(
-        "<!DOCTYPE html>\n<html lang=\"en\">\n<head>\n<meta charset=\"utf-8\">\n\
-         <meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n\
-         <title>{title}: coding language to length {n}</title>\n<style>\n{STYLE}</style>\n</head>\n<body>\n<main>\n\
-         <h1>{title}</h1>\n<p class=\"lead\">The complete billiard coding language to length {n}: {words} words of length {n}, \
-         computed with exact arithmetic{routes}.</p>\n",
+        "<header>\n<h1>{}</h1>\n<p class=\"lead\">The complete billiard coding language to length {n}: {words} words of length {n}, \
+         computed with exact arithmetic{routes}.</p>\n</header>\n",
+        escape(title),
         routes = if results.p_by_diagonals.is_some() {
             " by two routes"
         } else {
@@ -53,10 +38,19 @@ pub fn report(
         n = results.length,
         words = results.counts.p[results.length],
     );
-    page.push_str(
-        "<nav aria-label=\"Contents\"><a href=\"#standings\">Standings</a><a href=\"#table\">Table</a>\
-         <a href=\"#growth\">Growth</a><a href=\"#graphs\">Factor graphs</a><a href=\"#cells\">Beams and measures</a>\
-         <a href=\"#diagonals\">Generalized diagonals</a><a href=\"#method\">Method</a><a href=\"#again\">Reproduce</a></nav>\n",
+    contents(
+        &mut page,
+        &[
+            ("standings", "What is known, and how firmly"),
+            ("table", "The table"),
+            ("growth", "Growth of the complexity"),
+            ("graphs", "Factor graphs"),
+            ("cells", "Beams and measures"),
+            ("diagonals", "Generalized diagonals"),
+            ("method", "Method"),
+            ("sources", "Sources"),
+            ("again", "How to reproduce this study"),
+        ],
     );
     for parameter in extras.parameters {
         let from = if parameter.set {
@@ -81,69 +75,33 @@ pub fn report(
     diagonal_section(&mut page, results, diagonals);
     method_section(&mut page, results);
     again_section(&mut page, record, extras);
-    page.push_str("</main>\n</body>\n</html>\n");
-    page
+    frame(
+        &format!("{title}: coding language to length {}", results.length),
+        &page,
+    )
 }
 
-fn heading(page: &mut String, id: &str, text: &str) {
-    page.push_str(&format!("<h2 id=\"{id}\">{text}</h2>\n"));
+/// A picture by its file name, numbered by its place among all.
+pub(super) fn figure(page: &mut String, pictures: &[Picture], file: &str) {
+    if let Some(place) = pictures.iter().position(|p| p.file == file) {
+        draw_figure(page, &pictures[place], place + 1);
+    }
 }
 
-fn figure(page: &mut String, pictures: &[Picture], file: &str) {
-    let Some(picture) = find(pictures, file) else {
-        return;
+/// A table of numbers.
+pub(super) fn number_table(
+    page: &mut String,
+    (name, caption): (&str, &str),
+    header: &[String],
+    rows: impl Iterator<Item = Vec<String>>,
+) {
+    let table = DataTable {
+        name,
+        caption,
+        header: header.to_vec(),
+        numbers: true,
     };
-    page.push_str(&format!(
-        "<figure>\n{}\n<figcaption><strong>{}.</strong> {}</figcaption>\n</figure>\n",
-        picture.svg,
-        escape(&picture.title),
-        escape(&picture.caption)
-    ));
-}
-
-/// A table of numbers with its header.
-fn number_table(page: &mut String, header: &[String], rows: impl Iterator<Item = Vec<String>>) {
-    page.push_str("<div class=\"scroll\" tabindex=\"0\"><table class=\"numbers\"><thead><tr>");
-    for cell in header {
-        page.push_str(&format!("<th scope=\"col\">{}</th>", escape(cell)));
-    }
-    page.push_str("</tr></thead><tbody>\n");
-    for row in rows {
-        page.push_str("<tr>");
-        for cell in row {
-            page.push_str(&format!("<td>{}</td>", escape(&cell)));
-        }
-        page.push_str("</tr>\n");
-    }
-    page.push_str("</tbody></table></div>\n");
-}
-
-fn strings<const N: usize>(cells: [&str; N]) -> Vec<String> {
-    cells.iter().map(|c| c.to_string()).collect()
-}
-
-fn standings(page: &mut String, results: &Results) {
-    heading(page, "standings", "What is known, and how firmly");
-    page.push_str(
-        "<p><strong>Proved</strong>: a named theorem whose hypotheses were checked exactly for this table, or by definition. \
-         <strong>Computed</strong>: exact for every n of this study. <strong>Trend</strong>: figures that suggest it and prove \
-         nothing. <strong>Not decided</strong>: left open. <strong>Violated</strong>: computed to be false.</p>\n\
-         <table class=\"standings\"><thead><tr><th scope=\"col\">Standing</th><th scope=\"col\">Statement</th>\
-         <th scope=\"col\">Grounds</th></tr></thead><tbody>\n",
-    );
-    for statement in &results.statements {
-        let standing = statement.standing;
-        let id = serde_json::to_value(standing).expect("a plain name");
-        let at = statement.reach();
-        page.push_str(&format!(
-            "<tr><td><span class=\"standing {}\">{}</span>{at}</td><td>{}</td><td>{}</td></tr>\n",
-            id.as_str().unwrap_or_default(),
-            standing.label(),
-            escape(&statement.sentence()),
-            escape(&statement.grounds)
-        ));
-    }
-    page.push_str("</tbody></table>\n");
+    table.write(page, rows);
 }
 
 fn exact(value: &Exact) -> String {
@@ -211,7 +169,7 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
         ("Field of the coordinates", field),
         ("Plane form", form),
     ];
-    page.push_str("<table class=\"facts\"><tbody>\n");
+    page.push_str("<table class=\"facts\"><caption>Facts, each proved exactly</caption><tbody>\n");
     for (name, value) in &facts {
         page.push_str(&format!(
             "<tr><th scope=\"row\">{name}</th><td>{}</td></tr>\n",
@@ -232,54 +190,17 @@ fn table_section(page: &mut String, table: &TableSummary, pictures: &[Picture]) 
     });
     number_table(
         page,
+        ("corners", "Corners, angles and sides"),
         &strings(["corner", "x", "y", "angle", "side after it", "length"]),
         rows,
     );
-}
-
-fn growth_section(page: &mut String, results: &Results, pictures: &[Picture]) {
-    heading(page, "growth", "Growth of the complexity");
-    let agree = match results.disagreement {
-        None if results.p_by_diagonals.is_none() => format!(
-            "The words are counted by beams. A word is a bundle of beams here, because {}, so the generalized diagonals do not give p(n).",
-            super::verdict::Coding::of(&results.table).why_bundles()
-        ),
-        None => format!(
-            "Counting words by beams and by generalized diagonals gives the same p(n) for every n ≤ {}.",
-            results.length
-        ),
-        Some(n) => {
-            format!("The two routes to p(n) differ, first at n = {n}: do not use these counts.")
-        }
-    };
-    page.push_str(&format!("<p>{agree}</p>\n"));
-    for file in ["growth.svg", "quotient.svg", "ratio.svg"] {
-        figure(page, pictures, file);
-    }
-    page.push_str("<details><summary>All counts: p(n), s(n) = p(n+1) − p(n), b(n) = s(n+1) − s(n), and the number N(n) of oriented generalized diagonals that cross n sides</summary>\n");
-    let counts = &results.counts;
-    let rows = (0..counts.p.len()).map(|n| {
-        let cell = |values: &[i64]| values.get(n).map_or(String::new(), i64::to_string);
-        vec![
-            n.to_string(),
-            counts.p[n].to_string(),
-            cell(&counts.first_difference),
-            cell(&counts.second_difference),
-            results
-                .diagonals
-                .get(n)
-                .map_or(String::new(), u64::to_string),
-        ]
-    });
-    number_table(page, &strings(["n", "p(n)", "s(n)", "b(n)", "N(n)"]), rows);
-    page.push_str("</details>\n");
 }
 
 fn graph_section(page: &mut String, results: &Results, pictures: &[Picture], exported: usize) {
     heading(page, "graphs", "Factor graphs");
     page.push_str(&format!(
         "<p>The factor graph of order n has the words of length n as vertices and those of length n + 1 as arcs. \
-         The file <code>factor-graph.graphml</code> holds the one of order {exported}.</p>\n"
+         The file <a href=\"factor-graph.graphml\">factor-graph.graphml</a> holds the one of order {exported}.</p>\n"
     ));
     figure(page, pictures, "path-balls.svg");
     page.push_str(
@@ -309,7 +230,15 @@ fn graph_section(page: &mut String, results: &Results, pictures: &[Picture], exp
         row.extend(&g.path_balls);
         row.iter().map(u64::to_string).collect()
     });
-    number_table(page, &header, rows);
+    number_table(
+        page,
+        (
+            "factor-graphs",
+            "Special words, and words whose balls are paths, by order n",
+        ),
+        &header,
+        rows,
+    );
     page.push_str("</details>\n");
 }
 
@@ -337,7 +266,12 @@ fn cell_section(page: &mut String, results: &Results, record: &Record<'_>, pictu
         .words
         .iter()
         .map(|c| vec![c.word.clone(), c.measure.clone()]);
-    number_table(page, &strings(["word", "measure"]), rows);
+    number_table(
+        page,
+        ("measures", "Words with their certified measures"),
+        &strings(["word", "measure"]),
+        rows,
+    );
     page.push_str("</details>\n");
 }
 
@@ -345,7 +279,7 @@ fn diagonal_section(page: &mut String, results: &Results, diagonals: &[Diagonal]
     heading(page, "diagonals", "Generalized diagonals");
     let crossings = diagonals.last().map_or(0, |d| d.code.len());
     page.push_str(&format!(
-        "<p>Segments of the unfolded table from corner to corner, oriented. The file <code>diagonals.csv</code> lists the {} that cross at most {crossings} sides, with exact displacements.</p>\n\
+        "<p>Segments of the unfolded table from corner to corner, oriented. The file <a href=\"diagonals.csv\">diagonals.csv</a> lists the {} that cross at most {crossings} sides, with exact displacements.</p>\n\
          <details><summary>The first {}</summary>\n",
         diagonals.len(),
         diagonals.len().min(SHOWN_DIAGONALS)
@@ -364,6 +298,7 @@ fn diagonal_section(page: &mut String, results: &Results, diagonals: &[Diagonal]
     });
     number_table(
         page,
+        ("diagonals", "Generalized diagonals, oriented"),
         &strings([
             "sides crossed",
             "from corner",
@@ -393,28 +328,62 @@ fn method_section(page: &mut String, results: &Results) {
         "<p><em>Beams.</em> The lines with one coding form a convex cell; a new corner cuts it or not. \
          <em>Generalized diagonals.</em> When each word is one such cell, the second difference of p counts them, so p follows from fans of rays from the corners. \
          <em>Measures.</em> The invariant measure of a cell is a signed sum of distances between corner images (crossed-belt formula), \
-         and all cells of one length fill the phase space, whose measure is 2·perimeter.</p>\n<ul>\n",
+         and all cells of one length fill the phase space, whose measure is 2·perimeter. \
+         <em>Factor graphs.</em> Counted from the tree of words; a ball is a path when every vertex nearer than r has one arc in and one out. \
+         <em>Estimates.</em> Least squares in floating point on exact counts; what their errors mean stands beside them. \
+         <em>Stated bounds.</em> Compared at every n in rational arithmetic.</p>\n",
     );
-    for source in [
-        "J. Cassaigne, P. Hubert, S. Troubetzkoy: complexity and generalized diagonals of convex tables, cubic bounds. Ann. Inst. Fourier 52 (2002) 835–847.",
-        "J. Cassaigne: second difference and bispecial words. Bull. Belg. Math. Soc. 4 (1997) 67–88.",
-        "A. Katok: subexponential growth in every polygon. Comm. Math. Phys. 111 (1987).",
-        "H. Masur: quadratic bounds for generalized diagonals by length in rational polygons (1988, 1990).",
-        "Criterion for the local limit of factor graphs: arXiv 2402.15877.",
-        "L. A. Santaló: Integral Geometry and Geometric Probability, 1976.",
-    ] {
+    heading(page, "sources", "Sources");
+    page.push_str("<ul>\n");
+    for source in BIBLIOGRAPHY {
         page.push_str(&format!("<li>{}</li>\n", escape(source)));
     }
     page.push_str("</ul>\n");
 }
 
 fn again_section(page: &mut String, record: &Record<'_>, extras: &Extras<'_>) {
-    heading(page, "again", "Reproduce");
+    heading(page, "again", "How to reproduce this study");
+    let options = &record.options;
+    let facts = [
+        (
+            "Program",
+            format!("{} {}", record.program.name, record.program.version),
+        ),
+        ("Layout of study.json", record.schema.into()),
+        ("Longest words", options.length.to_string()),
+        ("Largest radius of balls", options.radii.to_string()),
+        (
+            "Order of the exported factor graph",
+            options.graph_order.to_string(),
+        ),
+        (
+            "Arithmetic",
+            if options.exact_only {
+                "big integers alone"
+            } else {
+                "by tiers"
+            }
+            .into(),
+        ),
+        ("Random numbers", "none: nothing is drawn at random".into()),
+        (
+            "SHA-256 of the table file",
+            record.hashes.table_file.clone(),
+        ),
+        ("SHA-256 of words.txt", record.hashes.words.clone()),
+    ];
+    page.push_str(
+        "<table class=\"facts\"><caption>Versions, options and hashes</caption><tbody>\n",
+    );
+    for (name, value) in &facts {
+        page.push_str(&format!(
+            "<tr><th scope=\"row\">{name}</th><td>{}</td></tr>\n",
+            escape(value)
+        ));
+    }
     page.push_str(&format!(
-        "<p>{} {}. With the table file below saved under its name, the command</p>\n<pre>{}</pre>\n\
+        "</tbody></table>\n<p>With the table file below saved under its name, the command</p>\n<pre>{}</pre>\n\
          <p>gives the same files, byte for byte, with any number of threads.</p>\n<pre>{}</pre>\n",
-        record.program.name,
-        record.program.version,
         escape(extras.command),
         escape(extras.table_file)
     ));

@@ -3,8 +3,12 @@
 //! Stages, each on the room that owns it: facts; generalized diagonals and p by fans (cheap, and it tells how
 //! much memory the rest needs); the language by beams; measures; factor graphs; the verdict.
 
+use super::claims::{ClaimRecord, judge};
+use super::growth::GrowthFigures;
 use super::statement::Statement;
 use super::verdict::{Coding, Evidence, verdict};
+use crate::complexity::claim::Claim;
+use crate::complexity::constant::known_constant;
 use crate::complexity::counts::{Counts, first_disagreement, p_from_diagonals};
 use crate::complexity::diagonals;
 use crate::factor_graph::census::{GraphCounts, count_graphs};
@@ -73,6 +77,10 @@ pub struct Results {
     pub graphs: Vec<GraphCounts>,
     /// Line figures of the same orders.
     pub line: Vec<LineFigures>,
+    /// Estimates of the growth.
+    pub growth: GrowthFigures,
+    /// Stated bounds, as far as [`Results::judge_claims`] was asked.
+    pub claims: Vec<ClaimRecord>,
     /// What follows.
     pub statements: Vec<Statement>,
     /// Decisions by tier: fans, beams.
@@ -212,6 +220,7 @@ pub fn compute_kept(
     let disagreement = p_by_diagonals
         .as_ref()
         .and_then(|other| first_disagreement(&counts.p, other));
+    let growth = GrowthFigures::new(&counts.p, Some(&diagonals), known_constant(table, &facts));
     let statements = verdict(&Evidence {
         facts: &facts,
         coding: Coding::of(table),
@@ -221,6 +230,7 @@ pub fn compute_kept(
         bi_extendable: language.is_bi_extendable(),
         reversal_fault: language.first_without_reversal().map(|(n, _)| n),
         line: &line,
+        growth: &growth,
     });
     Ok(Results {
         table: table.clone(),
@@ -231,6 +241,8 @@ pub fn compute_kept(
         shown_length,
         graphs,
         line,
+        growth,
+        claims: Vec::new(),
         statements,
         tiers: StageTiers {
             fans: fan_tiers,
@@ -242,6 +254,17 @@ pub fn compute_kept(
         diagonals,
         p_by_diagonals,
     })
+}
+
+impl Results {
+    /// Checks stated bounds and adds them to the verdict.
+    pub fn judge_claims(&mut self, claims: &[Claim]) {
+        for claim in claims {
+            let record = judge(claim, &self.counts, Some(&self.diagonals));
+            self.statements.push(record.statement());
+            self.claims.push(record);
+        }
+    }
 }
 
 /// The longest length whose words, with all shorter ones, number at most `most`; at least 2.

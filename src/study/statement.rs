@@ -1,5 +1,6 @@
 //! A statement of a verdict, and how firmly it stands.
 
+use super::theorem::Theorem;
 use serde::Serialize;
 
 /// How firmly a statement stands.
@@ -46,6 +47,10 @@ pub struct Statement {
     pub at: Option<usize>,
     /// The theorem and its checked hypotheses, or the figures, or what is missing.
     pub grounds: String,
+    /// For a proved statement: by what, and how each hypothesis was checked. Null for every other.
+    pub theorem: Option<Theorem>,
+    /// For a trend and what is not decided: what no finite data can tell, in one sentence.
+    pub cannot_decide: Option<&'static str>,
 }
 
 impl Statement {

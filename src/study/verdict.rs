@@ -5,7 +5,10 @@
 //! *Trend*: figures that suggest it and prove nothing. *Not decided*: neither. *Violated*: computed to be
 //! false at a named n.
 
+use super::growth::{self, GrowthFigures};
 use super::statement::{Standing, Statement};
+use super::theorem;
+use super::trend::{RatioTrend, ratio_trend};
 use crate::complexity::growth::{CubicRange, cubic_range, local_exponent};
 use crate::factor_graph::criterion::LineFigures;
 use crate::table::Table;
@@ -64,27 +67,29 @@ pub struct Evidence<'a> {
     pub reversal_fault: Option<usize>,
     /// Line figures for the orders 1 … N − 1.
     pub line: &'a [LineFigures],
+    /// Estimates from p and N, and what is known from outside.
+    pub growth: &'a GrowthFigures,
 }
 
 /// Where the ranges of p(n)/n³ start: below, p is dominated by the number of sides.
 pub const CUBIC_FROM: usize = 4;
 
 impl Evidence<'_> {
-    fn longest(&self) -> usize {
+    pub(super) fn longest(&self) -> usize {
         self.p.len() - 1
     }
 
-    fn is_rational(&self) -> bool {
+    pub(super) fn is_rational(&self) -> bool {
         matches!(self.facts.group, ReflectionGroup::Finite { .. })
     }
 
     /// Convex and rational, every side with a letter of its own: what the theorems on cubic growth ask for.
-    fn is_convex_rational(&self) -> bool {
+    pub(super) fn is_convex_rational(&self) -> bool {
         self.facts.convex && self.is_rational() && self.coding.distinct_letters
     }
 
     /// Why the theorems for convex rational tables do not apply.
-    fn missing(&self) -> String {
+    pub(super) fn missing(&self) -> String {
         let mut reasons = Vec::new();
         if !self.facts.convex {
             reasons.push(if self.coding.holes {
@@ -103,7 +108,7 @@ impl Evidence<'_> {
     }
 
     /// The first n from which on p is constant: where p(n+1) = p(n) every word of length n extends in one way only.
-    fn constant_from(&self) -> Option<usize> {
+    pub(super) fn constant_from(&self) -> Option<usize> {
         (1..self.longest()).find(|&n| self.p[n + 1] == self.p[n])
     }
 
@@ -113,8 +118,9 @@ impl Evidence<'_> {
     }
 }
 
-const CUBIC_SOURCE: &str = "Cassaigne, Hubert, Troubetzkoy, Ann. Inst. Fourier 52 (2002) 835–847";
-const CRITERION_SOURCE: &str = "arXiv 2402.15877";
+pub(super) const CUBIC_SOURCE: &str =
+    "Cassaigne, Hubert, Troubetzkoy, Ann. Inst. Fourier 52 (2002) 835–847";
+pub(super) const CRITERION_SOURCE: &str = "arXiv 2402.15877";
 const CHECKED_CONVEX_RATIONAL: &str =
     "checked exactly: convex, every angle a rational multiple of π, every side a letter of its own";
 const CHECKED_INTEGRABLE: &str =
@@ -123,7 +129,7 @@ const CHECKED_INTEGRABLE: &str =
 const SMALL_CLAIM: &str = "p(n) = o(n^(4/3))";
 const BOUNDS_CLAIM: &str = "c₁nᵃ ≤ p(n) ≤ c₂nᵃ with a < 3/2";
 
-fn statement(
+pub(super) fn statement(
     id: &'static str,
     claim: impl Into<String>,
     standing: Standing,
@@ -141,6 +147,8 @@ fn statement(
         },
         at,
         grounds: grounds.into(),
+        theorem: None,
+        cannot_decide: None,
     }
 }
 
@@ -148,9 +156,19 @@ fn statement(
 pub fn verdict(evidence: &Evidence<'_>) -> Vec<Statement> {
     let mut all = checks(evidence);
     all.extend(language_laws(evidence));
-    all.extend(growth(evidence));
+    all.extend(cubic_growth(evidence));
+    all.extend(growth::statements(evidence));
     all.extend(sufficient_conditions(evidence));
     all.extend(line_limit(evidence));
+    for statement in &mut all {
+        match statement.standing {
+            Standing::Proved => statement.theorem = Some(theorem::behind(statement.id, evidence)),
+            Standing::Trend | Standing::NotDecided => {
+                statement.cannot_decide = theorem::cannot_decide(statement.id);
+            }
+            Standing::Computed | Standing::Violated => {}
+        }
+    }
     all
 }
 
@@ -283,7 +301,7 @@ fn subexponential(evidence: &Evidence<'_>) -> Statement {
     )
 }
 
-fn growth(evidence: &Evidence<'_>) -> Vec<Statement> {
+fn cubic_growth(evidence: &Evidence<'_>) -> Vec<Statement> {
     let longest = evidence.longest();
     let bounds = if evidence.is_convex_rational() {
         statement(
@@ -490,22 +508,28 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
         ];
     }
     let trend = ratio_trend(evidence.line);
-    let standing = if trend.is_some() {
-        Standing::Trend
-    } else {
-        Standing::NotDecided
+    let (standing, figures) = match &trend {
+        RatioTrend::Falls(figures) | RatioTrend::Stays(figures) => {
+            (Standing::Trend, figures.as_str())
+        }
+        RatioTrend::Unclear => (
+            Standing::NotDecided,
+            "the figures of this study do not suggest an answer",
+        ),
     };
-    let figures =
-        trend.unwrap_or_else(|| "the figures of this study do not suggest an answer".into());
+    let told = |statement: Statement| match trend {
+        RatioTrend::Stays(_) => statement.negated(),
+        _ => statement,
+    };
     vec![
-        statement(
+        told(statement(
             "ratio_criterion",
             ratio_claim,
             standing,
             None,
             format!("no theorem applies: {}; {figures}", evidence.missing()),
-        ),
-        statement(
+        )),
+        told(statement(
             "line_limit",
             line_claim,
             standing,
@@ -519,19 +543,6 @@ fn line_limit(evidence: &Evidence<'_>) -> Vec<Statement> {
                     "equivalent to the ratio criterion ({CRITERION_SOURCE}), since the language is factorial, prolongable and subexponential; {figures}"
                 )
             },
-        ),
+        )),
     ]
-}
-
-/// Figures that suggest s(n)/p(n) → 0: it fell by a quarter at least over the last half of the study.
-fn ratio_trend(line: &[LineFigures]) -> Option<String> {
-    let last = line.last()?;
-    let half = &line[line.len() / 2];
-    if line.len() < 8 || last.growth > 0.75 * half.growth {
-        return None;
-    }
-    Some(format!(
-        "p(n+1)/p(n) − 1 fell from {:.4} at n = {} to {:.4} at n = {}",
-        half.growth, half.order, last.growth, last.order
-    ))
 }
