@@ -141,10 +141,10 @@ impl Answer for Counted {
     }
     fn text(&self) -> String {
         format!(
-            "{} begins {} words of length {}",
+            "words of length {} that begin with {}: {}",
+            self.length,
             shown(&self.word),
-            self.words,
-            self.length
+            self.words
         )
     }
 }

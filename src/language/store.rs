@@ -160,9 +160,7 @@ pub enum QueryFault {
         letters: Vec<char>,
     },
     /// Longer than the stored words: nothing is known.
-    #[error(
-        "a word of {length} letters is too long: the file holds the words up to length {longest}"
-    )]
+    #[error("length {length} is too long: the file holds the words up to length {longest}")]
     TooLong {
         /// The length asked for.
         length: usize,

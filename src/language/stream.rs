@@ -385,20 +385,26 @@ mod tests {
 
     #[test]
     fn a_failing_consumer_ends_the_walk() {
-        let roots = vec![vec![0]; 40];
-        let mut seen = 0;
-        let told = pool(3).install(|| {
-            in_order(
-                roots,
-                64,
-                |part, teller| tell_many(part, 300_000, teller),
-                |_, _| {
-                    seen += 1;
-                    if seen == 400_000 { Err("full") } else { Ok(()) }
-                },
-            )
-        });
-        assert_eq!(told.unwrap_err(), StreamFault::Consumer("full"));
+        // Threads that wait for room in a channel, and threads that wait because they are too far ahead.
+        for (words, enough) in [(300_000, 400_000), (10, 5)] {
+            let mut seen = 0;
+            let told = pool(3).install(|| {
+                in_order(
+                    vec![vec![0]; 40],
+                    64,
+                    |part, teller| tell_many(part, words, teller),
+                    |_, _| {
+                        seen += 1;
+                        if seen < enough {
+                            return Ok(());
+                        }
+                        std::thread::sleep(std::time::Duration::from_millis(200));
+                        Err("full")
+                    },
+                )
+            });
+            assert_eq!(told.unwrap_err(), StreamFault::Consumer("full"));
+        }
     }
 
     #[test]

@@ -74,7 +74,8 @@ impl<'a> Graph<'a> {
     pub(super) fn is_sound(&self, alphabet: usize) -> bool {
         let states = self.tree_arcs + 1;
         let firsts = || (0..=states).map(|s| number(self.first, s) as usize);
-        firsts().is_sorted()
+        number(self.first, 0) == 0
+            && firsts().is_sorted()
             && firsts().next_back() == Some(self.letters.len())
             && self.letters.iter().all(|l| (*l as usize) < alphabet)
             && (0..self.targets.len() / 4).all(|arc| (number(self.targets, arc) as usize) < states)
