@@ -100,11 +100,11 @@ fn branches_grow_by_the_multiplicity() {
         let bispecial = bispecial_words(&language, LONGEST, &[], |side| table.letter_id(side));
         for end in [End::Right, End::Left] {
             let tree = special_tree(&language, end, LONGEST + 1);
-            for n in 0..=LONGEST {
+            for (n, bispecial) in bispecial.iter().enumerate() {
                 for (at, special) in tree.levels[n].iter().enumerate() {
                     let children = tree.levels[n + 1].iter().filter(|c| c.parent == Some(at));
                     let sum: i64 = children.map(|c| i64::from(c.extensions) - 1).sum();
-                    let m = bispecial[n].iter().find(|b| b.word == special.word);
+                    let m = bispecial.iter().find(|b| b.word == special.word);
                     let m = m.map_or(0, |b| b.multiplicity);
                     let word = language.word(n, special.word);
                     assert_eq!(

@@ -36,8 +36,10 @@ fn tables() -> impl Iterator<Item = Table> {
     })
 }
 
+type Word = Vec<u8>;
+
 /// The words of each length, entry n for length n, and the same as sets.
-fn levels(language: &Language) -> (Vec<Vec<Vec<u8>>>, Vec<HashSet<Vec<u8>>>) {
+fn levels(language: &Language) -> (Vec<Vec<Word>>, Vec<HashSet<Word>>) {
     let lists: Vec<Vec<Vec<u8>>> = (0..=language.longest())
         .map(|n| words(language, n))
         .collect();
@@ -145,9 +147,9 @@ fn multiplicities_count_the_diagonals_with_this_code() {
             *found.entry(spelled.collect()).or_default() += 1;
         }
         let mut broken = 0;
-        for n in 1..=LONGEST {
+        for (n, level) in lists.iter().enumerate().take(LONGEST + 1).skip(1) {
             let by_links = language.bilateral_multiplicities(n);
-            for (word, by_links) in lists[n].iter().zip(by_links) {
+            for (word, by_links) in level.iter().zip(by_links) {
                 let count = found.remove(word).unwrap_or(0);
                 // Looking everything up is slow in tables with many sides; the links are the same definition.
                 if n <= 3 || table.sides() <= 5 {

@@ -67,7 +67,7 @@ const HALF: Point = [14.0, 11.5];
 const MARGIN: f64 = 18.0;
 /// Between the left edge and the root.
 const LEFT: f64 = 46.0;
-/// Between the last column and the right edge.
+/// Between the last column and the right edge, more when notes are wide.
 const RIGHT: f64 = 72.0;
 /// Between the top and the first row: the numbers of the columns stand there.
 const TOP: f64 = 74.0;
@@ -141,12 +141,15 @@ pub(crate) fn compose_tree(tree: &TreeDrawing) -> Result<(Canvas, Point), Figure
     let places = places(&tree.nodes)?;
     let depth = places.column.iter().copied().max().unwrap_or(0);
     let labelled = places.leaves <= LABELLED_LEAVES;
-    let step = ((WIDTH - LEFT - RIGHT) / depth.max(1) as f64).min(WIDEST_STEP);
+    let note_widths = tree.nodes.iter().map(|n| text_width(&n.note, SMALL_TEXT));
+    let widest_note = note_widths.fold(0.0, f64::max);
+    let right = RIGHT.max(HALF[0] + widest_note + NOTE_GAP);
+    let step = ((WIDTH - LEFT - right) / depth.max(1) as f64).min(WIDEST_STEP);
     let height = match labelled {
         true => ROW,
         false => (DENSE_HEIGHT / places.leaves as f64).max(5.0),
     };
-    let width = (LEFT + step * depth as f64 + RIGHT).max(NARROWEST);
+    let width = (LEFT + step * depth as f64 + right).max(NARROWEST);
     let bottom = TOP + height * places.leaves as f64;
     let place = |node: usize| {
         let x = LEFT + step * places.column[node] as f64;
@@ -154,8 +157,7 @@ pub(crate) fn compose_tree(tree: &TreeDrawing) -> Result<(Canvas, Point), Figure
     };
     let mut canvas = Canvas::default();
     draw_columns(&mut canvas, &tree.axis, depth, step, bottom);
-    let note_widths = tree.nodes.iter().map(|n| text_width(&n.note, SMALL_TEXT));
-    let notes_fit = step >= 2.0 * HALF[0] + note_widths.fold(0.0, f64::max) + NOTE_GAP;
+    let notes_fit = step >= 2.0 * HALF[0] + widest_note + NOTE_GAP;
     let shows_note = |node: &TreeNode| labelled && notes_fit && !node.note.is_empty();
     for (i, node) in tree.nodes.iter().enumerate() {
         let Some(parent) = node.parent else {
