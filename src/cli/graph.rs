@@ -143,16 +143,7 @@ fn stage(work: &mut Work, options: &GraphOptions, order: Option<usize>) -> Resul
     let timer = work
         .stats
         .begin("language", order.unwrap_or(0), work.control.done());
-    let loaded = language_source::load(
-        &options.source,
-        &options.settings,
-        options.exactness,
-        order,
-        options.limits.budget_memory,
-        options.common.quiet,
-        &work.control,
-        &work.progress,
-    );
+    let loaded = language_source::load(options, order, work);
     let tiers = loaded.as_ref().ok().and_then(|loaded| loaded.tiers);
     work.stats.end(timer, work.control.done(), tiers);
     let loaded = loaded?;

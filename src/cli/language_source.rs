@@ -1,16 +1,16 @@
 //! Where a command's language comes from: a table, a file of words, or the rule of a reference file.
 
-use super::arguments::{Exactness, Settings};
+use super::arguments::GraphOptions;
 use super::fault::Fault;
 use super::output::read_table;
-use super::progress::Progress;
 use super::words::total_words;
+use super::work::Work;
 use crate::language::suffixes::{Evidence, TextFault, factors_of_words};
 use crate::language::tree::BYTES_PER_WORD;
 use crate::language::{Language, walk};
 use crate::number::Tiers;
 use crate::reference::{self, ReferenceFault};
-use crate::run::{Control, memory};
+use crate::run::memory;
 use crate::study::results::check_memory;
 use crate::table::{MOST_SIDES, Table};
 use crate::unfold::Mesh;
@@ -79,16 +79,10 @@ pub const DEFAULT_ORDER: usize = 30;
 
 /// Computes the words up to length `order` + 1; without an order, up to the default one, or as far as the words of a file
 /// reach.
-pub fn load(
-    source: &LanguageSource,
-    settings: &Settings,
-    exactness: Exactness,
-    order: Option<usize>,
-    budget_memory: Option<u64>,
-    quiet: bool,
-    control: &Control,
-    progress: &Progress,
-) -> Result<Loaded, Fault> {
+pub fn load(options: &GraphOptions, order: Option<usize>, work: &Work) -> Result<Loaded, Fault> {
+    let (source, settings, exactness) = (&options.source, &options.settings, options.exactness);
+    let (budget_memory, quiet) = (options.limits.budget_memory, options.common.quiet);
+    let (control, progress) = (&*work.control, &work.progress);
     let longest = order.unwrap_or(DEFAULT_ORDER) + 1;
     if let Some(path) = &source.table {
         let loaded = read_table(path, settings, quiet)?;

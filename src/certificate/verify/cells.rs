@@ -143,6 +143,10 @@ impl Line {
 }
 
 /// The lines that enter through each side alone, as the ledger must add up to them.
+#[expect(
+    clippy::mutable_key_type,
+    reason = "the caches inside a field take no part in equality or hash"
+)]
 pub fn whole(plane: &Plane) -> HashMap<(usize, Line), Real> {
     let mut whole = HashMap::new();
     for side in 0..plane.corners.len() {
