@@ -43,11 +43,11 @@ const KEYS: [&str; 15] = [
 #[derive(Clone, Debug)]
 pub(crate) struct Link {
     /// Where it is.
-    pub(super) place: PathBuf,
+    pub(crate) place: PathBuf,
     /// Its name as given.
-    pub(super) name: String,
+    pub(crate) name: String,
     /// The names of its parameters, once they are read.
-    pub(super) parameters: Vec<String>,
+    pub(crate) parameters: Vec<String>,
 }
 
 /// The files that are being read, the outermost first.
