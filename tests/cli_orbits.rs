@@ -391,9 +391,9 @@ fn every_wrong_option_is_told() {
             "orbits",
             &[],
             &[
-                (&["--count", "-1"], "--count"),
+                (&["--count", "-1"], "-1"),
                 (&["--hits", "0"], "at least 1"),
-                (&["--seed", "-1"], "--seed"),
+                (&["--seed", "-1"], "-1"),
                 (&["--aim", "1"], "two coordinates"),
                 (&["--aim", "0,0"], "zero vector"),
                 (&["--heading", "sqrt(2)"], "rational multiple of pi"),
@@ -444,7 +444,7 @@ fn every_wrong_option_is_told() {
             &[],
             &[
                 (&["--length", "0"], "--length"),
-                (&["--length", "-1"], "--length"),
+                (&["--length", "-1"], "-1"),
                 (&["--length", "1e3"], "--length"),
                 (&["--pictures", "nowhere/x"], "nowhere"),
                 (&["--format", "jsonl"], "possible values"),
@@ -457,7 +457,7 @@ fn every_wrong_option_is_told() {
             "diagonals",
             &[],
             &[
-                (&["--length", "-1"], "--length"),
+                (&["--length", "-1"], "-1"),
                 (&["--length", "x"], "--length"),
                 (&["--distance", "0"], "positive"),
                 (&["--distance", "-2"], "positive"),

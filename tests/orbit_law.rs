@@ -166,7 +166,9 @@ fn largest_z(table: &Table, statistics: &Statistics) -> f64 {
     let (engine, mesh) = prepared(table, 2);
     let all = language(table, 2);
     let chord = statistics.chord().expect("many orbits");
-    let mut largest = chord.z(mean_chord(table, &facts(table))).abs();
+    // In the unit of the meter.
+    let unit = 10f64.powi(PathMeter::new(table).order());
+    let mut largest = chord.z(mean_chord(table, &facts(table)) / unit).abs();
     for n in 1..=2 {
         let measures = measure(table, &engine, &mesh, n, n, &Control::new()).expect("measured");
         for (word, exact) in words(&all, n).into_iter().zip(&measures.kept) {
