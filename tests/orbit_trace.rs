@@ -4,7 +4,7 @@ mod launch;
 mod oracle;
 mod support;
 
-use launch::{backwards, mirrored, negative, ratio, start_of, states, tiny};
+use launch::{backwards, mirrored, negative, quarter_turn, ratio, start_of, states, tiny};
 use oracle::shapes::Random;
 use oracle::{Point, lattice_table, random_polygon};
 use reboundary::number::{Real, Sign};
@@ -14,10 +14,10 @@ use reboundary::orbit::trace::{StartFault, trace};
 use reboundary::orbit::{Start, Step, TraceTables, Tracer};
 use reboundary::table::expression::Evaluator;
 use reboundary::table::{CornerId, SideId, Table, Vector};
-use rug::{Integer, Rational};
+use rug::Rational;
 use support::{
-    crooked, half_equilateral, integer_table, irrational_kite, irrational_l, l_of_three_squares,
-    language, legs_three_and_four, named_tables, rational_table, regular_pentagon, unit_square,
+    crooked, half_equilateral, integer_table, irrational_kite, l_of_three_squares, language,
+    legs_three_and_four, named_tables, rational_table, regular_pentagon, unit_square,
 };
 
 /// A random start with a short aim; short aims on lattice tables meet corners and close up.

@@ -54,6 +54,14 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
                 .into(),
         ));
     }
+    let meter = PathMeter::new(&table);
+    if options.statistics.is_some() && !meter.fits() {
+        return Err(Fault::BadInput(
+            "--statistics measures chords in floating point, which does not hold this table: it is more than 10^300 times as \
+             long as wide"
+                .into(),
+        ));
+    }
     let control = interruptible_control();
     let progress = Progress::new(&control, options.common.quiet);
     progress.begin("orbits", Some(count));
@@ -62,7 +70,7 @@ pub fn run(options: &OrbitsOptions) -> Result<(), Fault> {
         table: &table,
         generator,
         ensemble: &ensemble,
-        meter: PathMeter::new(&table),
+        meter,
         count,
         control: &control,
         statistics: Statistics::default(),
@@ -308,13 +316,20 @@ fn write_statistics(
                 row.in_unit(row.estimate.mean),
                 row.in_unit(row.estimate.standard_error),
                 row.exact_in_unit(),
-                format!("{:.3}", z(row)),
+                // Without variation there is no standard error to measure in.
+                Some(z(row))
+                    .filter(|z| z.is_finite())
+                    .map_or(String::new(), |z| format!("{z:.3}")),
             ])?;
         }
         csv.flush()
     })?;
     if !options.common.quiet {
-        let largest = rows.iter().map(|r| z(r).abs()).fold(0.0, f64::max);
+        let largest = rows
+            .iter()
+            .map(|r| z(r).abs())
+            .filter(|z| z.is_finite())
+            .fold(0.0, f64::max);
         note(&format!(
             "{} quantities compared; the largest z-score is {largest:.2}",
             rows.len()

@@ -6,6 +6,7 @@
 //! chord), and the standard error of their mean is that of independent numbers.
 
 use crate::number::{Real, Sign};
+use crate::table::facts::{facts, squared_area};
 use crate::table::{LetterId, SideId, Table, Vector};
 use rug::{Integer, Rational};
 use std::collections::BTreeMap;
@@ -127,8 +128,9 @@ impl Statistics {
 
 /// A table in floating point, for measuring paths whose sides are known.
 ///
-/// Lengths are in units of a power of ten near the table's size, which divides its coordinates exactly before they are
-/// rounded; the two axes are rounded apart, so a table may be of any size, and much longer one way than the other.
+/// Lengths are in units of a power of ten near area over longest side, the size of most chords. It divides coordinates exactly
+/// before they are rounded, and the two axes are rounded apart, so a table may be of any size, and much longer one way than
+/// the other: see [`PathMeter::fits`].
 #[derive(Debug)]
 pub struct PathMeter {
     /// Where each side begins.
@@ -147,13 +149,9 @@ impl PathMeter {
         let from_origin: Vec<Vector> = (0..table.sides())
             .map(|i| table.corner(i).minus(origin))
             .collect();
-        let largest = |part: &dyn Fn(&Vector) -> Real| {
-            let squares = from_origin.iter().map(part);
-            squares.max().expect("a table has corners")
-        };
-        let wide = decimal_order(&largest(&|v| v.x.pow(2)));
-        let high = decimal_order(&largest(&|v| v.y.pow(2) * form));
-        let order = wide.max(high);
+        let sides = (0..table.sides()).map(|i| table.side_vector(i).squared_length(form));
+        let longest = sides.max().expect("a table has sides");
+        let order = decimal_order(&(squared_area(table, &facts(table)) / longest));
         let place = |v: &Vector| {
             [
                 signed_root(&v.x.pow(2), v.x.sign(), order),
@@ -175,6 +173,11 @@ impl PathMeter {
     /// The unit of lengths is ten to this power.
     pub fn order(&self) -> i32 {
         self.order
+    }
+
+    /// True when floating point holds the table: it is less than 10^300 times as long as wide.
+    pub fn fits(&self) -> bool {
+        self.corners.iter().flatten().all(|c| c.abs() < 1e300)
     }
 
     /// The length of the path through the sides of a word from a start, in this meter's unit, in floating point: errors grow
