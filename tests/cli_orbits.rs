@@ -358,14 +358,21 @@ fn refused(arguments: &[&str], code: i32, says: &[&str]) {
     assert!(entries(place.path()).is_empty(), "{arguments:?}");
 }
 
+/// A command, options that are good, and bad ones with what the message must hold.
+type Case = (
+    &'static str,
+    &'static [&'static str],
+    &'static [(&'static [&'static str], &'static str)],
+);
+
 /// One wrong value for each option, and what the message must hold.
 #[test]
 fn every_wrong_option_is_told() {
-    let start = ["--start", "a@1/3", "--aim", "1,2"];
-    let cases: [(&str, &[&str], &[(&[&str], &str)]); 5] = [
+    const START: [&str; 4] = ["--start", "a@1/3", "--aim", "1,2"];
+    let cases: [Case; 5] = [
         (
             "trace",
-            &start,
+            &START,
             &[
                 (&["--hits", "0"], "at least 1"),
                 (&["--hits", "-3"], "-3"),

@@ -31,6 +31,9 @@ enum Rooted {
     Plain(UnGraph<bool, (u8, u32)>),
 }
 
+/// Isomorphic balls: one of them, their canonical form, and how many there are.
+type Class = (Rooted, Form, u64);
+
 fn rooted(kind: Kind, vertices: usize, arcs: &[(usize, usize, u8)]) -> Rooted {
     let mut edges: BTreeMap<(usize, usize, u8), u32> = BTreeMap::new();
     for &(from, to, label) in arcs {
@@ -133,7 +136,7 @@ fn assert_census(title: &str, language: &Language, order: usize, radii: usize) {
     for found in &all {
         let (kind, radius) = (found.kind, found.radius);
         let place = format!("{title}, order {order}, radius {radius}, {kind:?}");
-        let mut classes: HashMap<(usize, usize), Vec<(Rooted, Form, u64)>> = HashMap::new();
+        let mut classes: HashMap<(usize, usize), Vec<Class>> = HashMap::new();
         for v in 0..slow.out.len() {
             let (vertices, arcs) = slow.ball(v, radius);
             let ball = rooted(kind, vertices, &arcs);

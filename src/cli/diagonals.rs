@@ -136,7 +136,7 @@ fn stage(
     Ok((counts, found))
 }
 
-/// Bytes that a listed diagonal takes beside its code, its output included; measured on lists of a million.
+/// Bytes that a listed diagonal takes beside its code: an estimate on the large side, with its text for the output.
 const BYTES_PER_DIAGONAL: u64 = 700;
 
 /// Refuses a list that would not fit in memory.
