@@ -359,11 +359,7 @@ fn refused(arguments: &[&str], code: i32, says: &[&str]) {
 }
 
 /// A command, options that are good, and bad ones with what the message must hold.
-type Case = (
-    &'static str,
-    &'static [&'static str],
-    &'static [(&'static [&'static str], &'static str)],
-);
+type Case<'a> = (&'a str, &'a [&'a str], &'a [(&'a [&'a str], &'a str)]);
 
 /// One wrong value for each option, and what the message must hold.
 #[test]
