@@ -14,7 +14,7 @@
 //! - [`orbit`]: single orbits, traced exactly;
 //! - [`certificate`]: claims about words that others can check;
 //! - [`complexity`]: how many words, and the generalized diagonals that make new ones;
-//! - [`reference`]: languages from short rules: substitutions, exchanges, patterns, forbidden words;
+//! - [`mod@reference`]: languages from short rules: substitutions, exchanges, patterns, forbidden words;
 //! - [`factor_graph`]: Rauzy graphs of any factorial language, and the line-limit criterion;
 //! - [`figure`]: pictures from plain numbers;
 //! - [`study`]: all of it on one table, into one folder;

@@ -336,7 +336,7 @@ fn a_hundred_thousand_non_words_are_refuted() {
 #[test]
 fn altered_refutations_are_rejected() {
     let table = table("irrational-quadrilateral.toml");
-    let words = non_words(&table, 30, 8, &mut rng());
+    let words = non_words(&table, 60, 8, &mut rng());
     let good = answers(&table, &words, 8);
     check(&good).unwrap();
     let changes: [&dyn Fn(&mut Entry); 8] = [

@@ -36,7 +36,7 @@ fn a_sweep_writes_its_folder_and_keeps_what_is_finished() {
     let (code, stdout, stderr) = sweep(&out, &arguments);
     assert_eq!(code, 0, "{stderr}");
     assert!(stdout.contains("9 members\n"), "{stdout}");
-    assert!(stderr.contains("1 of 9 members are no table"), "{stderr}");
+    assert!(stderr.contains("1 of 9 members gives no table"), "{stderr}");
     let json = std::fs::read_to_string(out.join("sweep.json")).unwrap();
     let json: Value = serde_json::from_str(&json).unwrap();
     assert_eq!(json["schema"], "reboundary-sweep/1");
@@ -68,7 +68,7 @@ fn bad_sweeps_are_refused() {
         (vec!["--set", "t={}"], "empty"),
         (vec!["--set", "t=1", "--set", "t=2"], "set twice"),
         (vec!["--set", "t=1..5/3", "--diagonals", "99"], "N(99)"),
-        (vec!["--set", "t=2"], "none of the 1 members is a table"),
+        (vec!["--set", "t=2"], "none of the 1 members gives a table"),
     ] {
         let (code, _, stderr) = sweep(&out, &arguments);
         assert_eq!(code, 2, "{arguments:?}: {stderr}");

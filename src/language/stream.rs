@@ -1,6 +1,6 @@
 //! All words of one length in order, one after another, without keeping them.
 //!
-//! The words are walked in subtrees as in [`walk`](super::walk). Threads take the subtrees in order, and each sends
+//! The words are walked in subtrees as in [`walk`]. Threads take the subtrees in order, and each sends
 //! the words of its subtree through a channel of its own; one consumer empties the channels in order. The thread
 //! of the earliest unfinished subtree never waits for anything but the consumer, so the others may wait without harm:
 //! for room in their channel, or, when they are too far ahead, before they begin a subtree.
@@ -8,8 +8,8 @@
 //! **What is sent.** Depth first, a word shares a prefix with the word before it. A record is the length of that
 //! prefix and the letters behind it; records travel in chunks.
 //!
-//! **Memory.** At most [`AHEAD`] subtrees a thread are begun and not consumed, with at most [`CHUNKS`] chunks of [`CHUNK`] bytes
-//! (and what one record is over that) each: 32 MiB a thread. The seeds of [`PARTS`] subtrees are kept beside it. Neither grows with the
+//! **Memory.** At most `AHEAD` subtrees a thread are begun and not consumed, with at most `CHUNKS` chunks of `CHUNK` bytes
+//! (and what one record is over that) each: 32 MiB a thread. The seeds of `PARTS` subtrees are kept beside it. Neither grows with the
 //! number of words.
 
 use super::bundle;

@@ -1,6 +1,6 @@
 //! Reference languages: what a billiard's language is set beside.
 //!
-//! Each language is given by a finite rule in a small file (see [`file`]) and is computed *completely* up to a
+//! Each language is given by a finite rule in a small file (see [`mod@file`]) and is computed *completely* up to a
 //! length, by a method whose completeness is proved in its module:
 //!
 //! - [`substitution`]: one substitution, or a directive sequence of them (S-adic);

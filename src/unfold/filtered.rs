@@ -18,7 +18,7 @@
 //! itself; a corner image ahead is w·v + t in the same way. Leaps of m₁ + m₂ + … = n crossings give an error of at
 //! most Σ e_{m_j} ≤ 2·e_n (each has its own start, whose error is less than one step's), Σ 2R·(2m_j + 1)·2η ≤ 2·e_n
 //! for w, and u·X_n for each sum, at most 2·e_n for n of them. One more such term gives a corner image. So with a
-//! tabulated group all errors are taken [`LEAPS`] times.
+//! tabulated group all errors are taken `LEAPS` times.
 //!
 //! A cross product of two differences, each of magnitude at most D = 2X_n + f with error at most
 //! f = 2p_n + 2u·X_n, is off by at most 4Df + 2f² + 8u·D². The table `bound[n]` holds this, inflated by
