@@ -409,3 +409,63 @@ fn lines_that_nearly_meet_a_corner_go_on() {
     assert_eq!(found.saddles, []);
     assert!(found.open > 0);
 }
+
+/// Round a hole orbits that pass it on different sides may share a word; each is a strip of its own.
+#[test]
+fn strips_round_a_hole_fill_all_copies() {
+    let file = concat!(
+        env!("CARGO_MANIFEST_DIR"),
+        "/polygons/square-in-square.toml"
+    );
+    let table = reboundary::table::file::load(std::path::Path::new(file))
+        .expect("a table")
+        .table;
+    for (x, y) in [
+        ("1", "0"),
+        ("1", "1"),
+        ("1", "2"),
+        ("2", "1"),
+        ("1", "3"),
+        ("3", "2"),
+    ] {
+        let flow = flow(&table, x, y);
+        let segments = saddles(&flow, 300, &Control::new()).expect("unstopped");
+        let found = strips(&flow, &segments).expect("a periodic direction");
+        let tables = TraceTables::new(flow.table());
+        let form = flow.table().form();
+        let mut area = Real::from(0);
+        for strip in &found {
+            let aim = &strip.start.aim;
+            let ratio = strip.displacement.dot(aim, form) / aim.squared_length(form);
+            let turns = if strip.word.len() % 2 == 1 { 2 } else { 1 };
+            area += &strip.breadth * &ratio * Real::from(turns * strip.copies as i64);
+            let mut tracer = Tracer::new(&tables, strip.start.clone()).expect("a start");
+            let period = loop {
+                match tracer.advance() {
+                    Step::Hit(_) => assert!(tracer.word().len() <= strip.word.len()),
+                    Step::Period(period) => break period,
+                    Step::Corner(corner) => panic!("{corner:?}"),
+                }
+            };
+            assert_eq!(period, strip.word.len(), "{x},{y}: {:?}", strip.word);
+        }
+        // Four copies (the group of a right-angled table has order 4) of nine squares less one.
+        assert_eq!(area, Real::from(4 * 8), "{x},{y}");
+    }
+    // Above and below the hole from wall to wall, and on its left and right from a wall to the hole.
+    let flow = flow(&table, "1", "0");
+    let segments = saddles(&flow, 300, &Control::new()).expect("unstopped");
+    let found = strips(&flow, &segments).expect("a periodic direction");
+    let words: Vec<Vec<u8>> = found
+        .iter()
+        .map(|strip| strip.word.iter().map(|side| side.0).collect())
+        .collect();
+    assert_eq!(words, [vec![1, 3], vec![1, 3], vec![1, 6], vec![3, 4]]);
+    let one = Real::from(1);
+    assert!(
+        found
+            .iter()
+            .all(|s| s.breadth == one && s.copies == found[0].copies)
+    );
+    assert_ne!(found[0].start.fraction, found[1].start.fraction);
+}

@@ -16,9 +16,10 @@ use std::collections::BTreeMap;
 /// A strip of parallel periodic orbits of the table.
 #[derive(Clone, Debug, PartialEq, Eq)]
 pub struct DirectionStrip {
-    /// The primitive word of the middle orbit for one turn: its least cyclic shift.
+    /// The word of the middle orbit until it closes: its least cyclic shift. It is primitive, except round a hole, where an
+    /// odd word may have orbits that close after two turns and none that closes after one; then it is that word twice.
     pub word: Vec<SideId>,
-    /// From the start to where one turn ends in the unfolded plane. For an odd word the middle orbit closes after
+    /// From the start to where the word ends in the unfolded plane. For an odd word the middle orbit closes after
     /// one turn, the others after two.
     pub displacement: Vector,
     /// Difference of heights across the strip: its width is this times √g, divided by the length of the
@@ -38,8 +39,10 @@ impl DirectionStrip {
     }
 }
 
-/// The strips of a completely periodic direction, one for each class of words under cyclic shift and reversal,
-/// by length of the word, then in the order of the words.
+/// The strips of a completely periodic direction, each once whichever way it is run through, by length of the word, then in
+/// the order of the words. Without holes there is one for each class of words under cyclic shift and reversal; orbits that
+/// pass a hole on different sides may share a word, and then come in the order of the points where the middle orbits hit
+/// the sides.
 ///
 /// `None` when some line from a corner is not known to close.
 pub fn strips(flow: &Flow, saddles: &Saddles) -> Option<Vec<DirectionStrip>> {
@@ -51,7 +54,11 @@ pub fn strips(flow: &Flow, saddles: &Saddles) -> Option<Vec<DirectionStrip>> {
         .iter()
         .map(|b| vec![false; b.len() - 1])
         .collect();
-    let mut classes: BTreeMap<(usize, Vec<SideId>), DirectionStrip> = BTreeMap::new();
+    #[expect(
+        clippy::mutable_key_type,
+        reason = "the caches inside a field take no part in order or equality"
+    )]
+    let mut classes: BTreeMap<(usize, Vec<SideId>, Hits), DirectionStrip> = BTreeMap::new();
     for cell in 0..boundaries.len() {
         for interval in 0..boundaries[cell].len() - 1 {
             if seen[cell][interval] {
@@ -62,7 +69,11 @@ pub fn strips(flow: &Flow, saddles: &Saddles) -> Option<Vec<DirectionStrip>> {
             let mut reversed = strip.word.clone();
             reversed.reverse();
             let class = rotated(&reversed, least_rotation(&reversed)).min(strip.word.clone());
-            let known = classes.entry((class.len(), class));
+            let hits = match flow.table().holes() {
+                0 => Hits::new(),
+                _ => hits(flow, &boundaries, &cycle),
+            };
+            let known = classes.entry((class.len(), class, hits));
             let known = known.or_insert_with(|| DirectionStrip {
                 copies: 0,
                 ..strip.clone()
@@ -132,10 +143,46 @@ fn cycle(
     }
 }
 
+/// Where an orbit hits the sides, in order of the sides, then of the fractions: the same for both ways round.
+type Hits = Vec<(SideId, Real)>;
+
+fn hits(flow: &Flow, boundaries: &[Vec<Height>], cycle: &[Stage]) -> Hits {
+    let hit = |stage: &Stage| {
+        let side = flow.cells()[stage.cell].side;
+        (side, middle_fraction(flow, boundaries, stage))
+    };
+    let mut hits: Hits = cycle.iter().map(hit).collect();
+    hits.sort();
+    hits.dedup();
+    hits
+}
+
+/// Where the middle of an interval lies on its side, as a fraction of the way from the side's first corner.
+fn middle_fraction(flow: &Flow, boundaries: &[Vec<Height>], stage: &Stage) -> Real {
+    let (low, high) = (
+        &boundaries[stage.cell][stage.interval].exact,
+        &boundaries[stage.cell][stage.interval + 1].exact,
+    );
+    let middle = (low + high) * Real::from(Rational::from((1, 2)));
+    let cell = &flow.cells()[stage.cell];
+    let corner = |i: usize| &flow.height(cell.copy, CornerId(i as u8)).exact;
+    let side = cell.side.0 as usize;
+    let (first, second) = (corner(side), corner(flow.table().after(side)));
+    &(first - &middle) / &(first - second)
+}
+
 fn strip(flow: &Flow, boundaries: &[Vec<Height>], cycle: &[Stage]) -> DirectionStrip {
     let code: Vec<SideId> = cycle.iter().map(|s| flow.cells()[s.cell].side).collect();
-    let turns = code.len() / root_length(&code);
-    let word = &code[..root_length(&code)];
+    let root = root_length(&code);
+    // The middle orbit has closed when it is back at its point on the side; then it runs in the same direction too, since
+    // the word is back where it began.
+    let fraction = |stage: &Stage| middle_fraction(flow, boundaries, stage);
+    let period = match root < code.len() && fraction(&cycle[0]) != fraction(&cycle[root]) {
+        true => code.len(),
+        false => root,
+    };
+    let turns = code.len() / period;
+    let word = &code[..period];
     let at = least_rotation(word);
     let stage = &cycle[at];
     let cell = &flow.cells()[stage.cell];
@@ -143,10 +190,6 @@ fn strip(flow: &Flow, boundaries: &[Vec<Height>], cycle: &[Stage]) -> DirectionS
         &boundaries[stage.cell][stage.interval].exact,
         &boundaries[stage.cell][stage.interval + 1].exact,
     );
-    let middle = (low + high) * Real::from(Rational::from((1, 2)));
-    let corner = |i: usize| &flow.height(cell.copy, CornerId(i as u8)).exact;
-    let side = cell.side.0 as usize;
-    let (first, second) = (corner(side), corner(flow.table().after(side)));
     // What the crossings take from the way, the flow has added.
     let way = cycle
         .iter()
@@ -158,7 +201,7 @@ fn strip(flow: &Flow, boundaries: &[Vec<Height>], cycle: &[Stage]) -> DirectionS
         breadth: high - low,
         start: Start {
             side: cell.side,
-            fraction: &(first - &middle) / &(first - second),
+            fraction: fraction(stage),
             aim: flow.table_direction(cell.copy),
         },
         copies: 1,
