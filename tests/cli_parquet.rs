@@ -10,7 +10,7 @@ use program::{done, place, polygon, run_in, text};
 #[test]
 fn parquet_rows_are_those_of_the_csv() {
     let place = place();
-    let table = polygon("dart");
+    let table = polygon("right-isosceles");
     let orbits = [
         "orbits", &table, "--count", "700", "--hits", "30000", "--quiet", "--seed", "5",
     ];

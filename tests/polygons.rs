@@ -150,29 +150,34 @@ fn p_does_not_depend_on_how_a_table_is_written() {
     }
 }
 
-/// The shortest of several times that both routes to length 40 take.
+/// The time that both routes to length 40 take.
 fn both_routes(name: &str) -> Duration {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("polygons");
     let table = loaded(&folder.join(name)).table;
-    let once = |_| {
-        let begun = Instant::now();
-        assert_eq!(p_by_beams(&table, 40), p_by_fans(&table, 40));
-        begun.elapsed()
-    };
-    (0..5).map(once).min().expect("five times")
+    let begun = Instant::now();
+    assert_eq!(p_by_beams(&table, 40), p_by_fans(&table, 40));
+    begun.elapsed()
 }
 
 /// Walking over a cubic field, with a finite group and with an infinite one, against rational corners with irrational
-/// angles.
+/// angles. All in turns and the least time of each, since other work may come between.
 #[test]
 fn cubic_triangles_take_at_most_five_times_as_long_as_rational_ones() {
-    let rational = both_routes("irrational-acute.toml");
-    for cubic in ["heptagonal-triangle.toml", "cube-root-triangle.toml"] {
-        let taken = both_routes(cubic);
-        println!("{cubic}: {taken:?}, rational {rational:?}");
-        assert!(
-            taken <= 5 * rational,
-            "{cubic}: {taken:?} against {rational:?}"
-        );
+    let files = [
+        "irrational-acute.toml",
+        "heptagonal-triangle.toml",
+        "cube-root-triangle.toml",
+    ];
+    let mut least = [Duration::MAX; 3];
+    for _ in 0..40 {
+        for (least, file) in least.iter_mut().zip(files) {
+            *least = both_routes(file).min(*least);
+        }
     }
+    let [rational, cubic @ ..] = least;
+    println!("rational {rational:?}, cubic {cubic:?}");
+    assert!(
+        cubic.iter().all(|taken| *taken <= 5 * rational),
+        "{cubic:?} against {rational:?}"
+    );
 }
