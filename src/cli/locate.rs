@@ -59,7 +59,7 @@ pub fn run(options: &LocateOptions) -> Result<(), Fault> {
         drop(progress);
         if !options.common.quiet {
             note(&format!(
-                "{count} answers; check them with `reboundary verify {}`",
+                "answers written: {count}; check them with `reboundary verify {}`",
                 path.display()
             ));
         }

@@ -81,7 +81,10 @@ pub fn verify(input: impl BufRead) -> Result<Verdict, Rejection> {
         reason: reason.into(),
     };
     let (_, first) = lines.next().ok_or_else(|| fault(1, "the file is empty"))?;
-    let header: Header = parse(1, &first?)?;
+    let header: Header = serde_json::from_str(&first?).map_err(|e| {
+        let reason = format!("this is no certificate; `reboundary certify` makes one ({e})");
+        fault(1, &reason)
+    })?;
     if header.schema != SCHEMA {
         return Err(fault(1, &format!("the schema is not {SCHEMA}")));
     }
